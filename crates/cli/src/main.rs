@@ -1,0 +1,5 @@
+//! The `bedswell` command.
+
+fn main() -> std::process::ExitCode {
+    bedswell_cli::main()
+}

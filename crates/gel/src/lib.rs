@@ -1,0 +1,1 @@
+//! Gel thermodynamics, bead lattices and their equilibrium.

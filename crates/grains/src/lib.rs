@@ -1,0 +1,1 @@
+//! Gradings, random sphere packs and the motion of grains.

@@ -1,0 +1,1 @@
+//! Scenes, coupled swelling marches, studies and run folders.

@@ -1,0 +1,1 @@
+//! What a user is promised.
