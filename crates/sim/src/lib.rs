@@ -1,1 +1,9 @@
 //! Scenes, coupled swelling marches, studies and run folders.
+
+mod outcome;
+mod run;
+mod scene;
+
+pub use outcome::{BeadOutcome, PackOutcome, Quality, Step};
+pub use run::{Observer, RunError, run_pack};
+pub use scene::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};

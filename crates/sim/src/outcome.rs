@@ -1,0 +1,87 @@
+use serde::{Deserialize, Serialize};
+
+/// What became of one pack: the bed, each bead, and how it got there.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct PackOutcome {
+    /// Number of the pack within its study (0 for a single run).
+    pub pack: u64,
+    /// Grains in the cell.
+    pub grains: usize,
+    /// Pore fraction of the mixed dry bed.
+    pub porosity: f64,
+    /// Mass fraction of the grading left out as fines.
+    pub fines_left_out: f64,
+    /// Rise of the lid from dry to equilibrium (m).
+    pub heave_m: f64,
+    /// Mean contacts per grain that carries load, at the end.
+    pub contact_number: f64,
+    /// Each bead, in order.
+    pub beads: Vec<BeadOutcome>,
+    /// How well the end state is at rest.
+    pub quality: Quality,
+    /// One entry per increment.
+    pub history: Vec<Step>,
+}
+
+/// What became of one bead.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct BeadOutcome {
+    /// Water taken up per mass of dry gel (g/g).
+    pub uptake_g_per_g: f64,
+    /// Volume relative to the free-swollen bead in the same water.
+    pub volume_ratio: f64,
+    /// Volume-mean pressure in the gel (Pa), positive in compression.
+    pub mean_pressure_pa: f64,
+    /// Largest principal tension in any voxel (Pa).
+    pub largest_tension_pa: f64,
+    /// Where that is, as mixed in: offset from the bead's centre over its dry radius.
+    pub largest_tension_at: [f64; 3],
+    /// 99 % volume quantile of the largest principal tension (Pa).
+    pub tension_q99_pa: f64,
+    /// 99.9 % volume quantile of the largest principal compression (Pa).
+    pub compression_q999_pa: f64,
+    /// Largest force on one grain, wall or neighbouring bead (N).
+    pub largest_contact_force_n: f64,
+    /// Grains and walls that the bead presses on.
+    pub contacts: usize,
+    /// Asphericity of the gyration tensor: 0 for a sphere, 1 for a rod.
+    pub asphericity: f64,
+    /// Probability that the bead tears, by the weakest link.
+    pub tear_probability: f64,
+    /// Whether it tore in this pack: its own strength, drawn from the seed.
+    pub torn: bool,
+}
+
+/// How well a state is at rest.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
+pub struct Quality {
+    /// Largest net force on a grain over the mean contact force.
+    pub grain_residual: f64,
+    /// Net nodal force in the gel over its contact and bond forces (root mean square).
+    pub gel_residual: f64,
+    /// Net force on a bead over its largest contact force.
+    pub bead_balance: f64,
+    /// Share of the beads' volume that lies inside grains.
+    pub swallowed: f64,
+    /// Deepest overlap of two grains over the smaller diameter.
+    pub overlap: f64,
+}
+
+/// The state after one increment.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+pub struct Step {
+    /// Number of the increment, from 1.
+    pub increment: usize,
+    /// Free stretch of the gel from dry.
+    pub free_stretch: f64,
+    /// Mean water uptake of the beads (g/g).
+    pub uptake_g_per_g: f64,
+    /// Rise of the lid (m).
+    pub heave_m: f64,
+    /// Mean over beads of the 99 % tension quantile (Pa).
+    pub tension_q99_pa: f64,
+    /// Mean over beads of the tear probability.
+    pub tear_probability: f64,
+    /// How well this state is at rest.
+    pub quality: Quality,
+}
