@@ -167,18 +167,18 @@ fn from_modulus(sheet: &Datasheet, modulus: f64) -> Result<Calibration, Datashee
     Ok(calibration(sheet, numbers))
 }
 
-/// Two gels can share the same pair of swells: a soft, nearly neutral one and a
-/// stiffer, charged one. The charged one is taken, as absorbents are; a modulus on
-/// the datasheet settles it.
+/// Two gels can share the same pair of swells: as crosslinks and charges rise
+/// together at a given swell in water, the swell in saline first falls, then rises.
+/// The softer gel is taken; a modulus on the datasheet settles it.
 fn from_swells(sheet: &Datasheet, saline: f64) -> Result<Calibration, DatasheetError> {
     let j = volume_ratio_of_uptake(sheet.free_swell_water, sheet.dry_density);
     let swell_in_saline = |ln_n: f64| {
         charges_for(sheet, ln_n.exp(), j)
             .map_or(f64::INFINITY, |numbers| calibration(sheet, numbers).free_swell_saline)
     };
-    // The saline swell falls with the crosslinks to a minimum, then rises.
     let (mut low, mut high) = ((1e-9_f64).ln(), (0.1_f64).ln());
-    let most = swell_in_saline(high);
+    let start = bisect(low, high, |ln_n| swell_in_saline(ln_n).is_finite());
+    let most = swell_in_saline(start);
     while high - low > 1e-9 {
         let (first, second) = (low + (high - low) / 3.0, high - (high - low) / 3.0);
         if swell_in_saline(first) < swell_in_saline(second) {
@@ -198,7 +198,7 @@ fn from_swells(sheet: &Datasheet, saline: f64) -> Result<Calibration, DatasheetE
     if !(least..=most).contains(&saline) {
         return Err(out_of_reach);
     }
-    let ln_n = bisect(high, (0.1_f64).ln(), |ln_n| swell_in_saline(ln_n) >= saline);
+    let ln_n = bisect(start, high, |ln_n| swell_in_saline(ln_n) <= saline);
     charges_for(sheet, ln_n.exp(), j).map(|numbers| calibration(sheet, numbers)).ok_or(out_of_reach)
 }
 
