@@ -1,0 +1,115 @@
+use std::ops::{Add, AddAssign, Mul, Neg, Sub};
+
+/// Voxels that are worked on together.
+pub(crate) const WIDTH: usize = 8;
+
+/// One number for each of `WIDTH` neighbouring voxels of a row. The operations are
+/// plain loops that the compiler turns into vector instructions.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Lanes(pub(crate) [f64; WIDTH]);
+
+impl Lanes {
+    #[inline(always)]
+    pub(crate) fn splat(value: f64) -> Self {
+        Self([value; WIDTH])
+    }
+
+    /// The next values of a slice, from `at` on; zeros beyond its first `len`.
+    #[inline(always)]
+    pub(crate) fn load(slice: &[f64], at: usize, len: usize) -> Self {
+        let mut lanes = [0.0; WIDTH];
+        if len == WIDTH {
+            lanes.copy_from_slice(&slice[at..at + WIDTH]);
+        } else {
+            lanes[..len].copy_from_slice(&slice[at..at + len]);
+        }
+        Self(lanes)
+    }
+
+    /// Writes the first `len` values into a slice.
+    #[inline(always)]
+    pub(crate) fn store(&self, slice: &mut [f64], at: usize, len: usize) {
+        if len == WIDTH {
+            slice[at..at + WIDTH].copy_from_slice(&self.0);
+        } else {
+            slice[at..at + len].copy_from_slice(&self.0[..len]);
+        }
+    }
+
+    /// Adds the first `len` values to a slice.
+    #[inline(always)]
+    pub(crate) fn add_to(&self, slice: &mut [f64], at: usize, len: usize) {
+        if len == WIDTH {
+            for (target, value) in slice[at..at + WIDTH].iter_mut().zip(&self.0) {
+                *target += value;
+            }
+        } else {
+            for (target, value) in slice[at..at + len].iter_mut().zip(&self.0) {
+                *target += value;
+            }
+        }
+    }
+}
+
+macro_rules! elementwise {
+    ($trait:ident, $method:ident, $operator:tt) => {
+        impl $trait for Lanes {
+            type Output = Lanes;
+            #[inline(always)]
+            fn $method(self, other: Lanes) -> Lanes {
+                let mut result = [0.0; WIDTH];
+                for lane in 0..WIDTH {
+                    result[lane] = self.0[lane] $operator other.0[lane];
+                }
+                Lanes(result)
+            }
+        }
+    };
+}
+
+elementwise!(Add, add, +);
+elementwise!(Sub, sub, -);
+elementwise!(Mul, mul, *);
+
+impl Neg for Lanes {
+    type Output = Lanes;
+    #[inline(always)]
+    fn neg(self) -> Lanes {
+        Lanes(self.0.map(|value| -value))
+    }
+}
+
+impl AddAssign for Lanes {
+    #[inline(always)]
+    fn add_assign(&mut self, other: Lanes) {
+        *self = *self + other;
+    }
+}
+
+/// A vector in each lane.
+pub(crate) type Vector = [Lanes; 3];
+
+#[inline(always)]
+pub(crate) fn sub(a: Vector, b: Vector) -> Vector {
+    [a[0] - b[0], a[1] - b[1], a[2] - b[2]]
+}
+
+#[inline(always)]
+pub(crate) fn add(a: Vector, b: Vector) -> Vector {
+    [a[0] + b[0], a[1] + b[1], a[2] + b[2]]
+}
+
+#[inline(always)]
+pub(crate) fn scale(a: Vector, by: Lanes) -> Vector {
+    [a[0] * by, a[1] * by, a[2] * by]
+}
+
+#[inline(always)]
+pub(crate) fn dot(a: Vector, b: Vector) -> Lanes {
+    a[0] * b[0] + a[1] * b[1] + a[2] * b[2]
+}
+
+#[inline(always)]
+pub(crate) fn cross(a: Vector, b: Vector) -> Vector {
+    [a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]]
+}

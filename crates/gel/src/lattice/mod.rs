@@ -1,0 +1,261 @@
+mod cut_cell;
+mod skin;
+
+use cut_cell::CutCell;
+pub(crate) use skin::Skin;
+use std::collections::HashMap;
+
+/// Voxels filled less than this are left out; their neighbours take their gel.
+const SLIVER: f64 = 0.25;
+
+/// The voxel lattice of a dry ball, in units of the voxel edge; beads with the
+/// same number of voxels across share one.
+///
+/// Surface voxels are cut cells: they count with the volume inside the ball and
+/// with the mean of their shape functions over it.
+#[derive(Debug)]
+pub struct Lattice {
+    across: usize,
+    /// Place of each node on the grid, from the low corner of the ball's box.
+    nodes: Vec<[u16; 3]>,
+    /// Rows of voxels that are neighbours along x.
+    pub(crate) runs: Vec<Run>,
+    /// Place of each voxel on the grid.
+    voxels: Vec<[u16; 3]>,
+    /// Gel in each voxel (voxel volumes).
+    pub(crate) volume: Vec<f64>,
+    /// Volume means of ξ, η, ζ over each voxel's gel.
+    pub(crate) first: [Vec<f64>; 3],
+    /// Volume means of ηζ, ζξ, ξη over each voxel's gel.
+    pub(crate) mixed: [Vec<f64>; 3],
+    pub(crate) skin: Skin,
+}
+
+/// A row of voxels along x; its four rows of nodes are contiguous too.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Run {
+    /// First voxel.
+    pub(crate) voxel: usize,
+    /// Voxels in the run.
+    pub(crate) len: usize,
+    /// First node of the rows at (low y, low z), (high, low), (low, high), (high, high).
+    pub(crate) rows: [usize; 4],
+}
+
+impl Lattice {
+    /// The lattice of a ball with `across` voxels over its diameter.
+    ///
+    /// # Panics
+    /// With fewer than 4 or more than 512 voxels across.
+    #[track_caller]
+    pub fn new(across: usize) -> Self {
+        assert!((4..=512).contains(&across), "{across} voxels across; 4 to 512 are possible");
+        let cells = kept_cells(across);
+        let mut voxels: Vec<[u16; 3]> = cells.keys().copied().collect();
+        voxels.sort_unstable_by_key(|&[x, y, z]| (z, y, x));
+        let (nodes, node_at) = number_nodes(&voxels);
+        let runs = collect_runs(&voxels, &node_at);
+        let of =
+            |value: fn(&CutCell) -> f64| voxels.iter().map(|voxel| value(&cells[voxel])).collect::<Vec<_>>();
+        let mean = |value: fn(&CutCell) -> f64| {
+            voxels.iter().map(|voxel| value(&cells[voxel]) / cells[voxel].volume).collect::<Vec<_>>()
+        };
+        let skin = Skin::new(across, &cells, &node_at);
+        Self {
+            across,
+            runs,
+            volume: of(|cell| cell.volume),
+            first: [mean(|cell| cell.first[0]), mean(|cell| cell.first[1]), mean(|cell| cell.first[2])],
+            mixed: [mean(|cell| cell.mixed[0]), mean(|cell| cell.mixed[1]), mean(|cell| cell.mixed[2])],
+            nodes,
+            voxels,
+            skin,
+        }
+    }
+
+    /// Voxels over the diameter.
+    pub fn across(&self) -> usize {
+        self.across
+    }
+
+    /// Number of nodes.
+    pub fn node_count(&self) -> usize {
+        self.nodes.len()
+    }
+
+    /// Number of voxels.
+    pub fn voxel_count(&self) -> usize {
+        self.voxels.len()
+    }
+
+    /// Number of contact points on the skin.
+    pub fn skin_point_count(&self) -> usize {
+        self.skin.len()
+    }
+
+    /// Place of a node relative to the ball's centre (voxel edges).
+    pub fn node_offset(&self, node: usize) -> [f64; 3] {
+        self.nodes[node].map(|c| f64::from(c) - 0.5 * self.across as f64)
+    }
+
+    /// Centre of a voxel relative to the ball's centre (voxel edges).
+    pub fn voxel_offset(&self, voxel: usize) -> [f64; 3] {
+        self.voxels[voxel].map(|c| f64::from(c) + 0.5 - 0.5 * self.across as f64)
+    }
+
+    /// Pairs of voxels that share a face, with the axis of the face's normal:
+    /// the bonds. The first voxel is on the low side.
+    pub fn bonds(&self) -> Vec<(usize, usize, usize)> {
+        let index: HashMap<[u16; 3], usize> = self.voxels.iter().copied().zip(0..).collect();
+        let mut bonds = Vec::with_capacity(3 * self.voxels.len());
+        for (voxel, &place) in self.voxels.iter().enumerate() {
+            for axis in 0..3 {
+                let mut next = place;
+                next[axis] += 1;
+                if let Some(&neighbour) = index.get(&next) {
+                    bonds.push((voxel, neighbour, axis));
+                }
+            }
+        }
+        bonds
+    }
+
+    /// The eight nodes of a voxel, x fastest.
+    pub(crate) fn corners(run: &Run, along: usize) -> [usize; 8] {
+        let [a, b, c, d] = run.rows.map(|row| row + along);
+        [a, a + 1, b, b + 1, c, c + 1, d, d + 1]
+    }
+}
+
+/// The cut cells that stay, with the slivers' gel given to their neighbours.
+fn kept_cells(across: usize) -> HashMap<[u16; 3], CutCell> {
+    let half = 0.5 * across as f64;
+    // Mirror symmetry: the upper octant is integrated, the rest is its image.
+    let mut octant = HashMap::new();
+    for_each_place(across, |place| {
+        if place.iter().all(|&c| 2 * usize::from(c) + 1 >= across) {
+            octant.insert(place, CutCell::of_ball(place.map(|c| f64::from(c) - half), half));
+        }
+    });
+    let mut kept = HashMap::new();
+    let mut slivers = Vec::new();
+    for_each_place(across, |place| {
+        let image = |c: u16| across as u16 - 1 - c;
+        let low = place.map(|c| c < image(c));
+        let folded = place.map(|c| c.max(image(c)));
+        let cell = octant[&folded].mirrored(low);
+        if cell.volume >= SLIVER {
+            kept.insert(place, cell);
+        } else if cell.volume > 0.0 {
+            slivers.push((place, cell));
+        }
+    });
+    for (place, sliver) in &slivers {
+        let takers = nearest_kept(*place, &kept);
+        let share = 1.0 / takers.len() as f64;
+        for (taker, offset) in takers {
+            if let Some(cell) = kept.get_mut(&taker) {
+                cell.absorb(sliver, offset, share);
+            }
+        }
+    }
+    kept
+}
+
+fn for_each_place(across: usize, mut visit: impl FnMut([u16; 3])) {
+    let range = 0..across as u16;
+    for z in range.clone() {
+        for y in range.clone() {
+            for x in range.clone() {
+                visit([x, y, z]);
+            }
+        }
+    }
+}
+
+/// The kept voxels nearest to a dropped one, with its offset seen from them.
+fn nearest_kept(place: [u16; 3], kept: &HashMap<[u16; 3], CutCell>) -> Vec<([u16; 3], [i32; 3])> {
+    let mut nearest = Vec::new();
+    let mut least = i32::MAX;
+    for z in -2..=2_i32 {
+        for y in -2..=2_i32 {
+            for x in -2..=2_i32 {
+                let distance = x * x + y * y + z * z;
+                let there = [i32::from(place[0]) + x, i32::from(place[1]) + y, i32::from(place[2]) + z];
+                let Ok(there) =
+                    <[u16; 3]>::try_from(there.map(|c| u16::try_from(c).unwrap_or(u16::MAX)).as_slice())
+                else {
+                    continue;
+                };
+                if distance > least || !kept.contains_key(&there) {
+                    continue;
+                }
+                if distance < least {
+                    nearest.clear();
+                    least = distance;
+                }
+                nearest.push((there, [-x, -y, -z]));
+            }
+        }
+    }
+    nearest
+}
+
+type NodeIndex = HashMap<[u16; 3], usize>;
+
+fn number_nodes(voxels: &[[u16; 3]]) -> (Vec<[u16; 3]>, NodeIndex) {
+    let mut nodes: Vec<[u16; 3]> = voxels.iter().flat_map(corner_places).collect();
+    nodes.sort_unstable_by_key(|&[x, y, z]| (z, y, x));
+    nodes.dedup();
+    let index = nodes.iter().copied().zip(0..).collect();
+    (nodes, index)
+}
+
+fn corner_places(&[x, y, z]: &[u16; 3]) -> [[u16; 3]; 8] {
+    std::array::from_fn(|k| {
+        let k = k as u16;
+        [x + (k & 1), y + (k >> 1 & 1), z + (k >> 2)]
+    })
+}
+
+fn collect_runs(voxels: &[[u16; 3]], node_at: &NodeIndex) -> Vec<Run> {
+    let mut runs: Vec<Run> = Vec::new();
+    for (voxel, place) in voxels.iter().enumerate() {
+        if let Some(run) = runs.last_mut() {
+            let [x, y, z] = voxels[run.voxel];
+            if [x + run.len as u16, y, z] == *place {
+                run.len += 1;
+                continue;
+            }
+        }
+        let corners = corner_places(place);
+        runs.push(Run { voxel, len: 1, rows: [0, 2, 4, 6].map(|k| node_at[&corners[k]]) });
+    }
+    runs
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+
+    #[test]
+    fn the_lattice_holds_the_whole_ball() {
+        for across in [8, 13, 24] {
+            let lattice = Lattice::new(across);
+            let ball = std::f64::consts::PI / 6.0 * (across as f64).powi(3);
+            assert_relative_eq!(lattice.volume.iter().sum::<f64>(), ball, max_relative = 3e-4);
+        }
+    }
+
+    #[test]
+    fn nodes_of_a_run_lie_in_rows() {
+        let lattice = Lattice::new(12);
+        for run in &lattice.runs {
+            for along in 0..run.len {
+                let places = corner_places(&lattice.voxels[run.voxel + along]);
+                assert_eq!(Lattice::corners(run, along).map(|node| lattice.nodes[node]), places);
+            }
+        }
+    }
+}

@@ -1,0 +1,191 @@
+use super::{CutCell, NodeIndex, corner_places};
+use std::collections::HashMap;
+use std::f64::consts::{FRAC_PI_2, PI};
+
+/// Distance of neighbouring skin points (voxel edges).
+const SPACING: f64 = 0.4;
+
+/// Contact points on the true surface of the dry ball, each a fixed combination of
+/// node positions.
+///
+/// A trilinear voxel keeps the dry curvature of the skin inside it and would meet
+/// a flat or hollow counterface at its middle first, a bias of second order in the
+/// voxel edge. The combinations therefore add the second differences of the node
+/// rows, so that they reproduce displacements that are quadratic along the axes.
+#[derive(Debug)]
+pub(crate) struct Skin {
+    /// Direction of each point from the centre when dry.
+    pub(crate) direction: Vec<[f64; 3]>,
+    /// Dry area of every point (voxel edges squared).
+    pub(crate) area: f64,
+    /// Where each point's terms begin.
+    start: Vec<u32>,
+    node: Vec<u32>,
+    weight: Vec<f64>,
+}
+
+impl Skin {
+    pub(super) fn new(across: usize, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) -> Self {
+        let half = 0.5 * across as f64;
+        let direction = directions(across);
+        let mut skin = Self {
+            area: 4.0 * PI * half * half / direction.len() as f64,
+            start: vec![0],
+            node: Vec::new(),
+            weight: Vec::new(),
+            direction,
+        };
+        for point in 0..skin.direction.len() {
+            let place = skin.direction[point].map(|c| half * (1.0 + c));
+            for (node, weight) in combination(place, host(place, cells), node_at) {
+                skin.node.push(node as u32);
+                skin.weight.push(weight);
+            }
+            skin.start.push(skin.node.len() as u32);
+        }
+        skin
+    }
+
+    /// Number of points.
+    pub(crate) fn len(&self) -> usize {
+        self.direction.len()
+    }
+
+    /// Nodes and weights of a point.
+    #[inline]
+    pub(crate) fn terms(&self, point: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
+        let range = self.start[point] as usize..self.start[point + 1] as usize;
+        self.node[range.clone()]
+            .iter()
+            .zip(&self.weight[range])
+            .map(|(&node, &weight)| (node as usize, weight))
+    }
+}
+
+/// Directions that share the sphere in equal areas, the same in every octant.
+///
+/// Each octant's triangle u + v < 1 maps onto the sphere without changing areas by
+/// z = 1 - r², longitude = (π/2) v/r, with r = u + v (an equal-area octahedral map,
+/// from memory).
+fn directions(across: usize) -> Vec<[f64; 3]> {
+    let rows = (across as f64 * (PI / 8.0).sqrt() / SPACING).ceil() as usize;
+    let mut octant = Vec::with_capacity(rows * rows);
+    for i in 0..rows {
+        for j in 0..rows - i {
+            octant.push((i as f64 + 1.0 / 3.0, j as f64 + 1.0 / 3.0));
+            if i + j + 1 < rows {
+                octant.push((i as f64 + 2.0 / 3.0, j as f64 + 2.0 / 3.0));
+            }
+        }
+    }
+    let onto_sphere = |(i, j): (f64, f64)| {
+        let r = (i + j) / rows as f64;
+        let longitude = FRAC_PI_2 * j / (i + j);
+        let across = r * (2.0 - r * r).sqrt();
+        [across * longitude.cos(), across * longitude.sin(), 1.0 - r * r]
+    };
+    let octant: Vec<_> = octant.into_iter().map(onto_sphere).collect();
+    (0..8)
+        .flat_map(|image: u8| {
+            octant.iter().map(move |p| {
+                std::array::from_fn(|axis| if image >> axis & 1 == 1 { -p[axis] } else { p[axis] })
+            })
+        })
+        .collect()
+}
+
+/// The kept voxel that carries a point: the one that contains it, or else the nearest.
+fn host(place: [f64; 3], cells: &HashMap<[u16; 3], CutCell>) -> [u16; 3] {
+    let mut best = ([0; 3], f64::INFINITY);
+    let around = place.map(|c| c.floor() as i32);
+    for k in 0..125 {
+        let candidate = [around[0] + k % 5 - 2, around[1] + k / 5 % 5 - 2, around[2] + k / 25 - 2];
+        let Ok(voxel) =
+            <[u16; 3]>::try_from(candidate.map(|c| u16::try_from(c).unwrap_or(u16::MAX)).as_slice())
+        else {
+            continue;
+        };
+        if !cells.contains_key(&voxel) {
+            continue;
+        }
+        let distance: f64 = (0..3)
+            .map(|axis| {
+                let local = place[axis] - f64::from(voxel[axis]);
+                (local - local.clamp(0.0, 1.0)).powi(2)
+            })
+            .sum();
+        if distance < best.1 {
+            best = (voxel, distance);
+        }
+    }
+    best.0
+}
+
+/// The nodes and weights that give a point in (or just outside) a voxel: trilinear,
+/// less ½ ξ(1 - ξ) times the second difference along each axis.
+fn combination(place: [f64; 3], voxel: [u16; 3], node_at: &NodeIndex) -> Vec<(usize, f64)> {
+    let local: [f64; 3] = std::array::from_fn(|axis| place[axis] - f64::from(voxel[axis]));
+    let corners = corner_places(&voxel);
+    let mut terms: Vec<(usize, f64)> = Vec::with_capacity(32);
+    let mut add = |node: usize, weight: f64| match terms.iter_mut().find(|term| term.0 == node) {
+        Some(term) => term.1 += weight,
+        None => terms.push((node, weight)),
+    };
+    let shape =
+        |corner: usize, axis: usize| if corner >> axis & 1 == 1 { local[axis] } else { 1.0 - local[axis] };
+    for (corner, place) in corners.iter().enumerate() {
+        add(node_at[place], shape(corner, 0) * shape(corner, 1) * shape(corner, 2));
+    }
+    for axis in 0..3 {
+        let bubble = 0.5 * local[axis] * (1.0 - local[axis]);
+        for corner in (0..8).filter(|corner| corner >> axis & 1 == 0) {
+            let weight = bubble * shape(corner, (axis + 1) % 3) * shape(corner, (axis + 2) % 3);
+            let [low, high] = [corner, corner | 1 << axis].map(|corner| node_at[&corners[corner]]);
+            let step = |from: [u16; 3], by: i32| {
+                let mut place = from;
+                place[axis] = u16::try_from(i32::from(from[axis]) + by).ok()?;
+                node_at.get(&place).copied()
+            };
+            let before = step(corners[corner], -1);
+            let after = step(corners[corner], 2);
+            // Second differences centred on the low and on the high node.
+            let centred: Vec<[usize; 3]> =
+                before.map(|n| [n, low, high]).into_iter().chain(after.map(|n| [low, high, n])).collect();
+            for [first, middle, last] in &centred {
+                let weight = weight / centred.len() as f64;
+                add(*first, -weight);
+                add(*middle, 2.0 * weight);
+                add(*last, -weight);
+            }
+        }
+    }
+    terms
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::Lattice;
+    use approx::assert_relative_eq;
+
+    #[test]
+    fn skin_points_lie_on_the_sphere_and_follow_quadratic_displacements() {
+        let lattice = Lattice::new(16);
+        let quadratic = |[x, y, z]: [f64; 3]| 0.3 * x * x - 0.2 * y * y + 0.1 * z * z + x - 2.0 * y * z;
+        for point in 0..lattice.skin.len() {
+            let there = lattice.skin.direction[point].map(|c| 8.0 * c);
+            let mut place = [0.0; 3];
+            let mut value = 0.0;
+            for (node, weight) in lattice.skin.terms(point) {
+                let offset = lattice.node_offset(node);
+                value += weight * quadratic(offset);
+                for axis in 0..3 {
+                    place[axis] += weight * offset[axis];
+                }
+            }
+            for axis in 0..3 {
+                assert_relative_eq!(place[axis], there[axis], epsilon = 1e-12);
+            }
+            assert_relative_eq!(value, quadratic(there), epsilon = 1e-9);
+        }
+    }
+}
