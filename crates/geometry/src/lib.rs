@@ -1,11 +1,13 @@
 //! The vocabulary shared by the engines: vectors, spheres, the box a bed lives
-//! in, and seeded random streams. SI units throughout.
+//! in, its close pairs of spheres, and seeded random streams. SI units throughout.
 
 mod cell;
+mod neighbours;
 mod random;
 mod sphere;
 
 pub use cell::Cell;
+pub use neighbours::{ClosePair, close_pairs, offset};
 pub use random::{Stream, stream};
 pub use sphere::{Sphere, volume_of_radius};
 
