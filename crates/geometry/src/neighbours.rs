@@ -99,7 +99,7 @@ impl Grid {
                 true => (0.0, cell.size[axis]),
                 false => (low[axis], high[axis] - low[axis]),
             };
-            let count = (length / (2.0 * largest + margin)).floor().clamp(1.0, most);
+            let count = (length / (2.0 * largest + margin)).floor().max(1.0).min(most);
             origin[axis] = start;
             edge[axis] = (length / count).max(f64::MIN_POSITIVE);
             bins[axis] = count as i64;

@@ -1,1 +1,7 @@
 //! Gradings, random sphere packs and the motion of grains.
+
+mod assembly;
+mod contact_law;
+
+pub use assembly::{Assembly, AssemblyError, Contact, Lid, Partner, Rest};
+pub use contact_law::{ContactLaw, ContactLawError, Normal, mindlin_ratio};
