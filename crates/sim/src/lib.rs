@@ -4,6 +4,6 @@ mod outcome;
 mod run;
 mod scene;
 
-pub use outcome::{BeadOutcome, PackOutcome, Quality, Step};
+pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};

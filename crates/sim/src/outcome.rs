@@ -21,6 +21,20 @@ pub struct PackOutcome {
     pub quality: Quality,
     /// One entry per increment.
     pub history: Vec<Step>,
+    /// Each grain before and after; kept by a single run, left out of a study's journal.
+    #[serde(skip)]
+    pub positions: Vec<GrainRecord>,
+}
+
+/// Where a grain lay and where it came to lie.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+pub struct GrainRecord {
+    /// Diameter (m).
+    pub diameter_m: f64,
+    /// Centre in the mixed dry bed (m).
+    pub before_m: [f64; 3],
+    /// Centre at the end (m), not wrapped into the cell.
+    pub after_m: [f64; 3],
 }
 
 /// What became of one bead.
