@@ -3,7 +3,12 @@
 mod outcome;
 mod run;
 mod scene;
+mod statistics;
 
 pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};
+pub use statistics::{
+    Clustered, Estimate, Interval, bootstrap_mean, clopper_pearson, clustered_fraction, mean_strength,
+    strength_ratio, tear_probability, wilson,
+};
