@@ -1,0 +1,200 @@
+//! Contacts and motion of grains against laws that hold exactly.
+
+use approx::assert_relative_eq;
+use bedswell_geometry::{Cell, Sphere, Vector, stream};
+use bedswell_grains::{Assembly, AssemblyError, ContactLaw, Lid, Normal, Partner, mindlin_ratio};
+use rand::RngExt;
+
+const FRICTION: f64 = 0.4;
+
+/// Elastic spheres with friction (Poisson ratio 0.25).
+fn rough_spheres() -> ContactLaw {
+    ContactLaw {
+        normal: Normal::Hertz { effective_modulus: 1.0e6 },
+        friction: FRICTION,
+        tangential_ratio: mindlin_ratio(0.25),
+    }
+}
+
+/// Two grains of 1 mm radius, pressed together by `overlap` along `direction`, in
+/// an open cell far from floor and lid.
+fn two_grains(overlap: f64, direction: Vector, law: ContactLaw) -> Assembly {
+    let cell = Cell { size: Vector::repeat(0.02), periodic: [false; 3] };
+    let first = Vector::repeat(0.01);
+    let second = first + direction.normalize() * (2.0e-3 - overlap);
+    let spheres = [first, second].map(|centre| Sphere { centre, radius: 1.0e-3 });
+    Assembly::new(cell, &spheres, law, Lid::Fixed).unwrap()
+}
+
+/// One step with prescribed velocities: the contact's own loads are cancelled.
+fn carry(grains: &mut Assembly, velocities: [Vector; 2], spins: [Vector; 2]) {
+    grains.compute_contacts();
+    for grain in 0..2 {
+        let (force, torque) = (grains.forces[grain], grains.torques[grain]);
+        grains.add_load(grain, -force, -torque, 0.0);
+        grains.velocities[grain] = velocities[grain];
+        grains.spins[grain] = spins[grain];
+    }
+    grains.advance(0.0);
+}
+
+/// A loose cloud of grains between floor and lid, seeded.
+fn cloud(count: usize, cell: Cell, law: ContactLaw, lid: Lid) -> Assembly {
+    let mut random = stream(3, &[count as u64]);
+    let spheres: Vec<Sphere> = (0..count)
+        .map(|_| Sphere {
+            centre: cell.size.map(|length| length * (0.05 + 0.9 * random.random::<f64>())),
+            radius: 0.4e-3 * 2.0_f64.powf(random.random::<f64>()),
+        })
+        .collect();
+    Assembly::new(cell, &spheres, law, lid).unwrap()
+}
+
+#[test]
+fn an_oblique_contact_sticks_as_mindlin_and_slips_as_coulomb() {
+    let law = rough_spheres();
+    let direction = Vector::new(1.0, 2.0, -0.5).normalize();
+    let sideways = direction.cross(&Vector::z()).normalize();
+    let overlap = 2.0e-7;
+    let mut grains = two_grains(overlap, direction, law);
+    let (push, stiffness) = law.normal.push(overlap, 0.5e-3);
+    // Steps short enough that the contact plane does not turn.
+    let step = 1.0e-3 * FRICTION * push / (stiffness * mindlin_ratio(0.25));
+    let mut slid = 0.0;
+    for _ in 0..2000 {
+        carry(&mut grains, [Vector::zeros(), sideways * step], [Vector::zeros(); 2]);
+        grains.compute_contacts();
+        slid += step;
+        let expected = (mindlin_ratio(0.25) * stiffness * slid).min(FRICTION * push);
+        assert_relative_eq!(grains.forces[0].dot(&sideways), expected, max_relative = 2.0e-3);
+        assert_relative_eq!(grains.forces[1].dot(&direction), push, max_relative = 2.0e-3);
+        assert_relative_eq!(grains.torques[0], grains.torques[1], max_relative = 1.0e-9);
+    }
+}
+
+#[test]
+fn grains_that_roll_on_each_other_like_gears_do_not_rub() {
+    let mut grains = two_grains(2.0e-7, Vector::x(), rough_spheres());
+    let spin = Vector::z() * 1.0e-5;
+    for _ in 0..100 {
+        carry(&mut grains, [Vector::zeros(); 2], [spin, -spin]);
+    }
+    grains.compute_contacts();
+    assert_eq!(grains.torques[0].norm(), 0.0);
+    carry(&mut grains, [Vector::zeros(); 2], [spin, spin]);
+    grains.compute_contacts();
+    assert!(grains.torques[0].z < 0.0, "grains that turn the same way rub and brake each other");
+}
+
+#[test]
+fn forces_and_moments_of_a_cloud_sum_to_nothing() {
+    let cell = Cell { size: Vector::repeat(0.01), periodic: [false; 3] };
+    let mut grains = cloud(400, cell, rough_spheres(), Lid::Fixed);
+    let gap = Vector::new(0.0, 0.0, 1.0);
+    grains.cell.size.z += 2.0 * gap.z;
+    grains.centres.iter_mut().for_each(|centre| *centre += gap);
+    for _ in 0..5 {
+        grains.compute_contacts();
+        grains.advance(0.3);
+    }
+    grains.compute_contacts();
+    let contacts: Vec<_> = grains.contacts().collect();
+    assert!(contacts.len() > 100, "{} contacts", contacts.len());
+    let scale: f64 = contacts.iter().map(|contact| contact.force).sum();
+    let force: Vector = grains.forces.iter().sum();
+    let moment: Vector = (grains.centres.iter().zip(&grains.forces).zip(&grains.torques))
+        .map(|((centre, force), torque)| (centre - gap).cross(force) + torque)
+        .sum();
+    assert!(force.norm() < 1.0e-12 * scale, "net force {force:?}");
+    assert!(moment.norm() < 1.0e-12 * scale * 0.01, "net moment {moment:?}");
+}
+
+#[test]
+fn a_squeezed_bed_let_go_only_loses_energy() {
+    let law = ContactLaw::for_stress(1.0e3, 1.0e-3, FRICTION);
+    let Normal::Linear { modulus } = law.normal else { unreachable!() };
+    let mut grains = cloud(700, Cell::with_floor_and_lid(Vector::repeat(0.01)), law, Lid::Fixed);
+    let energy = |grains: &Assembly| -> f64 {
+        let stored = |contact: bedswell_grains::Contact| {
+            let radius = grains.radii[contact.grain];
+            let reduced = match contact.partner {
+                Partner::Grain(other) => radius * grains.radii[other] / (radius + grains.radii[other]),
+                Partner::Floor | Partner::Lid => radius,
+            };
+            contact.force.powi(2) / (4.0 * modulus * reduced)
+        };
+        let motion = (grains.velocities.iter().zip(&grains.stiffnesses))
+            .map(|(velocity, mass)| 0.5 * mass * velocity.norm_squared());
+        grains.contacts().map(stored).sum::<f64>() + motion.sum::<f64>()
+    };
+    grains.compute_contacts();
+    let start = energy(&grains);
+    let mut last = start;
+    for _ in 0..20 {
+        for _ in 0..50 {
+            grains.advance(0.3);
+            grains.compute_contacts();
+        }
+        let now = energy(&grains);
+        assert!(now <= last * 1.02, "energy grows from {last:e} to {now:e} J");
+        last = now;
+    }
+    assert!(last < 0.2 * start);
+}
+
+#[test]
+fn a_bed_under_its_lid_comes_to_rest_and_its_floor_carries_the_lid() {
+    let stress = 1.0e3;
+    let law = ContactLaw::for_stress(stress, 1.0e-4, FRICTION);
+    let cell = Cell::with_floor_and_lid(Vector::new(0.008, 0.008, 0.012));
+    let mut grains = cloud(500, cell, ContactLaw::for_stress(stress, 1.0e-4, 0.0), Lid::Fixed);
+    for _ in 0..300 {
+        grains.compute_contacts();
+        grains.advance(0.3);
+    }
+    grains.stop();
+    grains.law = law;
+    grains.lid = Lid::Stress(stress);
+    let mut steps = 0;
+    loop {
+        grains.compute_contacts();
+        let rest = grains.rest();
+        if rest.mean_contact_force > 0.0 && rest.residual() < 1.0e-4 && rest.lid_unbalance < 1.0e-4 {
+            break;
+        }
+        grains.advance(0.7);
+        steps += 1;
+        assert!(steps < 20_000, "{rest:?}");
+    }
+    let floor: f64 = (grains.contacts().filter(|contact| contact.partner == Partner::Floor))
+        .map(|contact| contact.force)
+        .sum();
+    let load = stress * cell.size.x * cell.size.y;
+    assert_relative_eq!(floor, load, max_relative = 1.0e-3);
+    assert!(grains.rest().deepest_overlap < 1.0e-3, "{:?}", grains.rest());
+}
+
+#[test]
+fn held_grains_do_not_move() {
+    let law = ContactLaw::for_stress(1.0e3, 1.0e-4, FRICTION);
+    let cell = Cell::with_floor_and_lid(Vector::repeat(0.01));
+    let mut grains = cloud(200, cell, law, Lid::Stress(1.0e3));
+    grains.held = true;
+    let before = grains.spheres();
+    grains.compute_contacts();
+    grains.add_load(0, Vector::x(), Vector::zeros(), 1.0);
+    grains.advance(0.3);
+    assert_eq!(grains.spheres(), before);
+    assert_eq!(grains.cell, cell);
+}
+
+#[test]
+fn a_grain_wider_than_its_periodic_cell_is_refused() {
+    let cell = Cell::with_floor_and_lid(Vector::repeat(0.01));
+    let wide = Sphere { centre: Vector::repeat(0.005), radius: 0.006 };
+    let refused = Assembly::new(cell, &[wide], ContactLaw::for_stress(1.0, 1.0e-4, 0.0), Lid::Fixed);
+    assert_eq!(
+        refused.unwrap_err(),
+        AssemblyError::WiderThanCell { index: 0, diameter: 0.012, length: 0.01 }
+    );
+}
