@@ -2,6 +2,8 @@
 
 mod assembly;
 mod contact_law;
+mod grading;
 
 pub use assembly::{Assembly, AssemblyError, Contact, Lid, Partner, Rest};
 pub use contact_law::{ContactLaw, ContactLawError, Normal, mindlin_ratio};
+pub use grading::{Grading, GradingError, MassCurve, SizeNumbers};
