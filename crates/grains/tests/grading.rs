@@ -79,14 +79,13 @@ fn six_hundred_grains_stand_for_the_curve() {
                 (curve.size_at(fraction).unwrap(), grading.packed.size_at(fraction).unwrap());
             assert_relative_eq!(found, wanted, max_relative = 0.01);
         }
-        let worst = grading.packed.points().iter().map(|&(size, p)| (curve.passing(size) - p).abs());
-        let share = sample[599].powi(3) / sample.iter().map(|d| d.powi(3)).sum::<f64>();
-        let worst =
-            if grading.packed.finest() < grading.packed.coarsest() { worst.fold(0.0, f64::max) } else { 0.0 };
-        assert!(
-            worst < 0.51 * share + 1.0e-3,
-            "the curve is missed by {worst}, the largest grain has {share}"
-        );
+        // No set of whole grains follows a curve closer than by parts of its largest.
+        if grading.packed.finest() < grading.packed.coarsest() {
+            let share = sample[599].powi(3) / sample.iter().map(|d| d.powi(3)).sum::<f64>();
+            let misses = grading.packed.points().iter().map(|&(size, p)| (curve.passing(size) - p).abs());
+            let worst = misses.fold(0.0, f64::max);
+            assert!(worst < share, "the curve is missed by {worst}, the largest grain has {share}");
+        }
     }
 }
 
