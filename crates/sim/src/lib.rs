@@ -7,7 +7,10 @@ mod statistics;
 
 pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
-pub use scene::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};
+pub use scene::{
+    BeadAmount, Beads, Bed, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
+    SoilGrading, Strength, Water, read_scene,
+};
 pub use statistics::{
     Clustered, Estimate, Interval, bootstrap_mean, clopper_pearson, clustered_fraction, mean_strength,
     strength_ratio, tear_probability, wilson,

@@ -1,3 +1,23 @@
+mod error;
+mod estimate;
+mod gel;
+mod grading;
+mod limits;
 mod model;
+mod raw;
+mod read;
+mod section;
+mod soil;
+mod spheres;
+mod unit;
+mod write;
 
+pub use error::{Place, SceneError};
+pub use estimate::Estimate as SceneEstimate;
 pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};
+pub use read::read_scene;
+pub use write::SPHERES_FILE;
+
+pub(crate) use raw::{Node, Value, read_document};
+pub(crate) use read::scene_from;
+pub(crate) use section::{Section, refuse_unknown};

@@ -1,0 +1,174 @@
+use super::error::SceneError;
+use super::gel::read_gel;
+use super::limits::check_limits;
+use super::raw::{Node, Value, read_document};
+use super::section::{Entry, Section, refuse_unknown};
+use super::soil::{read_soil, to_vector};
+use super::unit::Kind;
+use super::{BeadAmount, Beads, Bed, March, Scene, SoilGrading, Strength, Water};
+use bedswell_geometry::Vector;
+use std::path::Path;
+
+/// Standard gravity (m/s²), by definition.
+const GRAVITY: f64 = 9.80665;
+/// The tables of a scene file.
+const TABLES: [&str; 8] = ["scene", "bed", "soil", "beads", "gel", "water", "strength", "march"];
+/// Any number at all; what is allowed is checked afterwards.
+const ANY: std::ops::RangeInclusive<f64> = f64::NEG_INFINITY..=f64::INFINITY;
+
+/// Reads and checks a scene file; files that it names lie relative to it.
+///
+/// # Errors
+/// When the file cannot be read, is not TOML, or holds a key or value that cannot
+/// be used; the error names the key, the value, the line and what is allowed.
+pub fn read_scene(path: &Path) -> Result<Scene, SceneError> {
+    scene_from(&read_document(path)?, path)
+}
+
+/// Checks a scene that was read from `path` and perhaps altered since.
+pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneError> {
+    if let Value::Table(table) = &document.value {
+        refuse_unknown("", table, &TABLES)?;
+    }
+    let section = Section::new(document, "scene", &["name", "seed", "version"])?;
+    if let Some(version) = section.get("version") {
+        version.text()?;
+    }
+    let name = match section.get("name") {
+        Some(name) => name.text()?.to_owned(),
+        None => path.file_stem().map_or(String::new(), |stem| stem.to_string_lossy().into_owned()),
+    };
+    let seed = section.need("seed", "seed = 1")?.whole(0..=i64::MAX as u64)?;
+
+    let (soil, corner) = read_soil(document, path)?;
+    let listed = match &soil.grading {
+        SoilGrading::Spheres { spheres, .. } => Some(spheres.len()),
+        _ => None,
+    };
+    let water = read_water(document)?;
+    let scene = Scene {
+        name,
+        seed,
+        bed: read_bed(document, listed)?,
+        soil,
+        beads: read_beads(document, listed.is_some().then_some(corner))?,
+        gel: read_gel(document)?,
+        water,
+        strength: read_strength(document)?,
+        march: read_march(document)?,
+    };
+    check_limits(document, &scene)?;
+    Ok(scene)
+}
+
+fn read_bed(document: &Node, listed: Option<usize>) -> Result<Bed, SceneError> {
+    let known = ["grains", "porosity", "lid_stress", "depth", "bulk_density", "fixed_grains"];
+    let section = Section::new(document, "bed", &known)?;
+    let grains = match (section.get("grains"), listed) {
+        (Some(grains), None) => grains.whole(1..=1_000_000)? as usize,
+        (Some(grains), Some(_)) => {
+            return Err(
+                grains.refuse("the soil lists its spheres, so their number is known; leave this key out")
+            );
+        }
+        (None, Some(listed)) => listed,
+        (None, None) => return Err(section.missing("grains", "write grains = 600 under [bed]".into())),
+    };
+    let porosity = section.get("porosity").map(|entry| entry.number(0.05..=0.9)).transpose()?;
+    let lid_stress = match (section.get("lid_stress"), section.get("depth")) {
+        (Some(stress), None) => stress.quantity(Kind::Stress, 0.0..=1e7)?,
+        (None, Some(depth)) => {
+            let density = section.need("bulk_density", "bulk_density = \"1500 kg/m3\"")?;
+            depth.quantity(Kind::Length, 0.0..=100.0)? * density.positive(Kind::Density)? * GRAVITY
+        }
+        (Some(_), Some(depth)) => {
+            return Err(
+                depth.refuse("the load is given twice; keep either lid_stress or depth with bulk_density")
+            );
+        }
+        (None, None) => {
+            let mend =
+                "write lid_stress = \"0.2 kPa\", or depth = \"30 cm\" with bulk_density = \"1500 kg/m3\"";
+            return Err(section.missing("lid_stress", mend.into()));
+        }
+    };
+    let fixed_grains = section.get("fixed_grains").map_or(Ok(false), |entry| entry.flag())?;
+    Ok(Bed { grains, porosity, lid_stress, fixed_grains })
+}
+
+/// `corner` is where listed spheres had their lower corner; centres shift with them.
+fn read_beads(document: &Node, corner: Option<Vector>) -> Result<Beads, SceneError> {
+    let section = Section::new(document, "beads", &["count", "dose", "centres", "dry_diameter", "across"])?;
+    let amount = match (section.get("count"), section.get("dose"), section.get("centres")) {
+        (Some(count), None, None) => BeadAmount::Count(count.whole(1..=1_000_000)? as usize),
+        (None, Some(dose), None) => {
+            let ratio = dose.quantity(Kind::MassRatio, ANY)?;
+            if ratio <= 0.0 {
+                return Err(dose.refuse("must be above zero and below 1000 g/kg"));
+            }
+            if ratio >= 1.0 {
+                return Err(dose.refuse(
+                    "leaves no grains to speak of: more dry gel than soil; the dose is dry gel per dry soil and must \
+                     be below 1000 g/kg (the trade uses 0.5 to 10 g/kg)",
+                ));
+            }
+            BeadAmount::Dose(ratio)
+        }
+        (None, None, Some(centres)) => {
+            let places: Vec<[f64; 3]> = centres
+                .list()?
+                .iter()
+                .map(|entry| to_vector(entry).map(|centre| (centre - corner.unwrap_or_default()).into()))
+                .collect::<Result<_, _>>()?;
+            if places.is_empty() {
+                return Err(
+                    centres.refuse("names no bead; write for example [[\"0 mm\", \"0 mm\", \"0 mm\"]]")
+                );
+            }
+            if corner.is_none() {
+                return Err(
+                    centres.refuse("beads have given places only among listed spheres; use count or dose")
+                );
+            }
+            BeadAmount::At(places)
+        }
+        (None, None, None) => {
+            let mend =
+                "write one of count = 1, dose = \"3 g/kg\" or centres = [[\"0 mm\", \"0 mm\", \"0 mm\"]]";
+            return Err(section.missing("count", mend.into()));
+        }
+        (count, dose, centres) => {
+            let twice: Vec<Entry<'_>> = [centres, dose, count].into_iter().flatten().collect();
+            return Err(twice[0].refuse("the beads are given twice; keep one of count, dose and centres"));
+        }
+    };
+    let dry_diameter = section.need("dry_diameter", "dry_diameter = \"1 mm\"")?.positive(Kind::Length)?;
+    let across = section.get("across").map_or(Ok(12), |entry| entry.whole(4..=1000))? as usize;
+    Ok(Beads { amount, dry_diameter, across })
+}
+
+fn read_water(document: &Node) -> Result<Water, SceneError> {
+    let section = Section::new(document, "water", &["salt", "potential", "temperature"])?;
+    let salt = section.get("salt").map_or(Ok(0.0), |salt| salt.quantity(Kind::Concentration, 0.0..=6.0))?;
+    let potential =
+        section.get("potential").map_or(Ok(0.0), |value| value.quantity(Kind::Stress, -1e7..=0.0))?;
+    let temperature = section
+        .get("temperature")
+        .map_or(Ok(298.15), |value| value.quantity(Kind::Temperature, 273.15..=373.15))?;
+    Ok(Water { salt, potential, temperature })
+}
+
+fn read_strength(document: &Node) -> Result<Strength, SceneError> {
+    let section = Section::new(document, "strength", &["scale", "modulus", "volume"])?;
+    Ok(Strength {
+        scale: section.need("scale", "scale = \"8 kPa\"")?.positive(Kind::Stress)?,
+        modulus: section.need("modulus", "modulus = 8")?.number(1.0..=100.0)?,
+        volume: section.need("volume", "volume = \"1 mm3\"")?.positive(Kind::Volume)?,
+    })
+}
+
+fn read_march(document: &Node) -> Result<March, SceneError> {
+    let section = Section::new(document, "march", &["increments"])?;
+    let increments = section.get("increments").map_or(Ok(30), |entry| entry.whole(1..=10_000))? as usize;
+    Ok(March { increments })
+}

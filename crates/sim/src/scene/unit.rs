@@ -1,0 +1,162 @@
+//! Quantities written with their units.
+
+use std::ops::RangeInclusive;
+
+/// What kind of quantity a key wants.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(crate) enum Kind {
+    Length,
+    Volume,
+    Stress,
+    Density,
+    MassRatio,
+    Concentration,
+    Temperature,
+}
+
+/// A unit: its spelling, its kind, and its size and zero in the base unit of its kind.
+struct Unit {
+    name: &'static str,
+    kind: Kind,
+    scale: f64,
+    zero: f64,
+}
+
+const fn unit(name: &'static str, kind: Kind, scale: f64) -> Unit {
+    Unit { name, kind, scale, zero: 0.0 }
+}
+
+/// The first unit of each kind is the one resolved scenes are written in.
+const UNITS: &[Unit] = &[
+    unit("m", Kind::Length, 1.0),
+    unit("cm", Kind::Length, 1e-2),
+    unit("mm", Kind::Length, 1e-3),
+    unit("um", Kind::Length, 1e-6),
+    unit("µm", Kind::Length, 1e-6),
+    unit("m3", Kind::Volume, 1.0),
+    unit("cm3", Kind::Volume, 1e-6),
+    unit("mL", Kind::Volume, 1e-6),
+    unit("mm3", Kind::Volume, 1e-9),
+    unit("Pa", Kind::Stress, 1.0),
+    unit("hPa", Kind::Stress, 1e2),
+    unit("kPa", Kind::Stress, 1e3),
+    unit("MPa", Kind::Stress, 1e6),
+    unit("bar", Kind::Stress, 1e5),
+    unit("kg/m3", Kind::Density, 1.0),
+    unit("g/cm3", Kind::Density, 1e3),
+    unit("t/m3", Kind::Density, 1e3),
+    unit("kg/kg", Kind::MassRatio, 1.0),
+    unit("g/g", Kind::MassRatio, 1.0),
+    unit("g/kg", Kind::MassRatio, 1e-3),
+    unit("mol/L", Kind::Concentration, 1.0),
+    unit("mmol/L", Kind::Concentration, 1e-3),
+    unit("K", Kind::Temperature, 1.0),
+    Unit { name: "degC", kind: Kind::Temperature, scale: 1.0, zero: 273.15 },
+    Unit { name: "°C", kind: Kind::Temperature, scale: 1.0, zero: 273.15 },
+];
+
+impl Kind {
+    fn noun(self) -> &'static str {
+        match self {
+            Kind::Length => "a length",
+            Kind::Volume => "a volume",
+            Kind::Stress => "a stress",
+            Kind::Density => "a density",
+            Kind::MassRatio => "a mass ratio",
+            Kind::Concentration => "a concentration",
+            Kind::Temperature => "a temperature",
+        }
+    }
+
+    fn units(self) -> impl Iterator<Item = &'static Unit> {
+        UNITS.iter().filter(move |unit| unit.kind == self)
+    }
+
+    /// The base unit, in which resolved scenes are written.
+    pub(crate) fn base(self) -> &'static str {
+        self.units().next().map_or("", |unit| unit.name)
+    }
+
+    fn listed(self) -> String {
+        self.units().map(|unit| unit.name).collect::<Vec<_>>().join(", ")
+    }
+}
+
+/// Reads `"1.2 mm"` as a quantity of `kind` in its base unit; the error says what is wrong.
+pub(crate) fn parse_quantity(text: &str, kind: Kind) -> Result<f64, String> {
+    let text = text.trim();
+    let (number, name) = match text.split_once(char::is_whitespace) {
+        Some((number, name)) => (number, name.trim()),
+        None => split_before_letters(text),
+    };
+    let Ok(number) = number.parse::<f64>() else {
+        return Err(format!("not a number with a unit; write for example \"1.5 {}\"", kind.base()));
+    };
+    if name.is_empty() {
+        return Err(format!("the unit is missing; {} needs one of {}", kind.noun(), kind.listed()));
+    }
+    let Some(unit) = UNITS.iter().find(|unit| unit.name == name) else {
+        return Err(format!("unknown unit `{name}`; {} needs one of {}", kind.noun(), kind.listed()));
+    };
+    if unit.kind != kind {
+        let got = unit.kind.noun();
+        return Err(format!(
+            "`{name}` is the unit of {got}, but {} is needed ({})",
+            kind.noun(),
+            kind.listed()
+        ));
+    }
+    if !number.is_finite() {
+        return Err("must be a finite number".to_owned());
+    }
+    Ok(number * unit.scale + unit.zero)
+}
+
+/// `"1.5mm"` is as good as `"1.5 mm"`; the exponent of `"1e-3m"` is part of the number.
+fn split_before_letters(text: &str) -> (&str, &str) {
+    let longest = text.char_indices().map(|(at, _)| at).chain([text.len()]).rev();
+    longest
+        .into_iter()
+        .find(|&at| text[..at].parse::<f64>().is_ok())
+        .map_or((text, ""), |at| text.split_at(at))
+}
+
+/// A range in words, in the base unit of `kind` or a plain number.
+pub(crate) fn range_in_words(range: &RangeInclusive<f64>, kind: Option<Kind>) -> String {
+    let unit = kind.map_or(String::new(), |kind| format!(" {}", kind.base()));
+    match (range.start().is_finite(), range.end().is_finite()) {
+        (true, true) => format!("{} to {}{unit}", range.start(), range.end()),
+        (true, false) => format!("{}{unit} or more", range.start()),
+        (false, true) => format!("{}{unit} or less", range.end()),
+        (false, false) => "any finite number".to_owned(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn units_scale_to_the_international_system() {
+        for (text, kind, value) in [
+            ("1.5 mm", Kind::Length, 1.5e-3),
+            ("30cm", Kind::Length, 0.3),
+            ("1e-3m", Kind::Length, 1e-3),
+            ("6 kPa", Kind::Stress, 6000.0),
+            ("25 degC", Kind::Temperature, 298.15),
+            ("3 g/kg", Kind::MassRatio, 3e-3),
+            ("1 mm3", Kind::Volume, 1e-9),
+        ] {
+            assert_eq!(parse_quantity(text, kind), Ok(value), "{text}");
+        }
+    }
+
+    #[test]
+    fn wrong_and_missing_units_are_named() {
+        assert!(parse_quantity("3 kPa", Kind::Length).unwrap_err().contains("`kPa` is the unit of a stress"));
+        assert!(parse_quantity("3", Kind::Length).unwrap_err().contains("unit is missing"));
+        assert!(parse_quantity("3 furlongs", Kind::Length).unwrap_err().contains("unknown unit `furlongs`"));
+        assert!(parse_quantity("NaN mm", Kind::Length).unwrap_err().contains("finite"));
+        assert!(parse_quantity("mm", Kind::Length).unwrap_err().contains("not a number"));
+    }
+}
