@@ -6,6 +6,7 @@ pub(crate) const WIDTH: usize = 8;
 /// One number for each of `WIDTH` neighbouring voxels of a row. The operations are
 /// plain loops that the compiler turns into vector instructions.
 #[derive(Clone, Copy, Debug)]
+#[repr(align(64))]
 pub(crate) struct Lanes(pub(crate) [f64; WIDTH]);
 
 impl Lanes {
@@ -14,40 +15,25 @@ impl Lanes {
         Self([value; WIDTH])
     }
 
-    /// The next values of a slice, from `at` on; zeros beyond its first `len`.
+    /// The values of a slice from `at` on.
     #[inline(always)]
-    pub(crate) fn load(slice: &[f64], at: usize, len: usize) -> Self {
+    pub(crate) fn load(slice: &[f64], at: usize) -> Self {
         let mut lanes = [0.0; WIDTH];
-        if len == WIDTH {
-            lanes.copy_from_slice(&slice[at..at + WIDTH]);
-        } else {
-            lanes[..len].copy_from_slice(&slice[at..at + len]);
-        }
+        lanes.copy_from_slice(&slice[at..at + WIDTH]);
         Self(lanes)
     }
 
-    /// Writes the first `len` values into a slice.
+    /// Writes the values into a slice from `at` on.
     #[inline(always)]
-    pub(crate) fn store(&self, slice: &mut [f64], at: usize, len: usize) {
-        if len == WIDTH {
-            slice[at..at + WIDTH].copy_from_slice(&self.0);
-        } else {
-            slice[at..at + len].copy_from_slice(&self.0[..len]);
-        }
+    pub(crate) fn store(&self, slice: &mut [f64], at: usize) {
+        slice[at..at + WIDTH].copy_from_slice(&self.0);
     }
 
-    /// Adds the first `len` values to a slice.
+    /// Adds the values to a slice from `at` on.
     #[inline(always)]
-    pub(crate) fn add_to(&self, slice: &mut [f64], at: usize, len: usize) {
-        if len == WIDTH {
-            for (target, value) in slice[at..at + WIDTH].iter_mut().zip(&self.0) {
-                *target += value;
-            }
-        } else {
-            for (target, value) in slice[at..at + len].iter_mut().zip(&self.0) {
-                *target += value;
-            }
-        }
+    pub(crate) fn add_to(&self, slice: &mut [f64], at: usize) {
+        let sum = Self::load(slice, at) + *self;
+        sum.store(slice, at);
     }
 }
 
@@ -75,7 +61,7 @@ impl Neg for Lanes {
     type Output = Lanes;
     #[inline(always)]
     fn neg(self) -> Lanes {
-        Lanes(self.0.map(|value| -value))
+        Lanes::splat(0.0) - self
     }
 }
 

@@ -1,14 +1,22 @@
 //! Gel thermodynamics, bead lattices and their equilibrium.
 
+mod bead;
+mod contact;
 mod datasheet;
 mod elastic;
+mod equilibrium;
 mod lanes;
 mod lattice;
+mod obstacle;
+mod rigid;
 mod thermodynamics;
 
+pub use bead::Bead;
 pub use datasheet::{
     Calibration, Datasheet, DatasheetError, calibrate_datasheet, uptake_of_volume_ratio,
     volume_ratio_of_uptake,
 };
+pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use lattice::Lattice;
+pub use obstacle::Obstacle;
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

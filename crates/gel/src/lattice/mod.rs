@@ -1,6 +1,7 @@
 mod cut_cell;
 mod skin;
 
+use crate::lanes::WIDTH;
 use cut_cell::CutCell;
 pub(crate) use skin::Skin;
 use std::collections::HashMap;
@@ -22,6 +23,9 @@ pub struct Lattice {
     pub(crate) runs: Vec<Run>,
     /// Place of each voxel on the grid.
     voxels: Vec<[u16; 3]>,
+    /// Where each voxel lies in the columns below, which pad every run with empty
+    /// voxels to whole groups of lanes.
+    pub(crate) slots: Vec<u32>,
     /// Gel in each voxel (voxel volumes).
     pub(crate) volume: Vec<f64>,
     /// Volume means of ξ, η, ζ over each voxel's gel.
@@ -36,11 +40,24 @@ pub struct Lattice {
 pub(crate) struct Run {
     /// First voxel.
     pub(crate) voxel: usize,
+    /// Slot of the first voxel in the padded columns.
+    pub(crate) slot: usize,
     /// Voxels in the run.
     pub(crate) len: usize,
     /// First node of the rows at (low y, low z), (high, low), (low, high), (high, high).
     pub(crate) rows: [usize; 4],
 }
+
+const MEAN_FIRST: [fn(&CutCell) -> f64; 3] = [
+    |cell| cell.first[0] / cell.volume,
+    |cell| cell.first[1] / cell.volume,
+    |cell| cell.first[2] / cell.volume,
+];
+const MEAN_MIXED: [fn(&CutCell) -> f64; 3] = [
+    |cell| cell.mixed[0] / cell.volume,
+    |cell| cell.mixed[1] / cell.volume,
+    |cell| cell.mixed[2] / cell.volume,
+];
 
 impl Lattice {
     /// The lattice of a ball with `across` voxels over its diameter.
@@ -55,20 +72,26 @@ impl Lattice {
         voxels.sort_unstable_by_key(|&[x, y, z]| (z, y, x));
         let (nodes, node_at) = number_nodes(&voxels);
         let runs = collect_runs(&voxels, &node_at);
-        let of =
-            |value: fn(&CutCell) -> f64| voxels.iter().map(|voxel| value(&cells[voxel])).collect::<Vec<_>>();
-        let mean = |value: fn(&CutCell) -> f64| {
-            voxels.iter().map(|voxel| value(&cells[voxel]) / cells[voxel].volume).collect::<Vec<_>>()
+        let slots: Vec<u32> =
+            runs.iter().flat_map(|run| (run.slot..run.slot + run.len).map(|slot| slot as u32)).collect();
+        let slot_count = runs.last().map_or(0, |run| run.slot + run.len.next_multiple_of(WIDTH));
+        let column = |value: fn(&CutCell) -> f64| {
+            let mut column = vec![0.0; slot_count];
+            for (voxel, &slot) in voxels.iter().zip(&slots) {
+                column[slot as usize] = value(&cells[voxel]);
+            }
+            column
         };
         let skin = Skin::new(across, &cells, &node_at);
         Self {
             across,
             runs,
-            volume: of(|cell| cell.volume),
-            first: [mean(|cell| cell.first[0]), mean(|cell| cell.first[1]), mean(|cell| cell.first[2])],
-            mixed: [mean(|cell| cell.mixed[0]), mean(|cell| cell.mixed[1]), mean(|cell| cell.mixed[2])],
+            volume: column(|cell| cell.volume),
+            first: [0, 1, 2].map(|axis| column(MEAN_FIRST[axis])),
+            mixed: [0, 1, 2].map(|axis| column(MEAN_MIXED[axis])),
             nodes,
             voxels,
+            slots,
             skin,
         }
     }
@@ -81,6 +104,17 @@ impl Lattice {
     /// Number of nodes.
     pub fn node_count(&self) -> usize {
         self.nodes.len()
+    }
+
+    /// Length of one axis in a vector of node values: the nodes, padded so that a
+    /// group of lanes may read past the last row.
+    pub(crate) fn stride(&self) -> usize {
+        (self.nodes.len() + WIDTH).next_multiple_of(WIDTH)
+    }
+
+    /// Gel in a voxel when dry (voxel volumes).
+    pub(crate) fn filled(&self, voxel: usize) -> f64 {
+        self.volume[self.slots[voxel] as usize]
     }
 
     /// Number of voxels.
@@ -229,7 +263,8 @@ fn collect_runs(voxels: &[[u16; 3]], node_at: &NodeIndex) -> Vec<Run> {
             }
         }
         let corners = corner_places(place);
-        runs.push(Run { voxel, len: 1, rows: [0, 2, 4, 6].map(|k| node_at[&corners[k]]) });
+        let slot = runs.last().map_or(0, |run| run.slot + run.len.next_multiple_of(WIDTH));
+        runs.push(Run { voxel, slot, len: 1, rows: [0, 2, 4, 6].map(|k| node_at[&corners[k]]) });
     }
     runs
 }

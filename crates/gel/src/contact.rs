@@ -1,0 +1,177 @@
+//! Contact of a bead's skin with obstacles: per skin point a penalty on penetration
+//! that is corrected by a multiplier (augmented Lagrangian; Hestenes 1969, Powell
+//! 1969, from memory), so that the pressure does not need the penetration.
+
+use crate::lattice::Skin;
+use crate::obstacle::Obstacle;
+use bedswell_geometry::{Matrix, Vector};
+
+/// A skin point near an obstacle.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Pair {
+    pub(crate) point: u32,
+    pub(crate) obstacle: u32,
+    /// Pressure that acts without penetration (Pa).
+    pub(crate) multiplier: f64,
+}
+
+/// All pairs of one bead, and what a pressure needs.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Contacts {
+    pub(crate) pairs: Vec<Pair>,
+    /// Pressure per penetration (Pa/m).
+    pub(crate) penalty: f64,
+    /// Area that each point stands for (m²).
+    pub(crate) area: f64,
+}
+
+/// A pair that presses, at a linearised state.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Pressing {
+    pub(crate) point: u32,
+    /// Stiffness of the point (N/m).
+    pub(crate) stiffness: Matrix,
+}
+
+impl Contacts {
+    /// Collects the points within `reach` (m) of an obstacle; multipliers of pairs
+    /// that stay are kept.
+    pub(crate) fn collect(&mut self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle], reach: f64) {
+        let old = std::mem::take(&mut self.pairs);
+        let mut known = old.iter().filter(|pair| pair.multiplier > 0.0).peekable();
+        for point in 0..skin.len() {
+            let place = skin_position(skin, positions, point);
+            for (obstacle, shape) in obstacles.iter().enumerate() {
+                let key = (point as u32, obstacle as u32);
+                let mut multiplier = 0.0;
+                while let Some(pair) = known.next_if(|pair| (pair.point, pair.obstacle) <= key) {
+                    if (pair.point, pair.obstacle) == key {
+                        multiplier = pair.multiplier;
+                    }
+                }
+                if multiplier > 0.0 || shape.gap(&place).distance < reach {
+                    self.pairs.push(Pair { point: key.0, obstacle: key.1, multiplier });
+                }
+            }
+        }
+    }
+
+    /// Adds the contact forces' share of the energy gradient (N).
+    pub(crate) fn add_gradient(
+        &self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        out: &mut [f64],
+    ) {
+        let stride = positions.len() / 3;
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, _, _| {
+            for (node, weight) in skin.terms(pair.point as usize) {
+                for axis in 0..3 {
+                    out[axis * stride + node] -= weight * force[axis];
+                }
+            }
+        });
+    }
+
+    /// The stiffness of all points that press. Without `curved`, the loss of
+    /// stiffness by the obstacles' curvature is left out.
+    pub(crate) fn linearise(
+        &self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        curved: bool,
+    ) -> Vec<Pressing> {
+        let mut pressing = Vec::new();
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, normal, curvature| {
+            let along = normal * normal.transpose();
+            let mut stiffness = along * (self.penalty * self.area);
+            if curved {
+                stiffness -= (Matrix::identity() - along) * (force.norm() * curvature);
+            }
+            pressing.push(Pressing { point: pair.point, stiffness });
+        });
+        pressing
+    }
+
+    /// Moves each pair's pressure into its multiplier. Returns the deepest
+    /// penetration (m) found.
+    pub(crate) fn update_multipliers(
+        &mut self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+    ) -> f64 {
+        let mut deepest = 0.0_f64;
+        for pair in &mut self.pairs {
+            let place = skin_position(skin, positions, pair.point as usize);
+            let distance = obstacles[pair.obstacle as usize].gap(&place).distance;
+            deepest = deepest.max(-distance);
+            pair.multiplier = (pair.multiplier - self.penalty * distance).max(0.0);
+        }
+        deepest
+    }
+
+    /// The force (N) on each obstacle.
+    pub(crate) fn forces(&self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle]) -> Vec<Vector> {
+        let mut forces = vec![Vector::zeros(); obstacles.len()];
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, _, _| {
+            forces[pair.obstacle as usize] -= force;
+        });
+        forces
+    }
+
+    /// Visits the pairs that press with the force (N) on the skin point.
+    #[inline]
+    fn for_each_pressing(
+        &self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        mut visit: impl FnMut(&Pair, Vector, Vector, f64),
+    ) {
+        for pair in &self.pairs {
+            let place = skin_position(skin, positions, pair.point as usize);
+            let gap = obstacles[pair.obstacle as usize].gap(&place);
+            let pressure = pair.multiplier - self.penalty * gap.distance;
+            if pressure > 0.0 {
+                visit(pair, gap.normal * (pressure * self.area), gap.normal, gap.curvature);
+            }
+        }
+    }
+}
+
+/// Adds the pressing points' stiffness times `direction` to `out`.
+pub(crate) fn add_stiffness_times(pressing: &[Pressing], skin: &Skin, direction: &[f64], out: &mut [f64]) {
+    let stride = direction.len() / 3;
+    for Pressing { point, stiffness } in pressing {
+        let force = stiffness * skin_position(skin, direction, *point as usize);
+        for (node, weight) in skin.terms(*point as usize) {
+            for axis in 0..3 {
+                out[axis * stride + node] += weight * force[axis];
+            }
+        }
+    }
+}
+
+/// Adds each node's own block of the pressing points' stiffness.
+pub(crate) fn add_diagonal_blocks(pressing: &[Pressing], skin: &Skin, out: &mut [Matrix]) {
+    for Pressing { point, stiffness } in pressing {
+        for (node, weight) in skin.terms(*point as usize) {
+            out[node] += stiffness * (weight * weight);
+        }
+    }
+}
+
+/// Where a skin point is (m), or moves.
+#[inline]
+pub(crate) fn skin_position(skin: &Skin, positions: &[f64], point: usize) -> Vector {
+    let stride = positions.len() / 3;
+    let mut place = Vector::zeros();
+    for (node, weight) in skin.terms(point) {
+        place +=
+            Vector::new(positions[node], positions[stride + node], positions[2 * stride + node]) * weight;
+    }
+    place
+}
