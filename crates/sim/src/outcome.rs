@@ -26,6 +26,13 @@ pub struct PackOutcome {
     pub positions: Vec<GrainRecord>,
 }
 
+impl PackOutcome {
+    /// Beads that tore, and beads.
+    pub fn torn_beads(&self) -> (u64, u64) {
+        (self.beads.iter().filter(|bead| bead.torn).count() as u64, self.beads.len() as u64)
+    }
+}
+
 /// Where a grain lay and where it came to lie.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct GrainRecord {

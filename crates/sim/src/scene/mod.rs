@@ -20,4 +20,4 @@ pub use write::SPHERES_FILE;
 
 pub(crate) use raw::{Node, Value, read_document};
 pub(crate) use read::scene_from;
-pub(crate) use section::{Section, refuse_unknown};
+pub(crate) use section::{Entry, Section, refuse_unknown};

@@ -1,0 +1,15 @@
+mod atomic;
+mod error;
+mod fingerprint;
+mod run_folder;
+mod table;
+mod tables;
+
+pub use error::FolderError;
+pub use run_folder::{RunSummary, prepare_run_folder, write_run_folder};
+
+pub(crate) use atomic::write_atomically;
+pub(crate) use fingerprint::{checksum, fingerprint};
+pub(crate) use run_folder::{write_json, write_scene};
+pub(crate) use table::{Column, Table, Values};
+pub(crate) use tables::{bead_columns, quality_columns};

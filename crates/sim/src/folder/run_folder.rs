@@ -1,0 +1,149 @@
+use super::atomic::write_text;
+use super::tables::{beads_table, grains_table, history_table};
+use super::{FolderError, fingerprint};
+use crate::{BeadOutcome, PackOutcome, Quality, SPHERES_FILE, Scene};
+use serde::{Deserialize, Serialize};
+use std::fs;
+use std::path::Path;
+
+const SUMMARY_FILE: &str = "summary.json";
+/// Every file of a run folder.
+const FILES: [&str; 9] = [
+    SUMMARY_FILE,
+    "scene.toml",
+    SPHERES_FILE,
+    "history.parquet",
+    "history.csv",
+    "beads.parquet",
+    "beads.csv",
+    "grains.parquet",
+    "grains.csv",
+];
+
+/// What a single run comes to; the contents of its `summary.json`.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct RunSummary {
+    /// What kind of summary this is: `run`.
+    pub kind: String,
+    /// Version of bedswell that made it.
+    pub version: String,
+    /// Tells results of different scenes apart.
+    pub fingerprint: String,
+    /// Name of the scene.
+    pub name: String,
+    /// Seed of the scene.
+    pub seed: u64,
+    /// Number of the pack.
+    pub pack: u64,
+    /// Grains in the cell.
+    pub grains: usize,
+    /// Pore fraction of the mixed dry bed.
+    pub porosity: f64,
+    /// Mass fraction of the grading left out as fines.
+    pub fines_left_out: f64,
+    /// Rise of the lid (m).
+    pub heave_m: f64,
+    /// Mean contacts per grain that carries load.
+    pub contact_number: f64,
+    /// Each bead, in order.
+    pub beads: Vec<BeadOutcome>,
+    /// How well the end state is at rest.
+    pub quality: Quality,
+}
+
+impl RunSummary {
+    /// The summary of one outcome.
+    pub fn new(scene: &Scene, outcome: &PackOutcome) -> Self {
+        Self {
+            kind: "run".into(),
+            version: env!("CARGO_PKG_VERSION").into(),
+            fingerprint: fingerprint([scene].into_iter()),
+            name: scene.name.clone(),
+            seed: scene.seed,
+            pack: outcome.pack,
+            grains: outcome.grains,
+            porosity: outcome.porosity,
+            fines_left_out: outcome.fines_left_out,
+            heave_m: outcome.heave_m,
+            contact_number: outcome.contact_number,
+            beads: outcome.beads.clone(),
+            quality: outcome.quality,
+        }
+    }
+}
+
+/// Makes the folder of a run ready before anything is computed.
+///
+/// # Errors
+/// When it cannot be written, or holds anything but an earlier run of the same
+/// pack of the same scene.
+pub fn prepare_run_folder(folder: &Path, scene: &Scene, pack: u64) -> Result<(), FolderError> {
+    fs::create_dir_all(folder).map_err(FolderError::write(folder))?;
+    let mut entries = fs::read_dir(folder).map_err(FolderError::write(folder))?;
+    if entries.next().is_some() {
+        let occupied = |what: &str| FolderError::Occupied { path: folder.to_owned(), what: what.to_owned() };
+        let summary = fs::read_to_string(folder.join(SUMMARY_FILE))
+            .map_err(|_| occupied("files that are no finished run"))?;
+        let summary: RunSummary = serde_json::from_str(&summary)
+            .map_err(|_| occupied("something other than a run of this version"))?;
+        if summary.fingerprint != fingerprint([scene].into_iter()) || summary.pack != pack {
+            return Err(occupied("the run of another scene, pack or version"));
+        }
+    }
+    // Ask now whether the folder takes files, not after the work.
+    let probe = folder.join(".bedswell.part");
+    fs::write(&probe, b"").and_then(|()| fs::remove_file(&probe)).map_err(FolderError::write(folder))
+}
+
+/// Writes everything a run came to; the summary last, so that a folder with a
+/// summary is complete.
+///
+/// # Errors
+/// When a file cannot be written; the files of this run are then removed again.
+pub fn write_run_folder(
+    folder: &Path,
+    scene: &Scene,
+    outcome: &PackOutcome,
+    csv: bool,
+) -> Result<RunSummary, FolderError> {
+    let written = write_files(folder, scene, outcome, csv);
+    if written.is_err() {
+        for name in FILES {
+            // Most were never written; the error of the write is the one to report.
+            let _ = fs::remove_file(folder.join(name));
+        }
+    }
+    written
+}
+
+fn write_files(
+    folder: &Path,
+    scene: &Scene,
+    outcome: &PackOutcome,
+    csv: bool,
+) -> Result<RunSummary, FolderError> {
+    write_scene(folder, "scene.toml", scene)?;
+    history_table(&outcome.history).write(folder, "history", csv)?;
+    beads_table(&outcome.beads).write(folder, "beads", csv)?;
+    grains_table(&outcome.positions).write(folder, "grains", csv)?;
+    let summary = RunSummary::new(scene, outcome);
+    write_json(&folder.join(SUMMARY_FILE), &summary)?;
+    Ok(summary)
+}
+
+/// Writes a resolved scene, with its listed spheres beside it.
+pub(crate) fn write_scene(folder: &Path, name: &str, scene: &Scene) -> Result<(), FolderError> {
+    if let Some(spheres) = scene.spheres_csv() {
+        write_text(&folder.join(SPHERES_FILE), &spheres)?;
+    }
+    write_text(&folder.join(name), &scene.to_toml())
+}
+
+/// Writes a summary in the manner of all summaries: indented, with a last newline.
+pub(crate) fn write_json(path: &Path, summary: &impl Serialize) -> Result<(), FolderError> {
+    let text = serde_json::to_string_pretty(summary).map_err(|error| FolderError::Write {
+        path: path.to_owned(),
+        source: std::io::Error::other(error),
+    })?;
+    write_text(path, &(text + "\n"))
+}

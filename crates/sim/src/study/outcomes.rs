@@ -1,0 +1,63 @@
+use super::Study;
+use super::journal::PackEnd;
+use super::plan::Plan;
+use crate::PackOutcome;
+use crate::folder::{Column, Table, Values, bead_columns, quality_columns};
+use std::sync::Arc;
+
+/// One row per bead of every pack, in order; a failed pack has one row that says why.
+pub(crate) fn outcomes_table(study: &Study, plan: &Plan) -> Table {
+    let rows: Vec<TableRow<'_>> = plan.rows().flat_map(table_rows).collect();
+    let finished: Arc<[bool]> = rows.iter().map(|row| row.outcome.is_ok()).collect();
+    let failed: Arc<[bool]> = finished.iter().map(|finished| !finished).collect();
+    let ended = rows.iter().filter_map(|row| row.outcome.as_ref().ok());
+
+    let if_finished = |column: Column| Column { present: Some(Arc::clone(&finished)), ..column };
+    let pack_number = |name, value: fn(&PackOutcome) -> f64| {
+        Column::new(name, Values::Number(ended.clone().map(|(pack, _)| value(pack)).collect()))
+    };
+    let pack_count = |name, values: Vec<usize>| {
+        Column::new(name, Values::Count(values.into_iter().map(|value| value as i64).collect()))
+    };
+    let mut columns = vec![
+        Column::new("level", Values::Count(rows.iter().map(|row| row.level as i64).collect())),
+        Column::new(
+            "level_value",
+            Values::Text(rows.iter().map(|row| study.levels[row.level].value.clone()).collect()),
+        ),
+        Column::new("pack", Values::Count(rows.iter().map(|row| row.pack as i64).collect())),
+        if_finished(pack_count("bead", ended.clone().map(|(_, bead)| *bead).collect())),
+    ];
+    columns.extend(
+        bead_columns(ended.clone().map(|(pack, bead)| &pack.beads[*bead])).into_iter().map(if_finished),
+    );
+    columns.extend(
+        [
+            pack_count("grains", ended.clone().map(|(pack, _)| pack.grains).collect()),
+            pack_number("porosity", |pack| pack.porosity),
+            pack_number("fines_left_out", |pack| pack.fines_left_out),
+            pack_number("heave_m", |pack| pack.heave_m),
+            pack_number("contact_number", |pack| pack.contact_number),
+        ]
+        .into_iter()
+        .chain(quality_columns(ended.clone().map(|(pack, _)| &pack.quality)))
+        .map(if_finished),
+    );
+    let reasons = rows.iter().filter_map(|row| row.outcome.as_ref().err().map(|reason| (*reason).to_owned()));
+    columns.push(Column { name: "failure", values: Values::Text(reasons.collect()), present: Some(failed) });
+    Table { columns }
+}
+
+struct TableRow<'a> {
+    level: usize,
+    pack: u64,
+    outcome: Result<(&'a PackOutcome, usize), &'a str>,
+}
+
+fn table_rows<'a>((level, pack, end): (usize, u64, &'a PackEnd)) -> Vec<TableRow<'a>> {
+    let row = |outcome| TableRow { level, pack, outcome };
+    match end {
+        PackEnd::Finished(outcome) => (0..outcome.beads.len()).map(|bead| row(Ok((outcome, bead)))).collect(),
+        PackEnd::Failed(reason) => vec![row(Err(reason))],
+    }
+}
