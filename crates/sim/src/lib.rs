@@ -7,6 +7,7 @@ mod scene;
 mod statistics;
 mod study;
 
+pub use bedswell_grains::{Grading, SizeNumbers};
 pub use folder::{FolderError, RunSummary, prepare_run_folder, write_run_folder};
 pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};

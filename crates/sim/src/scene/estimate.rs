@@ -1,21 +1,26 @@
 use super::{BeadAmount, Scene, SoilGrading};
 use bedswell_gel::{Gel, GelNumbers, Surroundings, uptake_of_volume_ratio};
 use bedswell_geometry::volume_of_radius;
+use bedswell_grains::{PackError, beads_for_dose};
 use serde::Serialize;
 use std::f64::consts::PI;
 
 /// Porosity assumed for sizing a bed whose own is not given.
 const USUAL_POROSITY: f64 = 0.40;
+/// Memory of one voxel with its nodes, skin and solver vectors (bytes), as measured, rounded up.
+const BYTES_PER_VOXEL: f64 = 1500.0;
+/// Memory of one grain with its contacts (bytes), rounded up.
+const BYTES_PER_GRAIN: f64 = 4000.0;
+/// Memory of the program itself (bytes).
+const BYTES_AT_LEAST: f64 = 3e7;
 
 /// What a scene comes to, worked out without running it.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize)]
-pub struct Estimate {
+pub struct SceneEstimate {
     /// Grains in the cell.
     pub grains: usize,
     /// Beads in the cell.
-    pub beads: f64,
-    /// Voxels of each bead.
-    pub voxels_per_bead: f64,
+    pub beads: usize,
     /// Voxels of all beads.
     pub voxels: f64,
     /// Edge (m) of a cube with the volume of the mixed dry bed, or the shortest edge of a given cell.
@@ -30,6 +35,8 @@ pub struct Estimate {
     pub swollen_modulus_pa: f64,
     /// Lid stress over swollen modulus, which sets the regime.
     pub load_ratio: f64,
+    /// Memory (bytes) of one pack, about.
+    pub memory_bytes: f64,
 }
 
 impl Scene {
@@ -43,42 +50,55 @@ impl Scene {
         Gel::new(numbers, surroundings)
     }
 
-    /// What the scene comes to, before anything is allocated.
-    pub fn estimate(&self) -> Estimate {
-        let soil_volume = match &self.soil.grading {
-            SoilGrading::Spheres { spheres, .. } => spheres.iter().map(|sphere| sphere.volume()).sum(),
-            grading => self.bed.grains as f64 * grading.mean_grain_volume(),
-        };
-        let bead_volume = volume_of_radius(0.5 * self.beads.dry_diameter);
-        let beads = match &self.beads.amount {
-            BeadAmount::Count(count) => *count as f64,
-            BeadAmount::At(centres) => centres.len() as f64,
+    /// Beads in the cell, a dose being rounded to whole beads.
+    ///
+    /// # Errors
+    /// When the dose leaves no bead or no grains.
+    pub fn bead_count(&self) -> Result<usize, PackError> {
+        match &self.beads.amount {
+            BeadAmount::Count(count) => Ok(*count),
+            BeadAmount::At(centres) => Ok(centres.len()),
             BeadAmount::Dose(dose) => {
-                (dose * self.soil.density * soil_volume / (self.gel.dry_density * bead_volume)).round()
+                let grains = self.soil.grain_diameters(self.bed.grains).map_err(|_| PackError::NoGrains)?;
+                let Self { beads, gel, soil, .. } = self;
+                beads_for_dose(*dose, beads.dry_diameter, gel.dry_density, &grains, soil.density)
             }
-        };
+        }
+    }
+
+    /// What the scene comes to, before anything of its size is allocated.
+    ///
+    /// # Errors
+    /// When the dose leaves no bead or no grains.
+    pub fn estimate(&self) -> Result<SceneEstimate, PackError> {
+        let diameters = self.soil.grain_diameters(self.bed.grains).map_err(|_| PackError::NoGrains)?;
+        let soil_volume: f64 = diameters.iter().map(|diameter| volume_of_radius(0.5 * diameter)).sum();
+        let beads = self.bead_count()?;
+        let bead_volume = beads as f64 * volume_of_radius(0.5 * self.beads.dry_diameter);
         let bed_edge_m = match &self.soil.grading {
             SoilGrading::Spheres { size, .. } => size.iter().copied().fold(f64::INFINITY, f64::min),
             _ => {
                 let porosity = self.bed.porosity.unwrap_or(USUAL_POROSITY);
-                ((soil_volume + beads * bead_volume) / (1.0 - porosity)).cbrt()
+                ((soil_volume + bead_volume) / (1.0 - porosity)).cbrt()
             }
         };
-        let voxels_per_bead = PI / 6.0 * (self.beads.across as f64).powi(3);
+        let voxels = beads as f64 * PI / 6.0 * (self.beads.across as f64).powi(3);
         let gel = self.swelling_gel();
         let free_stretch = gel.free_stretch();
         let swollen_modulus_pa = gel.moduli().shear;
-        Estimate {
-            grains: self.bed.grains,
+        Ok(SceneEstimate {
+            grains: diameters.len(),
             beads,
-            voxels_per_bead,
-            voxels: beads * voxels_per_bead,
+            voxels,
             bed_edge_m,
             free_stretch,
             swollen_diameter_m: free_stretch * self.beads.dry_diameter,
             free_uptake_g_per_g: uptake_of_volume_ratio(gel.free_volume_ratio(), self.gel.dry_density),
             swollen_modulus_pa,
             load_ratio: self.bed.lid_stress / swollen_modulus_pa,
-        }
+            memory_bytes: BYTES_AT_LEAST
+                + BYTES_PER_VOXEL * voxels
+                + BYTES_PER_GRAIN * diameters.len() as f64,
+        })
     }
 }

@@ -3,8 +3,9 @@
 use super::error::SceneError;
 use super::raw::Node;
 use super::section::Entry;
-use super::{BeadAmount, Scene, SoilGrading};
+use super::{BeadAmount, Scene, SceneEstimate, SoilGrading};
 use bedswell_geometry::{Cell, Vector};
+use bedswell_grains::MassCurve;
 
 /// Voxels a scene may have over all its beads.
 pub(crate) const VOXEL_BUDGET: f64 = 1e7;
@@ -14,32 +15,23 @@ const OVERLAP_TOLERANCE: f64 = 1e-3;
 /// Refuses a scene whose parts do not fit together.
 pub(crate) fn check_limits(document: &Node, scene: &Scene) -> Result<(), SceneError> {
     check_porosity(document, scene)?;
-    let estimate = scene.estimate();
-    if matches!(scene.beads.amount, BeadAmount::Dose(_)) && estimate.beads < 1.0 {
-        let grains = scene.bed.grains;
-        return Err(entry(document, "beads.dose").refuse(format!(
-            "leaves no bead: {grains} grains are too few for one bead of this size; raise the dose or bed.grains, or \
-             use smaller beads"
-        )));
-    }
+    let estimate =
+        scene.estimate().map_err(|error| entry(document, amount_key(scene)).refuse(error.to_string()))?;
     if estimate.voxels >= VOXEL_BUDGET {
-        let gibibytes = estimate.voxels * BYTES_PER_VOXEL / (1u64 << 30) as f64;
-        let key = if estimate.voxels_per_bead >= VOXEL_BUDGET { "beads.across" } else { amount_key(scene) };
+        let one_is_too_much = estimate.voxels / estimate.beads as f64 >= VOXEL_BUDGET;
+        let key = if one_is_too_much { "beads.across" } else { amount_key(scene) };
         return Err(entry(document, key).refuse(format!(
-            "the beads would have {:.3e} voxels, some {gibibytes:.0} GiB; at most {VOXEL_BUDGET:.0e} are allowed: \
-             lower beads.across or the number of beads",
-            estimate.voxels
+            "the beads would have {:.3e} voxels and need some {:.0} GiB; fewer than {VOXEL_BUDGET:.0e} voxels are \
+             allowed: lower beads.across or the number of beads",
+            estimate.voxels,
+            estimate.memory_bytes / f64::from(1 << 30),
         )));
     }
-    check_bead_size(document, scene)?;
+    check_bead_size(document, scene, &estimate)?;
     check_given_centres(document, scene)
 }
 
-/// Memory of one voxel with its nodes, bonds and solver vectors (bytes).
-pub(crate) const BYTES_PER_VOXEL: f64 = 1500.0;
-
-fn check_bead_size(document: &Node, scene: &Scene) -> Result<(), SceneError> {
-    let estimate = scene.estimate();
+fn check_bead_size(document: &Node, scene: &Scene, estimate: &SceneEstimate) -> Result<(), SceneError> {
     let edge = estimate.bed_edge_m;
     let listed = matches!(scene.soil.grading, SoilGrading::Spheres { .. });
     let (diameter, state) = if listed {
@@ -63,30 +55,47 @@ fn check_bead_size(document: &Node, scene: &Scene) -> Result<(), SceneError> {
     )))
 }
 
-/// Loosest and densest states of spheres: close packing by the formula of Farr 2013
-/// (Powder Technol. 245:28, coefficients second-hand) for the spread of the grading,
-/// loose packing 0.09 below (0.64 and 0.55 for equal spheres; Jerkins et al. 2008,
-/// Phys. Rev. Lett. 101:018301), each with a margin so that nothing attainable is
-/// refused here; the packing itself has the last word.
+/// Refuses a porosity that no pack of this grading can have.
+///
+/// Dense end: close packing by the formula of Farr 2013 (Powder Technol. 245:28,
+/// coefficients second-hand) for the spread of the grading. Loose end: 0.09 looser
+/// (0.64 against 0.55 for equal spheres; Jerkins et al. 2008, Phys. Rev. Lett.
+/// 101:018301). Both have a margin, the loose one also for what floor and lid hold
+/// apart, so that nothing attainable is refused here; the packing has the last word.
 fn check_porosity(document: &Node, scene: &Scene) -> Result<(), SceneError> {
     const MARGIN: f64 = 0.025;
     const LOOSENING: f64 = 0.09;
+    const WALLS: f64 = 0.04;
     let Some(porosity) = scene.bed.porosity else { return Ok(()) };
+    let entry = entry(document, "bed.porosity");
     if matches!(scene.soil.grading, SoilGrading::Spheres { .. }) {
-        return Err(entry(document, "bed.porosity")
-            .refuse("the soil lists its spheres where they lie; leave this key out"));
+        return Err(entry.refuse("the soil lists its spheres where they lie; leave this key out"));
     }
-    let densest = 1.0 - close_packing(scene.soil.grading.log_spread());
-    let range = densest - MARGIN..=densest + LOOSENING + MARGIN;
+    let Ok(grading) = scene.soil.grading() else { return Ok(()) };
+    let densest = 1.0 - close_packing(log_spread(&grading.packed));
+    let range = densest - MARGIN..=densest + LOOSENING + WALLS + MARGIN;
     if range.contains(&porosity) {
         return Ok(());
     }
-    Err(entry(document, "bed.porosity").refuse(format!(
+    Err(entry.refuse(format!(
         "out of reach for this grading, whose spheres pack at porosities of about {:.2} to {:.2}; choose one in \
          between, or leave the key out to take the state that the preparation gives",
         range.start(),
         range.end()
     )))
+}
+
+/// Standard deviation, by mass, of the logarithm of size.
+fn log_spread(curve: &MassCurve) -> f64 {
+    // Mass is spread evenly over the logarithm of size between points.
+    let (mut mean, mut square) = (0.0, 0.0);
+    for ends in curve.points().windows(2) {
+        let ((d1, p1), (d2, p2)) = (ends[0], ends[1]);
+        let (low, high) = (d1.ln(), d2.ln());
+        mean += (p2 - p1) * 0.5 * (low + high);
+        square += (p2 - p1) * (low * low + low * high + high * high) / 3.0;
+    }
+    (square - mean * mean).max(0.0).sqrt()
 }
 
 /// Solid fraction at random close packing of lognormal spheres with log-spread σ.

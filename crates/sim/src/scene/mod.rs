@@ -13,7 +13,7 @@ mod unit;
 mod write;
 
 pub use error::{Place, SceneError};
-pub use estimate::Estimate as SceneEstimate;
+pub use estimate::SceneEstimate;
 pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};
 pub use read::read_scene;
 pub use write::SPHERES_FILE;

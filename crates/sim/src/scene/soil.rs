@@ -53,13 +53,13 @@ pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vec
             );
         }
     };
-    if let (Some(cutoff), 1.0..) = (section.get("fines_cutoff"), grading.fines_left_out()) {
-        return Err(cutoff.refuse(format!(
-            "leaves no grains; must be below the largest grain, {} m",
-            grading.diameter_passing(1.0 - 1e-9)
-        )));
+    let soil = Soil { grading, density, friction };
+    // What the sieves and the spread alone can get wrong was refused above, with its own line.
+    match (soil.grading(), section.get("fines_cutoff")) {
+        (Err(error), Some(cutoff)) => Err(cutoff.refuse(error.to_string())),
+        (Err(error), None) => Err(section.missing("fines_cutoff", error.to_string())),
+        (Ok(_), _) => Ok((soil, corner)),
     }
-    Ok((Soil { grading, density, friction }, corner))
 }
 
 fn read_sieves(sieves: &Entry<'_>, fines_cutoff: Option<f64>) -> Result<SoilGrading, SceneError> {
