@@ -11,6 +11,10 @@ const USUAL_POROSITY: f64 = 0.40;
 const BYTES_PER_VOXEL: f64 = 1500.0;
 /// Memory of one grain with its contacts (bytes), rounded up.
 const BYTES_PER_GRAIN: f64 = 4000.0;
+/// Time that one voxel takes in one increment (s), as measured on one core of 2020s make.
+const SECONDS_PER_VOXEL: f64 = 2e-4;
+/// The same for one moving grain (s).
+const SECONDS_PER_GRAIN: f64 = 2e-4;
 /// Memory of the program itself (bytes).
 const BYTES_AT_LEAST: f64 = 3e7;
 
@@ -35,6 +39,8 @@ pub struct SceneEstimate {
     pub swollen_modulus_pa: f64,
     /// Lid stress over swollen modulus, which sets the regime.
     pub load_ratio: f64,
+    /// Time (s) of one pack on one core, about.
+    pub seconds_per_pack: f64,
     /// Memory (bytes) of one pack, about.
     pub memory_bytes: f64,
 }
@@ -83,6 +89,7 @@ impl Scene {
             }
         };
         let voxels = beads as f64 * PI / 6.0 * (self.beads.across as f64).powi(3);
+        let moving_grains = if self.bed.fixed_grains { 0.0 } else { diameters.len() as f64 };
         let gel = self.swelling_gel();
         let free_stretch = gel.free_stretch();
         let swollen_modulus_pa = gel.moduli().shear;
@@ -96,6 +103,8 @@ impl Scene {
             free_uptake_g_per_g: uptake_of_volume_ratio(gel.free_volume_ratio(), self.gel.dry_density),
             swollen_modulus_pa,
             load_ratio: self.bed.lid_stress / swollen_modulus_pa,
+            seconds_per_pack: self.march.increments as f64
+                * (SECONDS_PER_VOXEL * voxels + SECONDS_PER_GRAIN * moving_grains),
             memory_bytes: BYTES_AT_LEAST
                 + BYTES_PER_VOXEL * voxels
                 + BYTES_PER_GRAIN * diameters.len() as f64,

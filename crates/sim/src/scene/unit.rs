@@ -14,45 +14,46 @@ pub(crate) enum Kind {
     Temperature,
 }
 
-/// A unit: its spelling, its kind, and its size and zero in the base unit of its kind.
+/// A unit: its spelling, its kind, and its size (as a power of ten) and zero in the
+/// base unit of its kind.
 struct Unit {
     name: &'static str,
     kind: Kind,
-    scale: f64,
+    power: i32,
     zero: f64,
 }
 
-const fn unit(name: &'static str, kind: Kind, scale: f64) -> Unit {
-    Unit { name, kind, scale, zero: 0.0 }
+const fn unit(name: &'static str, kind: Kind, power: i32) -> Unit {
+    Unit { name, kind, power, zero: 0.0 }
 }
 
 /// The first unit of each kind is the one resolved scenes are written in.
 const UNITS: &[Unit] = &[
-    unit("m", Kind::Length, 1.0),
-    unit("cm", Kind::Length, 1e-2),
-    unit("mm", Kind::Length, 1e-3),
-    unit("um", Kind::Length, 1e-6),
-    unit("µm", Kind::Length, 1e-6),
-    unit("m3", Kind::Volume, 1.0),
-    unit("cm3", Kind::Volume, 1e-6),
-    unit("mL", Kind::Volume, 1e-6),
-    unit("mm3", Kind::Volume, 1e-9),
-    unit("Pa", Kind::Stress, 1.0),
-    unit("hPa", Kind::Stress, 1e2),
-    unit("kPa", Kind::Stress, 1e3),
-    unit("MPa", Kind::Stress, 1e6),
-    unit("bar", Kind::Stress, 1e5),
-    unit("kg/m3", Kind::Density, 1.0),
-    unit("g/cm3", Kind::Density, 1e3),
-    unit("t/m3", Kind::Density, 1e3),
-    unit("kg/kg", Kind::MassRatio, 1.0),
-    unit("g/g", Kind::MassRatio, 1.0),
-    unit("g/kg", Kind::MassRatio, 1e-3),
-    unit("mol/L", Kind::Concentration, 1.0),
-    unit("mmol/L", Kind::Concentration, 1e-3),
-    unit("K", Kind::Temperature, 1.0),
-    Unit { name: "degC", kind: Kind::Temperature, scale: 1.0, zero: 273.15 },
-    Unit { name: "°C", kind: Kind::Temperature, scale: 1.0, zero: 273.15 },
+    unit("m", Kind::Length, 0),
+    unit("cm", Kind::Length, -2),
+    unit("mm", Kind::Length, -3),
+    unit("um", Kind::Length, -6),
+    unit("µm", Kind::Length, -6),
+    unit("m3", Kind::Volume, 0),
+    unit("cm3", Kind::Volume, -6),
+    unit("mL", Kind::Volume, -6),
+    unit("mm3", Kind::Volume, -9),
+    unit("Pa", Kind::Stress, 0),
+    unit("hPa", Kind::Stress, 2),
+    unit("kPa", Kind::Stress, 3),
+    unit("MPa", Kind::Stress, 6),
+    unit("bar", Kind::Stress, 5),
+    unit("kg/m3", Kind::Density, 0),
+    unit("g/cm3", Kind::Density, 3),
+    unit("t/m3", Kind::Density, 3),
+    unit("kg/kg", Kind::MassRatio, 0),
+    unit("g/g", Kind::MassRatio, 0),
+    unit("g/kg", Kind::MassRatio, -3),
+    unit("mol/L", Kind::Concentration, 0),
+    unit("mmol/L", Kind::Concentration, -3),
+    unit("K", Kind::Temperature, 0),
+    Unit { name: "degC", kind: Kind::Temperature, power: 0, zero: 273.15 },
+    Unit { name: "°C", kind: Kind::Temperature, power: 0, zero: 273.15 },
 ];
 
 impl Kind {
@@ -89,7 +90,7 @@ pub(crate) fn parse_quantity(text: &str, kind: Kind) -> Result<f64, String> {
         Some((number, name)) => (number, name.trim()),
         None => split_before_letters(text),
     };
-    let Ok(number) = number.parse::<f64>() else {
+    let Ok(value) = number.parse::<f64>() else {
         return Err(format!("not a number with a unit; write for example \"1.5 {}\"", kind.base()));
     };
     if name.is_empty() {
@@ -106,10 +107,17 @@ pub(crate) fn parse_quantity(text: &str, kind: Kind) -> Result<f64, String> {
             kind.listed()
         ));
     }
-    if !number.is_finite() {
+    if !value.is_finite() {
         return Err("must be a finite number".to_owned());
     }
-    Ok(number * unit.scale + unit.zero)
+    // Only an exponent beyond 32 bits has no shifted form, and it makes any finite value zero.
+    Ok(times_power_of_ten(number, unit.power).unwrap_or(value) + unit.zero)
+}
+
+/// The decimal number with its point moved, so that "3.6 mm" is 0.0036 m to the last bit.
+fn times_power_of_ten(number: &str, power: i32) -> Option<f64> {
+    let (digits, own) = number.split_once(['e', 'E']).unwrap_or((number, "0"));
+    format!("{digits}e{}", own.parse::<i32>().ok()?.checked_add(power)?).parse().ok()
 }
 
 /// `"1.5mm"` is as good as `"1.5 mm"`; the exponent of `"1e-3m"` is part of the number.
@@ -142,6 +150,8 @@ mod tests {
             ("1.5 mm", Kind::Length, 1.5e-3),
             ("30cm", Kind::Length, 0.3),
             ("1e-3m", Kind::Length, 1e-3),
+            ("3.6 mm", Kind::Length, 3.6e-3),
+            ("2.5E+1 um", Kind::Length, 2.5e-5),
             ("6 kPa", Kind::Stress, 6000.0),
             ("25 degC", Kind::Temperature, 298.15),
             ("3 g/kg", Kind::MassRatio, 3e-3),

@@ -1,0 +1,145 @@
+use crate::exit::Exit;
+use crate::figures::{digits, duration, length, memory, stress};
+use crate::output::{say, say_json};
+use bedswell_sim::{Scene, SceneEstimate, SizeNumbers, read_scene};
+use std::path::Path;
+
+/// What every user must know before mixing gel into soil.
+const CAUTIONS: [&str; 6] = [
+    "Swallowed beads swell in the gut and can kill children and animals; keep dry and swollen beads from both.",
+    "Dust of dry gel harms the lungs: do not breathe it, wear a mask when dosing fine grades.",
+    "Spilled gel is extremely slippery, the more so when wet.",
+    "Putting synthetic polymers on land is regulated: ask what the local rules on soil improvers and microplastics allow.",
+    "No dose here is a recommendation; plant response is for the local agronomist.",
+    "Results are estimates of a model of round grains and beads; confirm them in a pot trial.",
+];
+
+/// Says what a scene comes to, without running it.
+pub(super) fn describe(path: &Path, json: bool) -> anyhow::Result<Exit> {
+    let scene = read_scene(path)?;
+    let estimate = scene.estimate()?;
+    let grading = scene.soil.grading()?;
+    let sizes = grading.soil.numbers();
+    if json {
+        say_json(&serde_json::json!({
+            "name": scene.name,
+            "seed": scene.seed,
+            "estimate": estimate,
+            "d10_m": sizes.d10,
+            "d30_m": sizes.d30,
+            "d50_m": sizes.d50,
+            "d60_m": sizes.d60,
+            "coefficient_of_uniformity": sizes.uniformity,
+            "coefficient_of_curvature": sizes.curvature,
+            "fines_left_out": grading.left_out,
+            "porosity": scene.bed.porosity,
+            "lid_stress_pa": scene.bed.lid_stress,
+            "gel": scene.gel,
+            "regime": regime(&scene, &estimate),
+            "cautions": CAUTIONS,
+        }))?;
+    } else {
+        say(&in_words(&scene, &estimate, &sizes, grading.left_out))?;
+    }
+    Ok(Exit::Done)
+}
+
+fn in_words(scene: &Scene, estimate: &SceneEstimate, sizes: &SizeNumbers, left_out: f64) -> String {
+    let known = |size: Option<f64>| size.map_or("unknown".into(), length);
+    let plain = |number: Option<f64>| number.map_or("unknown".into(), digits);
+    let mut text = format!("{} (seed {})\n\n", scene.name, scene.seed);
+    let mut part = |name: &str, lines: &[String]| {
+        for (index, line) in lines.iter().enumerate() {
+            text += &format!("{:<8} {line}\n", if index == 0 { name } else { "" });
+        }
+    };
+    part(
+        "soil",
+        &[
+            format!(
+                "{} grains; D10 {}, D30 {}, D50 {}, D60 {}; Cu {}, Cc {}",
+                estimate.grains,
+                known(sizes.d10),
+                known(sizes.d30),
+                known(sizes.d50),
+                known(sizes.d60),
+                plain(sizes.uniformity),
+                plain(sizes.curvature)
+            ),
+            if left_out > 0.0 {
+                format!("{} % of the mass is left out as fines", digits(100.0 * left_out))
+            } else {
+                "no fines are left out".into()
+            },
+        ],
+    );
+    part(
+        "bed",
+        &[format!(
+            "about {} wide; porosity {}; {} under the lid{}",
+            length(estimate.bed_edge_m),
+            scene.bed.porosity.map_or("as prepared".into(), digits),
+            stress(scene.bed.lid_stress),
+            if scene.bed.fixed_grains { "; grains held in place" } else { "" }
+        )],
+    );
+    part(
+        "beads",
+        &[format!(
+            "{} of {} dry, free-swollen {}; {:.0} voxels in all",
+            estimate.beads,
+            length(scene.beads.dry_diameter),
+            length(estimate.swollen_diameter_m),
+            estimate.voxels
+        )],
+    );
+    part(
+        "gel",
+        &[
+            format!(
+                "crosslinks {}, charges {} per solvent volume, chi {}",
+                digits(scene.gel.crosslinks),
+                digits(scene.gel.charges),
+                digits(scene.gel.chi)
+            ),
+            format!(
+                "free-swollen in this water: {} g/g, stretch {}, shear modulus {}",
+                digits(estimate.free_uptake_g_per_g),
+                digits(estimate.free_stretch),
+                stress(estimate.swollen_modulus_pa)
+            ),
+        ],
+    );
+    part("load", &[regime(scene, estimate)]);
+    part(
+        "cost",
+        &[format!(
+            "about {} a pack on one core, {} of memory",
+            duration(estimate.seconds_per_pack),
+            memory(estimate.memory_bytes)
+        )],
+    );
+    text += "\nCautions\n";
+    for caution in CAUTIONS {
+        text += &format!("- {caution}\n");
+    }
+    text.trim_end().to_owned()
+}
+
+/// What the load does to a swelling bead, by trial runs of beds of 900 grains.
+fn regime(scene: &Scene, estimate: &SceneEstimate) -> String {
+    let ratio = digits(estimate.load_ratio);
+    if scene.bed.fixed_grains {
+        return format!("{ratio} of the gel's modulus, of no effect on grains that are held in place");
+    }
+    let meaning = match estimate.load_ratio {
+        ..0.02 => "light: beads swell almost freely and lift the bed",
+        0.02..0.06 => "moderate: grains move aside, uptake some nine tenths of free",
+        0.06..0.2 => "heavy: uptake some three quarters of free, the gel bulges into the pores",
+        _ => {
+            "very heavy: the gel is squeezed between grains until it meets itself; such a pack may stop, as contact \
+             of a bead with itself is not in this version"
+        }
+    };
+    format!("{ratio} of the gel's modulus, {meaning}")
+}

@@ -1,0 +1,49 @@
+use crate::args::Run;
+use crate::exit::Exit;
+use crate::figures::{digits, force, length, stress};
+use crate::output::{say, say_json};
+use crate::progress::Progress;
+use bedswell_sim::{RunSummary, prepare_run_folder, read_scene, run_pack, write_run_folder};
+use std::path::Path;
+
+/// Takes one pack from dry to equilibrium and writes its folder.
+pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
+    let scene = read_scene(&arguments.scene)?;
+    prepare_run_folder(&arguments.out, &scene, arguments.pack)?;
+    let outcome = run_pack(&scene, arguments.pack, &mut Progress::new("increments"))?;
+    let summary = write_run_folder(&arguments.out, &scene, &outcome, arguments.csv)?;
+    if json {
+        say_json(&summary)?;
+    } else {
+        say(&in_words(&summary, &arguments.out))?;
+    }
+    Ok(Exit::Done)
+}
+
+fn in_words(run: &RunSummary, folder: &Path) -> String {
+    let mut text = format!(
+        "{}, pack {}: {} grains at porosity {:.3}; the lid rose {}\n",
+        run.name,
+        run.pack,
+        run.grains,
+        run.porosity,
+        length(run.heave_m)
+    );
+    for (index, bead) in run.beads.iter().enumerate() {
+        text += &format!(
+            "\nbead {index}\n  water taken up    {} g/g, {:.3} of the free volume\n  contacts          {}, the \
+             largest force {}\n  tension, 99 %     {} (largest {})\n  compression       {} (99.9 %)\n  tear \
+             probability  {}{}\n",
+            digits(bead.uptake_g_per_g),
+            bead.volume_ratio,
+            bead.contacts,
+            force(bead.largest_contact_force_n),
+            stress(bead.tension_q99_pa),
+            stress(bead.largest_tension_pa),
+            stress(bead.compression_q999_pa),
+            digits(bead.tear_probability),
+            if bead.torn { "; torn in this pack" } else { "" },
+        );
+    }
+    text + &format!("\nwritten to {}", folder.display())
+}
