@@ -57,7 +57,7 @@ fn main() {
             let l = gel.free_stretch();
             let t = Instant::now();
             let mut bead = Bead::new(lattice.clone(), 1.0 / l, Vector::zeros(), l);
-            let free = bead.volume(&gel);
+            let free = bead.volume();
             let tol = Tolerance { held: name.starts_with("pair"), ..tol };
             let result = if dry {
                 swell(&mut bead, &gel, &obstacles, tol)
@@ -66,16 +66,36 @@ fn main() {
             };
             match result {
                 Ok(e) => {
+                    let field = StressField::of(&bead, &gel);
+                    let peak = (0..field.principal.len())
+                        .filter(|&v| {
+                            let o = lattice.voxel_offset(v);
+                            (o[0] * o[0] + o[1] * o[1] + o[2] * o[2]).sqrt() < 0.4 * across as f64
+                        })
+                        .map(|v| (field.principal[v][0], v))
+                        .fold((0.0, 0), |a: (f64, usize), b| if b.0 > a.0 { b } else { a });
+                    println!(
+                        "   peak {:.4} at {:?} q99 {:.4} c999 {:.4} largest {:.4} p {:.4} asph {:.4}",
+                        peak.0 / g,
+                        lattice.voxel_offset(peak.1).map(|c| c / (0.5 * across as f64)),
+                        field.tension_quantile(0.99) / g,
+                        field.compression_quantile(0.999) / g,
+                        field.largest_tension().0 / g,
+                        field.mean_pressure() / g,
+                        asphericity(&bead, &field)
+                    );
+
                     let f = e.forces.iter().map(|f| f.norm() / g).collect::<Vec<_>>();
                     let m = f.iter().sum::<f64>() / f.len() as f64;
                     println!(
                         "{name:12} V {:.5} ({:+.5})  F {:.5} ({:+.2}%) spread {:.1e} res {:.1e} torque {:.1e} pen {:.1e} steps {} its {} {:?}",
-                        bead.volume(&gel) / free,
-                        bead.volume(&gel) / free - ratio,
+                        bead.volume() / free,
+                        bead.volume() / free - ratio,
                         m,
                         100.0 * (m / force - 1.0),
                         f.iter().fold(0.0f64, |a, b| a.max((b - m).abs())) / m,
-                        e.residual, e.torque,
+                        e.residual,
+                        e.torque,
                         e.penetration,
                         e.steps,
                         e.iterations,

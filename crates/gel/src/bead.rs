@@ -1,5 +1,5 @@
 use crate::contact::skin_position;
-use crate::elastic::Elastic;
+use crate::elastic::{self, Elastic};
 use crate::lattice::Lattice;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
@@ -51,6 +51,11 @@ impl Bead {
         Vector::from_fn(|axis, _| self.positions[axis * stride + node])
     }
 
+    /// Middle of a voxel's eight nodes (m).
+    pub fn voxel_centre(&self, voxel: usize) -> Vector {
+        self.lattice.corners_of(voxel).iter().map(|&node| self.node(node)).sum::<Vector>() / 8.0
+    }
+
     /// Where a skin point is (m).
     pub fn skin_point(&self, point: usize) -> Vector {
         skin_position(&self.lattice.skin, &self.positions, point)
@@ -65,12 +70,29 @@ impl Bead {
         })
     }
 
+    /// Largest distance of a skin point from the centre (m).
+    pub fn extent(&self) -> f64 {
+        let centre = self.centre();
+        (0..self.lattice.skin.len()).map(|point| (self.skin_point(point) - centre).norm()).fold(0.0, f64::max)
+    }
+
+    /// Volume of the dry gel (m³).
+    pub fn dry_volume(&self) -> f64 {
+        let filled: f64 = (0..self.lattice.voxel_count()).map(|voxel| self.lattice.filled(voxel)).sum();
+        filled * self.voxel_edge().powi(3)
+    }
+
     /// Volume of the gel (m³).
-    pub fn volume(&self, gel: &Gel) -> f64 {
-        let gradients = self.elastic(gel).gradients(&self.positions);
+    pub fn volume(&self) -> f64 {
+        let gradients = self.gradients();
         let filled: f64 =
             gradients.iter().enumerate().map(|(voxel, f)| self.lattice.filled(voxel) * f.determinant()).sum();
         filled * self.voxel_edge().powi(3)
+    }
+
+    /// Mean deformation gradient of every voxel, from dry.
+    pub(crate) fn gradients(&self) -> Vec<bedswell_geometry::Matrix> {
+        elastic::gradients(&self.lattice, self.voxel_edge(), &self.positions)
     }
 
     pub(crate) fn shared_lattice(&self) -> Arc<Lattice> {
@@ -84,10 +106,6 @@ impl Bead {
         for (axis, column) in self.positions.chunks_exact_mut(stride).enumerate() {
             column[..nodes].iter_mut().for_each(|x| *x = centre[axis] + by * (*x - centre[axis]));
         }
-    }
-
-    pub(crate) fn elastic<'a>(&'a self, gel: &'a Gel) -> Elastic<'a> {
-        Elastic { lattice: &self.lattice, gel, edge: self.voxel_edge() }
     }
 
     pub(crate) fn elastic_and_positions<'a>(&'a mut self, gel: &'a Gel) -> (Elastic<'a>, &'a mut Vec<f64>) {

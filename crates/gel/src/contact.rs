@@ -3,7 +3,7 @@
 //! 1969, from memory), so that the pressure does not need the penetration.
 
 use crate::lattice::Skin;
-use crate::obstacle::Obstacle;
+use crate::obstacle::{Gap, Obstacle};
 use bedswell_geometry::{Matrix, Vector};
 
 /// A skin point near an obstacle.
@@ -64,13 +64,27 @@ impl Contacts {
         obstacles: &[Obstacle],
         out: &mut [f64],
     ) {
+        self.push(skin, positions, obstacles, out, |_, _, _| ());
+    }
+
+    /// Adds the contact forces' share of the energy gradient (N), and visits the
+    /// points that press: obstacle, force (N) on the skin, place (m).
+    pub(crate) fn push(
+        &self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        out: &mut [f64],
+        mut visit: impl FnMut(usize, Vector, Vector),
+    ) {
         let stride = positions.len() / 3;
-        self.for_each_pressing(skin, positions, obstacles, |pair, force, _, _| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, place, force, _| {
             for (node, weight) in skin.terms(pair.point as usize) {
                 for axis in 0..3 {
                     out[axis * stride + node] -= weight * force[axis];
                 }
             }
+            visit(pair.obstacle as usize, force, place);
         });
     }
 
@@ -84,11 +98,12 @@ impl Contacts {
         curved: bool,
     ) -> Vec<Pressing> {
         let mut pressing = Vec::new();
-        self.for_each_pressing(skin, positions, obstacles, |pair, force, normal, curvature| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, _, force, gap| {
+            let normal = gap.normal;
             let along = normal * normal.transpose();
             let mut stiffness = along * (self.penalty * self.area);
             if curved {
-                stiffness -= (Matrix::identity() - along) * (force.norm() * curvature);
+                stiffness -= (Matrix::identity() - along) * (force.norm() * gap.curvature);
             }
             pressing.push(Pressing { point: pair.point, stiffness });
         });
@@ -116,27 +131,28 @@ impl Contacts {
     /// The force (N) on each obstacle.
     pub(crate) fn forces(&self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle]) -> Vec<Vector> {
         let mut forces = vec![Vector::zeros(); obstacles.len()];
-        self.for_each_pressing(skin, positions, obstacles, |pair, force, _, _| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, _, force, _| {
             forces[pair.obstacle as usize] -= force;
         });
         forces
     }
 
-    /// Visits the pairs that press with the force (N) on the skin point.
+    /// Visits the pairs that press: the skin point's place (m), the force (N) on it
+    /// and its gap.
     #[inline]
     fn for_each_pressing(
         &self,
         skin: &Skin,
         positions: &[f64],
         obstacles: &[Obstacle],
-        mut visit: impl FnMut(&Pair, Vector, Vector, f64),
+        mut visit: impl FnMut(&Pair, Vector, Vector, Gap),
     ) {
         for pair in &self.pairs {
             let place = skin_position(skin, positions, pair.point as usize);
             let gap = obstacles[pair.obstacle as usize].gap(&place);
             let pressure = pair.multiplier - self.penalty * gap.distance;
             if pressure > 0.0 {
-                visit(pair, gap.normal * (pressure * self.area), gap.normal, gap.curvature);
+                visit(pair, place, gap.normal * (pressure * self.area), gap);
             }
         }
     }
@@ -160,6 +176,16 @@ pub(crate) fn add_diagonal_blocks(pressing: &[Pressing], skin: &Skin, out: &mut 
     for Pressing { point, stiffness } in pressing {
         for (node, weight) in skin.terms(*point as usize) {
             out[node] += stiffness * (weight * weight);
+        }
+    }
+}
+
+/// Adds each node's own block as if every pair pressed, whatever its normal.
+pub(crate) fn add_possible_blocks(contacts: &Contacts, skin: &Skin, out: &mut [Matrix]) {
+    let stiffness = Matrix::from_diagonal_element(contacts.penalty * contacts.area);
+    for pair in &contacts.pairs {
+        for (node, weight) in skin.terms(pair.point as usize) {
+            out[node] += stiffness * weight.abs();
         }
     }
 }

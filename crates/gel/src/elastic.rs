@@ -70,8 +70,8 @@ impl Elastic<'_> {
         for run in &self.lattice.runs {
             for along in (0..run.len).step_by(WIDTH) {
                 let shape = self.shape(run.slot + along);
-                let edges = self.edges(positions, run, along);
-                let f = mean_gradient(&edges, &shape);
+                let edges = edges_of(self.edge, positions, run, along);
+                let f = mean_gradient(&edges, &shape.weights);
                 let cof = cofactors(&f);
                 let j = lanes::dot(f[0], cof[0]);
                 let mut slope = Lanes::splat(0.0);
@@ -95,7 +95,10 @@ impl Elastic<'_> {
         for run in &self.lattice.runs {
             for along in (0..run.len).step_by(WIDTH) {
                 let slot = run.slot + along;
-                let f = mean_gradient(&self.edges(positions, run, along), &self.shape(slot));
+                let f = mean_gradient(
+                    &edges_of(self.edge, positions, run, along),
+                    &edge_weights(self.lattice, slot),
+                );
                 let j = lanes::dot(f[0], cofactors(&f)[0]);
                 for d in 0..3 {
                     for axis in 0..3 {
@@ -122,8 +125,8 @@ impl Elastic<'_> {
             for along in (0..run.len).step_by(WIDTH) {
                 let slot = run.slot + along;
                 let shape = self.shape(slot);
-                let edges = self.edges(direction, run, along);
-                let df = mean_gradient(&edges, &shape);
+                let edges = edges_of(self.edge, direction, run, along);
+                let df = mean_gradient(&edges, &shape.weights);
                 let f = state.gradient_at(slot);
                 let cof = cofactors(&f);
                 let slope = Lanes::load(&state.slope, slot);
@@ -175,57 +178,14 @@ impl Elastic<'_> {
         }
     }
 
-    /// Mean deformation gradient of every voxel.
-    pub(crate) fn gradients(&self, positions: &[f64]) -> Vec<Matrix3<f64>> {
-        let mut all = Vec::with_capacity(self.lattice.voxel_count());
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let f = mean_gradient(&self.edges(positions, run, along), &self.shape(run.slot + along));
-                for lane in 0..WIDTH.min(run.len - along) {
-                    all.push(Matrix3::from_fn(|axis, d| f[d][axis].0[lane]));
-                }
-            }
-        }
-        all
-    }
-
     /// Edge weights and force scale of the voxels in a group of slots.
     #[inline(always)]
     fn shape(&self, slot: usize) -> Shape {
-        let one = Lanes::splat(1.0);
-        let mut weights = [[one; 4]; 3];
-        for d in 0..3 {
-            let [low, high] = OTHERS[d];
-            let a = Lanes::load(&self.lattice.first[low], slot);
-            let b = Lanes::load(&self.lattice.first[high], slot);
-            let ab = Lanes::load(&self.lattice.mixed[d], slot);
-            weights[d] = [one - a - b + ab, a - ab, b - ab, ab];
-        }
         let scale = Lanes::splat(self.gel.energy_density() * self.edge * self.edge);
-        Shape { weights, scale: Lanes::load(&self.lattice.volume, slot) * scale }
-    }
-
-    /// The twelve edges of a group of voxels, by direction, over the dry edge.
-    #[inline(always)]
-    fn edges(&self, values: &[f64], run: &Run, along: usize) -> [[Vector; 4]; 3] {
-        let inverse = Lanes::splat(1.0 / self.edge);
-        let stride = values.len() / 3;
-        let mut corners = [[inverse; 3]; 8];
-        for axis in 0..3 {
-            let column = &values[axis * stride..(axis + 1) * stride];
-            for (row, &start) in run.rows.iter().enumerate() {
-                corners[2 * row][axis] = Lanes::load(column, start + along) * inverse;
-                corners[2 * row + 1][axis] = Lanes::load(column, start + along + 1) * inverse;
-            }
+        Shape {
+            weights: edge_weights(self.lattice, slot),
+            scale: Lanes::load(&self.lattice.volume, slot) * scale,
         }
-        let mut edges = [[corners[0]; 4]; 3];
-        for d in 0..3 {
-            for edge in 0..4 {
-                let near = EDGES[d][edge];
-                edges[d][edge] = lanes::sub(corners[near + (1 << d)], corners[near]);
-            }
-        }
-        edges
     }
 
     /// Adds the pull of every edge to the nodes at its ends.
@@ -282,14 +242,68 @@ struct Shape {
     scale: Lanes,
 }
 
+/// Mean deformation gradient of every voxel of a lattice with dry edge `edge` (m).
+pub(crate) fn gradients(lattice: &Lattice, edge: f64, positions: &[f64]) -> Vec<Matrix3<f64>> {
+    let mut all = Vec::with_capacity(lattice.voxel_count());
+    for run in &lattice.runs {
+        for along in (0..run.len).step_by(WIDTH) {
+            let weights = edge_weights(lattice, run.slot + along);
+            let f = mean_gradient(&edges_of(edge, positions, run, along), &weights);
+            for lane in 0..WIDTH.min(run.len - along) {
+                all.push(Matrix3::from_fn(|axis, d| f[d][axis].0[lane]));
+            }
+        }
+    }
+    all
+}
+
+/// Weights of the four edges along each direction: the volume means of their
+/// bilinear functions over each voxel's gel.
+#[inline(always)]
+fn edge_weights(lattice: &Lattice, slot: usize) -> [[Lanes; 4]; 3] {
+    let one = Lanes::splat(1.0);
+    let mut weights = [[one; 4]; 3];
+    for d in 0..3 {
+        let [low, high] = OTHERS[d];
+        let a = Lanes::load(&lattice.first[low], slot);
+        let b = Lanes::load(&lattice.first[high], slot);
+        let ab = Lanes::load(&lattice.mixed[d], slot);
+        weights[d] = [one - a - b + ab, a - ab, b - ab, ab];
+    }
+    weights
+}
+
+/// The twelve edges of a group of voxels, by direction, over the dry edge.
+#[inline(always)]
+fn edges_of(edge: f64, values: &[f64], run: &Run, along: usize) -> [[Vector; 4]; 3] {
+    let inverse = Lanes::splat(1.0 / edge);
+    let stride = values.len() / 3;
+    let mut corners = [[inverse; 3]; 8];
+    for axis in 0..3 {
+        let column = &values[axis * stride..(axis + 1) * stride];
+        for (row, &start) in run.rows.iter().enumerate() {
+            corners[2 * row][axis] = Lanes::load(column, start + along) * inverse;
+            corners[2 * row + 1][axis] = Lanes::load(column, start + along + 1) * inverse;
+        }
+    }
+    let mut edges = [[corners[0]; 4]; 3];
+    for d in 0..3 {
+        for edge in 0..4 {
+            let near = EDGES[d][edge];
+            edges[d][edge] = lanes::sub(corners[near + (1 << d)], corners[near]);
+        }
+    }
+    edges
+}
+
 /// The weighted mean of each direction's edges: F by columns.
 #[inline(always)]
-fn mean_gradient(edges: &[[Vector; 4]; 3], shape: &Shape) -> [Vector; 3] {
+fn mean_gradient(edges: &[[Vector; 4]; 3], weights: &[[Lanes; 4]; 3]) -> [Vector; 3] {
     let mut f = [edges[0][0]; 3];
     for d in 0..3 {
-        f[d] = lanes::scale(edges[d][0], shape.weights[d][0]);
+        f[d] = lanes::scale(edges[d][0], weights[d][0]);
         for edge in 1..4 {
-            f[d] = lanes::add(f[d], lanes::scale(edges[d][edge], shape.weights[d][edge]));
+            f[d] = lanes::add(f[d], lanes::scale(edges[d][edge], weights[d][edge]));
         }
     }
     f

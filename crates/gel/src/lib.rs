@@ -8,7 +8,10 @@ mod equilibrium;
 mod lanes;
 mod lattice;
 mod obstacle;
+mod relaxation;
 mod rigid;
+mod self_contact;
+mod stress;
 mod thermodynamics;
 
 pub use bead::Bead;
@@ -19,4 +22,6 @@ pub use datasheet::{
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use lattice::Lattice;
 pub use obstacle::Obstacle;
+pub use relaxation::{Push, Relaxation};
+pub use stress::{Bond, StressField, asphericity};
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

@@ -32,6 +32,11 @@ pub(crate) struct Gap {
 }
 
 impl Obstacle {
+    /// Distance of a point to the surface (m), negative inside.
+    pub fn distance(&self, place: &Vector) -> f64 {
+        self.gap(place).distance
+    }
+
     #[inline]
     pub(crate) fn gap(&self, place: &Vector) -> Gap {
         match self {

@@ -1,5 +1,7 @@
 //! Scenes, coupled swelling marches, studies and run folders.
 
+mod check;
+mod coupling;
 mod folder;
 mod outcome;
 mod run;
@@ -8,6 +10,7 @@ mod statistics;
 mod study;
 
 pub use bedswell_grains::{Grading, SizeNumbers};
+pub use check::{CheckLine, checks};
 pub use folder::{FolderError, RunSummary, prepare_run_folder, write_run_folder};
 pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};

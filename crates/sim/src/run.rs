@@ -1,3 +1,4 @@
+use crate::coupling::{DryBed, march};
 use crate::{PackOutcome, Scene};
 use thiserror::Error;
 
@@ -35,6 +36,9 @@ pub enum RunError {
 /// # Errors
 /// When the soil cannot be packed as asked or a state leaves the model.
 pub fn run_pack(scene: &Scene, pack: u64, observer: &mut dyn Observer) -> Result<PackOutcome, RunError> {
-    let _ = (scene, pack, observer);
-    Err(RunError::Packing("the coupled march is not built yet".into()))
+    let gel = scene.swelling_gel();
+    // Grains bear the lid's stress and, next to a bead, a good part of its modulus.
+    let stress = scene.bed.lid_stress.max(0.3 * gel.moduli().shear);
+    let bed = DryBed::build(scene, pack, stress)?;
+    march(scene, &gel, bed, pack, observer)
 }

@@ -82,7 +82,8 @@ impl Lattice {
             }
             column
         };
-        let skin = Skin::new(across, &cells, &node_at);
+        let voxel_at = voxels.iter().copied().zip(0..).collect();
+        let skin = Skin::new(across, &cells, &voxel_at, &node_at);
         Self {
             across,
             runs,
@@ -127,6 +128,11 @@ impl Lattice {
         self.skin.len()
     }
 
+    /// Dry area that each contact point stands for (voxel edges squared).
+    pub fn skin_point_area(&self) -> f64 {
+        self.skin.area
+    }
+
     /// Place of a node relative to the ball's centre (voxel edges).
     pub fn node_offset(&self, node: usize) -> [f64; 3] {
         self.nodes[node].map(|c| f64::from(c) - 0.5 * self.across as f64)
@@ -155,6 +161,12 @@ impl Lattice {
     }
 
     /// The eight nodes of a voxel, x fastest.
+    pub(crate) fn corners_of(&self, voxel: usize) -> [usize; 8] {
+        let run = self.runs.partition_point(|run| run.voxel <= voxel) - 1;
+        Self::corners(&self.runs[run], voxel - self.runs[run].voxel)
+    }
+
+    /// The eight nodes of the voxel that lies `along` a run, x fastest.
     pub(crate) fn corners(run: &Run, along: usize) -> [usize; 8] {
         let [a, b, c, d] = run.rows.map(|row| row + along);
         [a, a + 1, b, b + 1, c, c + 1, d, d + 1]

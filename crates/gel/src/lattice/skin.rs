@@ -22,6 +22,8 @@ pub(crate) struct Skin {
     pub(crate) direction: Vec<[f64; 3]>,
     /// Dry area of every point (voxel edges squared).
     pub(crate) area: f64,
+    /// The voxel that carries each point.
+    pub(crate) host: Vec<u32>,
     /// Where each point's terms begin.
     start: Vec<u32>,
     node: Vec<u32>,
@@ -29,11 +31,17 @@ pub(crate) struct Skin {
 }
 
 impl Skin {
-    pub(super) fn new(across: usize, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) -> Self {
+    pub(super) fn new(
+        across: usize,
+        cells: &HashMap<[u16; 3], CutCell>,
+        voxel_at: &HashMap<[u16; 3], u32>,
+        node_at: &NodeIndex,
+    ) -> Self {
         let half = 0.5 * across as f64;
         let direction = directions(across);
         let mut skin = Self {
             area: 4.0 * PI * half * half / direction.len() as f64,
+            host: Vec::with_capacity(direction.len()),
             start: vec![0],
             node: Vec::new(),
             weight: Vec::new(),
@@ -41,7 +49,9 @@ impl Skin {
         };
         for point in 0..skin.direction.len() {
             let place = skin.direction[point].map(|c| half * (1.0 + c));
-            for (node, weight) in combination(place, host(place, cells), node_at) {
+            let voxel = host(place, cells);
+            skin.host.push(voxel_at[&voxel]);
+            for (node, weight) in combination(place, voxel, node_at) {
                 skin.node.push(node as u32);
                 skin.weight.push(weight);
             }

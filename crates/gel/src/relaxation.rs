@@ -1,0 +1,186 @@
+use crate::bead::Bead;
+use crate::contact::{self, Contacts, skin_position};
+use crate::elastic::{Elastic, Linearisation};
+use crate::equilibrium::{PENALTY, dot};
+use crate::obstacle::Obstacle;
+use crate::thermodynamics::Gel;
+use bedswell_geometry::{Matrix, Vector};
+
+/// A bead on its way to rest together with movable obstacles, by damped explicit
+/// steps of unit time. Node masses are fictitious and follow the stiffness, so that
+/// the steps are stable; only the rest they lead to is real.
+#[derive(Clone, Debug)]
+pub struct Relaxation {
+    bead: Bead,
+    velocities: Vec<f64>,
+    /// Net force on each node with the opposite sign: the energy's gradient (N).
+    gradient: Vec<f64>,
+    /// One per node.
+    masses: Vec<f64>,
+    contacts: Contacts,
+    smallest_volume_ratio: f64,
+    largest_contact_force: f64,
+    contact_sum: Vector,
+}
+
+/// What one skin point does to an obstacle.
+#[derive(Clone, Copy, Debug)]
+pub struct Push {
+    /// Index of the obstacle.
+    pub obstacle: usize,
+    /// Force on it (N).
+    pub force: Vector,
+    /// Where it acts (m).
+    pub position: Vector,
+    /// Stiffness of the contact (N/m).
+    pub stiffness: f64,
+}
+
+/// Node mass over the largest stiffness of the node's own block. A voxel's volume
+/// term acts on eight nodes as one: its frequency² is at most eight times that of one
+/// node, and unit steps are stable below 4.
+const MASS_FACTOR: f64 = 2.0;
+
+impl Relaxation {
+    /// A bead at rest.
+    pub fn new(bead: Bead) -> Self {
+        let values = bead.positions.len();
+        Self {
+            velocities: vec![0.0; values],
+            gradient: vec![0.0; values],
+            masses: vec![1.0; values / 3],
+            contacts: Contacts::default(),
+            smallest_volume_ratio: f64::INFINITY,
+            largest_contact_force: 0.0,
+            contact_sum: Vector::zeros(),
+            bead,
+        }
+    }
+
+    /// The bead.
+    pub fn bead(&self) -> &Bead {
+        &self.bead
+    }
+
+    /// Grows the bead about its centre.
+    pub fn grow(&mut self, by: f64) {
+        self.bead.scale(by);
+    }
+
+    /// Finds the skin points within `reach` (m) of an obstacle and renews the node
+    /// masses. The obstacles' indices must not change over the march.
+    pub fn renew(&mut self, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
+        let size = gel.free_stretch() * self.bead.voxel_edge();
+        let lattice = self.bead.shared_lattice();
+        self.contacts.area = lattice.skin.area * size * size;
+        self.contacts.penalty = PENALTY * gel.moduli().plane_strain() / size;
+        self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
+        let mut state = Linearisation::default();
+        let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
+        elastic.linearise(&self.bead.positions, false, &mut state);
+        let mut blocks = vec![Matrix::zeros(); lattice.stride()];
+        elastic.add_diagonal_blocks(&state, &mut blocks);
+        // All points within reach count, so that none turns out too light for the
+        // contact it is about to make.
+        contact::add_possible_blocks(&self.contacts, &lattice.skin, &mut blocks);
+        for (mass, block) in self.masses.iter_mut().zip(&blocks) {
+            *mass = MASS_FACTOR * block.symmetric_eigenvalues().max().max(f64::MIN_POSITIVE);
+        }
+    }
+
+    /// Net forces on the nodes, and what the skin does to the obstacles.
+    pub fn compute_forces(&mut self, gel: &Gel, obstacles: &[Obstacle], mut push: impl FnMut(Push)) {
+        self.gradient.fill(0.0);
+        let lattice = self.bead.shared_lattice();
+        let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
+        self.smallest_volume_ratio = elastic.add_gradient(&self.bead.positions, &mut self.gradient);
+        let stiffness = self.contacts.penalty * self.contacts.area;
+        let mut sums = vec![Vector::zeros(); obstacles.len()];
+        self.contacts.push(
+            &lattice.skin,
+            &self.bead.positions,
+            obstacles,
+            &mut self.gradient,
+            |obstacle, force, position| {
+                sums[obstacle] -= force;
+                push(Push { obstacle, force: -force, position, stiffness });
+            },
+        );
+        self.largest_contact_force = sums.iter().map(Vector::norm).fold(0.0, f64::max);
+        self.contact_sum = sums.iter().sum();
+    }
+
+    /// Moves the nodes by one step. `damping` is the share of each force component
+    /// that is turned against the velocity (local non-viscous damping, Cundall 1987,
+    /// from memory). Returns the longest move of a node along an axis (m).
+    pub fn advance(&mut self, damping: f64) -> f64 {
+        let stride = self.masses.len();
+        let mut longest = 0.0_f64;
+        for axis in 0..3 {
+            let range = axis * stride..(axis + 1) * stride;
+            let (x, v) = (&mut self.bead.positions[range.clone()], &mut self.velocities[range.clone()]);
+            for (((x, v), g), m) in x.iter_mut().zip(v).zip(&self.gradient[range]).zip(&self.masses) {
+                let force = -g;
+                let share = if force * *v > 0.0 { 1.0 - damping } else { 1.0 + damping };
+                *v += share * force / m;
+                *x += *v;
+                longest = longest.max(v.abs());
+            }
+        }
+        longest
+    }
+
+    /// Moves each pressing point's pressure into its multiplier, so that the pressure
+    /// no longer needs the penetration it took.
+    pub fn correct_pressures(&mut self, obstacles: &[Obstacle]) {
+        let lattice = self.bead.shared_lattice();
+        self.contacts.update_multipliers(&lattice.skin, &self.bead.positions, obstacles);
+    }
+
+    /// Norm of the net nodal forces over the largest contact force, or over G R²
+    /// while nothing touches.
+    pub fn residual(&self, gel: &Gel) -> f64 {
+        dot(&self.gradient, &self.gradient).sqrt() / self.force_scale(gel)
+    }
+
+    /// Net contact force on the bead over its largest contact force.
+    pub fn balance(&self, gel: &Gel) -> f64 {
+        self.contact_sum.norm() / self.force_scale(gel)
+    }
+
+    /// Largest force on one obstacle (N).
+    pub fn largest_contact_force(&self) -> f64 {
+        self.largest_contact_force
+    }
+
+    /// The bead's force on each obstacle (N).
+    pub fn contact_forces(&self, obstacles: &[Obstacle]) -> Vec<Vector> {
+        let lattice = self.bead.shared_lattice();
+        self.contacts.forces(&lattice.skin, &self.bead.positions, obstacles)
+    }
+
+    /// The smallest voxel volume ratio to dry; at or below 1 the state is void.
+    pub fn smallest_volume_ratio(&self) -> f64 {
+        self.smallest_volume_ratio
+    }
+
+    /// Points of the skin that press, as positions (m) and pressures (Pa).
+    pub fn pressures(&self, obstacles: &[Obstacle]) -> Vec<(Vector, f64)> {
+        let lattice = self.bead.shared_lattice();
+        self.contacts
+            .pairs
+            .iter()
+            .filter_map(|pair| {
+                let place = skin_position(&lattice.skin, &self.bead.positions, pair.point as usize);
+                let distance = obstacles[pair.obstacle as usize].gap(&place).distance;
+                let pressure = pair.multiplier - self.contacts.penalty * distance;
+                (pressure > 0.0).then_some((place, pressure))
+            })
+            .collect()
+    }
+
+    fn force_scale(&self, gel: &Gel) -> f64 {
+        let rest = gel.moduli().shear * (gel.free_stretch() * self.bead.dry_radius()).powi(2);
+        self.largest_contact_force.max(1e-3 * rest)
+    }
+}

@@ -1,0 +1,132 @@
+use crate::{BeadAmount, RunError, Scene, SoilGrading};
+use bedswell_geometry::{Cell, Sphere, Stream, Vector, stream};
+use bedswell_grains::{
+    Assembly, ContactLaw, Grading, Lid, PackRequest, Sides, beads_for_dose, pack,
+};
+use rand::RngExt;
+
+/// Overlap of a typical contact over the grain diameter under the stress at hand:
+/// the strongest stay below a thousandth.
+const OVERLAP: f64 = 1e-4;
+/// Purposes of a pack's random streams.
+const PACKING: u64 = 0;
+
+/// A bed before its beads swell: the grains, and where the dry beads lie.
+pub(crate) struct DryBed {
+    /// The grains alone.
+    pub(crate) grains: Assembly,
+    /// Centres of the dry beads (m).
+    pub(crate) beads: Vec<Vector>,
+    /// Pore fraction, the dry beads counted as solid.
+    pub(crate) porosity: f64,
+    /// Mass fraction of the grading left out as fines.
+    pub(crate) fines_left_out: f64,
+}
+
+impl DryBed {
+    /// Builds pack number `number` of a scene. `stress` (Pa) is the largest that the
+    /// grains will typically bear; their stiffness follows from it.
+    pub(crate) fn build(scene: &Scene, number: u64, stress: f64) -> Result<Self, RunError> {
+        let mut random = stream(scene.seed, &[number, PACKING]);
+        let (cell, spheres, beads, porosity, fines_left_out) = match &scene.soil.grading {
+            SoilGrading::Spheres { spheres, size, periodic } => {
+                let cell = Cell { size: Vector::from(*size), periodic: [*periodic, *periodic, false] };
+                let beads = place_beads(scene, &cell, spheres, &mut random)?;
+                let solid = spheres.iter().map(Sphere::volume).sum::<f64>()
+                    + beads.len() as f64 * bedswell_geometry::volume_of_radius(0.5 * scene.beads.dry_diameter);
+                (cell, spheres.clone(), beads, 1.0 - solid / cell.volume(), 0.0)
+            }
+            _ => random_bed(scene, &mut random)?,
+        };
+        let lid = if scene.bed.fixed_grains { Lid::Fixed } else { Lid::Stress(scene.bed.lid_stress) };
+        let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction);
+        let mut grains = Assembly::new(cell, &spheres, law, lid).map_err(packing)?;
+        grains.held = scene.bed.fixed_grains;
+        Ok(Self { grains, beads, porosity, fines_left_out })
+    }
+}
+
+type Parts = (Cell, Vec<Sphere>, Vec<Vector>, f64, f64);
+
+fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
+    let grading = match &scene.soil.grading {
+        SoilGrading::Sieves { openings, percent_passing, fines_cutoff } => {
+            Grading::from_sieves(openings, percent_passing, *fines_cutoff)
+        }
+        SoilGrading::Lognormal { median, spread, fines_cutoff } => {
+            Grading::lognormal(*median, *spread, *fines_cutoff)
+        }
+        SoilGrading::Spheres { .. } => return Err(RunError::Packing("listed spheres are not packed".into())),
+    }
+    .map_err(packing)?;
+    let diameters = grading.packed.sample(scene.bed.grains);
+    let count = match scene.beads.amount {
+        BeadAmount::Count(count) => count,
+        BeadAmount::Dose(dose) => {
+            let (bead, density) = (scene.beads.dry_diameter, scene.gel.dry_density);
+            beads_for_dose(dose, bead, density, &diameters, scene.soil.density).map_err(packing)?
+        }
+        BeadAmount::At(_) => {
+            return Err(RunError::Packing(
+                "bead centres can only be given among listed spheres; give a count or a dose".into(),
+            ));
+        }
+    };
+    let request = PackRequest {
+        grains: diameters,
+        beads: count,
+        bead_diameter: scene.beads.dry_diameter,
+        porosity: scene.bed.porosity,
+        lid_stress: scene.bed.lid_stress,
+        friction: scene.soil.friction,
+        sides: Sides::FloorAndLid,
+    };
+    let packed = pack(&request, random).map_err(packing)?;
+    let beads = packed.beads().iter().map(|bead| bead.centre).collect();
+    Ok((packed.assembly.cell, packed.grains(), beads, packed.report.porosity, grading.left_out))
+}
+
+/// Beads at their given places, or at random where they fit among listed spheres.
+fn place_beads(
+    scene: &Scene,
+    cell: &Cell,
+    spheres: &[Sphere],
+    random: &mut Stream,
+) -> Result<Vec<Vector>, RunError> {
+    const TRIES: usize = 100_000;
+    let radius = 0.5 * scene.beads.dry_diameter;
+    let count = match &scene.beads.amount {
+        BeadAmount::At(centres) => return Ok(centres.iter().map(|centre| Vector::from(*centre)).collect()),
+        BeadAmount::Count(count) => *count,
+        BeadAmount::Dose(dose) => {
+            let diameters: Vec<f64> = spheres.iter().map(|sphere| 2.0 * sphere.radius).collect();
+            beads_for_dose(*dose, 2.0 * radius, scene.gel.dry_density, &diameters, scene.soil.density)
+                .map_err(packing)?
+        }
+    };
+    let mut beads: Vec<Vector> = Vec::new();
+    for _ in 0..TRIES {
+        if beads.len() == count {
+            break;
+        }
+        let place = Vector::from_fn(|axis, _| random.random_range(radius..cell.size[axis] - radius));
+        let clear = |centre: &Vector, reach: f64| cell.separation(&place, centre).norm() > reach;
+        if spheres.iter().all(|sphere| clear(&sphere.centre, sphere.radius + radius))
+            && beads.iter().all(|bead| clear(bead, 2.0 * radius))
+        {
+            beads.push(place);
+        }
+    }
+    if beads.len() < count {
+        return Err(RunError::Packing(format!(
+            "only {} of {count} beads of {} m found a place among the listed spheres: give fewer or smaller beads, or their centres",
+            beads.len(),
+            2.0 * radius
+        )));
+    }
+    Ok(beads)
+}
+
+fn packing(error: impl std::fmt::Display) -> RunError {
+    RunError::Packing(error.to_string())
+}

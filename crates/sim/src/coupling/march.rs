@@ -1,0 +1,228 @@
+use super::bed::DryBed;
+use super::measure::{self, Watch};
+use super::neighbourhood::Neighbourhood;
+use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene};
+use bedswell_gel::{Bead, Gel, Lattice, Relaxation};
+use bedswell_geometry::Vector;
+use std::sync::Arc;
+
+/// Stretch at which the march starts: the mixing energy ends at the dry state.
+const FIRST_STRETCH: f64 = 1.05;
+/// Steps over which the free stretch rises by one increment.
+const RAMP_STEPS: usize = 60;
+/// Share of each force component that is turned against the motion.
+const DAMPING: f64 = 0.4;
+/// Steps between looks at the residuals.
+const LOOK: usize = 10;
+/// Skin points within this many swollen voxel edges of an obstacle are followed.
+const REACH: f64 = 0.5;
+/// Largest residual (grains, gel) of a recorded state on the way.
+const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 1500 };
+/// The same of the end state.
+const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000 };
+/// Times that the end state's contact pressures are corrected for penetration.
+const CORRECTIONS: usize = 2;
+
+/// When a state counts as at rest.
+#[derive(Clone, Copy, Debug)]
+struct Target {
+    grains: f64,
+    gel: f64,
+    balance: f64,
+    /// Steps after which the search is given up.
+    steps: usize,
+}
+
+/// Takes a pack from dry to joint equilibrium of grains, lid and beads.
+pub(crate) fn march(
+    scene: &Scene,
+    gel: &Gel,
+    bed: DryBed,
+    number: u64,
+    observer: &mut dyn Observer,
+) -> Result<PackOutcome, RunError> {
+    let before = bed.grains.spheres();
+    let mut march = March::new(scene, &bed);
+    let watch = Watch { scene, gel, number, lid_before: bed.grains.cell.size.z };
+    let free = gel.free_stretch();
+    let start = FIRST_STRETCH.min(free);
+    let count = scene.march.increments;
+    let mut history = Vec::with_capacity(count);
+    let mut stretch = start;
+    for increment in 1..=count {
+        let next = start * (free / start).powf(increment as f64 / count as f64);
+        let stage = if increment == count { *gel } else { gel.limited_to(next) };
+        march.swell(gel, stretch, next);
+        stretch = next;
+        let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
+        let corrections = if increment == count { CORRECTIONS } else { 1 };
+        march.settle(&stage, target, corrections).map_err(|reason| RunError::March { increment, reason })?;
+        measure::guard(&march.beads, &march.around, &march.grains)
+            .map_err(|reason| RunError::March { increment, reason })?;
+        let step = watch.step(increment, &stage, &march.beads, &march.grains, march.quality(&stage));
+        observer.step(&step, count);
+        history.push(step);
+    }
+    let after = march.grains.centres.iter();
+    let positions = before
+        .iter()
+        .zip(after)
+        .map(|(grain, after)| GrainRecord {
+            diameter_m: 2.0 * grain.radius,
+            before_m: grain.centre.into(),
+            after_m: (grain.centre + march.grains.cell.separation(&grain.centre, after)).into(),
+        })
+        .collect();
+    Ok(PackOutcome {
+        pack: number,
+        grains: before.len(),
+        porosity: bed.porosity,
+        fines_left_out: bed.fines_left_out,
+        heave_m: march.grains.cell.size.z - watch.lid_before,
+        contact_number: march.grains.contact_number(),
+        beads: watch.beads(gel, &march.beads, &march.around),
+        quality: march.quality(gel),
+        history,
+        positions,
+    })
+}
+
+/// Grains and beads in motion.
+struct March {
+    grains: Assembly,
+    beads: Vec<Relaxation>,
+    around: Vec<Neighbourhood>,
+    /// Distance moved since contacts were last looked for (m).
+    travel: f64,
+}
+
+use bedswell_grains::Assembly;
+
+impl March {
+    fn new(scene: &Scene, bed: &DryBed) -> Self {
+        let lattice = Arc::new(Lattice::new(scene.beads.across));
+        let radius = 0.5 * scene.beads.dry_diameter;
+        let bead = |centre: &Vector| Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, FIRST_STRETCH));
+        Self {
+            grains: bed.grains.clone(),
+            beads: bed.beads.iter().map(bead).collect(),
+            around: vec![Neighbourhood::default(); bed.beads.len()],
+            travel: f64::INFINITY,
+        }
+    }
+
+    /// Raises the free stretch from one value to the next.
+    fn swell(&mut self, gel: &Gel, from: f64, to: f64) {
+        let growth = (to / from).powf(1.0 / RAMP_STEPS as f64);
+        let mut stretch = from;
+        for _ in 0..RAMP_STEPS {
+            stretch *= growth;
+            let stage = gel.limited_to(stretch);
+            for bead in &mut self.beads {
+                bead.grow(growth);
+                self.travel += (growth - 1.0) * bead.bead().extent();
+            }
+            self.step(&stage);
+        }
+        // The last stretch is not a product of rounded factors.
+        self.travel = f64::INFINITY;
+    }
+
+    /// Steps until grains, lid and beads are at rest.
+    fn settle(&mut self, gel: &Gel, target: Target, corrections: usize) -> Result<(), String> {
+        for correction in 0..=corrections {
+            let last = correction == corrections;
+            let loose = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, ..target };
+            self.rest(gel, if last { target } else { loose })?;
+            if !last {
+                for (bead, around) in self.beads.iter_mut().zip(&self.around) {
+                    bead.correct_pressures(&around.obstacles);
+                }
+            }
+        }
+        Ok(())
+    }
+
+    fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
+        for step in 0..target.steps {
+            self.forces(gel);
+            if step % LOOK == 0 {
+                let quality = self.rest_quality(gel);
+                if quality.grain_residual <= target.grains
+                    && quality.gel_residual <= target.gel
+                    && quality.bead_balance <= target.balance
+                {
+                    return Ok(());
+                }
+                if let Some(bead) = self.beads.iter().position(|bead| !(bead.smallest_volume_ratio() > 1.0)) {
+                    return Err(format!(
+                        "a voxel of bead {bead} was pressed out of water; take more increments or a smaller lid stress"
+                    ));
+                }
+            }
+            self.advance();
+        }
+        let quality = self.rest_quality(gel);
+        Err(format!(
+            "no joint equilibrium after {} steps: net force on a grain {:.1e} of the mean contact force (allowed {:.0e}), in the gel {:.1e} (allowed {:.0e}), on a bead {:.1e} (allowed {:.0e}); take more increments",
+            target.steps,
+            quality.grain_residual,
+            target.grains,
+            quality.gel_residual,
+            target.gel,
+            quality.bead_balance,
+            target.balance
+        ))
+    }
+
+    fn step(&mut self, gel: &Gel) {
+        self.forces(gel);
+        self.advance();
+    }
+
+    fn forces(&mut self, gel: &Gel) {
+        let size = gel.free_stretch() * self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
+        let reach = REACH * size;
+        if self.travel > 0.5 * reach {
+            self.travel = 0.0;
+            for (bead, around) in self.beads.iter_mut().zip(&mut self.around) {
+                around.extend(bead, &self.grains, 2.0 * reach);
+                bead.renew(gel, &around.obstacles, reach);
+            }
+        }
+        self.grains.compute_contacts();
+        for (bead, around) in self.beads.iter_mut().zip(&mut self.around) {
+            around.update(bead, &self.grains);
+            let grains = &mut self.grains;
+            bead.compute_forces(gel, &around.obstacles, |push| around.pass_on(push, grains));
+        }
+    }
+
+    fn advance(&mut self) {
+        let mut longest = 0.0_f64;
+        for bead in &mut self.beads {
+            longest = longest.max(bead.advance(DAMPING));
+        }
+        self.grains.advance(DAMPING);
+        let fastest = self.grains.velocities.iter().map(Vector::norm_squared).fold(0.0, f64::max).sqrt();
+        self.travel += 1.8 * longest + fastest;
+    }
+
+    /// How well the state is at rest, after `forces`.
+    fn rest_quality(&self, gel: &Gel) -> Quality {
+        let rest = self.grains.rest();
+        let worst = |value: &dyn Fn(&Relaxation) -> f64| self.beads.iter().map(value).fold(0.0, f64::max);
+        let moving = !self.grains.held && rest.largest_net_force > 0.0;
+        Quality {
+            grain_residual: if moving { rest.residual().max(rest.lid_unbalance) } else { 0.0 },
+            gel_residual: worst(&|bead| bead.residual(gel)),
+            bead_balance: worst(&|bead| bead.balance(gel)),
+            swallowed: 0.0,
+            overlap: rest.deepest_overlap,
+        }
+    }
+
+    fn quality(&self, gel: &Gel) -> Quality {
+        Quality { swallowed: measure::swallowed(&self.beads, &self.around), ..self.rest_quality(gel) }
+    }
+}

@@ -1,0 +1,148 @@
+use super::neighbourhood::Neighbourhood;
+use crate::{BeadOutcome, Quality, Scene, Step, tear_probability};
+use bedswell_gel::{Gel, Relaxation, StressField, asphericity, uptake_of_volume_ratio};
+use bedswell_geometry::{Vector, stream};
+use bedswell_grains::Assembly;
+use rand::RngExt;
+
+/// Share of the beads' volume inside grains above which a state is void.
+const SWALLOWED: f64 = 5e-3;
+/// Purpose of the random stream that draws each bead's own strength.
+const STRENGTH: u64 = 1;
+
+/// What a run's states are measured with.
+pub(super) struct Watch<'a> {
+    pub(super) scene: &'a Scene,
+    pub(super) gel: &'a Gel,
+    pub(super) number: u64,
+    /// Height of the lid over the dry bed (m).
+    pub(super) lid_before: f64,
+}
+
+impl Watch<'_> {
+    /// The state after an increment.
+    pub(super) fn step(
+        &self,
+        increment: usize,
+        stage: &Gel,
+        beads: &[Relaxation],
+        grains: &Assembly,
+        quality: Quality,
+    ) -> Step {
+        let count = beads.len().max(1) as f64;
+        let mut step = Step {
+            increment,
+            free_stretch: stage.free_stretch(),
+            uptake_g_per_g: 0.0,
+            heave_m: grains.cell.size.z - self.lid_before,
+            tension_q99_pa: 0.0,
+            tear_probability: 0.0,
+            quality,
+        };
+        for bead in beads {
+            let field = StressField::of(bead.bead(), stage);
+            step.uptake_g_per_g += self.uptake(bead, &field) / count;
+            step.tension_q99_pa += field.tension_quantile(0.99) / count;
+            step.tear_probability += self.tear_probability(&field) / count;
+        }
+        step
+    }
+
+    /// What became of the beads.
+    pub(super) fn beads(&self, gel: &Gel, beads: &[Relaxation], around: &[Neighbourhood]) -> Vec<BeadOutcome> {
+        beads
+            .iter()
+            .zip(around)
+            .enumerate()
+            .map(|(index, (bead, around))| {
+                let field = StressField::of(bead.bead(), gel);
+                let (largest_tension_pa, voxel) = field.largest_tension();
+                let half = 0.5 * bead.bead().lattice().across() as f64;
+                let forces: Vec<f64> =
+                    bead.contact_forces(&around.obstacles).iter().map(Vector::norm).collect();
+                let tear_probability = self.tear_probability(&field);
+                let strength: f64 = stream(self.scene.seed, &[self.number, STRENGTH, index as u64]).random();
+                BeadOutcome {
+                    uptake_g_per_g: self.uptake(bead, &field),
+                    volume_ratio: field.volume.iter().sum::<f64>() / field.free_volume.iter().sum::<f64>(),
+                    mean_pressure_pa: field.mean_pressure(),
+                    largest_tension_pa,
+                    largest_tension_at: bead.bead().lattice().voxel_offset(voxel).map(|c| c / half),
+                    tension_q99_pa: field.tension_quantile(0.99),
+                    compression_q999_pa: field.compression_quantile(0.999),
+                    largest_contact_force_n: forces.iter().copied().fold(0.0, f64::max),
+                    contacts: forces.iter().filter(|force| **force > 0.0).count(),
+                    asphericity: asphericity(bead.bead(), &field),
+                    tear_probability,
+                    torn: strength < tear_probability,
+                }
+            })
+            .collect()
+    }
+
+    fn uptake(&self, bead: &Relaxation, field: &StressField) -> f64 {
+        let dry = bead.bead().dry_volume();
+        uptake_of_volume_ratio(field.volume.iter().sum::<f64>() / dry, self.scene.gel.dry_density)
+    }
+
+    fn tear_probability(&self, field: &StressField) -> f64 {
+        // Volumes are those of the free-swollen gel in the scene's water, also on the way.
+        let scale = self.gel.free_volume_ratio() / field.reference_volume_ratio;
+        let volumes: Vec<f64> = field.free_volume.iter().map(|v| v * scale).collect();
+        let tensions: Vec<f64> = field.principal.iter().map(|p| p[0]).collect();
+        tear_probability(&volumes, &tensions, &self.scene.strength)
+    }
+}
+
+/// Stops a march whose state the model does not cover.
+pub(super) fn guard(beads: &[Relaxation], around: &[Neighbourhood], grains: &Assembly) -> Result<(), String> {
+    for (index, bead) in beads.iter().enumerate() {
+        let width = 2.0 * bead.bead().extent();
+        for axis in 0..2 {
+            if grains.cell.periodic[axis] && width > 0.9 * grains.cell.size[axis] {
+                return Err(format!(
+                    "bead {index} has grown to {width:.3e} m and meets its own image in a cell {:.3e} m wide: give the bed more grains",
+                    grains.cell.size[axis]
+                ));
+            }
+        }
+        if let Some(place) = bead.bead().self_contact() {
+            return Err(format!(
+                "bead {index} would have to press on itself behind a grain, at ({:.3e}, {:.3e}, {:.3e}) m; such contact is not modelled: lower the lid stress or take a stiffer gel",
+                place.x, place.y, place.z
+            ));
+        }
+    }
+    let share = swallowed(beads, around);
+    if share > SWALLOWED {
+        return Err(format!(
+            "{:.2} % of the gel lies inside grains: the state is void; take more increments or more voxels across",
+            100.0 * share
+        ));
+    }
+    Ok(())
+}
+
+/// Share of the beads' volume that lies inside grains: what the skin has penetrated,
+/// and whole voxels that a grain has swallowed.
+pub(super) fn swallowed(beads: &[Relaxation], around: &[Neighbourhood]) -> f64 {
+    let mut inside = 0.0;
+    let mut total = 0.0;
+    for (bead, around) in beads.iter().zip(around) {
+        let bead = bead.bead();
+        let size = (bead.volume() / bead.dry_volume()).cbrt() * bead.voxel_edge();
+        let depth = |place: &Vector| around.obstacles.iter().map(|o| -o.distance(place)).fold(0.0, f64::max);
+        let area = bead.lattice().skin_point_area() * size * size;
+        for point in 0..bead.lattice().skin_point_count() {
+            inside += area * depth(&bead.skin_point(point)).min(size);
+        }
+        for voxel in 0..bead.lattice().voxel_count() {
+            if depth(&bead.voxel_centre(voxel)) > size {
+                inside += size.powi(3);
+            }
+        }
+        total += bead.volume();
+    }
+    if total > 0.0 { inside / total } else { 0.0 }
+}
+

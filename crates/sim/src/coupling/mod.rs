@@ -1,0 +1,10 @@
+//! Where grains and gel meet: the dry bed, the march to joint equilibrium, and what
+//! is measured on the way.
+
+mod bed;
+mod march;
+mod measure;
+mod neighbourhood;
+
+pub(crate) use bed::DryBed;
+pub(crate) use march::march;
