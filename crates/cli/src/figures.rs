@@ -15,38 +15,42 @@ pub(crate) fn digits(value: f64) -> String {
     format!("{value:.decimals$}")
 }
 
-/// A length (m) in µm, mm, cm or m.
+/// A length (m) in m, mm or µm.
 pub(crate) fn length(metres: f64) -> String {
-    scaled(metres, &[(1.0, "m"), (1e-2, "cm"), (1e-3, "mm"), (1e-6, "µm")])
+    scaled(metres, &[(1.0, 1.0, "m"), (1e-4, 1e-3, "mm"), (0.0, 1e-6, "µm")])
 }
 
-/// A stress (Pa) in Pa, kPa or MPa.
+/// A stress (Pa) in MPa, kPa or Pa.
 pub(crate) fn stress(pascals: f64) -> String {
-    scaled(pascals, &[(1e6, "MPa"), (1e3, "kPa"), (1.0, "Pa")])
+    scaled(pascals, &[(1e6, 1e6, "MPa"), (1e2, 1e3, "kPa"), (0.0, 1.0, "Pa")])
 }
 
 /// A force (N) in N, mN or µN.
 pub(crate) fn force(newtons: f64) -> String {
-    scaled(newtons, &[(1.0, "N"), (1e-3, "mN"), (1e-6, "µN")])
+    scaled(newtons, &[(1.0, 1.0, "N"), (1e-4, 1e-3, "mN"), (0.0, 1e-6, "µN")])
 }
 
-/// A duration (s) in s, min or h.
-pub(crate) fn duration(seconds: f64) -> String {
-    scaled(seconds, &[(3600.0, "h"), (60.0, "min"), (1.0, "s")])
-}
-
-/// Memory (bytes) in MB or GB.
-pub(crate) fn memory(bytes: f64) -> String {
-    scaled(bytes, &[(1e9, "GB"), (1e6, "MB")])
-}
-
-/// In the largest unit of which there is at least one, else in the smallest.
-fn scaled(value: f64, units: &[(f64, &str)]) -> String {
-    let fits = |(scale, _): &&(f64, &str)| value.abs() >= *scale;
-    match units.iter().find(fits).or(units.last()) {
-        Some((scale, unit)) => format!("{} {unit}", digits(value / scale)),
+/// In the first unit, given as (least value, size, name), whose least value is reached.
+fn scaled(value: f64, units: &[(f64, f64, &str)]) -> String {
+    match units.iter().find(|(least, ..)| value.abs() >= *least) {
+        Some((_, size, name)) => format!("{} {name}", digits(value / size)),
         None => digits(value),
     }
+}
+
+/// A duration (s) as one says it: whole seconds, minutes, or hours with a decimal.
+pub(crate) fn duration(seconds: f64) -> String {
+    match seconds {
+        ..1.0 => "1 s".into(),
+        ..90.0 => format!("{seconds:.0} s"),
+        ..5400.0 => format!("{:.0} min", seconds / 60.0),
+        _ => format!("{:.1} h", seconds / 3600.0),
+    }
+}
+
+/// Memory (bytes) as one says it, in MB or GB.
+pub(crate) fn memory(bytes: f64) -> String {
+    if bytes < 1e9 { format!("{:.0} MB", bytes / 1e6) } else { format!("{:.1} GB", bytes / 1e9) }
 }
 
 /// A mean and its interval, each in words by `show`.
@@ -68,9 +72,11 @@ mod tests {
         assert_eq!(digits(123.4), "123");
         assert_eq!(digits(2.345e-7), "2.35e-7");
         assert_eq!(length(5.04e-3), "5.04 mm");
-        assert_eq!(length(0.15), "15.0 cm");
+        assert_eq!(length(0.9e-3), "0.900 mm");
+        assert_eq!(length(0.0), "0 µm");
         assert_eq!(stress(-2300.0), "-2.30 kPa");
-        assert_eq!(force(3.21e-4), "321 µN");
-        assert_eq!(duration(90.0), "1.50 min");
+        assert_eq!(stress(300.0), "0.300 kPa");
+        assert_eq!(force(3.21e-4), "0.321 mN");
+        assert_eq!(duration(600.0), "10 min");
     }
 }

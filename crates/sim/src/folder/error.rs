@@ -12,6 +12,19 @@ pub enum FolderError {
         /// What the system says.
         source: std::io::Error,
     },
+    /// A study could not write any further.
+    #[error(
+        "cannot write {path}: {source}; {kept} finished packs are kept: make room and run the same command again",
+        path = path.display()
+    )]
+    Interrupted {
+        /// The file.
+        path: PathBuf,
+        /// What the system says.
+        source: std::io::Error,
+        /// Packs that are safe in the journal.
+        kept: u64,
+    },
     /// The folder is somebody else's.
     #[error("{path} holds {what}; choose a new or an empty folder with --out", path = path.display())]
     Occupied {
@@ -44,5 +57,13 @@ impl FolderError {
     pub(crate) fn write(path: &Path) -> impl FnOnce(std::io::Error) -> Self {
         let path = path.to_owned();
         move |source| Self::Write { path, source }
+    }
+
+    /// The same, once a study has packs to lose.
+    pub(crate) fn keeping(self, kept: u64) -> Self {
+        match self {
+            Self::Write { path, source } => Self::Interrupted { path, source, kept },
+            other => other,
+        }
     }
 }

@@ -54,6 +54,7 @@ pub fn run_study(
 ) -> Result<StudySummary, FolderError> {
     let fingerprint = fingerprint(study.levels.iter().map(|level| &level.scene));
     let (mut journal, rows) = open_folder(study, folder, &fingerprint)?;
+    let rows_kept = rows.len() as u64;
     let mut plan = Plan::new(study);
     for row in rows.into_iter().filter(|row| row.pack < study.packs) {
         plan.record(row);
@@ -66,9 +67,10 @@ pub fn run_study(
         .build()
         .map_err(|error| FolderError::write(folder)(std::io::Error::other(error)))?;
     let plan = Mutex::new(plan);
-    let mut unlisted = 0;
+    let (mut kept, mut unlisted) = (rows_kept, 0);
     let mut keep = |row: Row| -> Result<(), FolderError> {
-        journal.append(&row)?;
+        journal.append(&row).map_err(|error| error.keeping(kept))?;
+        kept += 1;
         if let PackEnd::Failed(reason) = &row.end {
             observer.failed(row.level, row.pack, reason);
         }
@@ -80,28 +82,32 @@ pub fn run_study(
         unlisted += 1;
         if unlisted > done / 32 {
             unlisted = 0;
-            outcomes_table(study, &plan).write(folder, "outcomes", false)?;
+            outcomes_table(study, &plan)
+                .write(folder, "outcomes", false)
+                .map_err(|error| error.keeping(kept))?;
         }
         Ok(())
     };
     let (sender, receiver) = channel();
-    let kept = pool.in_place_scope(|scope| {
+    let listened = pool.in_place_scope(|scope| {
         for _ in 0..options.threads.max(1) {
             let (sender, plan) = (sender.clone(), &plan);
             scope.spawn(move |_| work(study, plan, runner, &sender));
         }
         drop(sender);
-        let kept = receiver.iter().try_for_each(&mut keep);
+        let listened = receiver.iter().try_for_each(&mut keep);
         // The workers stop at their next pack once nobody listens.
         drop(receiver);
-        kept
+        listened
     });
-    kept?;
+    listened?;
 
     let plan = lock(&plan);
-    outcomes_table(study, &plan).write(folder, "outcomes", options.csv)?;
     let summary = summarise(study, &plan, &fingerprint);
-    write_json(&folder.join("summary.json"), &summary)?;
+    outcomes_table(study, &plan)
+        .write(folder, "outcomes", options.csv)
+        .and_then(|()| write_json(&folder.join("summary.json"), &summary))
+        .map_err(|error| error.keeping(kept))?;
     Ok(summary)
 }
 

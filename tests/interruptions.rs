@@ -1,0 +1,78 @@
+//! A study may be stopped at any moment, by a kill or a full disk: finished packs
+//! survive and the end is the same.
+
+use crate::support::{COMMAND, TestEnv, ended, quick_scene};
+use std::process::{Command, Stdio};
+use std::time::{Duration, Instant};
+
+const STUDY: [&str; 6] = ["study", "scene.toml", "--packs", "5", "--csv", "--out"];
+
+fn results(env: &TestEnv, folder: &str) -> [Vec<u8>; 3] {
+    ["outcomes.parquet", "outcomes.csv", "summary.json"].map(|name| env.read(&format!("{folder}/{name}")))
+}
+
+fn uninterrupted(env: &TestEnv) -> [Vec<u8>; 3] {
+    env.write("scene.toml", &quick_scene());
+    env.succeed(&[&STUDY[..], &["whole", "--threads", "1"]].concat());
+    results(env, "whole")
+}
+
+fn rows(env: &TestEnv, folder: &str) -> usize {
+    let journal = std::fs::read_to_string(env.path(&format!("{folder}/journal.txt"))).unwrap_or_default();
+    journal.lines().count().saturating_sub(1)
+}
+
+#[test]
+fn a_killed_study_resumes_to_the_same_bits() {
+    let env = TestEnv::new();
+    let whole = uninterrupted(&env);
+    let mut child = env
+        .command(&[&STUDY[..], &["killed", "--threads", "2"]].concat())
+        .stdout(Stdio::null())
+        .stderr(Stdio::null())
+        .spawn()
+        .unwrap();
+    let start = Instant::now();
+    while rows(&env, "killed") < 2 {
+        assert!(start.elapsed() < Duration::from_secs(300), "no pack finished");
+        std::thread::sleep(Duration::from_millis(5));
+    }
+    child.kill().unwrap(); // SIGKILL
+    child.wait().unwrap();
+    let survived = rows(&env, "killed");
+    assert!((2..5).contains(&survived), "{survived} rows survived");
+
+    let resumed = env.succeed(&[&STUDY[..], &["killed", "--threads", "2"]].concat());
+    assert!(resumed.stderr.contains("carrying on"), "{}", resumed.stderr);
+    assert!(results(&env, "killed") == whole, "the resumed study differs");
+}
+
+#[test]
+fn finished_packs_survive_a_full_disk() {
+    let env = TestEnv::new();
+    let whole = uninterrupted(&env);
+    // No file may grow past a few blocks; the signal is ignored so that writing fails as on a full disk.
+    let script =
+        format!("trap '' XFSZ; ulimit -f 3; exec \"{COMMAND}\" {} full --threads 1", STUDY.join(" "));
+    let output = Command::new("sh").args(["-c", &script]).current_dir(env.path(".")).output().unwrap();
+    let ended = ended(output);
+    assert_eq!(ended.code, 3, "{}", ended.stderr);
+    assert!(ended.stderr.contains("cannot write full/"), "{}", ended.stderr);
+    assert!(ended.stderr.contains("finished packs are kept"), "{}", ended.stderr);
+    assert!(rows(&env, "full") >= 1, "no row survived");
+    assert!(!env.files().iter().any(|path| path.extension().is_some_and(|end| end == "part")));
+
+    env.succeed(&[&STUDY[..], &["full"]].concat());
+    assert!(results(&env, "full") == whole, "the resumed study differs");
+}
+
+#[test]
+fn a_full_disk_leaves_no_half_written_run() {
+    let env = TestEnv::new();
+    env.write("scene.toml", &quick_scene());
+    let script = format!("trap '' XFSZ; ulimit -f 3; exec \"{COMMAND}\" run scene.toml --out out");
+    let output = Command::new("sh").args(["-c", &script]).current_dir(env.path(".")).output().unwrap();
+    let ended = ended(output);
+    assert_eq!(ended.code, 3, "{}", ended.stderr);
+    assert_eq!(env.files(), [env.path("scene.toml")]);
+}
