@@ -15,7 +15,7 @@ fn describe_tells_soil_gel_load_cost_and_cautions() {
     let env = TestEnv::new();
     env.write("scene.toml", &quick_scene());
     let text = env.succeed(&["describe", "scene.toml"]).stdout;
-    for word in ["120 grains", "D10", "Cu", "Cc", "voxels", "90.0 g/g", "6.00 kPa", "of the gel's modulus"] {
+    for word in ["120 grains", "D10", "Cu", "Cc", "voxels", "90.0 g/g", "5.80 kPa", "of the gel's modulus"] {
         assert!(text.contains(word), "no {word:?} in\n{text}");
     }
     for caution in ["children and animals", "Dust", "slippery", "regulated", "estimates"] {

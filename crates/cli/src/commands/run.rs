@@ -3,6 +3,7 @@ use crate::exit::Exit;
 use crate::figures::{digits, force, length, stress};
 use crate::output::{say, say_json};
 use crate::progress::Progress;
+use anyhow::Context;
 use bedswell_sim::{RunSummary, prepare_run_folder, read_scene, run_pack, write_run_folder};
 use std::path::Path;
 
@@ -10,7 +11,8 @@ use std::path::Path;
 pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
     let scene = read_scene(&arguments.scene)?;
     prepare_run_folder(&arguments.out, &scene, arguments.pack)?;
-    let outcome = run_pack(&scene, arguments.pack, &mut Progress::new("increments"))?;
+    let outcome = run_pack(&scene, arguments.pack, &mut Progress::new("increments"))
+        .with_context(|| arguments.scene.display().to_string())?;
     let summary = write_run_folder(&arguments.out, &scene, &outcome, arguments.csv)?;
     if json {
         say_json(&summary)?;

@@ -14,6 +14,12 @@ const OVERLAP_TOLERANCE: f64 = 1e-3;
 
 /// Refuses a scene whose parts do not fit together.
 pub(crate) fn check_limits(document: &Node, scene: &Scene) -> Result<(), SceneError> {
+    let listed = matches!(scene.soil.grading, SoilGrading::Spheres { .. });
+    if !listed && scene.bed.lid_stress <= 0.0 {
+        let key = if document.find("bed.depth").is_some() { "bed.depth" } else { "bed.lid_stress" };
+        return Err(entry(document, key)
+            .refuse("a random bed is made by pressing on it, so the load must be above zero"));
+    }
     check_porosity(document, scene)?;
     let estimate =
         scene.estimate().map_err(|error| entry(document, amount_key(scene)).refuse(error.to_string()))?;

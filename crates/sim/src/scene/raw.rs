@@ -37,9 +37,10 @@ pub(crate) fn read_document(path: &Path) -> Result<Node, SceneError> {
 /// Parses TOML text; `path` is for messages.
 pub(crate) fn parse_document(path: &Path, text: &str) -> Result<Node, SceneError> {
     let source = Source { file: path.into(), text };
-    let document = DeTable::parse(text).map_err(|error| SceneError::Syntax {
-        place: source.place(error.span().map_or(0, |span| span.start)),
-        message: error.message().to_owned(),
+    let document = DeTable::parse(text).map_err(|error| {
+        let place = source.place(error.span().map_or(0, |span| span.start));
+        let line = text.lines().nth(place.line - 1).unwrap_or_default().trim();
+        SceneError::Syntax { message: format!("{} in `{line}`", error.message()), place }
     })?;
     let place = source.place(0);
     Ok(Node { value: Value::Table(source.table(document.get_ref())), place })
