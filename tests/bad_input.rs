@@ -31,7 +31,7 @@ fn an_unknown_table() {
 
 #[test]
 fn a_key_given_twice() {
-    refused("porosity = 0.42", "grains = 121", &["duplicate key", "grains = 121"]);
+    refused("porosity = 0.40", "grains = 121", &["duplicate key", "grains = 121"]);
 }
 
 #[test]
@@ -126,11 +126,11 @@ fn fines_of_unknown_size() {
 #[test]
 fn a_porosity_out_of_reach_for_the_grading() {
     refused(
-        "porosity = 0.42",
+        "porosity = 0.40",
         "porosity = 0.2",
         &["bed.porosity = 0.2", "out of reach for this grading", "0.29 to 0.47"],
     );
-    refused("porosity = 0.42", "porosity = 0.7", &["bed.porosity = 0.7", "out of reach for this grading"]);
+    refused("porosity = 0.40", "porosity = 0.7", &["bed.porosity = 0.7", "out of reach for this grading"]);
 }
 
 #[test]

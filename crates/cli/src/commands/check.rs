@@ -44,21 +44,21 @@ pub(super) fn check(json: bool) -> anyhow::Result<Exit> {
 
 fn heading(subject: &str) -> String {
     format!(
-        "\n{:<62} {:>15} {:>15} {:>10} {:>8}  source",
-        subject, "value", "reference", "deviation", "allowed"
+        "\n{subject:<68} {:>15} {:>15} {:>10} {:>8}  {:<7}  source",
+        "value", "reference", "deviation", "allowed", "verdict"
     )
 }
 
 fn row(line: &CheckLine) -> String {
     format!(
-        "{:<62} {:>15} {:>15} {:>10} {:>8}  {}{}",
+        "{:<68} {:>15} {:>15} {:>10} {:>8}  {:<7}  {}",
         line.quantity,
         nine_digits(line.value),
         nine_digits(line.reference),
         format!("{:+.1e}", line.deviation()),
         format!("{:.0e}", line.tolerance),
+        if line.passes() { "agrees" } else { "differs" },
         line.source,
-        if line.passes() { "" } else { "   <- does not agree" }
     )
 }
 

@@ -1,4 +1,7 @@
+mod contact;
+mod lattice;
 mod line;
+mod packing;
 mod soil;
 mod statistics;
 mod thermodynamics;
@@ -7,7 +10,8 @@ pub use line::CheckLine;
 
 /// Every check, in the order of the table; each recomputes its value when called.
 pub fn checks() -> Vec<fn() -> CheckLine> {
-    [thermodynamics::LINES, soil::LINES, statistics::LINES].concat()
+    [thermodynamics::LINES, lattice::LINES, contact::LINES, soil::LINES, packing::LINES, statistics::LINES]
+        .concat()
 }
 
 #[cfg(test)]
