@@ -172,6 +172,19 @@ impl Assembly {
             / self.cell.volume()
     }
 
+    /// Keeps the first `count` grains, with the contacts among them, and takes the
+    /// others out.
+    pub fn truncate(&mut self, count: usize) {
+        self.centres.truncate(count);
+        self.radii.truncate(count);
+        self.velocities.truncate(count);
+        self.spins.truncate(count);
+        self.forces.truncate(count);
+        self.torques.truncate(count);
+        self.stiffnesses.truncate(count);
+        self.contacts.truncate(count);
+    }
+
     /// Stops all motion; contact history stays.
     pub fn stop(&mut self) {
         self.velocities.fill(Vector::zeros());

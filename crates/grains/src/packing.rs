@@ -26,6 +26,9 @@ pub struct PackRequest {
     /// Pores over the whole cell from floor to lid, the dry beads counted as solid.
     /// `None`: as loose as the preparation leaves it.
     pub porosity: Option<f64>,
+    /// Hand out a bed looser than this friction can hold as it is, its grains apart
+    /// from each other, instead of refusing it: the lid's stress will close it.
+    pub accept_loose: bool,
     /// Vertical stress under the lid (Pa), above 0.
     pub lid_stress: f64,
     /// Friction coefficient during preparation. With none the pack is compressed to
@@ -77,8 +80,9 @@ pub const POROSITY_TOLERANCE: f64 = 0.005;
 /// With a target porosity, random points at the target density are pushed apart
 /// without friction, then friction is switched on and the lid pressed down. As the
 /// lid closes the bed a little, looser starts are tried until the bed at rest has
-/// the porosity. Without a target the start is loose, and the lid collapses the bed
-/// to wherever friction stops it; without friction that is random close packing.
+/// the porosity; a bed too dense for random points is collapsed with less friction.
+/// Without a target the start is loose, and the lid collapses the bed to wherever
+/// friction stops it; without friction that is random close packing.
 ///
 /// Porosity is that of the whole cell. The floor and the lid hold the grains apart
 /// (Benenati & Brosilow 1962, from memory), so that the middle of the bed is a few
@@ -90,12 +94,12 @@ pub const POROSITY_TOLERANCE: f64 = 0.005;
 pub fn pack(request: &PackRequest, random: &mut Stream) -> Result<Pack, PackError> {
     let recipe = Recipe::new(request)?;
     let (assembly, steps) = match request.porosity {
-        Some(porosity) => pack_to_porosity(&recipe, porosity, random)?,
-        None if request.friction > 0.0 => recipe.collapse(LOOSE_START, random)?,
+        Some(porosity) => pack_to_porosity(&recipe, request, porosity, random)?,
+        None if request.friction > 0.0 => recipe.collapse(LOOSE_START, request.friction, random)?,
         None => recipe.compress_smooth(random)?,
     };
     let report = PackReport::new(&assembly, steps);
-    if !(report.rest.residual() < REST_REQUIRED) {
+    if report.stable && !at_rest(&assembly) {
         return Err(PackError::NotAtRest { residual: report.rest.residual(), steps });
     }
     Ok(Pack { assembly, grain_count: request.grains.len(), report })
@@ -104,64 +108,93 @@ pub fn pack(request: &PackRequest, random: &mut Stream) -> Result<Pack, PackErro
 /// Solid fraction of the loosest start: far below what grains at rest can have.
 const LOOSE_START: f64 = 0.4;
 
-/// Largest net force over mean contact force of a pack that is handed out.
-const REST_REQUIRED: f64 = 0.05;
+/// Largest net force over mean contact force of a pack that is handed out. Beds
+/// near their loosest rearrange for ever more slowly; every march that follows
+/// brings them closer to rest.
+const REST_REQUIRED: f64 = 0.2;
 
-/// Starts tried for one target.
+/// Starts, or frictions, tried for one target.
 const ATTEMPTS: usize = 6;
 
-fn pack_to_porosity(
-    recipe: &Recipe,
-    porosity: f64,
-    random: &mut Stream,
-) -> Result<(Assembly, usize), PackError> {
+fn pack_to_porosity(recipe: &Recipe, request: &PackRequest, porosity: f64, random: &mut Stream) -> Attempt {
     let target = 1.0 - porosity;
-    let hit = |grains: &Assembly| (grains.solid_fraction() - target).abs() < 0.8 * POROSITY_TOLERANCE;
-    let mut start = target;
-    let mut steps = 0;
-    for attempt in 0..ATTEMPTS {
-        let Some((mut grains, taken)) = recipe.spread(start, random)? else {
-            // Too dense for random points: come from the dense side.
-            return pack_from_dense(recipe, target, random);
-        };
-        steps += taken;
-        steps += if attempt == 0 { recipe.lock(&mut grains) } else { recipe.settle(&mut grains) };
-        if hit(&grains) && grains.rest().residual() < REST_REQUIRED {
-            return Ok((grains, steps));
-        }
-        start = (start - (grains.solid_fraction() - target).max(0.001)).min(target);
-        if start < LOOSE_START {
-            break;
-        }
-    }
-    let (loosest, _) = recipe.collapse(LOOSE_START, random)?;
-    let (densest, _) = recipe.compress_smooth(random)?;
-    Err(PackError::PorosityOutOfReach {
-        porosity,
-        densest: 1.0 - densest.solid_fraction(),
-        loosest: 1.0 - loosest.solid_fraction(),
-    })
-}
-
-/// Random close packing, opened to the target.
-fn pack_from_dense(
-    recipe: &Recipe,
-    target: f64,
-    random: &mut Stream,
-) -> Result<(Assembly, usize), PackError> {
-    let (mut grains, mut steps) = recipe.compress_smooth(random)?;
-    let densest = grains.solid_fraction();
-    if target < densest - 0.2 * POROSITY_TOLERANCE {
-        steps += recipe.open(&mut grains, target);
-    }
+    let Some((mut grains, mut steps)) = recipe.spread(target, random)? else {
+        return pack_densely(recipe, target, random);
+    };
+    let free = grains.clone();
     steps += recipe.lock(&mut grains);
-    if (grains.solid_fraction() - target).abs() < POROSITY_TOLERANCE {
+    if hits(&grains, target) {
         return Ok((grains, steps));
     }
-    let (loosest, _) = recipe.collapse(LOOSE_START, random)?;
-    Err(PackError::PorosityOutOfReach {
-        porosity: 1.0 - target,
-        densest: 1.0 - densest,
-        loosest: 1.0 - loosest.solid_fraction(),
-    })
+    if request.accept_loose {
+        return Ok((free, steps));
+    }
+    // Bracket the target by the start that closed too far and the loosest one.
+    let mut dense = (target, grains.solid_fraction());
+    let (loosest, taken) = recipe.collapse(LOOSE_START, recipe.friction, random)?;
+    steps += taken;
+    if hits(&loosest, target) {
+        return Ok((loosest, steps));
+    }
+    let mut loose = (LOOSE_START, loosest.solid_fraction());
+    for _ in 0..ATTEMPTS {
+        if loose.1 > target || dense.1 < target {
+            break;
+        }
+        let start = loose.0 + (dense.0 - loose.0) * (target - loose.1) / (dense.1 - loose.1);
+        let (grains, taken) = recipe.collapse(start, recipe.friction, random)?;
+        steps += taken;
+        if hits(&grains, target) {
+            return Ok((grains, steps));
+        }
+        let reached = (start, grains.solid_fraction());
+        if reached.1 > target { dense = reached } else { loose = reached }
+    }
+    let (densest, _) = recipe.compress_smooth(random)?;
+    Err(out_of_reach(target, densest.solid_fraction(), loosest.solid_fraction()))
+}
+
+/// A bed between random points that can still be pushed apart and random close
+/// packing: friction during the collapse is lowered until it fits.
+fn pack_densely(recipe: &Recipe, target: f64, random: &mut Stream) -> Attempt {
+    let (mut grains, mut steps) = recipe.compress_smooth(random)?;
+    steps += recipe.lock(&mut grains);
+    if hits(&grains, target) {
+        return Ok((grains, steps));
+    }
+    let densest = grains.solid_fraction();
+    let (mut smooth, mut rough) = (0.0, recipe.friction);
+    for _ in 0..ATTEMPTS {
+        if target > densest {
+            break;
+        }
+        let friction = 0.5 * (smooth + rough);
+        let (mut grains, taken) = recipe.collapse(DENSE_START * densest, friction, random)?;
+        steps += taken + recipe.lock(&mut grains);
+        if hits(&grains, target) {
+            return Ok((grains, steps));
+        }
+        if grains.solid_fraction() > target { smooth = friction } else { rough = friction }
+    }
+    let (loosest, _) = recipe.collapse(LOOSE_START, recipe.friction, random)?;
+    Err(out_of_reach(target, densest, loosest.solid_fraction()))
+}
+
+/// Start of a dense bed over random close packing: the densest random points that
+/// are quickly pushed apart.
+const DENSE_START: f64 = 0.95;
+
+/// A bed and the steps it took.
+type Attempt = Result<(Assembly, usize), PackError>;
+
+fn hits(grains: &Assembly, target: f64) -> bool {
+    (grains.solid_fraction() - target).abs() < 0.9 * POROSITY_TOLERANCE && at_rest(grains)
+}
+
+fn at_rest(grains: &Assembly) -> bool {
+    grains.rest().residual() < REST_REQUIRED
+}
+
+fn out_of_reach(target: f64, densest: f64, loosest: f64) -> PackError {
+    PackError::PorosityOutOfReach { porosity: 1.0 - target, densest: 1.0 - densest, loosest: 1.0 - loosest }
 }

@@ -230,6 +230,12 @@ impl ContactList {
         }
     }
 
+    pub(super) fn truncate(&mut self, count: usize) {
+        self.pairs.retain(|pair| (pair.b as usize) < count);
+        self.plates.retain(|touch| (touch.grain as usize) < count);
+        self.listed_centres.truncate(count);
+    }
+
     /// Whether a pair that is not listed could have come to touch.
     fn outdated(&self, grains: &Assembly) -> bool {
         if self.listed_centres.len() != grains.centres.len() {

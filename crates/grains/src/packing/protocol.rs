@@ -1,5 +1,5 @@
 use super::{PackError, PackRequest, Sides};
-use crate::assembly::{Assembly, Lid};
+use crate::assembly::{Assembly, AssemblyError, Lid};
 use crate::contact_law::ContactLaw;
 use bedswell_geometry::{Cell, Sphere, Stream, Vector, volume_of_radius};
 use rand::RngExt;
@@ -8,24 +8,27 @@ use rand::RngExt;
 pub(super) struct Recipe {
     radii: Vec<f64>,
     volume: f64,
-    friction: f64,
+    pub(super) friction: f64,
     stress: f64,
     sides: Sides,
 }
 
 /// Typical overlaps, over the diameter, of a march in stages: soft grains find
 /// their places in few steps, stiff ones then only settle.
-const STAGES: [f64; 3] = [1.0e-2, 1.0e-3, STIFF];
+const STAGES: [f64; 5] = [1.0e-2, 3.0e-3, 1.0e-3, 3.0e-4, STIFF];
 
 /// Typical overlap in the pack handed out; the deepest is some eight times it.
 const STIFF: f64 = 1.0e-4;
+
+/// Deepest overlap, over the smaller diameter, in the pack handed out.
+const DEEPEST_OVERLAP: f64 = 1.0e-3;
 
 /// Damping of a march that should rearrange the bed, and of one that should not.
 const LIVELY: f64 = 0.3;
 const SLUGGISH: f64 = 0.7;
 
 /// Narrowest and lowest cells, in diameters of the largest sphere.
-const WIDTHS: f64 = 3.0;
+const WIDTHS: f64 = 2.0;
 const HEIGHTS: f64 = 2.0;
 
 /// Starts below this solid fraction mix freely.
@@ -47,6 +50,8 @@ impl Recipe {
         if !(request.lid_stress.is_finite() && request.lid_stress > 0.0) {
             return Err(PackError::LidStress(request.lid_stress));
         }
+        let law = ContactLaw::for_stress(request.lid_stress, STIFF, request.friction);
+        law.check().map_err(AssemblyError::from)?;
         let radii: Vec<f64> = diameters.iter().map(|diameter| 0.5 * diameter).collect();
         let recipe = Self {
             volume: radii.iter().map(|&radius| volume_of_radius(radius)).sum(),
@@ -71,38 +76,55 @@ impl Recipe {
         Ok((grains.rest().deepest_overlap < FREE_OVERLAP).then_some((grains, steps)))
     }
 
-    /// A loose start that collapses under the lid.
-    pub(super) fn collapse(&self, solid: f64, random: &mut Stream) -> Result<(Assembly, usize), PackError> {
+    /// A start of the given solid fraction that collapses under the lid to wherever
+    /// `friction` stops it.
+    pub(super) fn collapse(
+        &self,
+        solid: f64,
+        friction: f64,
+        random: &mut Stream,
+    ) -> Result<(Assembly, usize), PackError> {
         let mut grains = self.deposit(solid, random)?;
-        let steps = separate(&mut grains) + self.settle(&mut grains);
-        Ok((grains, steps))
+        let freed = separate(&mut grains);
+        let settled = self.stages(&mut grains, friction, 1.0e-3);
+        Ok((grains, freed + settled))
     }
 
     /// A dilute start compressed without friction: random close packing.
     pub(super) fn compress_smooth(&self, random: &mut Stream) -> Result<(Assembly, usize), PackError> {
         let mut grains = self.deposit(DILUTE, random)?;
-        grains.lid = Lid::Stress(self.stress);
-        let steps = STAGES
-            .iter()
-            .map(|&overlap| {
-                grains.law = ContactLaw::for_stress(self.stress, overlap, 0.0);
-                march(&mut grains, LIVELY, 1.0e-2, 5_000)
-            })
-            .sum();
+        let steps = self.stages(&mut grains, 0.0, 1.0e-2);
         Ok((grains, steps))
     }
 
-    /// Friction on, lid down, and let the grains find their places.
-    pub(super) fn settle(&self, grains: &mut Assembly) -> usize {
+    /// Lid down, and let the grains find their places: soft first, then stiff.
+    fn stages(&self, grains: &mut Assembly, friction: f64, tolerance: f64) -> usize {
         grains.stop();
         grains.lid = Lid::Stress(self.stress);
-        STAGES
+        let steps: usize = STAGES
             .iter()
             .map(|&overlap| {
-                grains.law = ContactLaw::for_stress(self.stress, overlap, self.friction);
-                march(grains, LIVELY, 1.0e-3, 10_000)
+                grains.law = ContactLaw::for_stress(self.stress, overlap, friction);
+                march(grains, LIVELY, tolerance, if overlap > STIFF { 4_000 } else { 8_000 })
             })
-            .sum()
+            .sum();
+        steps + self.stiffen(grains, LIVELY, tolerance)
+    }
+
+    /// Stiffens grains that still overlap too deeply: in wide gradings a small one
+    /// can be caught between large ones.
+    fn stiffen(&self, grains: &mut Assembly, damping: f64, tolerance: f64) -> usize {
+        let (mut overlap, mut steps) = (STIFF, 0);
+        for _ in 0..3 {
+            let deepest = grains.rest().deepest_overlap;
+            if deepest < DEEPEST_OVERLAP {
+                break;
+            }
+            overlap *= 0.6 * DEEPEST_OVERLAP / deepest;
+            grains.law = ContactLaw::for_stress(self.stress, overlap, grains.law.friction);
+            steps += march(grains, damping, tolerance, 4_000);
+        }
+        steps
     }
 
     /// Friction on, lid down, and hold the grains where they are.
@@ -110,21 +132,7 @@ impl Recipe {
         grains.stop();
         grains.lid = Lid::Stress(self.stress);
         grains.law = ContactLaw::for_stress(self.stress, STIFF, self.friction);
-        march(grains, SLUGGISH, 1.0e-4, 3_000)
-    }
-
-    /// Stretches a pack to a lower solid fraction and frees its grains.
-    pub(super) fn open(&self, grains: &mut Assembly, solid: f64) -> usize {
-        let stretch = grains.solid_fraction() / solid;
-        let stretch = match self.sides {
-            Sides::FloorAndLid => Vector::new(1.0, 1.0, stretch),
-            Sides::Periodic => Vector::repeat(stretch.cbrt()),
-        };
-        grains.cell.size.component_mul_assign(&stretch);
-        grains.centres.iter_mut().for_each(|centre| centre.component_mul_assign(&stretch));
-        grains.stop();
-        grains.lid = Lid::Fixed;
-        separate(grains)
+        march(grains, SLUGGISH, 1.0e-4, 3_000) + self.stiffen(grains, SLUGGISH, 1.0e-4)
     }
 
     /// Spheres at random points of a cell with the given solid fraction.

@@ -1,4 +1,4 @@
-use crate::assembly::{Assembly, Rest};
+use crate::assembly::{Assembly, Lid, Rest};
 use std::f64::consts::PI;
 
 /// What a pack has come to.
@@ -11,6 +11,9 @@ pub struct PackReport {
     pub core_porosity: f64,
     /// Mean number of contacts of the grains that carry load.
     pub contact_number: f64,
+    /// Whether the grains carry the lid; `false` for a loose bed that the lid will
+    /// close.
+    pub stable: bool,
     /// How far from rest it is.
     pub rest: Rest,
     /// Steps taken to get there.
@@ -23,6 +26,7 @@ impl PackReport {
             porosity: 1.0 - assembly.solid_fraction(),
             core_porosity: core_porosity(assembly),
             contact_number: assembly.contact_number(),
+            stable: assembly.lid != Lid::Fixed,
             rest: assembly.rest(),
             steps,
         }
