@@ -145,33 +145,38 @@ fn a_squeezed_bed_let_go_only_loses_energy() {
 #[test]
 fn a_bed_under_its_lid_comes_to_rest_and_its_floor_carries_the_lid() {
     let stress = 1.0e3;
-    let law = ContactLaw::for_stress(stress, 1.0e-4, FRICTION);
-    let cell = Cell::with_floor_and_lid(Vector::new(0.008, 0.008, 0.012));
-    let mut grains = cloud(500, cell, ContactLaw::for_stress(stress, 1.0e-4, 0.0), Lid::Fixed);
-    for _ in 0..300 {
-        grains.compute_contacts();
-        grains.advance(0.3);
-    }
-    grains.stop();
-    grains.law = law;
-    grains.lid = Lid::Stress(stress);
-    let mut steps = 0;
-    loop {
-        grains.compute_contacts();
-        let rest = grains.rest();
-        if rest.mean_contact_force > 0.0 && rest.residual() < 1.0e-4 && rest.lid_unbalance < 1.0e-4 {
-            break;
+    // Stiff enough for overlaps of about 10⁻⁴ of the diameter.
+    let springs = ContactLaw::for_stress(stress, 1.0e-4, FRICTION);
+    let hertz = Normal::Hertz { effective_modulus: 1.5e6 * stress };
+    // Hertz contacts that barely touch are soft, and come to rest more slowly.
+    for (law, tolerance) in [(springs, 1.0e-4), (ContactLaw { normal: hertz, ..springs }, 5.0e-3)] {
+        let cell = Cell::with_floor_and_lid(Vector::new(0.008, 0.008, 0.012));
+        let mut grains = cloud(500, cell, springs.with_friction(0.0), Lid::Fixed);
+        for _ in 0..300 {
+            grains.compute_contacts();
+            grains.advance(0.3);
         }
-        grains.advance(0.7);
-        steps += 1;
-        assert!(steps < 20_000, "{rest:?}");
+        grains.stop();
+        grains.law = law;
+        grains.lid = Lid::Stress(stress);
+        let mut steps = 0;
+        loop {
+            grains.compute_contacts();
+            let rest = grains.rest();
+            if rest.mean_contact_force > 0.0 && rest.residual() < tolerance && rest.lid_unbalance < 1.0e-4 {
+                break;
+            }
+            grains.advance(0.7);
+            steps += 1;
+            assert!(steps < 20_000, "{law:?}: {rest:?}");
+        }
+        let floor: f64 = (grains.contacts().filter(|contact| contact.partner == Partner::Floor))
+            .map(|contact| contact.force)
+            .sum();
+        let load = stress * cell.size.x * cell.size.y;
+        assert_relative_eq!(floor, load, max_relative = 10.0 * tolerance);
+        assert!(grains.rest().deepest_overlap < 1.0e-3, "{law:?}: {:?}", grains.rest());
     }
-    let floor: f64 = (grains.contacts().filter(|contact| contact.partner == Partner::Floor))
-        .map(|contact| contact.force)
-        .sum();
-    let load = stress * cell.size.x * cell.size.y;
-    assert_relative_eq!(floor, load, max_relative = 1.0e-3);
-    assert!(grains.rest().deepest_overlap < 1.0e-3, "{:?}", grains.rest());
 }
 
 #[test]

@@ -2,7 +2,7 @@
 
 use bedswell_geometry::{Cell, offset, stream};
 use bedswell_grains::{
-    Grading, POROSITY_TOLERANCE, Pack, PackError, PackRequest, Partner, Sides, beads_for_dose, pack,
+    Grading, Normal, POROSITY_TOLERANCE, Pack, PackError, PackRequest, Partner, Sides, beads_for_dose, pack,
 };
 
 /// Equal grains with one small bead, at an ordinary porosity.
@@ -161,6 +161,25 @@ fn a_porosity_out_of_reach_is_refused_with_the_range() {
     }
     let loose = packed(&PackRequest { porosity: Some(0.50), accept_loose: true, ..bed() }, 1);
     assert!((loose.report.porosity - 0.50).abs() < POROSITY_TOLERANCE && !loose.report.stable);
+}
+
+#[test]
+fn twice_the_stiffness_leaves_a_collapsed_bed_as_it_is() {
+    let pack = packed(&PackRequest { porosity: None, friction: 0.3, ..bed() }, 1);
+    let mut grains = pack.assembly.clone();
+    let Normal::Linear { modulus } = grains.law.normal else { unreachable!("packs use springs") };
+    grains.law.normal = Normal::Linear { modulus: 2.0 * modulus };
+    for _ in 0..4_000 {
+        grains.compute_contacts();
+        grains.advance(0.7);
+    }
+    grains.compute_contacts();
+    let porosity = 1.0 - grains.solid_fraction();
+    assert!((porosity - pack.report.porosity).abs() < 1.0e-3, "{porosity}, {:?}", pack.report);
+    let (before, after) = (pack.report.contact_number, grains.contact_number());
+    assert!((after - before).abs() < 0.3, "{before} contacts become {after}");
+    let force = grains.rest().mean_contact_force / pack.report.rest.mean_contact_force;
+    assert!((force - 1.0).abs() < 0.1, "mean contact force changes by {force}");
 }
 
 #[test]
