@@ -1,4 +1,4 @@
-use crate::support::{TestEnv, quick_scene, replace_once, root};
+use crate::support::{TestEnv, fast_scene, quick_scene, replace_once, root};
 
 /// The scene with one thing changed is refused by `run` before anything is written; the
 /// message holds the line of the change and all of `words`.
@@ -285,10 +285,10 @@ fn an_output_folder_that_holds_something_else() {
 #[test]
 fn an_output_folder_that_holds_another_study() {
     let env = TestEnv::new();
-    env.write("scene.toml", &quick_scene());
-    env.succeed(&["study", "scene.toml", "--out", "out", "--packs", "1"]);
+    env.write_fast_scene("scene.toml");
+    env.succeed(&["study", "scene.toml", "--out", "out", "--packs", "2"]);
     let before = env.read("out/outcomes.parquet");
-    env.write("scene.toml", &replace_once(&quick_scene(), "seed = 1", "seed = 2"));
+    env.write("scene.toml", &replace_once(&fast_scene(), "seed = 4", "seed = 5"));
     env.refuse(&["study", "scene.toml", "--out", "out"], 3, &["out holds another study", "--out"]);
     env.refuse(&["run", "scene.toml", "--out", "out"], 3, &["out holds", "--out"]);
     assert_eq!(env.read("out/outcomes.parquet"), before);

@@ -1,4 +1,4 @@
-use crate::support::{TestEnv, quick_scene, root};
+use crate::support::{TestEnv, root};
 use serde_json::Value;
 use std::collections::BTreeSet;
 
@@ -24,9 +24,9 @@ fn blocks(language: &str) -> Vec<String> {
 #[test]
 fn every_key_of_both_summaries_is_explained() {
     let env = TestEnv::new();
-    env.write("scene.toml", &quick_scene());
-    env.succeed(&["run", "scene.toml", "--out", "run"]);
-    env.succeed(&["study", "scene.toml", "--out", "study", "--packs", "1"]);
+    env.write_fast_scene("scene.toml");
+    env.succeed(&["run", "scene.toml", "--out", "run", "--pack", "1"]);
+    env.succeed(&["study", "scene.toml", "--out", "study", "--packs", "2"]);
     let mut keys = BTreeSet::new();
     collect_keys(&env.json("run/summary.json"), &mut keys);
     collect_keys(&env.json("study/summary.json"), &mut keys);

@@ -12,8 +12,7 @@ pub(crate) fn root() -> &'static Path {
     Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/.."))
 }
 
-/// A scene that runs within a second or so: the default one with a small bed, a coarse
-/// bead and few increments.
+/// The default scene with a small bed, a coarse bead and few increments: seconds a pack.
 pub(crate) fn quick_scene() -> String {
     let text = fs::read_to_string(root().join("scenes/tree-pit.toml")).unwrap();
     [
@@ -23,6 +22,16 @@ pub(crate) fn quick_scene() -> String {
     ]
     .into_iter()
     .fold(text, |text, (from, to)| replace_once(&text, from, to))
+}
+
+/// A scene whose packs take a second each: a bead at random places among fixed spheres,
+/// where in some packs it finds no equilibrium. Its table is `bench-array.csv`.
+pub(crate) fn fast_scene() -> String {
+    let text = fs::read_to_string(root().join("scenes/bench-array.toml")).unwrap();
+    let centres = "centres = [[\"4 mm\", \"4 mm\", \"4 mm\"]]";
+    [(centres, "count = 1"), ("across = 16", "across = 10"), ("increments = 20", "increments = 10")]
+        .into_iter()
+        .fold(text, |text, (from, to)| replace_once(&text, from, to))
 }
 
 /// Replaces text that must be there.
@@ -54,6 +63,12 @@ impl TestEnv {
 
     pub(crate) fn write(&self, name: &str, text: &str) {
         fs::write(self.path(name), text).unwrap();
+    }
+
+    /// Writes the fast scene with its table.
+    pub(crate) fn write_fast_scene(&self, name: &str) {
+        self.write(name, &fast_scene());
+        fs::copy(root().join("scenes/bench-array.csv"), self.path("bench-array.csv")).unwrap();
     }
 
     pub(crate) fn read(&self, name: &str) -> Vec<u8> {

@@ -4,6 +4,8 @@ use bedswell_sim::Estimate;
 
 /// Three significant digits, without an exponent where that stays readable.
 pub(crate) fn digits(value: f64) -> String {
+    // Rounded first, so that 0.9999 becomes 1.00 and not 1.000.
+    let value: f64 = format!("{value:.2e}").parse().unwrap_or(value);
     if value == 0.0 {
         return "0".into();
     }
@@ -13,6 +15,11 @@ pub(crate) fn digits(value: f64) -> String {
     }
     let decimals = (2.0 - magnitude).max(0.0) as usize;
     format!("{value:.decimals$}")
+}
+
+/// A probability; one that no number of packs could tell from nought is not spelled out.
+pub(crate) fn probability(value: f64) -> String {
+    if 0.0 < value && value < 1e-4 { "below 0.0001".into() } else { digits(value) }
 }
 
 /// A length (m) in m, mm or µm.
@@ -70,6 +77,8 @@ mod tests {
         assert_eq!(digits(0.0), "0");
         assert_eq!(digits(0.04567), "0.0457");
         assert_eq!(digits(123.4), "123");
+        assert_eq!(digits(0.99999), "1.00");
+        assert_eq!(probability(3e-9), "below 0.0001");
         assert_eq!(digits(2.345e-7), "2.35e-7");
         assert_eq!(length(5.04e-3), "5.04 mm");
         assert_eq!(length(0.9e-3), "0.900 mm");

@@ -1,6 +1,6 @@
 use crate::args::Run;
 use crate::exit::Exit;
-use crate::figures::{digits, force, length, stress};
+use crate::figures::{digits, force, length, probability, stress};
 use crate::output::{say, say_json};
 use crate::progress::Progress;
 use anyhow::Context;
@@ -43,7 +43,7 @@ fn in_words(run: &RunSummary, folder: &Path) -> String {
             stress(bead.tension_q99_pa),
             stress(bead.largest_tension_pa),
             stress(bead.compression_q999_pa),
-            digits(bead.tear_probability),
+            probability(bead.tear_probability),
             if bead.torn { "; torn in this pack" } else { "" },
         );
     }

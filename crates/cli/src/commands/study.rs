@@ -1,6 +1,6 @@
 use crate::args::Study;
 use crate::exit::Exit;
-use crate::figures::{digits, estimate, length, stress};
+use crate::figures::{digits, estimate, length, probability, stress};
 use crate::output::{say, say_json};
 use crate::progress::Progress;
 use bedswell_sim::{LevelSummary, StudyOptions, StudySummary, read_study, run_pack, run_study};
@@ -50,7 +50,7 @@ fn level_in_words(level: &LevelSummary) -> String {
     let score = limits(level.tear_fraction_wilson_low, level.tear_fraction_wilson_high);
     let mut text = format!(
         "  tear probability  {}\n  torn beads        {} of {} in {} packs: {} {exact}; Wilson {score}\n",
-        estimate(level.tear_probability, digits),
+        estimate(level.tear_probability, probability),
         level.torn,
         level.beads,
         level.packs,
