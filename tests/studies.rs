@@ -37,10 +37,10 @@ fn a_study_of_a_factor_tells_every_level() {
     env.write("scene.toml", &quick_scene());
     env.write(
         "study.toml",
-        "scene = \"scene.toml\"\npacks = 2\n[factor]\nkey = \"bed.lid_stress\"\nvalues = [\"0.1 kPa\", \"0.3 kPa\"]\n",
+        "scene = \"scene.toml\"\npacks = 2\n[factor]\nkey = \"bed.lid_stress\"\nvalues = [\"0.3 kPa\", \"0.6 kPa\"]\n",
     );
     let text = env.succeed(&["study", "study.toml", "--out", "out"]).stdout;
-    assert!(text.contains("bed.lid_stress = 0.1 kPa") && text.contains("bed.lid_stress = 0.3 kPa"), "{text}");
+    assert!(text.contains("bed.lid_stress = 0.6 kPa") && text.contains("bed.lid_stress = 0.3 kPa"), "{text}");
     let summary = env.json("out/summary.json");
     let uptake = |level: usize| summary["levels"][level]["uptake_g_per_g"]["mean"].as_f64().unwrap();
     // More load, less water.

@@ -37,7 +37,7 @@ impl Scene {
             BeadAmount::Count(count) => text.line("count", count),
             BeadAmount::Dose(dose) => text.line("dose", with_unit(*dose, Kind::MassRatio)),
             BeadAmount::At(centres) => {
-                text.line("centres", list(centres.iter().map(|c| lengths(c))));
+                text.line("centres", list(centres.iter().map(lengths)));
             }
         }
         text.line("dry_diameter", with_unit(self.beads.dry_diameter, Kind::Length));
