@@ -260,6 +260,27 @@ fn a_factor_value_is_refused_at_its_line_in_the_study() {
 }
 
 #[test]
+fn a_study_where_a_scene_is_needed() {
+    let env = TestEnv::new();
+    env.write("study.toml", "packs = 3\nscene = \"scene.toml\"\n");
+    env.refuse(&["describe", "study.toml"], 2, &["study.toml, line 2", "this is a study"]);
+}
+
+#[test]
+fn a_study_that_names_no_scene_or_one_that_is_not_there() {
+    let env = TestEnv::new();
+    env.write("study.toml", "packs = 3\n");
+    env.refuse(&["study", "study.toml", "--out", "out"], 2, &["study.toml, line 1", "`scene` is missing"]);
+    env.write("study.toml", "packs = 3\nscene = \"nowhere.toml\"\n");
+    env.refuse(
+        &["study", "study.toml", "--out", "out"],
+        2,
+        &["study.toml, line 2", "cannot read nowhere.toml"],
+    );
+    assert!(!env.path("out").exists());
+}
+
+#[test]
 fn an_output_folder_that_cannot_be_written() {
     let env = TestEnv::new();
     env.write("scene.toml", &quick_scene());

@@ -27,6 +27,10 @@ pub fn read_scene(path: &Path) -> Result<Scene, SceneError> {
 
 /// Checks a scene that was read from `path` and perhaps altered since.
 pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneError> {
+    if let Some(node) = document.find("scene").filter(|node| matches!(node.value, Value::Text(_))) {
+        let entry = Entry { key: "scene".to_owned(), node };
+        return Err(entry.refuse("this is a study, which names a scene, where a scene itself is needed"));
+    }
     if let Value::Table(table) = &document.value {
         refuse_unknown("", table, &TABLES)?;
     }
