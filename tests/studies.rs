@@ -47,3 +47,18 @@ fn a_study_of_a_factor_tells_every_level() {
     assert!(uptake(0) > uptake(1), "{} {}", uptake(0), uptake(1));
     assert_eq!(summary["packs"], 4);
 }
+
+#[test]
+fn a_run_repeats_a_pack_of_a_study() {
+    let env = TestEnv::new();
+    env.write_fast_scene("scene.toml");
+    env.succeed(&["study", "scene.toml", "--out", "study", "--packs", "3", "--csv"]);
+    env.succeed(&["run", "study/scene.toml", "--out", "run", "--pack", "2"]);
+    let table = String::from_utf8(env.read("study/outcomes.csv")).unwrap();
+    let mut rows = table.lines().map(|row| row.split(',').collect::<Vec<_>>());
+    let names = rows.next().unwrap();
+    let column = names.iter().position(|name| *name == "uptake_g_per_g").unwrap();
+    let row = rows.find(|row| row[2] == "2").unwrap();
+    let repeated = env.json("run/summary.json")["beads"][0]["uptake_g_per_g"].as_f64().unwrap();
+    assert_eq!(row[column].parse::<f64>().unwrap().to_bits(), repeated.to_bits());
+}

