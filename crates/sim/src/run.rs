@@ -37,8 +37,8 @@ pub enum RunError {
 /// When the soil cannot be packed as asked or a state leaves the model.
 pub fn run_pack(scene: &Scene, pack: u64, observer: &mut dyn Observer) -> Result<PackOutcome, RunError> {
     let gel = scene.swelling_gel();
-    // Grains bear the lid's stress and, next to a bead, a good part of its modulus.
-    let stress = scene.bed.lid_stress.max(0.3 * gel.moduli().shear);
+    // Grains bear the lid's stress and, next to a bead, some of the gel's.
+    let stress = scene.bed.lid_stress.max(0.05 * gel.moduli().shear);
     let bed = DryBed::build(scene, pack, stress)?;
     march(scene, &gel, bed, pack, observer)
 }

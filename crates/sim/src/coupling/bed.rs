@@ -1,21 +1,26 @@
+use super::march::{DAMPING, FIRST_STRETCH};
 use crate::{BeadAmount, RunError, Scene, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Stream, Vector, stream};
-use bedswell_grains::{
-    Assembly, ContactLaw, Grading, Lid, PackRequest, Sides, beads_for_dose, pack,
-};
+use bedswell_grains::{Assembly, ContactLaw, Grading, Lid, PackRequest, Sides, beads_for_dose, pack};
 use rand::RngExt;
 
-/// Overlap of a typical contact over the grain diameter under the stress at hand:
-/// the strongest stay below a thousandth.
-const OVERLAP: f64 = 1e-4;
+/// Overlap of a typical contact over the grain diameter under the stress at hand.
+const OVERLAP: f64 = 3e-4;
+/// Growths of the hard beads, and the steps after each.
+const HARD_GROWTHS: usize = 5;
+const HARD_STEPS: usize = 400;
 /// Purposes of a pack's random streams.
 const PACKING: u64 = 0;
 
 /// A bed before its beads swell: the grains, and where the dry beads lie.
 pub(crate) struct DryBed {
-    /// The grains alone.
+    /// Height of the lid over the mixed dry bed (m).
+    pub(crate) lid: f64,
+    /// The grains of the mixed dry bed.
+    pub(crate) spheres: Vec<Sphere>,
+    /// The grains alone, as they lie when the march starts.
     pub(crate) grains: Assembly,
-    /// Centres of the dry beads (m).
+    /// Centres of the beads at the stretch where the march starts (m).
     pub(crate) beads: Vec<Vector>,
     /// Pore fraction, the dry beads counted as solid.
     pub(crate) porosity: f64,
@@ -33,7 +38,8 @@ impl DryBed {
                 let cell = Cell { size: Vector::from(*size), periodic: [*periodic, *periodic, false] };
                 let beads = place_beads(scene, &cell, spheres, &mut random)?;
                 let solid = spheres.iter().map(Sphere::volume).sum::<f64>()
-                    + beads.len() as f64 * bedswell_geometry::volume_of_radius(0.5 * scene.beads.dry_diameter);
+                    + beads.len() as f64
+                        * bedswell_geometry::volume_of_radius(0.5 * scene.beads.dry_diameter);
                 (cell, spheres.clone(), beads, 1.0 - solid / cell.volume(), 0.0)
             }
             _ => random_bed(scene, &mut random)?,
@@ -42,7 +48,8 @@ impl DryBed {
         let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction);
         let mut grains = Assembly::new(cell, &spheres, law, lid).map_err(packing)?;
         grains.held = scene.bed.fixed_grains;
-        Ok(Self { grains, beads, porosity, fines_left_out })
+        let beads = if grains.held { beads } else { grow_hard(&mut grains, &beads, scene)? };
+        Ok(Self { lid: cell.size.z, spheres, grains, beads, porosity, fines_left_out })
     }
 }
 
@@ -77,6 +84,7 @@ fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
         beads: count,
         bead_diameter: scene.beads.dry_diameter,
         porosity: scene.bed.porosity,
+        accept_loose: false,
         lid_stress: scene.bed.lid_stress,
         friction: scene.soil.friction,
         sides: Sides::FloorAndLid,
@@ -84,6 +92,31 @@ fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
     let packed = pack(&request, random).map_err(packing)?;
     let beads = packed.beads().iter().map(|bead| bead.centre).collect();
     Ok((packed.assembly.cell, packed.grains(), beads, packed.report.porosity, grading.left_out))
+}
+
+/// Grows the dry beads to the stretch at which the gel takes over. Up to there a
+/// bead is about as hard as a grain and moves like one.
+fn grow_hard(grains: &mut Assembly, beads: &[Vector], scene: &Scene) -> Result<Vec<Vector>, RunError> {
+    let count = grains.radii.len();
+    let mut mixed = grains.spheres();
+    mixed.extend(beads.iter().map(|&centre| Sphere { centre, radius: 0.0 }));
+    let mut cell = grains.cell;
+    for growth in 1..=HARD_GROWTHS {
+        let stretch = 1.0 + (FIRST_STRETCH - 1.0) * growth as f64 / HARD_GROWTHS as f64;
+        for bead in &mut mixed[count..] {
+            bead.radius = 0.5 * scene.beads.dry_diameter * stretch;
+        }
+        let mut together = Assembly::new(cell, &mixed, grains.law, grains.lid).map_err(packing)?;
+        for _ in 0..HARD_STEPS {
+            together.compute_contacts();
+            together.advance(DAMPING);
+        }
+        mixed = together.spheres();
+        cell = together.cell;
+    }
+    let beads = mixed.split_off(count);
+    *grains = Assembly::new(cell, &mixed, grains.law, grains.lid).map_err(packing)?;
+    Ok(beads.into_iter().map(|bead| bead.centre).collect())
 }
 
 /// Beads at their given places, or at random where they fit among listed spheres.

@@ -4,24 +4,31 @@ use super::neighbourhood::Neighbourhood;
 use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene};
 use bedswell_gel::{Bead, Gel, Lattice, Relaxation};
 use bedswell_geometry::Vector;
+use bedswell_grains::Assembly;
 use std::sync::Arc;
 
-/// Stretch at which the march starts: the mixing energy ends at the dry state.
-const FIRST_STRETCH: f64 = 1.05;
+/// Stretch at which the march starts. The mixing energy ends at the dry state, and
+/// a nearly dry gel is as hard as the grains' contacts.
+pub(super) const FIRST_STRETCH: f64 = 1.25;
 /// Steps over which the free stretch rises by one increment.
 const RAMP_STEPS: usize = 60;
-/// Share of each force component that is turned against the motion.
-const DAMPING: f64 = 0.4;
+/// Share of each force component on grains and lid that is turned against the motion.
+/// Little of it lets slow rearrangements come to their end soonest.
+pub(super) const DAMPING: f64 = 0.2;
+/// The same on the gel's nodes.
+const GEL_DAMPING: f64 = 0.4;
 /// Steps between looks at the residuals.
 const LOOK: usize = 10;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
-const REACH: f64 = 0.5;
+const REACH: f64 = 0.2;
 /// Largest residual (grains, gel) of a recorded state on the way.
-const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 1500 };
+const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
 /// The same of the end state.
-const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000 };
+const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 30_000, required: true };
 /// Times that the end state's contact pressures are corrected for penetration.
 const CORRECTIONS: usize = 2;
+/// Further corrections while too much gel lies inside grains.
+const FURTHER_CORRECTIONS: usize = 8;
 
 /// When a state counts as at rest.
 #[derive(Clone, Copy, Debug)]
@@ -31,6 +38,8 @@ struct Target {
     balance: f64,
     /// Steps after which the search is given up.
     steps: usize,
+    /// Giving up is a failure; otherwise the march goes on from where it is.
+    required: bool,
 }
 
 /// Takes a pack from dry to joint equilibrium of grains, lid and beads.
@@ -41,9 +50,9 @@ pub(crate) fn march(
     number: u64,
     observer: &mut dyn Observer,
 ) -> Result<PackOutcome, RunError> {
-    let before = bed.grains.spheres();
+    let before = &bed.spheres;
     let mut march = March::new(scene, &bed);
-    let watch = Watch { scene, gel, number, lid_before: bed.grains.cell.size.z };
+    let watch = Watch { scene, gel, number, lid_before: bed.lid };
     let free = gel.free_stretch();
     let start = FIRST_STRETCH.min(free);
     let count = scene.march.increments;
@@ -54,14 +63,14 @@ pub(crate) fn march(
         let stage = if increment == count { *gel } else { gel.limited_to(next) };
         march.swell(gel, stretch, next);
         stretch = next;
-        let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
-        let corrections = if increment == count { CORRECTIONS } else { 1 };
-        march.settle(&stage, target, corrections).map_err(|reason| RunError::March { increment, reason })?;
+        let settled = if increment == count { march.settle(&stage) } else { march.rest(&stage, ON_THE_WAY) };
+        settled.map_err(|reason| RunError::March { increment, reason })?;
         measure::guard(&march.beads, &march.around, &march.grains)
             .map_err(|reason| RunError::March { increment, reason })?;
         let step = watch.step(increment, &stage, &march.beads, &march.grains, march.quality(&stage));
         observer.step(&step, count);
         history.push(step);
+        march.correct_pressures();
     }
     let after = march.grains.centres.iter();
     let positions = before
@@ -96,13 +105,13 @@ struct March {
     travel: f64,
 }
 
-use bedswell_grains::Assembly;
-
 impl March {
     fn new(scene: &Scene, bed: &DryBed) -> Self {
         let lattice = Arc::new(Lattice::new(scene.beads.across));
         let radius = 0.5 * scene.beads.dry_diameter;
-        let bead = |centre: &Vector| Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, FIRST_STRETCH));
+        let bead = |centre: &Vector| {
+            Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, FIRST_STRETCH))
+        };
         Self {
             grains: bed.grains.clone(),
             beads: bed.beads.iter().map(bead).collect(),
@@ -128,19 +137,25 @@ impl March {
         self.travel = f64::INFINITY;
     }
 
-    /// Steps until grains, lid and beads are at rest.
-    fn settle(&mut self, gel: &Gel, target: Target, corrections: usize) -> Result<(), String> {
-        for correction in 0..=corrections {
-            let last = correction == corrections;
-            let loose = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, ..target };
-            self.rest(gel, if last { target } else { loose })?;
-            if !last {
-                for (bead, around) in self.beads.iter_mut().zip(&self.around) {
-                    bead.correct_pressures(&around.obstacles);
-                }
+    /// Steps until grains, lid and beads are at rest and hardly any gel is inside a
+    /// grain: the end of the march.
+    fn settle(&mut self, gel: &Gel) -> Result<(), String> {
+        for correction in 0.. {
+            let inside = measure::swallowed(&self.beads, &self.around);
+            let enough = correction >= CORRECTIONS && inside < 0.5 * measure::SWALLOWED_AT_THE_END;
+            if enough || correction == CORRECTIONS + FURTHER_CORRECTIONS {
+                break;
             }
+            self.rest(gel, ON_THE_WAY)?;
+            self.correct_pressures();
         }
-        Ok(())
+        self.rest(gel, AT_THE_END)
+    }
+
+    fn correct_pressures(&mut self) {
+        for (bead, around) in self.beads.iter_mut().zip(&self.around) {
+            bead.correct_pressures(&around.obstacles);
+        }
     }
 
     fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
@@ -162,6 +177,9 @@ impl March {
             }
             self.advance();
         }
+        if !target.required {
+            return Ok(());
+        }
         let quality = self.rest_quality(gel);
         Err(format!(
             "no joint equilibrium after {} steps: net force on a grain {:.1e} of the mean contact force (allowed {:.0e}), in the gel {:.1e} (allowed {:.0e}), on a bead {:.1e} (allowed {:.0e}); take more increments",
@@ -181,7 +199,8 @@ impl March {
     }
 
     fn forces(&mut self, gel: &Gel) {
-        let size = gel.free_stretch() * self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
+        let size =
+            gel.free_stretch() * self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
         let reach = REACH * size;
         if self.travel > 0.5 * reach {
             self.travel = 0.0;
@@ -201,7 +220,7 @@ impl March {
     fn advance(&mut self) {
         let mut longest = 0.0_f64;
         for bead in &mut self.beads {
-            longest = longest.max(bead.advance(DAMPING));
+            longest = longest.max(bead.advance(GEL_DAMPING));
         }
         self.grains.advance(DAMPING);
         let fastest = self.grains.velocities.iter().map(Vector::norm_squared).fold(0.0, f64::max).sqrt();

@@ -5,8 +5,11 @@ use bedswell_geometry::{Vector, stream};
 use bedswell_grains::Assembly;
 use rand::RngExt;
 
-/// Share of the beads' volume inside grains above which a state is void.
-const SWALLOWED: f64 = 5e-3;
+/// Share of the beads' volume inside grains above which a state on the way is void;
+/// the pressures there are not yet corrected for penetration.
+const SWALLOWED_ON_THE_WAY: f64 = 2e-2;
+/// The same of an end state.
+pub(super) const SWALLOWED_AT_THE_END: f64 = 1e-3;
 /// Purpose of the random stream that draws each bead's own strength.
 const STRENGTH: u64 = 1;
 
@@ -49,7 +52,12 @@ impl Watch<'_> {
     }
 
     /// What became of the beads.
-    pub(super) fn beads(&self, gel: &Gel, beads: &[Relaxation], around: &[Neighbourhood]) -> Vec<BeadOutcome> {
+    pub(super) fn beads(
+        &self,
+        gel: &Gel,
+        beads: &[Relaxation],
+        around: &[Neighbourhood],
+    ) -> Vec<BeadOutcome> {
         beads
             .iter()
             .zip(around)
@@ -114,7 +122,7 @@ pub(super) fn guard(beads: &[Relaxation], around: &[Neighbourhood], grains: &Ass
         }
     }
     let share = swallowed(beads, around);
-    if share > SWALLOWED {
+    if share > SWALLOWED_ON_THE_WAY {
         return Err(format!(
             "{:.2} % of the gel lies inside grains: the state is void; take more increments or more voxels across",
             100.0 * share
@@ -128,21 +136,18 @@ pub(super) fn guard(beads: &[Relaxation], around: &[Neighbourhood], grains: &Ass
 pub(super) fn swallowed(beads: &[Relaxation], around: &[Neighbourhood]) -> f64 {
     let mut inside = 0.0;
     let mut total = 0.0;
-    for (bead, around) in beads.iter().zip(around) {
-        let bead = bead.bead();
-        let size = (bead.volume() / bead.dry_volume()).cbrt() * bead.voxel_edge();
-        let depth = |place: &Vector| around.obstacles.iter().map(|o| -o.distance(place)).fold(0.0, f64::max);
-        let area = bead.lattice().skin_point_area() * size * size;
-        for point in 0..bead.lattice().skin_point_count() {
-            inside += area * depth(&bead.skin_point(point)).min(size);
-        }
+    for (relaxing, around) in beads.iter().zip(around) {
+        inside += relaxing.penetrated_volume(&around.obstacles);
+        let bead = relaxing.bead();
+        let volume = bead.volume();
+        let size = (volume / bead.dry_volume()).cbrt() * bead.voxel_edge();
         for voxel in 0..bead.lattice().voxel_count() {
-            if depth(&bead.voxel_centre(voxel)) > size {
+            let place = bead.voxel_centre(voxel);
+            if around.obstacles.iter().any(|obstacle| obstacle.distance(&place) < -size) {
                 inside += size.powi(3);
             }
         }
-        total += bead.volume();
+        total += volume;
     }
     if total > 0.0 { inside / total } else { 0.0 }
 }
-

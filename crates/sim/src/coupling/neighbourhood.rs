@@ -33,7 +33,8 @@ impl Neighbourhood {
         let centre = bead.bead().centre();
         self.obstacles.clear();
         self.obstacles.push(Obstacle::Plane { point: Vector::zeros(), normal: Vector::z() });
-        self.obstacles.push(Obstacle::Plane { point: Vector::z() * grains.cell.size.z, normal: -Vector::z() });
+        self.obstacles
+            .push(Obstacle::Plane { point: Vector::z() * grains.cell.size.z, normal: -Vector::z() });
         for &grain in &self.grains {
             let offset = grains.cell.separation(&centre, &grains.centres[grain]);
             self.obstacles.push(Obstacle::Sphere { centre: centre + offset, radius: grains.radii[grain] });
