@@ -115,8 +115,8 @@ pub fn settle(
 }
 
 /// Scratch memory and contacts that live through several solves.
-struct Solver {
-    contacts: Contacts,
+pub(crate) struct Solver {
+    pub(crate) contacts: Contacts,
     state: Linearisation,
     gradient: Vec<f64>,
     blocks: Vec<Matrix>,
@@ -126,8 +126,12 @@ struct Solver {
 
 impl Solver {
     fn new(bead: &Bead) -> Self {
+        Self::with_contacts(bead, Contacts::default())
+    }
+
+    pub(crate) fn with_contacts(bead: &Bead, contacts: Contacts) -> Self {
         Self {
-            contacts: Contacts::default(),
+            contacts,
             state: Linearisation::default(),
             gradient: vec![0.0; bead.positions.len()],
             blocks: Vec::new(),
@@ -136,7 +140,7 @@ impl Solver {
         }
     }
 
-    fn settle(
+    pub(crate) fn settle(
         &mut self,
         bead: &mut Bead,
         gel: &Gel,

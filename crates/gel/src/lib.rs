@@ -1,6 +1,7 @@
 //! Gel thermodynamics, bead lattices and their equilibrium.
 
 mod bead;
+mod bead_contact;
 mod contact;
 mod datasheet;
 mod elastic;
@@ -15,6 +16,7 @@ mod stress;
 mod thermodynamics;
 
 pub use bead::Bead;
+pub use bead_contact::BeadContact;
 pub use datasheet::{
     Calibration, Datasheet, DatasheetError, calibrate_datasheet, uptake_of_volume_ratio,
     volume_ratio_of_uptake,

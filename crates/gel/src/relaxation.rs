@@ -1,7 +1,7 @@
 use crate::bead::Bead;
 use crate::contact::{self, Contacts, skin_position};
 use crate::elastic::{Elastic, Linearisation};
-use crate::equilibrium::{PENALTY, dot};
+use crate::equilibrium::{Equilibrium, EquilibriumError, PENALTY, Solver, Tolerance, dot};
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::{Matrix, Vector};
@@ -123,6 +123,42 @@ impl Relaxation {
         self.contact_sum = sums.iter().sum();
     }
 
+    pub(crate) fn skin_place(&self, point: u32) -> Vector {
+        skin_position(&self.bead.lattice().skin, &self.bead.positions, point as usize)
+    }
+
+    /// Pressure per penetration of a skin point times its area (N/m).
+    pub(crate) fn point_stiffness(&self) -> f64 {
+        self.contacts.penalty * self.contacts.area
+    }
+
+    /// Adds a force (N) on a skin point, and its stiffness (N/m).
+    pub(crate) fn pull(&mut self, point: u32, force: Vector, stiffness: f64) {
+        let stride = self.masses.len();
+        let lattice = self.bead.shared_lattice();
+        for (node, weight) in lattice.skin.terms(point as usize) {
+            for axis in 0..3 {
+                self.gradient[axis * stride + node] -= weight * force[axis];
+            }
+        }
+        self.pressing_stiffness += stiffness;
+    }
+
+    /// Makes the nodes behind a skin point heavy enough for a contact of its stiffness.
+    pub(crate) fn weigh(&mut self, point: u32) {
+        let stiffness = self.point_stiffness();
+        let lattice = self.bead.shared_lattice();
+        for (node, weight) in lattice.skin.terms(point as usize) {
+            self.masses[node] += MASS_FACTOR * 3.0 * stiffness * weight.abs();
+        }
+    }
+
+    /// Counts a neighbouring bead's force (N) among the contact forces.
+    pub(crate) fn note_contact(&mut self, force: Vector) {
+        self.contact_sum -= force;
+        self.largest_contact_force = self.largest_contact_force.max(force.norm());
+    }
+
     /// Moves the nodes by one step. `damping` is the share of each force component
     /// that is turned against the velocity (local non-viscous damping, Cundall 1987,
     /// from memory). Returns the longest move of a node along an axis (m).
@@ -155,6 +191,31 @@ impl Relaxation {
             longest = longest.max(drift.abs());
         }
         longest
+    }
+
+    /// Brings the bead to equilibrium among obstacles that stay where they are, by
+    /// Newton steps. Where none is found the bead stays as it was.
+    ///
+    /// # Errors
+    /// When no equilibrium is found.
+    pub fn settle(
+        &mut self,
+        gel: &Gel,
+        obstacles: &[Obstacle],
+        tolerance: Tolerance,
+    ) -> Result<Equilibrium, EquilibriumError> {
+        let mut bead = self.bead.clone();
+        let mut solver = Solver::with_contacts(&bead, self.contacts.clone());
+        let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
+        self.bead = bead;
+        self.contacts = solver.contacts;
+        self.compute_forces(gel, obstacles, |_| ());
+        Ok(equilibrium)
+    }
+
+    /// Whether any skin point presses on something.
+    pub fn touches(&self) -> bool {
+        self.largest_contact_force > 0.0
     }
 
     /// Moves each pressing point's pressure into its multiplier, so that the pressure

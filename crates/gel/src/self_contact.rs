@@ -12,12 +12,9 @@ impl Bead {
     /// when dry lie together with opposed normals. `None` where the skin is free.
     pub fn self_contact(&self) -> Option<Vector> {
         let skin = &self.lattice().skin;
-        let gradients = self.gradients();
         let size = self.voxel_edge() * (self.volume() / self.dry_volume()).cbrt();
         let places: Vec<Vector> = (0..skin.len()).map(|point| self.skin_point(point)).collect();
-        let normals: Vec<Vector> = (0..skin.len())
-            .map(|point| normal(&gradients[skin.host[point] as usize], skin.direction[point]))
-            .collect();
+        let normals = self.skin_normals();
         let points: Vec<[f64; 3]> = places.iter().map(|place| (*place).into()).collect();
         let tree: ImmutableKdTree<f64, 3> = ImmutableKdTree::new_from_slice(&points).ok()?;
         let half = 0.5 * self.lattice().across() as f64;
@@ -36,6 +33,15 @@ impl Bead {
                 folded.then_some(places[a])
             })
         })
+    }
+
+    /// Outward unit normals of the skin points.
+    pub(crate) fn skin_normals(&self) -> Vec<Vector> {
+        let skin = &self.lattice().skin;
+        let gradients = self.gradients();
+        (0..skin.len())
+            .map(|point| normal(&gradients[skin.host[point] as usize], skin.direction[point]))
+            .collect()
     }
 }
 

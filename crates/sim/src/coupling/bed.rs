@@ -6,6 +6,8 @@ use rand::RngExt;
 
 /// Overlap of a typical contact over the grain diameter under the stress at hand.
 const OVERLAP: f64 = 3e-4;
+/// Stretch from dry at which a bead starts among grains that stay where they are.
+const HELD_STRETCH: f64 = 1.05;
 /// Growths of the hard beads, and the steps after each.
 const HARD_GROWTHS: usize = 5;
 const HARD_STEPS: usize = 400;
@@ -20,6 +22,8 @@ pub(crate) struct DryBed {
     pub(crate) spheres: Vec<Sphere>,
     /// The grains alone, as they lie when the march starts.
     pub(crate) grains: Assembly,
+    /// Stretch of the beads from dry where the march starts.
+    pub(crate) stretch: f64,
     /// Centres of the beads at the stretch where the march starts (m).
     pub(crate) beads: Vec<Vector>,
     /// Pore fraction, the dry beads counted as solid.
@@ -48,8 +52,12 @@ impl DryBed {
         let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction);
         let mut grains = Assembly::new(cell, &spheres, law, lid).map_err(packing)?;
         grains.held = scene.bed.fixed_grains;
-        let beads = if grains.held { beads } else { grow_hard(&mut grains, &beads, scene)? };
-        Ok(Self { lid: cell.size.z, spheres, grains, beads, porosity, fines_left_out })
+        let (beads, stretch) = if grains.held {
+            (beads, HELD_STRETCH)
+        } else {
+            (grow_hard(&mut grains, &beads, scene)?, FIRST_STRETCH)
+        };
+        Ok(Self { lid: cell.size.z, spheres, grains, stretch, beads, porosity, fines_left_out })
     }
 }
 

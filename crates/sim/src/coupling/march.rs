@@ -2,7 +2,7 @@ use super::bed::DryBed;
 use super::measure::{self, Watch};
 use super::neighbourhood::Neighbourhood;
 use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene};
-use bedswell_gel::{Bead, Gel, Lattice, Relaxation};
+use bedswell_gel::{Bead, BeadContact, Gel, Lattice, Relaxation, Tolerance};
 use bedswell_geometry::Vector;
 use bedswell_grains::Assembly;
 use std::sync::Arc;
@@ -51,26 +51,32 @@ pub(crate) fn march(
     observer: &mut dyn Observer,
 ) -> Result<PackOutcome, RunError> {
     let before = &bed.spheres;
-    let mut march = March::new(scene, &bed);
+    let mut march = March::new(scene, &bed, gel);
     let watch = Watch { scene, gel, number, lid_before: bed.lid };
     let free = gel.free_stretch();
-    let start = FIRST_STRETCH.min(free);
+    let start = bed.stretch.min(free);
     let count = scene.march.increments;
     let mut history = Vec::with_capacity(count);
     let mut stretch = start;
     for increment in 1..=count {
         let next = start * (free / start).powf(increment as f64 / count as f64);
         let stage = if increment == count { *gel } else { gel.limited_to(next) };
-        march.swell(gel, stretch, next);
+        march.correct_pressures();
+        let settled = march.hold_still(&stage, next / stretch, increment == count) || {
+            march.swell(gel, stretch, next);
+            false
+        };
         stretch = next;
-        let settled = if increment == count { march.settle(&stage) } else { march.rest(&stage, ON_THE_WAY) };
-        settled.map_err(|reason| RunError::March { increment, reason })?;
+        if !settled {
+            let rested =
+                if increment == count { march.settle(&stage) } else { march.rest(&stage, ON_THE_WAY) };
+            rested.map_err(|reason| RunError::March { increment, reason })?;
+        }
         measure::guard(&march.beads, &march.around, &march.grains)
             .map_err(|reason| RunError::March { increment, reason })?;
         let step = watch.step(increment, &stage, &march.beads, &march.grains, march.quality(&stage));
         observer.step(&step, count);
         history.push(step);
-        march.correct_pressures();
     }
     let after = march.grains.centres.iter();
     let positions = before
@@ -101,23 +107,63 @@ struct March {
     grains: Assembly,
     beads: Vec<Relaxation>,
     around: Vec<Neighbourhood>,
+    /// Pairs of beads that may touch, with the image of the second seen by the first.
+    pairs: Vec<Pair>,
+    /// The beads' centres are held.
+    hold_beads: bool,
     /// Distance moved since contacts were last looked for (m).
     travel: f64,
 }
 
+/// Two beads that may touch.
+struct Pair {
+    first: usize,
+    second: usize,
+    /// Shift of the second to the image that the first sees (m).
+    shift: Vector,
+    contact: BeadContact,
+}
+
 impl March {
-    fn new(scene: &Scene, bed: &DryBed) -> Self {
+    fn new(scene: &Scene, bed: &DryBed, gel: &Gel) -> Self {
         let lattice = Arc::new(Lattice::new(scene.beads.across));
         let radius = 0.5 * scene.beads.dry_diameter;
-        let bead = |centre: &Vector| {
-            Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, FIRST_STRETCH))
-        };
+        let stretch = bed.stretch.min(gel.free_stretch());
+        let bead =
+            |centre: &Vector| Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, stretch));
         Self {
             grains: bed.grains.clone(),
             beads: bed.beads.iter().map(bead).collect(),
             around: vec![Neighbourhood::default(); bed.beads.len()],
             travel: f64::INFINITY,
+            pairs: Vec::new(),
+            hold_beads: scene.beads.held,
         }
+    }
+
+    /// A single bead among grains that stay where they are needs no march: Newton
+    /// steps find its equilibrium. Where they do not, nothing is changed.
+    fn hold_still(&mut self, gel: &Gel, growth: f64, last: bool) -> bool {
+        let ([bead], [around]) = (&mut self.beads[..], &mut self.around[..]) else { return false };
+        if !self.grains.held {
+            return false;
+        }
+        let mut grown = bead.clone();
+        if !grown.touches() {
+            grown.grow(growth);
+        }
+        around.extend(&grown, &self.grains, 0.5 * grown.bead().extent());
+        let tolerance = if last {
+            Tolerance { held: self.hold_beads, ..Tolerance::default() }
+        } else {
+            Tolerance { residual: 1e-3, corrections: 0, held: self.hold_beads }
+        };
+        let settled = grown.settle(gel, &around.obstacles, tolerance).is_ok();
+        if settled {
+            *bead = grown;
+            self.travel = f64::INFINITY;
+        }
+        settled
     }
 
     /// Raises the free stretch from one value to the next.
@@ -208,12 +254,34 @@ impl March {
                 around.extend(bead, &self.grains, 2.0 * reach);
                 bead.renew(gel, &around.obstacles, reach);
             }
+            self.pair_up(2.0 * reach);
         }
         self.grains.compute_contacts();
         for (bead, around) in self.beads.iter_mut().zip(&mut self.around) {
             around.update(bead, &self.grains);
             let grains = &mut self.grains;
             bead.compute_forces(gel, &around.obstacles, |push| around.pass_on(push, grains));
+        }
+        for Pair { first, second, shift, contact } in &self.pairs {
+            let (before, after) = self.beads.split_at_mut(*second);
+            contact.press(&mut before[*first], &mut after[0], *shift);
+        }
+    }
+
+    /// Finds the beads within `reach` (m) of each other.
+    fn pair_up(&mut self, reach: f64) {
+        self.pairs.clear();
+        for second in 1..self.beads.len() {
+            for first in 0..second {
+                let (before, after) = self.beads.split_at_mut(second);
+                let (one, other) = (&mut before[first], &mut after[0]);
+                let (centre, towards) = (one.bead().centre(), other.bead().centre());
+                let shift = centre + self.grains.cell.separation(&centre, &towards) - towards;
+                let contact = BeadContact::find(one, other, shift, reach);
+                if !contact.is_empty() {
+                    self.pairs.push(Pair { first, second, shift, contact });
+                }
+            }
         }
     }
 

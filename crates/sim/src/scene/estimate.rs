@@ -18,7 +18,7 @@ const SECONDS_PER_VOXEL_ALONE: f64 = 4e-5;
 /// The same for one grain that moves (s).
 const SECONDS_PER_GRAIN: f64 = 2e-4;
 /// Memory of the program itself (bytes).
-const BYTES_AT_LEAST: f64 = 3e7;
+const BYTES_AT_LEAST: f64 = 1e7;
 
 /// What a scene comes to, worked out without running it.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize)]

@@ -92,6 +92,9 @@ pub struct Beads {
     pub dry_diameter: f64,
     /// Voxels across the dry diameter.
     pub across: usize,
+    /// Centre and orientation of each bead are held: for fixed grains that would let
+    /// a bead slip out sideways.
+    pub held: bool,
 }
 
 /// How many beads a cell holds.

@@ -102,7 +102,8 @@ fn read_bed(document: &Node, listed: Option<usize>) -> Result<Bed, SceneError> {
 
 /// `corner` is where listed spheres had their lower corner; centres shift with them.
 fn read_beads(document: &Node, corner: Option<Vector>) -> Result<Beads, SceneError> {
-    let section = Section::new(document, "beads", &["count", "dose", "centres", "dry_diameter", "across"])?;
+    let section =
+        Section::new(document, "beads", &["count", "dose", "centres", "dry_diameter", "across", "held"])?;
     let amount = match (section.get("count"), section.get("dose"), section.get("centres")) {
         (Some(count), None, None) => BeadAmount::Count(count.whole(1..=1_000_000)? as usize),
         (None, Some(dose), None) => {
@@ -148,7 +149,8 @@ fn read_beads(document: &Node, corner: Option<Vector>) -> Result<Beads, SceneErr
     };
     let dry_diameter = section.need("dry_diameter", "dry_diameter = \"1 mm\"")?.positive(Kind::Length)?;
     let across = section.get("across").map_or(Ok(12), |entry| entry.whole(4..=1000))? as usize;
-    Ok(Beads { amount, dry_diameter, across })
+    let held = section.get("held").map_or(Ok(false), |entry| entry.flag())?;
+    Ok(Beads { amount, dry_diameter, across, held })
 }
 
 fn read_water(document: &Node) -> Result<Water, SceneError> {

@@ -42,6 +42,7 @@ impl Scene {
         }
         text.line("dry_diameter", with_unit(self.beads.dry_diameter, Kind::Length));
         text.line("across", self.beads.across);
+        text.line("held", self.beads.held);
 
         text.table("gel");
         text.line("crosslinks", number(self.gel.crosslinks));
