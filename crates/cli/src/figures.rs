@@ -24,7 +24,7 @@ pub(crate) fn probability(value: f64) -> String {
 
 /// A length (m) in m, mm or µm.
 pub(crate) fn length(metres: f64) -> String {
-    scaled(metres, &[(1.0, 1.0, "m"), (1e-4, 1e-3, "mm"), (0.0, 1e-6, "µm")])
+    scaled(metres, &[(1.0, 1.0, "m"), (1e-5, 1e-3, "mm"), (0.0, 1e-6, "µm")])
 }
 
 /// A stress (Pa) in MPa, kPa or Pa.
