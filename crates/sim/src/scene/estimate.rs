@@ -12,11 +12,11 @@ const BYTES_PER_VOXEL: f64 = 1500.0;
 /// Memory of one grain with its contacts (bytes), rounded up.
 const BYTES_PER_GRAIN: f64 = 4000.0;
 /// Time that one voxel takes in one increment (s), measured on a core of 2.x GHz.
-const SECONDS_PER_VOXEL: f64 = 4e-4;
+const SECONDS_PER_VOXEL: f64 = 1.2e-4;
 /// The same among grains that are held in place (s).
-const SECONDS_PER_VOXEL_ALONE: f64 = 4e-5;
+const SECONDS_PER_VOXEL_ALONE: f64 = 7e-6;
 /// The same for one grain that moves (s).
-const SECONDS_PER_GRAIN: f64 = 2e-4;
+const SECONDS_PER_GRAIN: f64 = 3e-4;
 /// Memory of the program itself (bytes).
 const BYTES_AT_LEAST: f64 = 1e7;
 
