@@ -180,9 +180,10 @@ pub(crate) fn add_diagonal_blocks(pressing: &[Pressing], skin: &Skin, out: &mut 
     }
 }
 
-/// Adds each node's own block as if every pair pressed, whatever its normal.
+/// Adds each node's own block as if every pair pressed, its normal unknown: a third of
+/// the stiffness along each axis.
 pub(crate) fn add_possible_blocks(contacts: &Contacts, skin: &Skin, out: &mut [Matrix]) {
-    let stiffness = Matrix::from_diagonal_element(contacts.penalty * contacts.area);
+    let stiffness = Matrix::from_diagonal_element(contacts.penalty * contacts.area / 3.0);
     for pair in &contacts.pairs {
         for (node, weight) in skin.terms(pair.point as usize) {
             out[node] += stiffness * weight.abs();

@@ -64,7 +64,7 @@ pub enum EquilibriumError {
 }
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge.
-pub(crate) const PENALTY: f64 = 8.0;
+const PENALTY: f64 = 8.0;
 /// Largest growth of the free stretch in one stage.
 const STAGE_GROWTH: f64 = 1.25;
 /// Stretch at which the way from dry starts: the mixing energy ends at J = 1.

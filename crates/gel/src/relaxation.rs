@@ -1,7 +1,7 @@
 use crate::bead::Bead;
 use crate::contact::{self, Contacts, skin_position};
 use crate::elastic::{Elastic, Linearisation};
-use crate::equilibrium::{Equilibrium, EquilibriumError, PENALTY, Solver, Tolerance, dot};
+use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::{Matrix, Vector};
@@ -45,6 +45,10 @@ pub struct Push {
 /// stiffness b and chains n per node their frequency² is 4(b + n) over a trace of
 /// about 1.5 b + 8 n, and unit steps with damping need it below some 2.8.
 const MASS_FACTOR: f64 = 1.5;
+
+/// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
+/// nothing corrects the pressures for the penetration they take.
+const PENALTY: f64 = 32.0;
 
 /// Mass of the bead as a whole over the stiffness of its contacts.
 const DRIFT_MASS_FACTOR: f64 = 2.0;
@@ -149,7 +153,7 @@ impl Relaxation {
         let stiffness = self.point_stiffness();
         let lattice = self.bead.shared_lattice();
         for (node, weight) in lattice.skin.terms(point as usize) {
-            self.masses[node] += MASS_FACTOR * 3.0 * stiffness * weight.abs();
+            self.masses[node] += MASS_FACTOR * stiffness * weight.abs();
         }
     }
 
@@ -216,13 +220,6 @@ impl Relaxation {
     /// Whether any skin point presses on something.
     pub fn touches(&self) -> bool {
         self.largest_contact_force > 0.0
-    }
-
-    /// Moves each pressing point's pressure into its multiplier, so that the pressure
-    /// no longer needs the penetration it took.
-    pub fn correct_pressures(&mut self, obstacles: &[Obstacle]) {
-        let lattice = self.bead.shared_lattice();
-        self.contacts.update_multipliers(&lattice.skin, &self.bead.positions, obstacles);
     }
 
     /// Norm of the net nodal forces over the largest contact force, or over G R²

@@ -24,12 +24,7 @@ const REACH: f64 = 0.2;
 /// Largest residual (grains, gel) of a recorded state on the way.
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
 /// The same of the end state.
-const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 30_000, required: true };
-/// Times that the end state's contact pressures are corrected for penetration.
-const CORRECTIONS: usize = 2;
-/// Further corrections while too much gel lies inside grains.
-const FURTHER_CORRECTIONS: usize = 8;
-
+const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 40_000, required: true };
 /// When a state counts as at rest.
 #[derive(Clone, Copy, Debug)]
 struct Target {
@@ -61,16 +56,14 @@ pub(crate) fn march(
     for increment in 1..=count {
         let next = start * (free / start).powf(increment as f64 / count as f64);
         let stage = if increment == count { *gel } else { gel.limited_to(next) };
-        march.correct_pressures();
         let settled = march.hold_still(&stage, next / stretch, increment == count) || {
             march.swell(gel, stretch, next);
             false
         };
         stretch = next;
         if !settled {
-            let rested =
-                if increment == count { march.settle(&stage) } else { march.rest(&stage, ON_THE_WAY) };
-            rested.map_err(|reason| RunError::March { increment, reason })?;
+            let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
+            march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
         measure::guard(&march.beads, &march.around, &march.grains)
             .map_err(|reason| RunError::March { increment, reason })?;
@@ -183,27 +176,7 @@ impl March {
         self.travel = f64::INFINITY;
     }
 
-    /// Steps until grains, lid and beads are at rest and hardly any gel is inside a
-    /// grain: the end of the march.
-    fn settle(&mut self, gel: &Gel) -> Result<(), String> {
-        for correction in 0.. {
-            let inside = measure::swallowed(&self.beads, &self.around);
-            let enough = correction >= CORRECTIONS && inside < 0.5 * measure::SWALLOWED_AT_THE_END;
-            if enough || correction == CORRECTIONS + FURTHER_CORRECTIONS {
-                break;
-            }
-            self.rest(gel, ON_THE_WAY)?;
-            self.correct_pressures();
-        }
-        self.rest(gel, AT_THE_END)
-    }
-
-    fn correct_pressures(&mut self) {
-        for (bead, around) in self.beads.iter_mut().zip(&self.around) {
-            bead.correct_pressures(&around.obstacles);
-        }
-    }
-
+    /// Steps until grains, lid and beads are at rest.
     fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         for step in 0..target.steps {
             self.forces(gel);

@@ -5,11 +5,8 @@ use bedswell_geometry::{Vector, stream};
 use bedswell_grains::Assembly;
 use rand::RngExt;
 
-/// Share of the beads' volume inside grains above which a state on the way is void;
-/// the pressures there are not yet corrected for penetration.
-const SWALLOWED_ON_THE_WAY: f64 = 2e-2;
-/// The same of an end state.
-pub(super) const SWALLOWED_AT_THE_END: f64 = 1e-3;
+/// Share of the beads' volume inside grains above which a state is void.
+const SWALLOWED: f64 = 1e-2;
 /// Purpose of the random stream that draws each bead's own strength.
 const STRENGTH: u64 = 1;
 
@@ -122,7 +119,7 @@ pub(super) fn guard(beads: &[Relaxation], around: &[Neighbourhood], grains: &Ass
         }
     }
     let share = swallowed(beads, around);
-    if share > SWALLOWED_ON_THE_WAY {
+    if share > SWALLOWED {
         return Err(format!(
             "{:.2} % of the gel lies inside grains: the state is void; take more increments or more voxels across",
             100.0 * share
