@@ -48,7 +48,7 @@ const MASS_FACTOR: f64 = 1.5;
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
 /// nothing corrects the pressures for the penetration they take.
-const PENALTY: f64 = 32.0;
+const PENALTY: f64 = 64.0;
 
 /// Mass of the bead as a whole over the stiffness of its contacts.
 const DRIFT_MASS_FACTOR: f64 = 2.0;
