@@ -10,6 +10,13 @@ pub enum Obstacle {
         /// Radius (m).
         radius: f64,
     },
+    /// The wall of a round hole that the bead is in.
+    Cavity {
+        /// Centre (m).
+        centre: Vector,
+        /// Radius (m).
+        radius: f64,
+    },
     /// A flat wall.
     Plane {
         /// A point on the wall (m).
@@ -27,7 +34,7 @@ pub(crate) struct Gap {
     /// Unit normal of the obstacle's surface, towards the gel.
     pub(crate) normal: Vector,
     /// Curvature of the distance across the normal (1/m): 1/distance from a sphere's
-    /// centre, zero for a plane.
+    /// centre, the negative of it in a cavity, zero for a plane.
     pub(crate) curvature: f64,
 }
 
@@ -44,6 +51,11 @@ impl Obstacle {
                 let offset = place - centre;
                 let distance = offset.norm().max(f64::MIN_POSITIVE);
                 Gap { distance: distance - radius, normal: offset / distance, curvature: 1.0 / distance }
+            }
+            Obstacle::Cavity { centre, radius } => {
+                let offset = place - centre;
+                let distance = offset.norm().max(f64::MIN_POSITIVE);
+                Gap { distance: radius - distance, normal: -offset / distance, curvature: -1.0 / distance }
             }
             Obstacle::Plane { point, normal } => {
                 Gap { distance: (place - point).dot(normal), normal: *normal, curvature: 0.0 }
