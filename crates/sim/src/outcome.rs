@@ -78,7 +78,7 @@ pub struct BeadOutcome {
 pub struct Quality {
     /// Largest net force on a grain over the mean contact force.
     pub grain_residual: f64,
-    /// Net nodal force in the gel over its contact and bond forces (root mean square).
+    /// Norm of the net nodal forces of a bead over its largest contact force.
     pub gel_residual: f64,
     /// Net force on a bead over its largest contact force.
     pub bead_balance: f64,

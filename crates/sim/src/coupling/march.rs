@@ -192,7 +192,7 @@ impl March {
                 {
                     return Ok(());
                 }
-                if let Some(bead) = self.beads.iter().position(|bead| !(bead.smallest_volume_ratio() > 1.0)) {
+                if let Some(bead) = self.beads.iter().position(|bead| bead.smallest_volume_ratio() <= 1.0) {
                     return Err(format!(
                         "a voxel of bead {bead} was pressed out of water; take more increments or a smaller lid stress"
                     ));
