@@ -22,6 +22,8 @@ pub struct Relaxation {
     drift: Vector,
     /// Sum of the stiffnesses of the points that press (N/m).
     pressing_stiffness: f64,
+    /// Mean pressure of the points that press (Pa).
+    mean_pressure: f64,
     smallest_volume_ratio: f64,
     largest_contact_force: f64,
     contact_sum: Vector,
@@ -44,14 +46,20 @@ pub struct Push {
 /// that alternate from node to node along one axis are the stiffest: with volume
 /// stiffness b and chains n per node their frequency² is 4(b + n) over a trace of
 /// about 1.5 b + 8 n, and unit steps with damping need it below some 2.8.
-const MASS_FACTOR: f64 = 1.5;
+const MASS_FACTOR: f64 = 2.0;
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
 /// nothing corrects the pressures for the penetration they take.
 const PENALTY: f64 = 64.0;
 
+/// Mean penetration that the contact pressures may take, in swollen voxel edges: where
+/// they rise beyond the gel's stiffness, the contact stiffens with them.
+const MEAN_DEPTH: f64 = 0.005;
+/// By no more than this factor.
+const STIFFENING: f64 = 4.0;
+
 /// Mass of the bead as a whole over the stiffness of its contacts.
-const DRIFT_MASS_FACTOR: f64 = 2.0;
+const DRIFT_MASS_FACTOR: f64 = 4.0;
 
 impl Relaxation {
     /// A bead at rest.
@@ -64,6 +72,7 @@ impl Relaxation {
             contacts: Contacts::default(),
             drift: Vector::zeros(),
             pressing_stiffness: 0.0,
+            mean_pressure: 0.0,
             smallest_volume_ratio: f64::INFINITY,
             largest_contact_force: 0.0,
             contact_sum: Vector::zeros(),
@@ -87,7 +96,9 @@ impl Relaxation {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
-        self.contacts.penalty = PENALTY * gel.moduli().plane_strain() / size;
+        let least = PENALTY * gel.moduli().plane_strain();
+        let stiffness = (self.mean_pressure / MEAN_DEPTH).clamp(least, STIFFENING * least);
+        self.contacts.penalty = stiffness / size;
         self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
         let mut state = Linearisation::default();
         let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
@@ -109,7 +120,7 @@ impl Relaxation {
         let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
         self.smallest_volume_ratio = elastic.add_gradient(&self.bead.positions, &mut self.gradient);
         let stiffness = self.contacts.penalty * self.contacts.area;
-        let mut pressing = 0.0;
+        let (mut pressing, mut pressed) = (0.0, 0.0);
         let mut sums = vec![Vector::zeros(); obstacles.len()];
         self.contacts.push(
             &lattice.skin,
@@ -119,10 +130,13 @@ impl Relaxation {
             |obstacle, force, position| {
                 sums[obstacle] -= force;
                 pressing += stiffness;
+                pressed += force.norm();
                 push(Push { obstacle, force: -force, position, stiffness });
             },
         );
         self.pressing_stiffness = pressing;
+        let area = self.contacts.area * pressing / stiffness;
+        self.mean_pressure = if area > 0.0 { pressed / area } else { 0.0 };
         self.largest_contact_force = sums.iter().map(Vector::norm).fold(0.0, f64::max);
         self.contact_sum = sums.iter().sum();
     }
