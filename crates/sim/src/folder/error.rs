@@ -5,23 +5,23 @@ use thiserror::Error;
 #[derive(Debug, Error)]
 pub enum FolderError {
     /// A file or the folder itself cannot be written.
-    #[error("cannot write {path}: {source}", path = path.display())]
+    #[error("cannot write {path}: {cause}", path = path.display())]
     Write {
         /// The file or folder.
         path: PathBuf,
         /// What the system says.
-        source: std::io::Error,
+        cause: std::io::Error,
     },
     /// A study could not write any further.
     #[error(
-        "cannot write {path}: {source}; {kept} finished packs are kept: make room and run the same command again",
+        "cannot write {path}: {cause}; {kept} finished packs are kept: make room and run the same command again",
         path = path.display()
     )]
     Interrupted {
         /// The file.
         path: PathBuf,
         /// What the system says.
-        source: std::io::Error,
+        cause: std::io::Error,
         /// Packs that are safe in the journal.
         kept: u64,
     },
@@ -56,13 +56,13 @@ pub enum FolderError {
 impl FolderError {
     pub(crate) fn write(path: &Path) -> impl FnOnce(std::io::Error) -> Self {
         let path = path.to_owned();
-        move |source| Self::Write { path, source }
+        move |cause| Self::Write { path, cause }
     }
 
     /// The same, once a study has packs to lose.
     pub(crate) fn keeping(self, kept: u64) -> Self {
         match self {
-            Self::Write { path, source } => Self::Interrupted { path, source, kept },
+            Self::Write { path, cause } => Self::Interrupted { path, cause, kept },
             other => other,
         }
     }

@@ -141,9 +141,7 @@ pub(crate) fn write_scene(folder: &Path, name: &str, scene: &Scene) -> Result<()
 
 /// Writes a summary in the manner of all summaries: indented, with a last newline.
 pub(crate) fn write_json(path: &Path, summary: &impl Serialize) -> Result<(), FolderError> {
-    let text = serde_json::to_string_pretty(summary).map_err(|error| FolderError::Write {
-        path: path.to_owned(),
-        source: std::io::Error::other(error),
-    })?;
+    let text = serde_json::to_string_pretty(summary)
+        .map_err(|error| FolderError::Write { path: path.to_owned(), cause: std::io::Error::other(error) })?;
     write_text(path, &(text + "\n"))
 }

@@ -97,7 +97,7 @@ impl Table {
     pub(crate) fn write_parquet(&self, path: &Path) -> Result<(), FolderError> {
         let bytes = self.parquet_bytes().map_err(|error| FolderError::Write {
             path: path.to_owned(),
-            source: std::io::Error::other(error),
+            cause: std::io::Error::other(error),
         })?;
         write_atomically(path, |writer| writer.write_all(&bytes))
     }

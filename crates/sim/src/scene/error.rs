@@ -22,12 +22,12 @@ impl fmt::Display for Place {
 #[derive(Debug, Error)]
 pub enum SceneError {
     /// The file cannot be read.
-    #[error("cannot read {path}: {source}", path = path.display())]
+    #[error("cannot read {path}: {cause}", path = path.display())]
     Unreadable {
         /// The file.
         path: PathBuf,
         /// What the system says.
-        source: std::io::Error,
+        cause: std::io::Error,
     },
     /// The file is not TOML.
     #[error("{place}: {message}")]

@@ -30,7 +30,7 @@ pub(crate) type Table = Vec<(String, Node)>;
 /// Reads and parses a TOML file.
 pub(crate) fn read_document(path: &Path) -> Result<Node, SceneError> {
     let text = std::fs::read_to_string(path)
-        .map_err(|source| SceneError::Unreadable { path: path.to_owned(), source })?;
+        .map_err(|cause| SceneError::Unreadable { path: path.to_owned(), cause })?;
     parse_document(path, &text)
 }
 

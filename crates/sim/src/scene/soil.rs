@@ -110,8 +110,8 @@ fn read_listed(
     let unit = section.get("spheres_unit").map(|entry| entry.text()).transpose()?;
     let path = scene_path.parent().unwrap_or(Path::new("")).join(spheres.text()?);
     let mut table = read_spheres(&path, unit).map_err(|error| match error {
-        SceneError::Unreadable { path, source } => {
-            spheres.refuse(format!("cannot read {}: {source}", path.display()))
+        SceneError::Unreadable { path, cause } => {
+            spheres.refuse(format!("cannot read {}: {cause}", path.display()))
         }
         other => other,
     })?;

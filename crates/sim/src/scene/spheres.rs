@@ -22,7 +22,7 @@ pub(crate) struct SphereTable {
 /// stands in the header (`x [mm]`, `x_mm`) or is given as `unit`.
 pub(crate) fn read_spheres(path: &Path, unit: Option<&str>) -> Result<SphereTable, SceneError> {
     let text = std::fs::read_to_string(path)
-        .map_err(|source| SceneError::Unreadable { path: path.to_owned(), source })?;
+        .map_err(|cause| SceneError::Unreadable { path: path.to_owned(), cause })?;
     let file: Arc<Path> = path.into();
     let syntax = |line: usize, message: String| SceneError::Syntax {
         place: Place { file: Arc::clone(&file), line },

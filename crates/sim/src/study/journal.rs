@@ -56,7 +56,7 @@ impl Journal {
             .map_err(FolderError::write(&path))?;
         file.try_lock().map_err(|error| match error {
             TryLockError::WouldBlock => FolderError::InUse { path: folder.to_owned() },
-            TryLockError::Error(source) => FolderError::Write { path: path.clone(), source },
+            TryLockError::Error(cause) => FolderError::Write { path: path.clone(), cause },
         })?;
         let mut bytes = Vec::new();
         file.read_to_end(&mut bytes).map_err(FolderError::write(&path))?;
@@ -107,10 +107,10 @@ impl Journal {
             .map_err(std::io::Error::other)
             .map_err(FolderError::write(&self.path))?;
         let written = self.file.write_all(line.as_bytes()).and_then(|()| self.file.sync_data());
-        if let Err(source) = written {
+        if let Err(cause) = written {
             // Leave no half line; where even that fails, the next opening drops it.
             let _ = self.file.set_len(self.whole);
-            return Err(FolderError::Write { path: self.path.clone(), source });
+            return Err(FolderError::Write { path: self.path.clone(), cause });
         }
         self.whole += line.len() as u64;
         Ok(())

@@ -43,8 +43,8 @@ pub fn read_study(path: &Path) -> Result<Study, SceneError> {
 
     let scene_path = path.parent().unwrap_or(Path::new("")).join(scene_entry.text()?);
     let scene_document = read_document(&scene_path).map_err(|error| match error {
-        SceneError::Unreadable { path, source } => {
-            scene_entry.refuse(format!("cannot read {}: {source}", path.display()))
+        SceneError::Unreadable { path, cause } => {
+            scene_entry.refuse(format!("cannot read {}: {cause}", path.display()))
         }
         other => other,
     })?;
