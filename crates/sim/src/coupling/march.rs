@@ -24,7 +24,7 @@ const REACH: f64 = 0.2;
 /// Largest residual (grains, gel) of a recorded state on the way.
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
 /// The same of the end state.
-const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 30_000, required: true };
+const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
 /// What an end state may be left with when a grain keeps creeping: to give such packs up
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
