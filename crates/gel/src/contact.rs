@@ -110,22 +110,13 @@ impl Contacts {
         pressing
     }
 
-    /// Moves each pair's pressure into its multiplier. Returns the deepest
-    /// penetration (m) found.
-    pub(crate) fn update_multipliers(
-        &mut self,
-        skin: &Skin,
-        positions: &[f64],
-        obstacles: &[Obstacle],
-    ) -> f64 {
-        let mut deepest = 0.0_f64;
+    /// Moves each pair's pressure into its multiplier.
+    pub(crate) fn update_multipliers(&mut self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle]) {
         for pair in &mut self.pairs {
             let place = skin_position(skin, positions, pair.point as usize);
             let distance = obstacles[pair.obstacle as usize].gap(&place).distance;
-            deepest = deepest.max(-distance);
             pair.multiplier = (pair.multiplier - self.penalty * distance).max(0.0);
         }
-        deepest
     }
 
     /// The force (N) on each obstacle.

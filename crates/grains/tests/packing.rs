@@ -1,5 +1,7 @@
 //! Packs against densities and contact numbers found by others.
 
+#![allow(clippy::print_stdout, reason = "the measured figures are worth reading")]
+
 use bedswell_geometry::{Cell, offset, stream};
 use bedswell_grains::{
     Grading, Normal, POROSITY_TOLERANCE, Pack, PackError, PackRequest, Partner, Sides, beads_for_dose, pack,
@@ -108,6 +110,11 @@ fn smooth_equal_spheres_pack_to_random_close_packing() {
 fn five_thousand_smooth_equal_spheres_reach_the_reference_density() {
     let pack = packed(&endless(vec![2.0e-3; 5000]), 1);
     let solid = 1.0 - pack.report.porosity;
+    let contacts = pack.report.contact_number;
+    println!(
+        "5,000 equal: solid {solid:.4}, contact number {contacts:.3}, mean overlap {:.1e}",
+        mean_overlap(&pack)
+    );
     assert!((0.635..0.645).contains(&solid), "{solid}");
     assert!((pack.report.contact_number - 6.0).abs() < 0.1, "{:?}", pack.report);
     assert!(mean_overlap(&pack) < 1.0e-3, "{}", mean_overlap(&pack));
@@ -121,6 +128,7 @@ fn smooth_lognormal_spheres_pack_inside_the_published_band() {
         let grading = Grading::lognormal(2.0e-3, sigma.exp(), None).unwrap();
         let pack = packed(&endless(grading.packed.sample(3000)), 2);
         let solid = 1.0 - pack.report.porosity;
+        println!("lognormal {sigma}: solid {solid:.4}");
         assert!(solid > band.start - 0.01 && solid < band.end + 0.01, "sigma {sigma}: {solid}");
     }
 }
@@ -133,6 +141,7 @@ fn twenty_thousand_well_graded_grains_meet_their_porosity() {
     assert!((grading.soil.numbers().uniformity.unwrap() - 4.0).abs() < 1.0e-9);
     let grains = grading.packed.sample(20_000);
     let pack = packed(&PackRequest { grains, accept_loose: true, ..bed() }, 1);
+    println!("20,000 graded: {:?}", pack.report);
     assert!((pack.report.porosity - 0.40).abs() <= POROSITY_TOLERANCE, "{:?}", pack.report);
     assert!(pack.report.rest.deepest_overlap < 1.0e-3, "{:?}", pack.report);
 }

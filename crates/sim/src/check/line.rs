@@ -17,6 +17,23 @@ pub struct CheckLine {
     pub tolerance: f64,
 }
 
+/// The part of the model that some lines check.
+pub(super) struct Subject(pub(super) &'static str);
+
+impl Subject {
+    /// A line of this part.
+    pub(super) fn line(
+        &self,
+        quantity: &'static str,
+        value: f64,
+        reference: f64,
+        source: &'static str,
+        tolerance: f64,
+    ) -> CheckLine {
+        CheckLine { subject: self.0, quantity, value, reference, source, tolerance }
+    }
+}
+
 impl CheckLine {
     /// Value over reference less one, or the plain difference where the reference is 0.
     pub fn deviation(&self) -> f64 {

@@ -1,4 +1,5 @@
 use super::CheckLine;
+use super::line::Subject;
 use bedswell_geometry::stream;
 use bedswell_grains::{Grading, PackReport, PackRequest, Sides, pack};
 
@@ -6,15 +7,31 @@ const CLOSE: &str = "random close packing, frictionless (Agnolin & Roux 2007, ab
 const ISOSTATIC: &str = "isostatic, frictionless spheres";
 const LOGNORMAL: &str = "middle of Desmond & Weeks 2014 and Farr 2013 (coefficients from memory)";
 
+const SUBJECT: Subject = Subject("packing");
+
 pub(super) const LINES: &[fn() -> CheckLine] = &[
-    || line("solid fraction of 2000 equal frictionless spheres", solid_fraction(1.0), 0.639, CLOSE, 0.01),
+    || {
+        SUBJECT.line(
+            "solid fraction of 2000 equal frictionless spheres",
+            solid_fraction(1.0),
+            0.639,
+            CLOSE,
+            0.01,
+        )
+    },
     || {
         let value = smooth_pack(1.0).map_or(f64::NAN, |report| report.contact_number);
-        line("contacts of one of them that carries load", value, 6.0, ISOSTATIC, 0.1 / 6.0)
+        SUBJECT.line("contacts of one of them that carries load", value, 6.0, ISOSTATIC, 0.1 / 6.0)
     },
     || {
         let value = solid_fraction(0.4_f64.exp());
-        line("solid fraction of 2000 lognormal spheres of log-spread 0.4", value, 0.684_8, LOGNORMAL, 0.02)
+        SUBJECT.line(
+            "solid fraction of 2000 lognormal spheres of log-spread 0.4",
+            value,
+            0.684_8,
+            LOGNORMAL,
+            0.02,
+        )
     },
 ];
 
@@ -35,14 +52,4 @@ fn smooth_pack(spread: f64) -> Option<PackReport> {
         sides: Sides::Periodic,
     };
     Some(pack(&request, &mut stream(1, &[])).ok()?.report)
-}
-
-fn line(
-    quantity: &'static str,
-    value: f64,
-    reference: f64,
-    source: &'static str,
-    tolerance: f64,
-) -> CheckLine {
-    CheckLine { subject: "packing", quantity, value, reference, source, tolerance }
 }

@@ -1,15 +1,26 @@
 use super::CheckLine;
+use super::line::Subject;
 use crate::{Strength, clopper_pearson, mean_strength, strength_ratio, tear_probability, wilson};
 
 const NEWCOMBE: &str = "Newcombe 1998 Table I (from memory) to 4 digits; scipy, statsmodels";
 const SCIPY: &str = "scipy and statsmodels";
 const WEIBULL: &str = "Weibull 1951 (from memory), worked with scipy";
 
+const SUBJECT: Subject = Subject("statistics");
+
 pub(super) const LINES: &[fn() -> CheckLine] = &[
-    || line("Wilson interval of 81/263, lower limit", wilson(81, 263).low, 0.255_288_52, NEWCOMBE, 2e-8),
-    || line("Wilson interval of 1/29, upper limit", wilson(1, 29).high, 0.171_755_22, NEWCOMBE, 3e-8),
     || {
-        line(
+        SUBJECT.line(
+            "Wilson interval of 81/263, lower limit",
+            wilson(81, 263).low,
+            0.255_288_52,
+            NEWCOMBE,
+            2e-8,
+        )
+    },
+    || SUBJECT.line("Wilson interval of 1/29, upper limit", wilson(1, 29).high, 0.171_755_22, NEWCOMBE, 3e-8),
+    || {
+        SUBJECT.line(
             "Clopper-Pearson interval of 15/148, upper limit",
             clopper_pearson(15.0, 148.0).high,
             0.161_650_49,
@@ -18,7 +29,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
         )
     },
     || {
-        line(
+        SUBJECT.line(
             "Clopper-Pearson interval of 0/20, upper limit",
             clopper_pearson(0.0, 20.0).high,
             0.168_433_47,
@@ -27,7 +38,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
         )
     },
     || {
-        line(
+        SUBJECT.line(
             "Clopper-Pearson interval of 3/200, lower limit",
             clopper_pearson(3.0, 200.0).low,
             0.003_104_11,
@@ -37,11 +48,19 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
     },
     || {
         let value = tear_probability(&[1.0, 2.0, 0.5], &[0.5, 0.8, 1.1], &of_modulus(5.0));
-        line("weakest-link probability of three parts, m 5", value, 0.775_047_272_8, WEIBULL, 1e-10)
+        SUBJECT.line("weakest-link probability of three parts, m 5", value, 0.775_047_272_8, WEIBULL, 1e-10)
     },
-    || line("mean strength over scale, m 8", mean_strength(1.0, &of_modulus(8.0)), 0.941_743, WEIBULL, 6e-7),
     || {
-        line(
+        SUBJECT.line(
+            "mean strength over scale, m 8",
+            mean_strength(1.0, &of_modulus(8.0)),
+            0.941_743,
+            WEIBULL,
+            6e-7,
+        )
+    },
+    || {
+        SUBJECT.line(
             "strength at 1000 times the volume, m 10",
             strength_ratio(1000.0, &of_modulus(10.0)),
             0.501_187,
@@ -53,14 +72,4 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
 
 fn of_modulus(modulus: f64) -> Strength {
     Strength { scale: 1.0, modulus, volume: 1.0 }
-}
-
-fn line(
-    quantity: &'static str,
-    value: f64,
-    reference: f64,
-    source: &'static str,
-    tolerance: f64,
-) -> CheckLine {
-    CheckLine { subject: "statistics", quantity, value, reference, source, tolerance }
 }

@@ -1,16 +1,18 @@
 use super::CheckLine;
+use super::line::Subject;
 use bedswell_gel::{Gel, GelNumbers, Surroundings};
 
-const SUBJECT: &str = "thermodynamics";
 const FREE: &str = "Flory-Huggins gel (Hong et al. 2008, from memory) solved with scipy";
 const DONNAN: &str = "the same with Donnan ions (Ricka & Tanaka 1984, from memory)";
 const MODULI: &str = "drained moduli (form of Bouklas & Huang 2012, from memory), by finite differences";
 /// The references have nine digits.
 const DIGITS: f64 = 1e-8;
 
+const SUBJECT: Subject = Subject("thermodynamics");
+
 pub(super) const LINES: &[fn() -> CheckLine] = &[
     || {
-        line(
+        SUBJECT.line(
             "free stretch, n 1e-3, chi 0.2",
             gel(1e-3, 0.2, 0.0, 0.0).free_stretch(),
             3.215_021_51,
@@ -19,7 +21,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
         )
     },
     || {
-        line(
+        SUBJECT.line(
             "free stretch, n 1e-4, chi 0.4",
             gel(1e-4, 0.4, 0.0, 0.0).free_stretch(),
             4.070_460_60,
@@ -28,7 +30,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
         )
     },
     || {
-        line(
+        SUBJECT.line(
             "free stretch, n 1e-5, chi 0.5",
             gel(1e-5, 0.5, 0.0, 0.0).free_stretch(),
             3.717_379_48,
@@ -38,15 +40,15 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
     },
     || {
         let value = gel(1e-3, 0.45, 0.1, 1e-3).free_stretch();
-        line("free stretch, charges 0.1, salt 0.001 mol/L", value, 8.885_689_48, DONNAN, DIGITS)
+        SUBJECT.line("free stretch, charges 0.1, salt 0.001 mol/L", value, 8.885_689_48, DONNAN, DIGITS)
     },
     || {
         let value = gel(1e-3, 0.45, 0.1, 0.154).free_stretch();
-        line("free stretch, charges 0.1, salt 0.154 mol/L", value, 3.983_266_92, DONNAN, DIGITS)
+        SUBJECT.line("free stretch, charges 0.1, salt 0.154 mol/L", value, 3.983_266_92, DONNAN, DIGITS)
     },
     || {
         let gel = gel(1e-3, 0.2, 0.0, 0.0);
-        line(
+        SUBJECT.line(
             "bulk modulus over kT/Ω, n 1e-3, chi 0.2",
             gel.moduli().bulk() / gel.energy_density(),
             4.978_162e-4,
@@ -55,7 +57,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
         )
     },
     || {
-        line(
+        SUBJECT.line(
             "Poisson ratio, n 1e-4, chi 0.4",
             gel(1e-4, 0.4, 0.0, 0.0).moduli().poisson(),
             0.248_095_35,
@@ -66,7 +68,7 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
     || {
         let gel = gel(1e-3, 0.2, 0.0, 0.0);
         let value = gel.confining_pressure(0.5 * gel.free_volume_ratio()) / gel.energy_density();
-        line(
+        SUBJECT.line(
             "pressure over kT/Ω in a rigid cavity of half the free volume",
             value,
             8.310_277_25e-4,
@@ -76,20 +78,10 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
     },
     || {
         let value = gel(1e-3, 0.45, 0.1, 1e-3).confining_pressure(422.898_067);
-        line("pressure on a charged gel at J 422.9 (Pa)", value, 1e4, DONNAN, 1e-6)
+        SUBJECT.line("pressure on a charged gel at J 422.9 (Pa)", value, 1e4, DONNAN, 1e-6)
     },
 ];
 
 fn gel(crosslinks: f64, chi: f64, charges: f64, salt: f64) -> Gel {
     Gel::new(GelNumbers { crosslinks, chi, charges }, Surroundings { salt, ..Surroundings::default() })
-}
-
-fn line(
-    quantity: &'static str,
-    value: f64,
-    reference: f64,
-    source: &'static str,
-    tolerance: f64,
-) -> CheckLine {
-    CheckLine { subject: SUBJECT, quantity, value, reference, source, tolerance }
 }

@@ -1,7 +1,7 @@
 use super::march::{DAMPING, FIRST_STRETCH};
 use crate::{BeadAmount, RunError, Scene, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Stream, Vector, stream};
-use bedswell_grains::{Assembly, ContactLaw, Grading, Lid, PackRequest, Sides, beads_for_dose, pack};
+use bedswell_grains::{Assembly, ContactLaw, Lid, PackRequest, Sides, pack};
 use rand::RngExt;
 
 /// Overlap of a typical contact over the grain diameter under the stress at hand.
@@ -64,23 +64,9 @@ impl DryBed {
 type Parts = (Cell, Vec<Sphere>, Vec<Vector>, f64, f64);
 
 fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
-    let grading = match &scene.soil.grading {
-        SoilGrading::Sieves { openings, percent_passing, fines_cutoff } => {
-            Grading::from_sieves(openings, percent_passing, *fines_cutoff)
-        }
-        SoilGrading::Lognormal { median, spread, fines_cutoff } => {
-            Grading::lognormal(*median, *spread, *fines_cutoff)
-        }
-        SoilGrading::Spheres { .. } => return Err(RunError::Packing("listed spheres are not packed".into())),
-    }
-    .map_err(packing)?;
-    let diameters = grading.packed.sample(scene.bed.grains);
+    let grading = scene.soil.grading().map_err(packing)?;
     let count = match scene.beads.amount {
-        BeadAmount::Count(count) => count,
-        BeadAmount::Dose(dose) => {
-            let (bead, density) = (scene.beads.dry_diameter, scene.gel.dry_density);
-            beads_for_dose(dose, bead, density, &diameters, scene.soil.density).map_err(packing)?
-        }
+        BeadAmount::Count(_) | BeadAmount::Dose(_) => scene.bead_count().map_err(packing)?,
         BeadAmount::At(_) => {
             return Err(RunError::Packing(
                 "bead centres can only be given among listed spheres; give a count or a dose".into(),
@@ -88,7 +74,7 @@ fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
         }
     };
     let request = PackRequest {
-        grains: diameters,
+        grains: grading.packed.sample(scene.bed.grains),
         beads: count,
         bead_diameter: scene.beads.dry_diameter,
         porosity: scene.bed.porosity,
@@ -136,15 +122,10 @@ fn place_beads(
 ) -> Result<Vec<Vector>, RunError> {
     const TRIES: usize = 100_000;
     let radius = 0.5 * scene.beads.dry_diameter;
-    let count = match &scene.beads.amount {
-        BeadAmount::At(centres) => return Ok(centres.iter().map(|centre| Vector::from(*centre)).collect()),
-        BeadAmount::Count(count) => *count,
-        BeadAmount::Dose(dose) => {
-            let diameters: Vec<f64> = spheres.iter().map(|sphere| 2.0 * sphere.radius).collect();
-            beads_for_dose(*dose, 2.0 * radius, scene.gel.dry_density, &diameters, scene.soil.density)
-                .map_err(packing)?
-        }
-    };
+    if let BeadAmount::At(centres) = &scene.beads.amount {
+        return Ok(centres.iter().map(|centre| Vector::from(*centre)).collect());
+    }
+    let count = scene.bead_count().map_err(packing)?;
     let mut beads: Vec<Vector> = Vec::new();
     for _ in 0..TRIES {
         if beads.len() == count {
