@@ -1,0 +1,3 @@
+//! The window on a run.
+
+fn main() {}
