@@ -4,7 +4,6 @@
 mod args;
 mod commands;
 mod exit;
-mod figures;
 mod output;
 mod progress;
 

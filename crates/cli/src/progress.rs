@@ -1,8 +1,9 @@
-use crate::figures::duration;
 use crate::output::note;
+use bedswell_sim::figures::duration;
 use bedswell_sim::{Observer, Step, StudyObserver};
 use indicatif::{ProgressBar, ProgressStyle};
 use std::io::IsTerminal;
+use std::ops::ControlFlow;
 use std::time::Instant;
 
 /// Shows progress on the error stream: a bar with the time left on a terminal, a
@@ -65,9 +66,10 @@ impl Drop for Progress {
 }
 
 impl Observer for Progress {
-    fn step(&mut self, step: &Step, of: usize) {
+    fn step(&mut self, step: &Step, of: usize) -> ControlFlow<()> {
         self.at_start.get_or_insert(0);
         self.advance(step.increment as u64, of as u64);
+        ControlFlow::Continue(())
     }
 }
 

@@ -22,7 +22,7 @@ pub use datasheet::{
     volume_ratio_of_uptake,
 };
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
-pub use lattice::Lattice;
+pub use lattice::{Lattice, Locator, MaterialPoint};
 pub use obstacle::Obstacle;
 pub use relaxation::{Push, Relaxation};
 pub use stress::{Bond, StressField, asphericity};

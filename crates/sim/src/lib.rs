@@ -2,22 +2,28 @@
 
 mod check;
 mod coupling;
+pub mod figures;
 mod folder;
 mod outcome;
 mod run;
 mod scene;
+mod state;
 mod statistics;
 mod study;
 
 pub use bedswell_grains::{Grading, SizeNumbers};
 pub use check::{CheckLine, checks};
-pub use folder::{FolderError, RunSummary, prepare_run_folder, write_run_folder};
+pub use folder::{
+    FolderError, ReadError, RunFolder, RunSummary, StateRecorder, prepare_run_folder, read_run_folder,
+    remove_run_files, write_run_folder,
+};
 pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
     BeadAmount, Beads, Bed, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
     SoilGrading, Strength, Water, read_scene,
 };
+pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
     Clustered, Estimate, Interval, bootstrap_mean, clopper_pearson, clustered_fraction, mean_strength,
     strength_ratio, tear_probability, wilson,

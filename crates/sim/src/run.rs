@@ -1,16 +1,29 @@
 use crate::coupling::{DryBed, march};
-use crate::{PackOutcome, Scene};
+use crate::{PackOutcome, Scene, State, Step};
+use std::ops::ControlFlow;
 use thiserror::Error;
 
-/// Watches a pack on its way from dry to equilibrium.
+/// Watches a pack on its way from dry to equilibrium, and may stop it.
 pub trait Observer {
     /// Called after each increment reached joint equilibrium.
-    fn step(&mut self, step: &crate::Step, of: usize);
+    fn step(&mut self, step: &Step, of: usize) -> ControlFlow<()>;
+
+    /// Whether this observer wants to be shown states; they cost a little to make.
+    fn looks(&self) -> bool {
+        false
+    }
+
+    /// Shown the mixed dry bed first, and then the state after each increment.
+    fn look(&mut self, _: State) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
 }
 
 /// An observer that looks away.
 impl Observer for () {
-    fn step(&mut self, _: &crate::Step, _: usize) {}
+    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
 }
 
 /// Why a pack did not reach its end.
@@ -27,6 +40,12 @@ pub enum RunError {
         /// What happened and how to mend it.
         reason: String,
     },
+    /// The observer stopped it.
+    #[error("stopped after increment {increment}")]
+    Stopped {
+        /// The last increment that was reached.
+        increment: usize,
+    },
 }
 
 /// Takes pack number `pack` of `scene` from dry to equilibrium.
@@ -34,7 +53,8 @@ pub enum RunError {
 /// The result depends on the scene (with its seed) and the pack number alone.
 ///
 /// # Errors
-/// When the soil cannot be packed as asked or a state leaves the model.
+/// When the soil cannot be packed as asked, a state leaves the model, or the observer
+/// stops the run.
 pub fn run_pack(scene: &Scene, pack: u64, observer: &mut dyn Observer) -> Result<PackOutcome, RunError> {
     let gel = scene.swelling_gel();
     // Grains bear the lid's stress and, next to a bead, some of the gel's.

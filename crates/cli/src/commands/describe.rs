@@ -1,6 +1,6 @@
 use crate::exit::Exit;
-use crate::figures::{digits, duration, length, memory, stress};
 use crate::output::{say, say_json};
+use bedswell_sim::figures::{digits, duration, length, memory, stress};
 use bedswell_sim::{Scene, SceneEstimate, SizeNumbers, read_scene};
 use std::path::Path;
 

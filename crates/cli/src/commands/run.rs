@@ -1,18 +1,27 @@
 use crate::args::Run;
 use crate::exit::Exit;
-use crate::figures::{digits, force, length, probability, stress};
 use crate::output::{say, say_json};
 use crate::progress::Progress;
 use anyhow::Context;
-use bedswell_sim::{RunSummary, prepare_run_folder, read_scene, run_pack, write_run_folder};
+use bedswell_sim::figures::{digits, force, length, probability, stress};
+use bedswell_sim::{
+    RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack, write_run_folder,
+};
 use std::path::Path;
 
 /// Takes one pack from dry to equilibrium and writes its folder.
 pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
     let scene = read_scene(&arguments.scene)?;
     prepare_run_folder(&arguments.out, &scene, arguments.pack)?;
-    let outcome = run_pack(&scene, arguments.pack, &mut Progress::new("increments"))
-        .with_context(|| arguments.scene.display().to_string())?;
+    let mut progress = Progress::new("increments");
+    let mut recorder = StateRecorder::new(&arguments.out, &mut progress);
+    let ended = run_pack(&scene, arguments.pack, &mut recorder);
+    if let Err(error) = recorder.finish() {
+        remove_run_files(&arguments.out);
+        return Err(error.into());
+    }
+    let outcome = ended.with_context(|| arguments.scene.display().to_string())?;
+    drop(progress);
     let summary = write_run_folder(&arguments.out, &scene, &outcome, arguments.csv)?;
     if json {
         say_json(&summary)?;

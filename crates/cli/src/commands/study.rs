@@ -1,8 +1,8 @@
 use crate::args::Study;
 use crate::exit::Exit;
-use crate::figures::{digits, estimate, length, probability, stress};
 use crate::output::{say, say_json};
 use crate::progress::Progress;
+use bedswell_sim::figures::{digits, estimate, length, probability, stress};
 use bedswell_sim::{LevelSummary, StudyOptions, StudySummary, read_study, run_pack, run_study};
 use std::path::Path;
 

@@ -1,8 +1,10 @@
 mod cut_cell;
+mod locate;
 mod skin;
 
 use crate::lanes::WIDTH;
 use cut_cell::CutCell;
+pub use locate::{Locator, MaterialPoint};
 pub(crate) use skin::Skin;
 use std::collections::HashMap;
 
@@ -114,7 +116,7 @@ impl Lattice {
     }
 
     /// Gel in a voxel when dry (voxel volumes).
-    pub(crate) fn filled(&self, voxel: usize) -> f64 {
+    pub fn filled(&self, voxel: usize) -> f64 {
         self.volume[self.slots[voxel] as usize]
     }
 
@@ -161,7 +163,7 @@ impl Lattice {
     }
 
     /// The eight nodes of a voxel, x fastest.
-    pub(crate) fn corners_of(&self, voxel: usize) -> [usize; 8] {
+    pub fn corners_of(&self, voxel: usize) -> [usize; 8] {
         let run = self.runs.partition_point(|run| run.voxel <= voxel) - 1;
         Self::corners(&self.runs[run], voxel - self.runs[run].voxel)
     }

@@ -49,7 +49,7 @@ impl Skin {
         };
         for point in 0..skin.direction.len() {
             let place = skin.direction[point].map(|c| half * (1.0 + c));
-            let voxel = host(place, cells);
+            let voxel = host(place, |voxel| cells.contains_key(voxel));
             skin.host.push(voxel_at[&voxel]);
             for (node, weight) in combination(place, voxel, node_at) {
                 skin.node.push(node as u32);
@@ -109,7 +109,7 @@ fn directions(across: usize) -> Vec<[f64; 3]> {
 }
 
 /// The kept voxel that carries a point: the one that contains it, or else the nearest.
-fn host(place: [f64; 3], cells: &HashMap<[u16; 3], CutCell>) -> [u16; 3] {
+pub(super) fn host(place: [f64; 3], is_kept: impl Fn(&[u16; 3]) -> bool) -> [u16; 3] {
     let mut best = ([0; 3], f64::INFINITY);
     let around = place.map(|c| c.floor() as i32);
     for k in 0..125 {
@@ -119,7 +119,7 @@ fn host(place: [f64; 3], cells: &HashMap<[u16; 3], CutCell>) -> [u16; 3] {
         else {
             continue;
         };
-        if !cells.contains_key(&voxel) {
+        if !is_kept(&voxel) {
             continue;
         }
         let distance: f64 = (0..3)
@@ -137,7 +137,7 @@ fn host(place: [f64; 3], cells: &HashMap<[u16; 3], CutCell>) -> [u16; 3] {
 
 /// The nodes and weights that give a point in (or just outside) a voxel: trilinear,
 /// less ½ ξ(1 - ξ) times a share of the second difference along each axis.
-fn combination(place: [f64; 3], voxel: [u16; 3], node_at: &NodeIndex) -> Vec<(usize, f64)> {
+pub(super) fn combination(place: [f64; 3], voxel: [u16; 3], node_at: &NodeIndex) -> Vec<(usize, f64)> {
     let local: [f64; 3] = std::array::from_fn(|axis| place[axis] - f64::from(voxel[axis]));
     let corners = corner_places(&voxel);
     let mut terms: Vec<(usize, f64)> = Vec::with_capacity(32);

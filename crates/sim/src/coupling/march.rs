@@ -57,6 +57,16 @@ pub(crate) fn march(
     let count = scene.march.increments;
     let mut history = Vec::with_capacity(count);
     let mut stretch = start;
+    if observer.looks() {
+        // The grains' contacts before anything swells, without touching the march.
+        let mut dry = March { grains: march.grains.clone(), ..March::new(scene, &bed, gel) };
+        dry.grains.compute_contacts();
+        let stage = gel.limited_to(start);
+        let step = watch.step(0, &stage, &dry.beads, &dry.grains, Quality::default());
+        if observer.look(dry.snapshot(scene, number, &stage, step)).is_break() {
+            return Err(RunError::Stopped { increment: 0 });
+        }
+    }
     for increment in 1..=count {
         let next = start * (free / start).powf(increment as f64 / count as f64);
         let stage = if increment == count { *gel } else { gel.limited_to(next) };
@@ -72,8 +82,14 @@ pub(crate) fn march(
         measure::guard(&march.beads, &march.around, &march.grains)
             .map_err(|reason| RunError::March { increment, reason })?;
         let step = watch.step(increment, &stage, &march.beads, &march.grains, march.quality(&stage));
-        observer.step(&step, count);
         history.push(step);
+        let mut onwards = observer.step(&step, count);
+        if observer.looks() && onwards.is_continue() {
+            onwards = observer.look(march.snapshot(scene, number, &stage, step));
+        }
+        if onwards.is_break() {
+            return Err(RunError::Stopped { increment });
+        }
     }
     let after = march.grains.centres.iter();
     let positions = before
@@ -100,12 +116,12 @@ pub(crate) fn march(
 }
 
 /// Grains and beads in motion.
-struct March {
-    grains: Assembly,
-    beads: Vec<Relaxation>,
-    around: Vec<Neighbourhood>,
+pub(super) struct March {
+    pub(super) grains: Assembly,
+    pub(super) beads: Vec<Relaxation>,
+    pub(super) around: Vec<Neighbourhood>,
     /// Pairs of beads that may touch, with the image of the second seen by the first.
-    pairs: Vec<Pair>,
+    pub(super) pairs: Vec<Pair>,
     /// The beads' centres are held.
     hold_beads: bool,
     /// Distance moved since contacts were last looked for (m).
@@ -113,12 +129,14 @@ struct March {
 }
 
 /// Two beads that may touch.
-struct Pair {
-    first: usize,
-    second: usize,
+pub(super) struct Pair {
+    pub(super) first: usize,
+    pub(super) second: usize,
     /// Shift of the second to the image that the first sees (m).
     shift: Vector,
     contact: BeadContact,
+    /// Force on the first (N).
+    pub(super) force: Vector,
 }
 
 impl March {
@@ -242,9 +260,9 @@ impl March {
             let grains = &mut self.grains;
             bead.compute_forces(gel, &around.obstacles, |push| around.pass_on(push, grains));
         }
-        for Pair { first, second, shift, contact } in &self.pairs {
+        for Pair { first, second, shift, contact, force } in &mut self.pairs {
             let (before, after) = self.beads.split_at_mut(*second);
-            contact.press(&mut before[*first], &mut after[0], *shift);
+            *force = contact.press(&mut before[*first], &mut after[0], *shift);
         }
     }
 
@@ -259,7 +277,7 @@ impl March {
                 let shift = centre + self.grains.cell.separation(&centre, &towards) - towards;
                 let contact = BeadContact::find(one, other, shift, reach);
                 if !contact.is_empty() {
-                    self.pairs.push(Pair { first, second, shift, contact });
+                    self.pairs.push(Pair { first, second, shift, contact, force: Vector::zeros() });
                 }
             }
         }

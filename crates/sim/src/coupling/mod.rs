@@ -5,6 +5,7 @@ mod bed;
 mod march;
 mod measure;
 mod neighbourhood;
+mod snapshot;
 
 pub(crate) use bed::DryBed;
 pub(crate) use march::march;

@@ -6,13 +6,13 @@ use bedswell_grains::Assembly;
 /// near it, in an order that never changes.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Neighbourhood {
-    grains: Vec<usize>,
+    pub(super) grains: Vec<usize>,
     /// Where they are now, next to the bead.
     pub(super) obstacles: Vec<Obstacle>,
 }
 
 /// Obstacles before the first grain.
-const PLATES: usize = 2;
+pub(super) const PLATES: usize = 2;
 
 impl Neighbourhood {
     /// Adds the grains that came within `reach` (m) of the bead.

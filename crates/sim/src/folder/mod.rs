@@ -1,12 +1,17 @@
 mod atomic;
 mod error;
 mod fingerprint;
+mod read_run;
+mod recorder;
 mod run_folder;
+mod states;
 mod table;
 mod tables;
 
 pub use error::FolderError;
-pub use run_folder::{RunSummary, prepare_run_folder, write_run_folder};
+pub use read_run::{ReadError, RunFolder, read_run_folder};
+pub use recorder::StateRecorder;
+pub use run_folder::{RunSummary, prepare_run_folder, remove_run_files, write_run_folder};
 
 pub(crate) use atomic::write_atomically;
 pub(crate) use fingerprint::{checksum, fingerprint};

@@ -1,16 +1,20 @@
 use super::atomic::write_text;
+use super::states::{STATES_FOLDER, read_state, state_path};
 use super::tables::{beads_table, grains_table, history_table};
 use super::{FolderError, fingerprint};
-use crate::{BeadOutcome, PackOutcome, Quality, SPHERES_FILE, Scene};
+use crate::{BeadOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
 use serde::{Deserialize, Serialize};
 use std::fs;
 use std::path::Path;
 
-const SUMMARY_FILE: &str = "summary.json";
-/// Every file of a run folder.
+/// Written last: a folder with a summary is complete.
+pub(super) const SUMMARY_FILE: &str = "summary.json";
+/// Written first.
+pub(super) const SCENE_FILE: &str = "scene.toml";
+/// Every file of a run folder, besides the states.
 const FILES: [&str; 9] = [
     SUMMARY_FILE,
-    "scene.toml",
+    SCENE_FILE,
     SPHERES_FILE,
     "history.parquet",
     "history.csv",
@@ -72,27 +76,59 @@ impl RunSummary {
     }
 }
 
-/// Makes the folder of a run ready before anything is computed.
+/// Makes the folder of a run ready before anything is computed, and writes the scene into
+/// it: from then on it can be looked into, and running again finishes it.
 ///
 /// # Errors
-/// When it cannot be written, or holds anything but an earlier run of the same
-/// pack of the same scene.
+/// When it cannot be written, or holds anything but an earlier run, finished or not, of
+/// the same pack of the same scene.
 pub fn prepare_run_folder(folder: &Path, scene: &Scene, pack: u64) -> Result<(), FolderError> {
     fs::create_dir_all(folder).map_err(FolderError::write(folder))?;
     let mut entries = fs::read_dir(folder).map_err(FolderError::write(folder))?;
     if entries.next().is_some() {
-        let occupied = |what: &str| FolderError::Occupied { path: folder.to_owned(), what: what.to_owned() };
-        let summary = fs::read_to_string(folder.join(SUMMARY_FILE))
-            .map_err(|_| occupied("files that are no finished run"))?;
-        let summary: RunSummary = serde_json::from_str(&summary)
-            .map_err(|_| occupied("something other than a run of this version"))?;
-        if summary.fingerprint != fingerprint([scene].into_iter()) || summary.pack != pack {
-            return Err(occupied("the run of another scene, pack or version"));
-        }
+        check_owner(folder, &fingerprint([scene].into_iter()), pack)?;
     }
-    // Ask now whether the folder takes files, not after the work.
-    let probe = folder.join(".bedswell.part");
-    fs::write(&probe, b"").and_then(|()| fs::remove_file(&probe)).map_err(FolderError::write(folder))
+    let prepared = write_scene(folder, SCENE_FILE, scene).and_then(|()| {
+        let states = folder.join(STATES_FOLDER);
+        fs::create_dir_all(&states).map_err(FolderError::write(&states))
+    });
+    if prepared.is_err() {
+        remove_run_files(folder);
+    }
+    prepared
+}
+
+/// Refuses a folder that is not this run's.
+fn check_owner(folder: &Path, fingerprint: &str, pack: u64) -> Result<(), FolderError> {
+    let occupied = |what: &str| Err(FolderError::Occupied { path: folder.to_owned(), what: what.to_owned() });
+    let (found, found_pack) = if let Ok(summary) = fs::read_to_string(folder.join(SUMMARY_FILE)) {
+        match serde_json::from_str::<RunSummary>(&summary) {
+            Ok(summary) => (summary.fingerprint, summary.pack),
+            Err(_) => return occupied("something other than a run of this version"),
+        }
+    } else if let Ok(state) = read_state(&state_path(folder, 0)) {
+        (state.fingerprint, state.pack)
+    } else if let Ok(scene) = read_scene(&folder.join(SCENE_FILE))
+        && folder.join(STATES_FOLDER).is_dir()
+    {
+        // Stopped before its first state: nothing to lose.
+        (super::fingerprint([&scene].into_iter()), pack)
+    } else {
+        return occupied("files that are no run");
+    };
+    if found != fingerprint || found_pack != pack {
+        return occupied("the run of another scene, pack or version");
+    }
+    Ok(())
+}
+
+/// Removes what this run has written so far; most may never have been.
+pub fn remove_run_files(folder: &Path) {
+    // The error of the write that failed is the one to report.
+    for name in FILES {
+        let _ = fs::remove_file(folder.join(name));
+    }
+    let _ = fs::remove_dir_all(folder.join(STATES_FOLDER));
 }
 
 /// Writes everything a run came to; the summary last, so that a folder with a
@@ -108,10 +144,7 @@ pub fn write_run_folder(
 ) -> Result<RunSummary, FolderError> {
     let written = write_files(folder, scene, outcome, csv);
     if written.is_err() {
-        for name in FILES {
-            // Most were never written; the error of the write is the one to report.
-            let _ = fs::remove_file(folder.join(name));
-        }
+        remove_run_files(folder);
     }
     written
 }
@@ -122,7 +155,6 @@ fn write_files(
     outcome: &PackOutcome,
     csv: bool,
 ) -> Result<RunSummary, FolderError> {
-    write_scene(folder, "scene.toml", scene)?;
     history_table(&outcome.history).write(folder, "history", csv)?;
     beads_table(&outcome.beads).write(folder, "beads", csv)?;
     grains_table(&outcome.positions).write(folder, "grains", csv)?;

@@ -1,9 +1,9 @@
 //! Figures as people write them: scaled units, three digits.
 
-use bedswell_sim::Estimate;
+use crate::Estimate;
 
 /// Three significant digits, without an exponent where that stays readable.
-pub(crate) fn digits(value: f64) -> String {
+pub fn digits(value: f64) -> String {
     // Rounded first, so that 0.9999 becomes 1.00 and not 1.000.
     let value: f64 = format!("{value:.2e}").parse().unwrap_or(value);
     if value == 0.0 {
@@ -18,22 +18,22 @@ pub(crate) fn digits(value: f64) -> String {
 }
 
 /// A probability; one that no number of packs could tell from nought is not spelled out.
-pub(crate) fn probability(value: f64) -> String {
+pub fn probability(value: f64) -> String {
     if 0.0 < value && value < 1e-4 { "below 0.0001".into() } else { digits(value) }
 }
 
 /// A length (m) in m, mm or µm.
-pub(crate) fn length(metres: f64) -> String {
+pub fn length(metres: f64) -> String {
     scaled(metres, &[(1.0, 1.0, "m"), (1e-5, 1e-3, "mm"), (0.0, 1e-6, "µm")])
 }
 
 /// A stress (Pa) in MPa, kPa or Pa.
-pub(crate) fn stress(pascals: f64) -> String {
+pub fn stress(pascals: f64) -> String {
     scaled(pascals, &[(1e6, 1e6, "MPa"), (1e2, 1e3, "kPa"), (0.0, 1.0, "Pa")])
 }
 
 /// A force (N) in N, mN or µN.
-pub(crate) fn force(newtons: f64) -> String {
+pub fn force(newtons: f64) -> String {
     scaled(newtons, &[(1.0, 1.0, "N"), (1e-4, 1e-3, "mN"), (0.0, 1e-6, "µN")])
 }
 
@@ -46,7 +46,7 @@ fn scaled(value: f64, units: &[(f64, f64, &str)]) -> String {
 }
 
 /// A duration (s) as one says it: whole seconds, minutes, or hours with a decimal.
-pub(crate) fn duration(seconds: f64) -> String {
+pub fn duration(seconds: f64) -> String {
     match seconds {
         ..1.0 => "1 s".into(),
         ..90.0 => format!("{seconds:.0} s"),
@@ -56,12 +56,12 @@ pub(crate) fn duration(seconds: f64) -> String {
 }
 
 /// Memory (bytes) as one says it, in MB or GB.
-pub(crate) fn memory(bytes: f64) -> String {
+pub fn memory(bytes: f64) -> String {
     if bytes < 1e9 { format!("{:.0} MB", bytes / 1e6) } else { format!("{:.1} GB", bytes / 1e9) }
 }
 
 /// A mean and its interval, each in words by `show`.
-pub(crate) fn estimate(estimate: Option<Estimate>, show: fn(f64) -> String) -> String {
+pub fn estimate(estimate: Option<Estimate>, show: fn(f64) -> String) -> String {
     match estimate {
         None => "not known".into(),
         Some(Estimate { mean, low: Some(low), high: Some(high) }) => {

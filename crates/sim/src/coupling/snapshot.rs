@@ -1,0 +1,86 @@
+use super::march::March;
+use super::neighbourhood::PLATES;
+use crate::state::{BeadContact, BeadState, GrainContact, State, Touched};
+use crate::{Scene, Step};
+use bedswell_gel::{Gel, Relaxation, StressField};
+use bedswell_geometry::{Matrix, Vector};
+use bedswell_grains::Partner;
+
+impl March {
+    /// What there is to see of this march at `step`.
+    pub(super) fn snapshot(&self, scene: &Scene, pack: u64, stage: &Gel, step: Step) -> State {
+        let cell = self.grains.cell;
+        let contacts = self.grains.contacts().map(|contact| GrainContact {
+            grain: contact.grain as u32,
+            on: match contact.partner {
+                Partner::Grain(grain) => Touched::Grain(grain as u32),
+                Partner::Floor => Touched::Floor,
+                Partner::Lid => Touched::Lid,
+            },
+            force: contact.force as f32,
+        });
+        State {
+            fingerprint: crate::folder::fingerprint([scene].into_iter()),
+            pack,
+            increments: scene.march.increments,
+            step,
+            cell: single(&cell.size),
+            periodic: cell.periodic,
+            centres: self.grains.spheres().iter().map(|sphere| single(&sphere.centre)).collect(),
+            radii: self.grains.radii.iter().map(|&radius| radius as f32).collect(),
+            contacts: contacts.collect(),
+            beads: (0..self.beads.len()).map(|bead| self.bead_state(bead, stage)).collect(),
+        }
+    }
+
+    fn bead_state(&self, index: usize, stage: &Gel) -> BeadState {
+        let relaxing = &self.beads[index];
+        let bead = relaxing.bead();
+        let field = StressField::of(bead, stage);
+        let dry = bead.voxel_edge().powi(3);
+        BeadState {
+            across: bead.lattice().across() as u16,
+            dry_radius: bead.dry_radius() as f32,
+            nodes: (0..bead.lattice().node_count()).map(|node| single(&bead.node(node))).collect(),
+            stress: field.stress.iter().map(components).collect(),
+            swelling: (field.volume.iter().enumerate())
+                .map(|(voxel, volume)| (volume / (bead.lattice().filled(voxel) * dry)) as f32)
+                .collect(),
+            bonds: field.bonds(bead).iter().map(|bond| bond.tension as f32).collect(),
+            touches: self.touches(index, relaxing),
+        }
+    }
+
+    fn touches(&self, index: usize, relaxing: &Relaxation) -> Vec<BeadContact> {
+        let around = &self.around[index];
+        let forces = relaxing.contact_forces(&around.obstacles);
+        let on_obstacles =
+            forces.iter().enumerate().filter(|(_, force)| force.norm() > 0.0).map(|(obstacle, force)| {
+                BeadContact {
+                    on: match obstacle {
+                        0 => Touched::Floor,
+                        1 => Touched::Lid,
+                        grain => Touched::Grain(around.grains[grain - PLATES] as u32),
+                    },
+                    force: single(force),
+                }
+            });
+        let on_beads = self.pairs.iter().filter(|pair| pair.force.norm() > 0.0).filter_map(|pair| {
+            let (other, force) = match index {
+                first if first == pair.first => (pair.second, -pair.force),
+                second if second == pair.second => (pair.first, pair.force),
+                _ => return None,
+            };
+            Some(BeadContact { on: Touched::Bead(other as u32), force: single(&force) })
+        });
+        on_obstacles.chain(on_beads).collect()
+    }
+}
+
+fn single(vector: &Vector) -> [f32; 3] {
+    vector.map(|x| x as f32).into()
+}
+
+fn components(stress: &Matrix) -> [f32; 6] {
+    [(0, 0), (1, 1), (2, 2), (1, 2), (2, 0), (0, 1)].map(|place| stress[place] as f32)
+}
