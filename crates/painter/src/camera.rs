@@ -38,11 +38,8 @@ impl Camera {
     pub fn new(pose: &Pose, size: Size) -> Self {
         let (azimuth, elevation) =
             (pose.azimuth.to_radians(), pose.elevation.clamp(-89.0, 89.0).to_radians());
-        let back = Point::new(
-            elevation.cos() * azimuth.cos(),
-            elevation.cos() * azimuth.sin(),
-            elevation.sin(),
-        );
+        let back =
+            Point::new(elevation.cos() * azimuth.cos(), elevation.cos() * azimuth.sin(), elevation.sin());
         let right = Point::new(-azimuth.sin(), azimuth.cos(), 0.0);
         let up = back.cross(&right);
         let focal = 0.5 * size.height as f32 / (0.5 * Self::FIELD_OF_VIEW.to_radians()).tan();

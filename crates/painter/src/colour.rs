@@ -23,3 +23,16 @@ impl Colour {
         Self { a, ..self }
     }
 }
+
+impl Colour {
+    /// Red, green, blue, opacity.
+    pub const fn bytes(self) -> [u8; 4] {
+        [self.r, self.g, self.b, self.a]
+    }
+}
+
+impl From<[u8; 4]> for Colour {
+    fn from([r, g, b, a]: [u8; 4]) -> Self {
+        Self { r, g, b, a }
+    }
+}

@@ -1,3 +1,5 @@
+use crate::Colour;
+
 /// Width and height of a picture (pixels).
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub struct Size {
@@ -14,4 +16,23 @@ pub struct Image {
     pub size: Size,
     /// Its bytes: red, green, blue, opacity.
     pub pixels: Vec<u8>,
+}
+
+impl Image {
+    /// A picture of one colour.
+    pub fn new(size: Size, colour: Colour) -> Self {
+        Self { size, pixels: colour.bytes().repeat(size.width as usize * size.height as usize) }
+    }
+
+    /// The colour of a pixel.
+    ///
+    /// # Panics
+    ///
+    /// Outside the picture.
+    #[track_caller]
+    pub fn pixel(&self, x: u32, y: u32) -> Colour {
+        assert!(x < self.size.width && y < self.size.height, "({x}, {y}) is outside {:?}", self.size);
+        let at = 4 * (y as usize * self.size.width as usize + x as usize);
+        Colour::from([self.pixels[at], self.pixels[at + 1], self.pixels[at + 2], self.pixels[at + 3]])
+    }
 }

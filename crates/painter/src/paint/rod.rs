@@ -1,0 +1,136 @@
+use super::bins::Bounds;
+use super::tile::{FLAT, SIDE, Tile};
+use super::view::{NEAR, Seen, View};
+use crate::{Rod, srgb::Srgb};
+
+/// A rod as the camera sees it: a strip with round ends.
+pub(super) struct Strip {
+    pub(super) bounds: Bounds,
+    /// Depth of its nearer end.
+    pub(super) nearest: f32,
+    from: [f64; 2],
+    unit: [f64; 2],
+    length: f64,
+    /// Half its width at each end (samples).
+    half: [f32; 2],
+    /// Reciprocal depth at each end.
+    closeness: [f32; 2],
+    colours: [[u8; 4]; 2],
+    /// Whether each end is where a plane cut it, and so has no round cap.
+    blunt: [bool; 2],
+}
+
+impl Strip {
+    /// `None` if it cannot be seen.
+    pub(super) fn new(view: &View, cut: Option<&(Seen, f64)>, rod: &Rod) -> Option<Self> {
+        let ends = [view.place(&rod.ends[0])?, view.place(&rod.ends[1])?];
+        let radius = view.length(rod.radius);
+        if !radius.is_finite() {
+            return None;
+        }
+        let mut part = [0.0, 1.0];
+        let mut keep = |before: [f64; 2]| {
+            let crossing = before[0] / (before[0] - before[1]);
+            match before.map(|distance| distance > 0.0) {
+                [true, true] => part = [1.0, 0.0],
+                [true, false] => part[0] = crossing.max(part[0]),
+                [false, true] => part[1] = crossing.min(part[1]),
+                [false, false] => {}
+            }
+        };
+        keep(ends.map(|end| NEAR - end.z));
+        if let Some((normal, offset)) = cut {
+            keep(ends.map(|end| normal.dot(&end) - offset));
+        }
+        if part[0] > part[1] {
+            return None;
+        }
+
+        let colours = rod.colours.map(|colour| colour.bytes());
+        let at = |fraction: f64| {
+            let place = ends[0] + (ends[1] - ends[0]) * fraction;
+            let half = (radius / place.z * view.focal()).max(0.5 * view.samples as f64);
+            (view.project(&place), place.z, half)
+        };
+        let tint = |fraction: f64| match fraction {
+            0.0 => colours[0],
+            1.0 => colours[1],
+            _ => Srgb::tables().blend(colours[0], colours[1], fraction as f32),
+        };
+        let [(from, near, thick), (to, far, thin)] = part.map(at);
+        let widest = thick.max(thin);
+        let along = [to[0] - from[0], to[1] - from[1]];
+        let length = along[0].hypot(along[1]);
+        Some(Self {
+            bounds: view.bounds(
+                std::array::from_fn(|axis| from[axis].min(to[axis]) - widest),
+                std::array::from_fn(|axis| from[axis].max(to[axis]) + widest),
+            )?,
+            nearest: near.min(far) as f32,
+            from,
+            unit: if length > 0.0 { along.map(|part| part / length) } else { [1.0, 0.0] },
+            length,
+            half: [thick as f32, thin as f32],
+            closeness: [(1.0 / near) as f32, (1.0 / far) as f32],
+            colours: part.map(tint),
+            blunt: [part[0] > 0.0, part[1] < 1.0],
+        })
+    }
+
+    pub(super) fn is_opaque(&self) -> bool {
+        self.colours.iter().all(|colour| colour[3] == 255)
+    }
+
+    /// Depth of its middle.
+    pub(super) fn depth(&self) -> f64 {
+        2.0 / f64::from(self.closeness[0] + self.closeness[1])
+    }
+
+    /// Passes on each sample of a tile where it is the nearest.
+    #[inline(always)]
+    pub(super) fn scan(&self, tile: &mut Tile, put: impl Fn(&mut Tile, usize, f32, [u8; 4], f32)) {
+        let widest = f64::from(self.half[0].max(self.half[1]));
+        let closer = self.closeness[1] - self.closeness[0];
+        let wider = self.half[1] - self.half[0];
+        let shorten = if self.length > 0.0 { 1.0 / self.length } else { 0.0 };
+        let even = self.colours[0] == self.colours[1];
+        for line in tile.rows(self.bounds.top, self.bounds.bottom + 1) {
+            let y = f64::from(tile.corner[1] + line as i32) + 0.5 - self.from[1];
+            let (left, right) = self.reach(y, widest);
+            for column in tile.columns(left.max(self.bounds.left), right.min(self.bounds.right) + 1) {
+                let x = f64::from(tile.corner[0] + column as i32) + 0.5 - self.from[0];
+                let forward = x * self.unit[0] + y * self.unit[1];
+                let aside = x * self.unit[1] - y * self.unit[0];
+                let along = forward.clamp(0.0, self.length);
+                let fraction = (along * shorten) as f32;
+                let half = self.half[0] + wider * fraction;
+                let beyond = forward - along;
+                let blunt = beyond < 0.0 && self.blunt[0] || beyond > 0.0 && self.blunt[1];
+                if blunt || (aside * aside + beyond * beyond) as f32 > half * half {
+                    continue;
+                }
+                let depth = 1.0 / (self.closeness[0] + closer * fraction);
+                let at = line * SIDE + column;
+                if depth < tile.depth[at] {
+                    let colour = if even {
+                        self.colours[0]
+                    } else {
+                        let share = fraction * self.closeness[1] * depth;
+                        Srgb::tables().blend(self.colours[0], self.colours[1], share)
+                    };
+                    put(tile, at, depth, colour, FLAT);
+                }
+            }
+        }
+    }
+
+    /// The columns that a row at a height below the first end crosses at most.
+    fn reach(&self, y: f64, widest: f64) -> (i32, i32) {
+        if self.unit[1].abs() < 1e-6 {
+            return (i32::MIN, i32::MAX);
+        }
+        let middle = self.from[0] + y * self.unit[0] / self.unit[1];
+        let half = (widest / self.unit[1]).abs();
+        ((middle - half).floor() as i32, (middle + half).ceil() as i32)
+    }
+}

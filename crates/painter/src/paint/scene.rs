@@ -1,0 +1,131 @@
+use super::ball::Sphere;
+use super::bins::{Bins, Bounds, Grid};
+use super::mesh::{self, Facet, Surface};
+use super::rod::Strip;
+use super::tile::Tile;
+use super::view::{Seen, View};
+use crate::{Camera, Drawing};
+use rayon::prelude::*;
+
+/// How many balls are painted between looks at whether the rest can be seen at all.
+const LOOK: usize = 8;
+
+/// A drawing as the camera sees it, sorted to the tiles of the picture.
+pub(super) struct Scene<'a> {
+    pub(super) view: View,
+    pub(super) grid: Grid,
+    pub(super) background: [u8; 4],
+    cut: Option<(Seen, f64)>,
+    balls: Sorted<Sphere>,
+    rods: Sorted<Strip>,
+    facets: Sorted<Facet>,
+    surfaces: Vec<Surface<'a>>,
+    veils: Sorted<Veil>,
+}
+
+/// Things and the tiles that they touch.
+struct Sorted<T> {
+    things: Vec<T>,
+    bins: Bins,
+}
+
+impl<T> Sorted<T> {
+    fn new(grid: &Grid, things: Vec<T>, bounds: impl Fn(&T) -> Bounds) -> Self {
+        Self { bins: Bins::new(grid, &things, bounds), things }
+    }
+
+    fn at(&self, place: usize) -> impl Iterator<Item = &T> {
+        self.bins.at(place).map(|number| &self.things[number])
+    }
+}
+
+/// Something that lets light through.
+enum Veil {
+    Ball(Sphere),
+    Rod(Strip),
+    Facet(Facet),
+}
+
+impl<'a> Scene<'a> {
+    pub(super) fn new(drawing: &'a Drawing, camera: &Camera, samples: usize) -> Self {
+        let view = View::new(camera, samples);
+        let size = camera.size;
+        let grid = Grid::new(size.width as usize * samples, size.height as usize * samples);
+        let cut = drawing.cut.as_ref().map(|plane| view.plane(plane));
+
+        let balls = drawing.balls.par_iter().filter_map(|ball| Sphere::new(&view, cut.as_ref(), ball));
+        let (mut balls, ghosts): (Vec<_>, Vec<_>) = balls.partition(|ball| ball.colour[3] == 255);
+        balls.par_sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
+        let rods = drawing.rods.par_iter().filter_map(|rod| Strip::new(&view, cut.as_ref(), rod));
+        let (rods, clear_rods): (Vec<_>, Vec<_>) = rods.partition(Strip::is_opaque);
+        let surfaces: Vec<_> = drawing.meshes.iter().map(|mesh| Surface::new(&view, mesh)).collect();
+
+        let mut veils: Vec<(f64, Veil)> = Vec::new();
+        veils.extend(ghosts.into_iter().map(|ball| (ball.centre.z, Veil::Ball(ball))));
+        veils.extend(clear_rods.into_iter().map(|rod| (rod.depth(), Veil::Rod(rod))));
+        let mut facets = Vec::new();
+        for (number, surface) in surfaces.iter().enumerate() {
+            let of_surface = mesh::facets(&view, number, surface);
+            if surface.is_opaque() {
+                facets.extend(of_surface);
+            } else {
+                let depth = surface.depth();
+                veils.extend(mesh::from_behind(of_surface).map(|facet| (depth, Veil::Facet(facet))));
+            }
+        }
+        veils.sort_by(|a, b| b.0.total_cmp(&a.0));
+        let veils = veils.into_iter().map(|(_, veil)| veil).collect();
+
+        Self {
+            background: drawing.background.bytes(),
+            balls: Sorted::new(&grid, balls, |ball| ball.bounds),
+            rods: Sorted::new(&grid, rods, |rod| rod.bounds),
+            facets: Sorted::new(&grid, facets, |facet| facet.bounds),
+            veils: Sorted::new(&grid, veils, |veil| match veil {
+                Veil::Ball(ball) => ball.bounds,
+                Veil::Rod(rod) => rod.bounds,
+                Veil::Facet(facet) => facet.bounds,
+            }),
+            surfaces,
+            cut,
+            grid,
+            view,
+        }
+    }
+
+    /// Paints what hides other things.
+    pub(super) fn paint_opaque(&self, tile: &mut Tile, place: usize) {
+        let mut farthest = f32::INFINITY;
+        for (number, ball) in self.balls.at(place).enumerate() {
+            if number % LOOK == LOOK - 1 {
+                farthest = tile.farthest();
+            }
+            if ball.nearest > farthest {
+                break;
+            }
+            ball.paint(&self.view, self.cut.as_ref(), tile);
+        }
+        for facet in self.facets.at(place) {
+            let surface = &self.surfaces[facet.surface];
+            facet.scan(&self.view, self.cut.as_ref(), surface, tile, Tile::put);
+        }
+        let farthest = tile.farthest();
+        for rod in self.rods.at(place).filter(|rod| rod.nearest <= farthest) {
+            rod.scan(tile, Tile::put);
+        }
+    }
+
+    /// Lays what lets light through over the rest, from back to front.
+    pub(super) fn paint_veils(&self, tile: &mut Tile, place: usize) {
+        for veil in self.veils.at(place) {
+            match veil {
+                Veil::Ball(ball) => ball.paint_ghost(&self.view, self.cut.as_ref(), tile),
+                Veil::Rod(rod) => rod.scan(tile, Tile::veil),
+                Veil::Facet(facet) => {
+                    let surface = &self.surfaces[facet.surface];
+                    facet.scan(&self.view, self.cut.as_ref(), surface, tile, Tile::veil);
+                }
+            }
+        }
+    }
+}

@@ -1,0 +1,94 @@
+use std::sync::LazyLock;
+
+/// Steps of linear light that are told apart on the way back to bytes: enough that every
+/// byte survives the round trip, also in the dark where sRGB is steepest.
+const STEPS: usize = 16384;
+
+/// Both ways between sRGB bytes and linear light (IEC 61966-2-1).
+pub(crate) struct Srgb {
+    linear: [f32; 256],
+    bytes: Vec<u8>,
+}
+
+static SRGB: LazyLock<Srgb> = LazyLock::new(|| Srgb {
+    linear: std::array::from_fn(|byte| decode(byte as f64 / 255.0) as f32),
+    bytes: (0..=STEPS).map(|step| (255.0 * encode(step as f64 / STEPS as f64)).round() as u8).collect(),
+});
+
+impl Srgb {
+    /// The tables; made once.
+    pub(crate) fn tables() -> &'static Self {
+        &SRGB
+    }
+
+    /// Linear light of a byte, 0 to 1.
+    #[inline(always)]
+    pub(crate) fn linear(&self, byte: u8) -> f32 {
+        self.linear[usize::from(byte)]
+    }
+
+    /// The nearest byte; light beyond 0 to 1 is cut off.
+    #[inline(always)]
+    pub(crate) fn byte(&self, linear: f32) -> u8 {
+        self.bytes[((linear * STEPS as f32 + 0.5) as usize).min(STEPS)]
+    }
+
+    /// Part way from one colour to another in linear light; opacity as it is.
+    pub(crate) fn blend(&self, from: [u8; 4], to: [u8; 4], fraction: f32) -> [u8; 4] {
+        self.weigh([(from, 1.0 - fraction), (to, fraction)])
+    }
+
+    /// The weighted mean of colours in linear light; opacity as it is.
+    pub(crate) fn weigh<const N: usize>(&self, parts: [([u8; 4], f32); N]) -> [u8; 4] {
+        let sum = |channel: usize| -> f32 {
+            parts.iter().map(|(colour, weight)| weight * self.linear(colour[channel])).sum()
+        };
+        let alpha: f32 = parts.iter().map(|(colour, weight)| weight * f32::from(colour[3])).sum();
+        [self.byte(sum(0)), self.byte(sum(1)), self.byte(sum(2)), (alpha + 0.5) as u8]
+    }
+}
+
+fn decode(value: f64) -> f64 {
+    if value <= 0.04045 { value / 12.92 } else { ((value + 0.055) / 1.055).powf(2.4) }
+}
+
+fn encode(light: f64) -> f64 {
+    if light <= 0.003_130_8 { 12.92 * light } else { 1.055 * light.powf(1.0 / 2.4) - 0.055 }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_byte_survives_the_round_trip() {
+        let tables = Srgb::tables();
+        for byte in 0..=255 {
+            assert_eq!(tables.byte(tables.linear(byte)), byte);
+        }
+    }
+
+    /// Worked from the formulas of IEC 61966-2-1 by hand.
+    #[test]
+    fn values_of_the_standard() {
+        let tables = Srgb::tables();
+        for (byte, light) in [
+            (0, 0.0),
+            (10, 0.003_035_3),
+            (11, 0.003_346_5),
+            (128, 0.215_860_5),
+            (188, 0.502_886_5),
+            (255, 1.0),
+        ] {
+            assert!((tables.linear(byte) - light).abs() < 1e-6, "{byte}: {}", tables.linear(byte));
+        }
+        assert_eq!(tables.byte(0.5), 188);
+        assert_eq!(tables.byte(0.18), 118);
+        assert_eq!((tables.byte(-1.0), tables.byte(7.0), tables.byte(f32::NAN)), (0, 255, 0));
+    }
+
+    #[test]
+    fn half_way_between_black_and_white_is_half_the_light() {
+        assert_eq!(Srgb::tables().blend([0, 0, 0, 255], [255; 4], 0.5), [188, 188, 188, 255]);
+    }
+}
