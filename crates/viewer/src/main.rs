@@ -1,3 +1,5 @@
 //! The window on a run.
 
-fn main() {}
+fn main() -> std::process::ExitCode {
+    bedswell_viewer::main()
+}

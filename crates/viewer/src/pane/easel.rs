@@ -1,0 +1,139 @@
+use bedswell_painter::{Camera, Drawing, Image, Pose, Quality, Size, paint};
+use std::sync::{Arc, Condvar, Mutex, MutexGuard, PoisonError};
+use std::thread::JoinHandle;
+use std::time::{Duration, Instant};
+
+/// How long the view must be at rest before the fine picture is painted.
+const REST: Duration = Duration::from_millis(120);
+
+/// Longest time for a picture while the view moves; beyond it pictures get coarser.
+const QUICK: Duration = Duration::from_millis(45);
+
+/// How pictures are painted while the view moves.
+const QUICKLY: Quality = Quality { samples: 1, outlines: true };
+
+/// What to paint.
+#[derive(Clone, Debug)]
+pub(crate) struct View {
+    /// The things.
+    pub(crate) drawing: Arc<Drawing>,
+    /// Where one looks from.
+    pub(crate) pose: Pose,
+    /// Size of the picture.
+    pub(crate) size: Size,
+}
+
+/// A thread that paints the latest view: quickly at first, finely once nothing changes.
+pub(crate) struct Easel {
+    shared: Arc<Shared>,
+    thread: Option<JoinHandle<()>>,
+}
+
+#[derive(Default)]
+struct Shared {
+    desk: Mutex<Desk>,
+    changed: Condvar,
+}
+
+#[derive(Default)]
+struct Desk {
+    view: Option<View>,
+    picture: Option<Image>,
+    closed: bool,
+}
+
+impl Easel {
+    /// Starts the thread; it calls `wake` whenever a picture is ready.
+    pub(crate) fn new(wake: impl Fn() + Send + 'static) -> Self {
+        let shared = Arc::<Shared>::default();
+        let theirs = shared.clone();
+        let thread = std::thread::spawn(move || work(&theirs, wake));
+        Self { shared, thread: Some(thread) }
+    }
+
+    /// Asks for a picture; whatever else was asked for and not begun is forgotten.
+    pub(crate) fn show(&self, view: View) {
+        self.shared.desk().view = Some(view);
+        self.shared.changed.notify_one();
+    }
+
+    /// The newest picture, once.
+    pub(crate) fn take(&self) -> Option<Image> {
+        self.shared.desk().picture.take()
+    }
+}
+
+impl Drop for Easel {
+    fn drop(&mut self) {
+        self.shared.desk().closed = true;
+        self.shared.changed.notify_one();
+        if let Some(thread) = self.thread.take() {
+            let _ = thread.join();
+        }
+    }
+}
+
+impl Shared {
+    fn desk(&self) -> MutexGuard<'_, Desk> {
+        self.desk.lock().unwrap_or_else(PoisonError::into_inner)
+    }
+
+    /// Waits for the next view, at most for a time; `None` after that, and when closed.
+    fn next(&self, at_most: Option<Duration>) -> Option<View> {
+        let nothing = |desk: &mut Desk| desk.view.is_none() && !desk.closed;
+        let mut desk = match at_most {
+            Some(time) => {
+                self.changed
+                    .wait_timeout_while(self.desk(), time, nothing)
+                    .unwrap_or_else(PoisonError::into_inner)
+                    .0
+            }
+            None => self.changed.wait_while(self.desk(), nothing).unwrap_or_else(PoisonError::into_inner),
+        };
+        desk.view.take()
+    }
+
+    fn finish(&self, picture: Image) {
+        self.desk().picture = Some(picture);
+    }
+}
+
+/// Paints until closed.
+fn work(shared: &Shared, wake: impl Fn()) {
+    let mut coarseness = 1;
+    while let Some(mut view) = shared.next(None) {
+        loop {
+            let start = Instant::now();
+            shared.finish(paint(&view.drawing, &camera(&view, coarseness), QUICKLY));
+            wake();
+            coarseness = coarser(coarseness, start.elapsed());
+            match shared.next(Some(REST)) {
+                Some(next) => view = next,
+                None => break,
+            }
+        }
+        if shared.desk().closed {
+            return;
+        }
+        shared.finish(paint(&view.drawing, &camera(&view, 1), Quality::default()));
+        wake();
+    }
+}
+
+/// The camera for a picture with a fraction of the pixels in each direction.
+fn camera(view: &View, coarseness: u32) -> Camera {
+    let Size { width, height } = view.size;
+    let size = Size { width: (width / coarseness).max(1), height: (height / coarseness).max(1) };
+    Camera::new(&view.pose, size)
+}
+
+/// The coarseness to try next after a picture took a time: 1 to 3.
+fn coarser(coarseness: u32, took: Duration) -> u32 {
+    if took > QUICK {
+        (coarseness + 1).min(3)
+    } else if took < QUICK / 4 {
+        (coarseness - 1).max(1)
+    } else {
+        coarseness
+    }
+}

@@ -1,0 +1,46 @@
+use bedswell_painter::{Align, Colour, Item, Overlay};
+use bevy_egui::egui::{self, Align2, Color32, FontId, Painter, Pos2, Rect, Stroke, pos2};
+
+/// Draws flat things over the pane, whose top left and pixels per point are given.
+pub(crate) fn draw(overlay: &Overlay, painter: &Painter, origin: Pos2, pixels_per_point: f32) {
+    let point = |[x, y]: [f32; 2]| pos2(origin.x + x / pixels_per_point, origin.y + y / pixels_per_point);
+    for item in &overlay.items {
+        match item {
+            Item::Text { at, align, size, colour, text } => {
+                let anchor = match align {
+                    Align::Left => Align2::LEFT_BOTTOM,
+                    Align::Middle => Align2::CENTER_BOTTOM,
+                    Align::Right => Align2::RIGHT_BOTTOM,
+                };
+                let font = FontId::proportional(0.82 * size / pixels_per_point);
+                // The base line lies a little above the lowest point of the letters.
+                let below = egui::vec2(0.0, 0.22 * size / pixels_per_point);
+                painter.text(point(*at) + below, anchor, text, font, ink(*colour));
+            }
+            Item::Panel { from, to, colour } => {
+                painter.rect_filled(Rect::from_min_max(point(*from), point(*to)), 2.0, ink(*colour));
+            }
+            Item::Line { ends, width, colour } => {
+                let stroke = Stroke::new(width / pixels_per_point, ink(*colour));
+                painter.line_segment(ends.map(point), stroke);
+            }
+            Item::Ramp { from, to, colours } => {
+                let height = (to[1] - from[1]) / colours.len().max(1) as f32;
+                for (band, colour) in colours.iter().rev().enumerate() {
+                    let top = from[1] + band as f32 * height;
+                    let band = Rect::from_min_max(point([from[0], top]), point([to[0], top + height]));
+                    painter.rect_filled(band, 0.0, ink(*colour));
+                }
+            }
+            Item::Ring { at, radius, width, colour } => {
+                let stroke = Stroke::new(width / pixels_per_point, ink(*colour));
+                painter.circle_stroke(point(*at), radius / pixels_per_point, stroke);
+            }
+        }
+    }
+}
+
+/// A colour as the window knows it.
+pub(crate) fn ink(colour: Colour) -> Color32 {
+    Color32::from_rgba_unmultiplied(colour.r, colour.g, colour.b, colour.a)
+}

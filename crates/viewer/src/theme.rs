@@ -1,0 +1,118 @@
+use crate::args::ThemeName;
+use bevy_egui::egui::{
+    self, Color32, CornerRadius, FontFamily, FontId, Margin, Stroke, TextStyle, Vec2, Visuals, style::WidgetVisuals,
+};
+
+/// The colours of the window.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Palette {
+    /// Behind cards.
+    pub(crate) column: Color32,
+    /// Of a card.
+    pub(crate) card: Color32,
+    /// Of what can be pressed.
+    pub(crate) button: Color32,
+    /// Around cards and between parts.
+    pub(crate) line: Color32,
+    /// Of words.
+    pub(crate) text: Color32,
+    /// Of side remarks.
+    pub(crate) quiet: Color32,
+    /// Of what is chosen and of the cursor.
+    pub(crate) accent: Color32,
+    /// Of words on the accent.
+    pub(crate) on_accent: Color32,
+}
+
+impl Palette {
+    /// The colours of a theme.
+    pub(crate) fn of(theme: ThemeName) -> Self {
+        let rgb = Color32::from_rgb;
+        match theme {
+            ThemeName::Dark => Self {
+                column: rgb(24, 28, 32),
+                card: rgb(33, 38, 43),
+                button: rgb(48, 55, 62),
+                line: rgb(52, 59, 66),
+                text: rgb(222, 226, 228),
+                quiet: rgb(146, 156, 163),
+                accent: rgb(232, 181, 84),
+                on_accent: rgb(28, 24, 16),
+            },
+            ThemeName::Light => Self {
+                column: rgb(228, 230, 228),
+                card: rgb(246, 246, 243),
+                button: rgb(225, 226, 222),
+                line: rgb(205, 208, 204),
+                text: rgb(36, 40, 43),
+                quiet: rgb(98, 106, 110),
+                accent: rgb(150, 92, 12),
+                on_accent: rgb(255, 252, 244),
+            },
+            ThemeName::Print => Self {
+                column: rgb(255, 255, 255),
+                card: rgb(255, 255, 255),
+                button: rgb(240, 240, 240),
+                line: rgb(190, 190, 190),
+                text: rgb(0, 0, 0),
+                quiet: rgb(80, 80, 80),
+                accent: rgb(20, 20, 20),
+                on_accent: rgb(255, 255, 255),
+            },
+        }
+    }
+}
+
+/// Gives the window the look of a theme.
+pub(crate) fn dress(context: &egui::Context, theme: ThemeName) {
+    let palette = Palette::of(theme);
+    let dark = theme == ThemeName::Dark;
+    context.set_theme(if dark { egui::Theme::Dark } else { egui::Theme::Light });
+    context.all_styles_mut(|style| {
+        style.text_styles = [
+            (TextStyle::Small, 11.0, FontFamily::Proportional),
+            (TextStyle::Body, 13.0, FontFamily::Proportional),
+            (TextStyle::Button, 13.0, FontFamily::Proportional),
+            (TextStyle::Heading, 14.5, FontFamily::Proportional),
+            (TextStyle::Monospace, 12.0, FontFamily::Monospace),
+        ]
+        .map(|(name, size, family)| (name, FontId::new(size, family)))
+        .into();
+        style.spacing.item_spacing = Vec2::new(6.0, 5.0);
+        style.spacing.button_padding = Vec2::new(7.0, 2.5);
+        style.spacing.interact_size.y = 20.0;
+        style.spacing.slider_width = 150.0;
+        style.spacing.window_margin = Margin::same(14);
+        style.animation_time = 0.0;
+        style.visuals = visuals(&palette, dark);
+    });
+}
+
+fn visuals(palette: &Palette, dark: bool) -> Visuals {
+    let mut visuals = if dark { Visuals::dark() } else { Visuals::light() };
+    let widget = |fill: Color32, words: Color32, line: Color32| WidgetVisuals {
+        bg_fill: fill,
+        weak_bg_fill: fill,
+        bg_stroke: Stroke::new(1.0, line),
+        corner_radius: CornerRadius::same(3),
+        fg_stroke: Stroke::new(1.0, words),
+        expansion: 0.0,
+    };
+    visuals.panel_fill = palette.column;
+    visuals.window_fill = palette.card;
+    visuals.window_stroke = Stroke::new(1.0, palette.line);
+    visuals.extreme_bg_color = palette.column;
+    visuals.faint_bg_color = palette.button;
+    visuals.selection.bg_fill = palette.accent;
+    visuals.selection.stroke = Stroke::new(1.0, palette.on_accent);
+    visuals.weak_text_color = Some(palette.quiet);
+    visuals.slider_trailing_fill = true;
+    visuals.window_shadow = egui::Shadow::NONE;
+    visuals.popup_shadow = egui::Shadow::NONE;
+    visuals.widgets.noninteractive = widget(palette.card, palette.text, palette.line);
+    visuals.widgets.inactive = widget(palette.button, palette.text, palette.button);
+    visuals.widgets.hovered = widget(palette.button, palette.text, palette.quiet);
+    visuals.widgets.active = widget(palette.line, palette.text, palette.accent);
+    visuals.widgets.open = widget(palette.button, palette.text, palette.line);
+    visuals
+}

@@ -1,0 +1,186 @@
+use crate::args::DrawnBy;
+use crate::driver::{Driver, NoWindow};
+use crate::gpu;
+use crate::pane::Easel;
+use crate::viewer::Viewer;
+use bedswell_painter::{Camera, Size};
+use bevy::asset::RenderAssetUsages;
+use bevy::core_pipeline::tonemapping::{DebandDither, Tonemapping};
+use bevy::image::ImageSampler;
+use bevy::log::LogPlugin;
+use bevy::prelude::*;
+use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat};
+use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
+use bevy::winit::{UpdateMode, WinitSettings};
+use bevy_egui::egui::TextureId;
+use bevy_egui::{EguiContexts, EguiPlugin, EguiPrimaryContextPass, EguiTextureHandle, EguiUserTextures};
+use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::time::Duration;
+
+/// Opens the window and stays until it is closed.
+///
+/// # Errors
+/// [`NoWindow::Refused`] if the display does not let a window be opened.
+pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver) -> Result<AppExit, NoWindow> {
+    let bevy_draws = match drawn_by {
+        DrawnBy::Auto => driver == Driver::Gpu,
+        DrawnBy::Painter => false,
+        DrawnBy::Bevy => true,
+    };
+    let mut app = start(size, driver, viewer.title())?;
+    app.add_plugins(EguiPlugin::default())
+        .insert_resource(WinitSettings {
+            focused_mode: UpdateMode::reactive_low_power(Duration::from_secs(60)),
+            unfocused_mode: UpdateMode::reactive_low_power(Duration::from_secs(60)),
+        })
+        .insert_resource(viewer)
+        .init_resource::<Picture>()
+        .add_systems(Startup, set_up)
+        .add_systems(EguiPrimaryContextPass, look);
+    if bevy_draws {
+        gpu::plugin(&mut app);
+        app.add_systems(Startup, aim.after(set_up)).add_systems(PostUpdate, show_bevy.after(bevy_egui::EguiPostUpdateSet::EndPass));
+    } else {
+        app.add_systems(PreUpdate, hang).add_systems(PostUpdate, show_painter.after(bevy_egui::EguiPostUpdateSet::EndPass));
+    }
+    Ok(app.run())
+}
+
+/// Starts Bevy; what it panics with where the display refuses becomes an error.
+fn start(size: Size, driver: Driver, title: String) -> Result<App, NoWindow> {
+    let window = Window {
+        title,
+        name: Some("bedswell".to_owned()),
+        resolution: WindowResolution::new(size.width, size.height),
+        present_mode: match driver {
+            Driver::Cpu => PresentMode::AutoNoVsync,
+            Driver::Gpu => PresentMode::AutoVsync,
+        },
+        ..default()
+    };
+    let plugins = DefaultPlugins
+        .set(WindowPlugin { primary_window: Some(window), ..default() })
+        .set(LogPlugin { filter: "error".to_owned(), ..default() });
+    let hook = std::panic::take_hook();
+    std::panic::set_hook(Box::new(|_| {}));
+    let app = catch_unwind(AssertUnwindSafe(move || {
+        let mut app = App::new();
+        app.add_plugins(plugins);
+        app
+    }));
+    std::panic::set_hook(hook);
+    app.map_err(|reason| {
+        let text = reason.downcast_ref::<String>().cloned();
+        NoWindow::Refused(text.or_else(|| Some((*reason.downcast_ref::<&str>()?).to_owned())).unwrap_or_default())
+    })
+}
+
+/// The texture that the pane shows.
+#[derive(Resource, Default)]
+struct Picture {
+    handle: Handle<Image>,
+    id: Option<TextureId>,
+    /// Whether anything has been drawn into it.
+    ready: bool,
+}
+
+/// The painter's thread.
+#[derive(Resource)]
+struct PaintedBy(Easel);
+
+/// The camera of the panels, the texture of the pane.
+fn set_up(
+    mut commands: Commands,
+    mut images: ResMut<Assets<Image>>,
+    mut textures: ResMut<EguiUserTextures>,
+    mut picture: ResMut<Picture>,
+) {
+    commands.spawn((Camera2d, Tonemapping::None, DebandDither::Disabled, Msaa::Off));
+    picture.handle = images.add(gpu::target(1, 1));
+    picture.id = Some(textures.add_image(EguiTextureHandle::Strong(picture.handle.clone())));
+}
+
+/// The whole window, once per frame.
+fn look(
+    mut contexts: EguiContexts,
+    mut viewer: ResMut<Viewer>,
+    picture: Res<Picture>,
+    mut window: Single<&mut Window, With<PrimaryWindow>>,
+    mut exit: MessageWriter<AppExit>,
+) -> Result {
+    let context = contexts.ctx_mut()?;
+    viewer.look(context, picture.id.filter(|_| picture.ready));
+    if window.title != viewer.title() {
+        window.title = viewer.title();
+    }
+    if viewer.done() {
+        exit.write(AppExit::Success);
+    }
+    Ok(())
+}
+
+/// Asks the painter for what is to be seen.
+fn show_painter(mut viewer: ResMut<Viewer>, painted: Option<Res<PaintedBy>>, mut contexts: EguiContexts, mut commands: Commands) -> Result {
+    let Some(painted) = painted else {
+        let context = contexts.ctx_mut()?.clone();
+        commands.insert_resource(PaintedBy(Easel::new(move || context.request_repaint())));
+        return Ok(());
+    };
+    if let Some(view) = viewer.take_view() {
+        painted.0.show(view);
+    }
+    Ok(())
+}
+
+/// Hangs the painter's newest picture into the pane.
+fn hang(
+    mut viewer: ResMut<Viewer>,
+    painted: Option<Res<PaintedBy>>,
+    mut picture: ResMut<Picture>,
+    mut images: ResMut<Assets<Image>>,
+) {
+    let Some(painting) = painted.and_then(|painted| painted.0.take()) else { return };
+    let size = Extent3d {
+        width: painting.size.width,
+        height: painting.size.height,
+        depth_or_array_layers: 1,
+    };
+    let mut image = Image::new(
+        size,
+        TextureDimension::D2,
+        painting.pixels,
+        TextureFormat::Rgba8UnormSrgb,
+        RenderAssetUsages::RENDER_WORLD,
+    );
+    image.sampler = ImageSampler::linear();
+    let _ = images.insert(picture.handle.id(), image);
+    picture.ready = true;
+    viewer.count_picture();
+}
+
+/// Bevy's camera on the bed.
+fn aim(mut commands: Commands, picture: Res<Picture>, viewer: Res<Viewer>) {
+    commands.spawn(gpu::camera(picture.handle.clone(), viewer.background()));
+}
+
+/// Lets Bevy draw what is to be seen, with four pixels of the texture to one of the screen.
+fn show_bevy(
+    mut viewer: ResMut<Viewer>,
+    mut picture: ResMut<Picture>,
+    mut images: ResMut<Assets<Image>>,
+    mut camera: Single<&mut bevy::camera::Camera, With<Camera3d>>,
+    mut commands: Commands,
+) {
+    let Some(view) = viewer.take_view() else { return };
+    let fine = gpu::enlarged(&Camera::new(&view.pose, view.size));
+    let Size { width, height } = fine.size;
+    if images.get(&picture.handle).is_none_or(|image| (image.width(), image.height()) != (width, height)) {
+        let mut image = gpu::target(width, height);
+        image.sampler = ImageSampler::linear();
+        let _ = images.insert(picture.handle.id(), image);
+    }
+    camera.clear_color = gpu::clear_colour(view.drawing.background);
+    commands.insert_resource(gpu::Shown { drawing: view.drawing, camera: fine, thinnest: gpu::FINENESS as f32 });
+    picture.ready = true;
+    viewer.count_picture();
+}
