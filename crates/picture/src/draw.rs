@@ -1,7 +1,8 @@
+use crate::crosses::crosses;
 use crate::frame::{BeadView, Frame};
 use crate::look::{Cut, GrainLook, GrainShade, Look};
 use crate::section::section;
-use crate::{Field, Run, Scale, crosses};
+use crate::{Field, Run, Scale};
 use bedswell_painter::{Ball, Colour, Drawing, Light, Mesh, Plane, Point, Rod};
 use bedswell_sim::{GrainContact, Touched};
 

@@ -1,4 +1,4 @@
-use crate::field::{Field, KILOPASCAL, MILLIMETRE, Unit};
+use crate::field::{KILOPASCAL, MILLIMETRE, Unit};
 use crate::look::{GrainLook, GrainShade, Look};
 use crate::{Run, Scale, Scales};
 
@@ -92,7 +92,7 @@ mod tests {
     #[test]
     fn marks_run_from_end_to_end_through_zero() {
         let legend = Legend {
-            title: Field::LargestPrincipal.name().into(),
+            title: crate::Field::LargestPrincipal.name().into(),
             scale: Scale::diverging(400.0),
             unit: KILOPASCAL,
             beyond: [true, false],
