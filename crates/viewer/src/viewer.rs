@@ -24,6 +24,7 @@ pub(crate) struct Viewer {
     drawing: Arc<Drawing>,
     orbit: Orbit,
     size: Size,
+    corner: [u32; 2],
     /// What the pane is to show, until a renderer takes it.
     asked: Option<View>,
     last: Option<(usize, Pose, Size)>,
@@ -35,6 +36,7 @@ pub(crate) struct Viewer {
     first: Option<f64>,
     turning: Option<Instant>,
     counted: usize,
+    updates: usize,
     done: bool,
 }
 
@@ -53,6 +55,7 @@ impl Viewer {
             drawing: Arc::new(drawing),
             orbit: Orbit::new(demo::POSE),
             size: Size { width: 1, height: 1 },
+            corner: [0; 2],
             asked: None,
             last: None,
             cursor: 12,
@@ -63,6 +66,7 @@ impl Viewer {
             first: None,
             turning: None,
             counted: 0,
+            updates: 0,
             done: false,
         }
     }
@@ -73,6 +77,10 @@ impl Viewer {
 
     pub(crate) fn background(&self) -> Colour {
         self.drawing.background
+    }
+
+    pub(crate) fn corner(&self) -> [u32; 2] {
+        self.corner
     }
 
     pub(crate) fn done(&self) -> bool {
@@ -115,6 +123,7 @@ impl Viewer {
         CentralPanel::no_frame().show(&mut ui, |ui| {
             let pane = Pane::show(ui, picture);
             self.size = pane.size;
+            self.corner = pane.pixel_corner();
             pane.steer(ui, &mut self.orbit);
         });
         let now = context.input(|input| input.time);
@@ -127,11 +136,12 @@ impl Viewer {
                 Instant::now()
             });
             self.orbit.turn(1.5, 0.0);
+            self.updates += 1;
             context.request_repaint();
             let took = turning.elapsed().as_secs_f64();
             if took > seconds {
                 let rate = (self.pictures - self.counted) as f64 / took;
-                eprintln!("first picture {:.2} s, {rate:.1} pictures per second", self.first.unwrap_or_default());
+                eprintln!("first picture {:.2} s, {rate:.1} pictures per second, {} updates for {} pictures", self.first.unwrap_or_default(), self.updates, self.pictures - self.counted);
                 self.done = true;
             }
         }

@@ -5,15 +5,17 @@ use crate::pane::Easel;
 use crate::viewer::Viewer;
 use bedswell_painter::{Camera, Size};
 use bevy::asset::RenderAssetUsages;
+use bevy::camera::CameraMainTextureUsages;
 use bevy::core_pipeline::tonemapping::{DebandDither, Tonemapping};
 use bevy::image::ImageSampler;
 use bevy::log::LogPlugin;
 use bevy::prelude::*;
-use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat};
+use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat, TextureUsages};
 use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
 use bevy::winit::{UpdateMode, WinitSettings};
 use bevy_egui::egui::TextureId;
 use bevy_egui::{EguiContexts, EguiPlugin, EguiPrimaryContextPass, EguiTextureHandle, EguiUserTextures};
+use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::time::Duration;
 
@@ -28,7 +30,9 @@ pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver
         DrawnBy::Bevy => true,
     };
     let mut app = start(size, driver, viewer.title())?;
-    app.add_plugins(EguiPlugin::default())
+    // One call with many textures is faster on a graphics card, and slower elsewhere.
+    let bindless_mode_array_size = if driver == Driver::Gpu { NonZero::new(16) } else { None };
+    app.add_plugins(EguiPlugin { bindless_mode_array_size })
         .insert_resource(WinitSettings {
             focused_mode: UpdateMode::reactive_low_power(Duration::from_secs(60)),
             unfocused_mode: UpdateMode::reactive_low_power(Duration::from_secs(60)),
@@ -41,7 +45,8 @@ pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver
         gpu::plugin(&mut app);
         app.add_systems(Startup, aim.after(set_up)).add_systems(PostUpdate, show_bevy.after(bevy_egui::EguiPostUpdateSet::EndPass));
     } else {
-        app.add_systems(PreUpdate, hang).add_systems(PostUpdate, show_painter.after(bevy_egui::EguiPostUpdateSet::EndPass));
+        gpu::inset_plugin(&mut app);
+        app.add_systems(PostUpdate, show_painter.after(bevy_egui::EguiPostUpdateSet::EndPass));
     }
     Ok(app.run())
 }
@@ -75,6 +80,9 @@ fn start(size: Size, driver: Driver, title: String) -> Result<App, NoWindow> {
     })
 }
 
+/// How long the window waits for the painter before it shows the picture before.
+const PATIENCE: Duration = Duration::from_millis(100);
+
 /// The texture that the pane shows.
 #[derive(Resource, Default)]
 struct Picture {
@@ -95,7 +103,8 @@ fn set_up(
     mut textures: ResMut<EguiUserTextures>,
     mut picture: ResMut<Picture>,
 ) {
-    commands.spawn((Camera2d, Tonemapping::None, DebandDither::Disabled, Msaa::Off));
+    let usages = CameraMainTextureUsages::default().with(TextureUsages::COPY_DST);
+    commands.spawn((Camera2d, Tonemapping::None, DebandDither::Disabled, Msaa::Off, usages));
     picture.handle = images.add(gpu::target(1, 1));
     picture.id = Some(textures.add_image(EguiTextureHandle::Strong(picture.handle.clone())));
 }
@@ -119,43 +128,40 @@ fn look(
     Ok(())
 }
 
-/// Asks the painter for what is to be seen.
-fn show_painter(mut viewer: ResMut<Viewer>, painted: Option<Res<PaintedBy>>, mut contexts: EguiContexts, mut commands: Commands) -> Result {
+/// Asks the painter for what is to be seen and hangs its newest picture into the pane.
+fn show_painter(
+    mut viewer: ResMut<Viewer>,
+    painted: Option<Res<PaintedBy>>,
+    mut contexts: EguiContexts,
+    picture: Res<Picture>,
+    mut images: ResMut<Assets<Image>>,
+    mut commands: Commands,
+) -> Result {
     let Some(painted) = painted else {
         let context = contexts.ctx_mut()?.clone();
         commands.insert_resource(PaintedBy(Easel::new(move || context.request_repaint())));
         return Ok(());
     };
-    if let Some(view) = viewer.take_view() {
+    let asked = viewer.take_view();
+    // Panels and picture appear together unless the painter is slow.
+    let wait = if asked.is_some() { PATIENCE } else { Duration::ZERO };
+    if let Some(view) = asked {
         painted.0.show(view);
     }
-    Ok(())
-}
-
-/// Hangs the painter's newest picture into the pane.
-fn hang(
-    mut viewer: ResMut<Viewer>,
-    painted: Option<Res<PaintedBy>>,
-    mut picture: ResMut<Picture>,
-    mut images: ResMut<Assets<Image>>,
-) {
-    let Some(painting) = painted.and_then(|painted| painted.0.take()) else { return };
+    let Some(painting) = painted.0.take(wait) else { return Ok(()) };
     let size = Extent3d {
         width: painting.size.width,
         height: painting.size.height,
         depth_or_array_layers: 1,
     };
-    let mut image = Image::new(
-        size,
-        TextureDimension::D2,
-        painting.pixels,
-        TextureFormat::Rgba8UnormSrgb,
-        RenderAssetUsages::RENDER_WORLD,
-    );
-    image.sampler = ImageSampler::linear();
+    let (dimension, format) = (TextureDimension::D2, TextureFormat::Rgba8UnormSrgb);
+    let mut image = Image::new(size, dimension, painting.pixels, format, RenderAssetUsages::RENDER_WORLD);
+    image.texture_descriptor.usage |= TextureUsages::COPY_SRC;
     let _ = images.insert(picture.handle.id(), image);
-    picture.ready = true;
+    let [x, y] = viewer.corner();
+    commands.insert_resource(gpu::Inset { image: picture.handle.clone(), corner: UVec2::new(x, y) });
     viewer.count_picture();
+    Ok(())
 }
 
 /// Bevy's camera on the bed.

@@ -3,9 +3,11 @@
 
 mod buffers;
 mod bytes;
+mod copy;
 mod pass;
 mod recorder;
 
+pub(crate) use copy::{Inset, inset_plugin};
 pub use recorder::Recorder;
 pub(crate) use recorder::{FINENESS, enlarged};
 
@@ -14,7 +16,7 @@ use bevy::core_pipeline::tonemapping::{DebandDither, Tonemapping};
 use bevy::core_pipeline::{Core3d, Core3dSystems};
 use bevy::prelude::*;
 use bevy::render::extract_resource::{ExtractResource, ExtractResourcePlugin};
-use bevy::render::render_resource::TextureFormat;
+use bevy::render::render_resource::{TextureFormat, TextureUsages};
 use bevy::render::{GpuResourceAppExt, Render, RenderApp, RenderSystems};
 use std::sync::Arc;
 
@@ -58,7 +60,9 @@ pub(crate) fn camera(target: Handle<Image>, background: Colour) -> impl Bundle {
 
 /// A texture to draw into.
 pub(crate) fn target(width: u32, height: u32) -> Image {
-    Image::new_target_texture(width, height, TextureFormat::Rgba8UnormSrgb, None)
+    let mut image = Image::new_target_texture(width, height, TextureFormat::Rgba8UnormSrgb, None);
+    image.texture_descriptor.usage |= TextureUsages::COPY_SRC;
+    image
 }
 
 /// The background, premultiplied like all else.

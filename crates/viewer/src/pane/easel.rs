@@ -33,17 +33,20 @@ pub(crate) struct Easel {
 struct Shared {
     desk: Mutex<Desk>,
     changed: Condvar,
+    painted: Condvar,
 }
 
 #[derive(Default)]
 struct Desk {
     view: Option<View>,
     picture: Option<Image>,
+    /// Whether somebody waits for a picture.
+    awaited: bool,
     closed: bool,
 }
 
 impl Easel {
-    /// Starts the thread; it calls `wake` whenever a picture is ready.
+    /// Starts the thread; it calls `wake` when a picture is ready that nobody waits for.
     pub(crate) fn new(wake: impl Fn() + Send + 'static) -> Self {
         let shared = Arc::<Shared>::default();
         let theirs = shared.clone();
@@ -57,9 +60,15 @@ impl Easel {
         self.shared.changed.notify_one();
     }
 
-    /// The newest picture, once.
-    pub(crate) fn take(&self) -> Option<Image> {
-        self.shared.desk().picture.take()
+    /// The newest picture, once; waits for one at most for a time.
+    pub(crate) fn take(&self, wait: Duration) -> Option<Image> {
+        let mut desk = self.shared.desk();
+        desk.awaited = true;
+        let nothing = |desk: &mut Desk| desk.picture.is_none();
+        let waited = self.shared.painted.wait_timeout_while(desk, wait, nothing);
+        desk = waited.unwrap_or_else(PoisonError::into_inner).0;
+        desk.awaited = false;
+        desk.picture.take()
     }
 }
 
@@ -93,8 +102,15 @@ impl Shared {
         desk.view.take()
     }
 
-    fn finish(&self, picture: Image) {
-        self.desk().picture = Some(picture);
+    /// Hands a picture over, and wakes the window unless it waits anyway.
+    fn finish(&self, picture: Image, wake: impl Fn()) {
+        let mut desk = self.desk();
+        desk.picture = Some(picture);
+        if desk.awaited {
+            self.painted.notify_one();
+        } else {
+            wake();
+        }
     }
 }
 
@@ -104,8 +120,8 @@ fn work(shared: &Shared, wake: impl Fn()) {
     while let Some(mut view) = shared.next(None) {
         loop {
             let start = Instant::now();
-            shared.finish(paint(&view.drawing, &camera(&view, coarseness), QUICKLY));
-            wake();
+            let coarse = paint(&view.drawing, &camera(&view, coarseness), QUICKLY);
+            shared.finish(enlarged(coarse, coarseness, view.size), &wake);
             coarseness = coarser(coarseness, start.elapsed());
             match shared.next(Some(REST)) {
                 Some(next) => view = next,
@@ -115,9 +131,25 @@ fn work(shared: &Shared, wake: impl Fn()) {
         if shared.desk().closed {
             return;
         }
-        shared.finish(paint(&view.drawing, &camera(&view, 1), Quality::default()));
-        wake();
+        shared.finish(paint(&view.drawing, &camera(&view, 1), Quality::default()), &wake);
     }
+}
+
+/// A picture of a size, every pixel of the coarse one repeated.
+fn enlarged(coarse: Image, coarseness: u32, size: Size) -> Image {
+    if coarse.size == size {
+        return coarse;
+    }
+    let last = |place: u32, size: u32| (place / coarseness).min(size - 1) as usize;
+    let mut pixels = Vec::with_capacity((size.width * size.height * 4) as usize);
+    for y in 0..size.height {
+        let row = last(y, coarse.size.height) * coarse.size.width as usize;
+        for x in 0..size.width {
+            let at = 4 * (row + last(x, coarse.size.width));
+            pixels.extend_from_slice(&coarse.pixels[at..at + 4]);
+        }
+    }
+    Image { size, pixels }
 }
 
 /// The camera for a picture with a fraction of the pixels in each direction.

@@ -68,6 +68,12 @@ impl Pane {
         steered
     }
 
+    /// Its top left in the window (pixels).
+    pub(crate) fn pixel_corner(&self) -> [u32; 2] {
+        let corner = self.response.rect.min * self.pixels_per_point;
+        [corner.x.round() as u32, corner.y.round() as u32]
+    }
+
     /// The pixel of the pane under a place in the window.
     pub(crate) fn pixel(&self, at: bevy_egui::egui::Pos2) -> [f32; 2] {
         ((at - self.response.rect.min) * self.pixels_per_point).into()
