@@ -1,3 +1,4 @@
+use crate::picture_args::{Film, Still, View};
 use clap::{Args, Parser, Subcommand};
 use clap_complete::Shell;
 use std::path::PathBuf;
@@ -21,10 +22,13 @@ const EXIT_CODES: &str = "Exit codes: 0 done; 1 a pack found no equilibrium or a
 /// What to do.
 #[derive(Debug, Subcommand)]
 pub(crate) enum Verb {
-    /// Write a commented scene to start from
+    /// Write a commented scene, or a shot list for films, to start from
     New {
         /// File to write; it must not exist yet
         file: PathBuf,
+        /// Write a shot list
+        #[arg(long)]
+        film: bool,
     },
     /// Say what a scene comes to, without running it
     Describe {
@@ -35,6 +39,12 @@ pub(crate) enum Verb {
     Run(Run),
     /// Run many packs and count torn beads; carries on where it was stopped
     Study(Study),
+    /// Look at a run, a study, or a scene that runs while you look
+    View(View),
+    /// Film a run: a clip for a slide, without a window or graphics hardware
+    Film(Film),
+    /// Draw one picture of a run, or write its scene as glTF 2.0
+    Still(Still),
     /// Recompute known results and compare them with outside sources
     Check,
     /// Print a completion script for a shell

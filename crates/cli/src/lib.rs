@@ -5,6 +5,7 @@ mod args;
 mod commands;
 mod exit;
 mod output;
+mod picture_args;
 mod progress;
 
 use args::Arguments;

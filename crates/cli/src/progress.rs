@@ -32,7 +32,8 @@ impl Progress {
         Self { noun, bar, start: Instant::now(), at_start: None, told: 0 }
     }
 
-    fn advance(&mut self, done: u64, of: u64) {
+    /// Tells that `done` of the work is done.
+    pub(crate) fn advance(&mut self, done: u64, of: u64) {
         let at_start = *self.at_start.get_or_insert(done);
         let text = format!("{done} of {of} {}{}", self.noun, self.time_left(done - at_start, of - done));
         if let Some(bar) = &self.bar {

@@ -16,7 +16,7 @@ pub struct Pose {
 }
 
 /// A perspective camera for a picture of a given size.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Camera {
     /// Place of the eye (m).
     pub eye: Point,

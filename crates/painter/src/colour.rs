@@ -1,5 +1,7 @@
+use serde::{Deserialize, Serialize};
+
 /// A colour in sRGB (IEC 61966-2-1) with straight alpha, 0 to 255 each.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash, Serialize, Deserialize)]
 pub struct Colour {
     /// Red.
     pub r: u8,

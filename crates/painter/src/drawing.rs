@@ -1,11 +1,12 @@
 use crate::Colour;
 use nalgebra::Vector3;
+use serde::{Deserialize, Serialize};
 
 /// A place or a direction in space (m).
 pub type Point = Vector3<f32>;
 
 /// What is to be drawn, for any renderer.
-#[derive(Clone, Debug, Default)]
+#[derive(Clone, Debug, Default, Serialize, Deserialize)]
 pub struct Drawing {
     /// Lit balls.
     pub balls: Vec<Ball>,
@@ -20,7 +21,7 @@ pub struct Drawing {
 }
 
 /// A ball.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Ball {
     /// Centre (m).
     pub centre: Point,
@@ -31,7 +32,7 @@ pub struct Ball {
 }
 
 /// A straight rod between two places, with a width on the screen that follows the perspective.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Rod {
     /// Its ends (m).
     pub ends: [Point; 2],
@@ -42,7 +43,7 @@ pub struct Rod {
 }
 
 /// How a mesh takes light.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum Light {
     /// Lit like a ball, with smooth normals, from both sides.
     Lit,
@@ -51,7 +52,7 @@ pub enum Light {
 }
 
 /// A triangle mesh with colours at its points.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Mesh {
     /// Places (m).
     pub points: Vec<Point>,
@@ -68,7 +69,7 @@ pub struct Mesh {
 }
 
 /// A cutting plane; what lies in front of it (`normal · x > offset`) is removed.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Plane {
     /// Unit normal.
     pub normal: Point,

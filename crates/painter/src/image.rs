@@ -1,7 +1,8 @@
 use crate::Colour;
+use serde::{Deserialize, Serialize};
 
 /// Width and height of a picture (pixels).
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Serialize, Deserialize)]
 pub struct Size {
     /// Width.
     pub width: u32,

@@ -239,6 +239,12 @@ impl BeadView {
         self.nodes.iter().sum::<Point>() / self.nodes.len().max(1) as f32
     }
 
+    /// A ball (centre, radius in m) that holds it.
+    pub fn bounds(&self) -> (Point, f32) {
+        let centre = self.centre();
+        (centre, self.nodes.iter().map(|node| (node - centre).norm()).fold(0.0, f32::max))
+    }
+
     /// Mean edge of a voxel now (m).
     pub fn voxel_edge(&self) -> f32 {
         let volume: f32 = self.swelling.iter().zip(&self.model.gel).map(|(j, gel)| j * gel).sum();
