@@ -1,9 +1,12 @@
-use crate::{Align, Colour, Image, Item, Overlay, srgb::Srgb, text};
+use crate::{Align, Colour, Image, Item, Overlay, text};
 
 /// Exponent on the coverage of letters: below one it makes thin stems darker, as print does.
 const STEM: f32 = 0.8;
 
-/// Draws flat things over a picture, in order, with smooth edges; blended in linear light.
+/// Draws flat things over a picture, in order, with smooth edges.
+///
+/// Unlike the picture they are blended in sRGB, as windows do, so that panels are as clear and
+/// letters as dark as they would be there.
 ///
 /// Things of no size or at places that are not numbers are left out.
 pub fn paint_overlay(image: &mut Image, overlay: &Overlay) {
@@ -69,11 +72,27 @@ fn overlap(low: f32, high: f32) -> f32 {
     (high.min(0.5) - low.max(-0.5)).clamp(0.0, 1.0)
 }
 
+/// Row by row, each of the mean colour of the bands in it, so that no seams show between bands.
 fn ramp(image: &mut Image, from: [f32; 2], to: [f32; 2], colours: &[Colour]) {
     let band = (to[1] - from[1]) / colours.len() as f32;
-    for (place, &colour) in colours.iter().enumerate() {
-        let bottom = to[1] - band * place as f32;
-        fill(image, [from[0], bottom - band], [to[0], bottom], colour);
+    if !(band > 0.0 && band.is_finite()) {
+        return;
+    }
+    let top = from[1].max(0.0).floor();
+    let rows = (to[1].min(image.size.height as f32) - top).ceil().max(0.0) as usize;
+    for y in (0..rows).map(|row| top + row as f32) {
+        let (high, low) = (y.max(from[1]), (y + 1.0).min(to[1]));
+        let place = |y: f32| (((to[1] - y) / band).max(0.0) as usize).min(colours.len() - 1);
+        let mut sum = [0.0; 4];
+        for (number, colour) in colours.iter().enumerate().take(place(high) + 1).skip(place(low)) {
+            let bottom = to[1] - band * number as f32;
+            let share = (bottom.min(low) - (bottom - band).max(high)).max(0.0) / (low - high);
+            for (sum, part) in sum.iter_mut().zip(colour.bytes()) {
+                *sum += share * f32::from(part);
+            }
+        }
+        let colour = Colour::from(sum.map(|part| (part + 0.5) as u8));
+        fill(image, [from[0], high], [to[0], low], colour);
     }
 }
 
@@ -121,11 +140,10 @@ fn put(image: &mut Image, x: i64, y: i64, colour: Colour, coverage: f32) {
         pixel.copy_from_slice(&colour.bytes());
         return;
     }
-    let srgb = Srgb::tables();
     let under = (1.0 - over) * f32::from(pixel[3]) / 255.0;
     let alpha = over + under;
     for (below, above) in pixel.iter_mut().zip([colour.r, colour.g, colour.b]) {
-        *below = srgb.byte((over * srgb.linear(above) + under * srgb.linear(*below)) / alpha);
+        *below = ((over * f32::from(above) + under * f32::from(*below)) / alpha + 0.5) as u8;
     }
     pixel[3] = (255.0 * alpha + 0.5) as u8;
 }

@@ -4,15 +4,18 @@ use std::sync::LazyLock;
 /// byte survives the round trip, also in the dark where sRGB is steepest.
 const STEPS: usize = 16384;
 
+/// Added to a number below it, leaves the nearest whole number in the last bits of the sum.
+const ROUND: f32 = 8_388_608.0;
+
 /// Both ways between sRGB bytes and linear light (IEC 61966-2-1).
 pub(crate) struct Srgb {
     linear: [f32; 256],
-    bytes: Vec<u8>,
+    bytes: [u8; 2 * STEPS],
 }
 
 static SRGB: LazyLock<Srgb> = LazyLock::new(|| Srgb {
     linear: std::array::from_fn(|byte| decode(byte as f64 / 255.0) as f32),
-    bytes: (0..=STEPS).map(|step| (255.0 * encode(step as f64 / STEPS as f64)).round() as u8).collect(),
+    bytes: std::array::from_fn(|step| (255.0 * encode(step as f64 / STEPS as f64)).round() as u8),
 });
 
 impl Srgb {
@@ -30,7 +33,9 @@ impl Srgb {
     /// The nearest byte; light beyond 0 to 1 is cut off.
     #[inline(always)]
     pub(crate) fn byte(&self, linear: f32) -> u8 {
-        self.bytes[((linear * STEPS as f32 + 0.5) as usize).min(STEPS)]
+        let light = if linear > 0.0 { linear } else { 0.0 };
+        let light = if light < 1.0 { light } else { 1.0 };
+        self.bytes[(light * STEPS as f32 + ROUND).to_bits() as usize % (2 * STEPS)]
     }
 
     /// Part way from one colour to another in linear light; opacity as it is.

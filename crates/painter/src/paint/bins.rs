@@ -43,8 +43,9 @@ impl Grid {
         [place % self.across, place / self.across].map(|tile| (tile * STEP) as i32 - APRON as i32)
     }
 
-    /// The tiles that a rectangle touches.
-    fn touched(&self, bounds: &Bounds) -> impl Iterator<Item = usize> + use<> {
+    /// Calls for each tile that a rectangle touches.
+    #[inline(always)]
+    fn touched(&self, bounds: &Bounds, mut call: impl FnMut(usize)) {
         let range = |from: i32, to: i32, count: usize| {
             let (step, apron) = (STEP as i32, APRON as i32);
             let first = (from - apron).div_euclid(step).max(0);
@@ -52,9 +53,11 @@ impl Grid {
             first as usize..(last + 1).max(first) as usize
         };
         let columns = range(bounds.left, bounds.right, self.across);
-        let across = self.across;
-        range(bounds.top, bounds.bottom, self.down)
-            .flat_map(move |row| columns.clone().map(move |column| row * across + column))
+        for row in range(bounds.top, bounds.bottom, self.down) {
+            for column in columns.clone() {
+                call(row * self.across + column);
+            }
+        }
     }
 }
 
@@ -68,9 +71,7 @@ impl Bins {
     pub(super) fn new<T>(grid: &Grid, things: &[T], bounds: impl Fn(&T) -> Bounds) -> Self {
         let mut starts = vec![0; grid.count() + 1];
         for thing in things {
-            for place in grid.touched(&bounds(thing)) {
-                starts[place + 1] += 1;
-            }
+            grid.touched(&bounds(thing), |place| starts[place + 1] += 1);
         }
         for place in 1..starts.len() {
             starts[place] += starts[place - 1];
@@ -78,10 +79,10 @@ impl Bins {
         let mut next = starts.clone();
         let mut sorted = vec![0; starts[grid.count()] as usize];
         for (number, thing) in things.iter().enumerate() {
-            for place in grid.touched(&bounds(thing)) {
+            grid.touched(&bounds(thing), |place| {
                 sorted[next[place] as usize] = number as u32;
                 next[place] += 1;
-            }
+            });
         }
         Self { starts, things: sorted }
     }

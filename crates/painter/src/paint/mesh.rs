@@ -139,6 +139,7 @@ impl Facet {
 
     /// The columns of the tile in one row where all edges are positive. A sample on the edge
     /// between two triangles belongs to exactly one of them.
+    #[inline(always)]
     fn columns(&self, view: &View, tile: &Tile, up: f64) -> std::ops::Range<usize> {
         let (mut first, mut end) = (f64::from(self.bounds.left), f64::from(self.bounds.right) + 1.0);
         for edge in &self.edges {
@@ -154,6 +155,7 @@ impl Facet {
         tile.columns(first as i32, end as i32)
     }
 
+    #[inline(always)]
     fn colour(&self, surface: &Surface<'_>, weights: [f64; 3]) -> [u8; 4] {
         let colours = self.corners.map(|corner| surface.mesh.colours[corner].bytes());
         if colours[0] == colours[1] && colours[1] == colours[2] {
@@ -162,6 +164,7 @@ impl Facet {
         Srgb::tables().weigh::<3>(std::array::from_fn(|corner| (colours[corner], weights[corner] as f32)))
     }
 
+    #[inline(always)]
     fn lit(&self, surface: &Surface<'_>, sight: &Seen, weights: [f64; 3]) -> f32 {
         let smooth: Option<Seen> = (0..3)
             .map(|corner| surface.normals.get(self.corners[corner]).map(|normal| normal * weights[corner]))

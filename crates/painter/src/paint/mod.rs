@@ -39,14 +39,19 @@ pub fn paint(drawing: &Drawing, camera: &Camera, quality: Quality) -> Image {
     let patches: Vec<Vec<u8>> = (0..scene.grid.count())
         .into_par_iter()
         .map_init(Tile::default, |tile, place| {
-            tile.start(&scene, place);
-            scene.paint_opaque(tile, place);
-            if quality.outlines {
-                tile.outline(&scene.view);
-            }
-            tile.develop();
-            scene.paint_veils(tile, place);
-            tile.average(samples)
+            pulp::Arch::new().dispatch(
+                #[inline(always)]
+                || {
+                    tile.start(&scene, place);
+                    scene.paint_opaque(tile, place);
+                    if quality.outlines {
+                        tile.outline(&scene.view);
+                    }
+                    tile.develop();
+                    scene.paint_veils(tile, place);
+                    tile.average(samples)
+                },
+            )
         })
         .collect();
     let side = scene.grid.step() / samples;

@@ -60,7 +60,10 @@ impl Strip {
         let [(from, near, thick), (to, far, thin)] = part.map(at);
         let widest = thick.max(thin);
         let along = [to[0] - from[0], to[1] - from[1]];
-        let length = along[0].hypot(along[1]);
+        let length = (along[0] * along[0] + along[1] * along[1]).sqrt();
+        if !length.is_finite() {
+            return None;
+        }
         Some(Self {
             bounds: view.bounds(
                 std::array::from_fn(|axis| from[axis].min(to[axis]) - widest),
@@ -75,10 +78,6 @@ impl Strip {
             colours: part.map(tint),
             blunt: [part[0] > 0.0, part[1] < 1.0],
         })
-    }
-
-    pub(super) fn is_opaque(&self) -> bool {
-        self.colours.iter().all(|colour| colour[3] == 255)
     }
 
     /// Depth of its middle.
@@ -103,10 +102,15 @@ impl Strip {
                 let aside = x * self.unit[1] - y * self.unit[0];
                 let along = forward.clamp(0.0, self.length);
                 let fraction = (along * shorten) as f32;
-                let half = self.half[0] + wider * fraction;
+                let half = f64::from(self.half[0] + wider * fraction);
                 let beyond = forward - along;
                 let blunt = beyond < 0.0 && self.blunt[0] || beyond > 0.0 && self.blunt[1];
-                if blunt || (aside * aside + beyond * beyond) as f32 > half * half {
+                let inside = if beyond == 0.0 {
+                    -half < aside && aside <= half
+                } else {
+                    !blunt && aside * aside + beyond * beyond < half * half
+                };
+                if !inside {
                     continue;
                 }
                 let depth = 1.0 / (self.closeness[0] + closer * fraction);
@@ -125,6 +129,7 @@ impl Strip {
     }
 
     /// The columns that a row at a height below the first end crosses at most.
+    #[inline(always)]
     fn reach(&self, y: f64, widest: f64) -> (i32, i32) {
         if self.unit[1].abs() < 1e-6 {
             return (i32::MIN, i32::MAX);

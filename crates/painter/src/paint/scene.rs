@@ -4,7 +4,7 @@ use super::mesh::{self, Facet, Surface};
 use super::rod::Strip;
 use super::tile::Tile;
 use super::view::{Seen, View};
-use crate::{Camera, Drawing};
+use crate::{Camera, Drawing, Rod};
 use rayon::prelude::*;
 
 /// How many balls are painted between looks at whether the rest can be seen at all.
@@ -51,18 +51,24 @@ impl<'a> Scene<'a> {
         let view = View::new(camera, samples);
         let size = camera.size;
         let grid = Grid::new(size.width as usize * samples, size.height as usize * samples);
-        let cut = drawing.cut.as_ref().map(|plane| view.plane(plane));
+        let cut = drawing.cut.as_ref().and_then(|plane| view.plane(plane));
 
-        let balls = drawing.balls.par_iter().filter_map(|ball| Sphere::new(&view, cut.as_ref(), ball));
-        let (mut balls, ghosts): (Vec<_>, Vec<_>) = balls.partition(|ball| ball.colour[3] == 255);
-        balls.par_sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
-        let rods = drawing.rods.par_iter().filter_map(|rod| Strip::new(&view, cut.as_ref(), rod));
-        let (rods, clear_rods): (Vec<_>, Vec<_>) = rods.partition(Strip::is_opaque);
+        let balls = |opaque: bool| -> Vec<Sphere> {
+            let of_kind = drawing.balls.par_iter().filter(|ball| (ball.colour.a == 255) == opaque);
+            of_kind.filter_map(|ball| Sphere::new(&view, cut.as_ref(), ball)).collect()
+        };
+        let rods = |opaque: bool| -> Vec<Strip> {
+            let is_opaque = |rod: &Rod| rod.colours.iter().all(|colour| colour.a == 255);
+            let of_kind = drawing.rods.par_iter().filter(|rod| is_opaque(rod) == opaque);
+            of_kind.filter_map(|rod| Strip::new(&view, cut.as_ref(), rod)).collect()
+        };
+        let (mut solid_balls, solid_rods) = (balls(true), rods(true));
+        solid_balls.par_sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
         let surfaces: Vec<_> = drawing.meshes.iter().map(|mesh| Surface::new(&view, mesh)).collect();
 
         let mut veils: Vec<(f64, Veil)> = Vec::new();
-        veils.extend(ghosts.into_iter().map(|ball| (ball.centre.z, Veil::Ball(ball))));
-        veils.extend(clear_rods.into_iter().map(|rod| (rod.depth(), Veil::Rod(rod))));
+        veils.extend(balls(false).into_iter().map(|ball| (ball.centre.z, Veil::Ball(ball))));
+        veils.extend(rods(false).into_iter().map(|rod| (rod.depth(), Veil::Rod(rod))));
         let mut facets = Vec::new();
         for (number, surface) in surfaces.iter().enumerate() {
             let of_surface = mesh::facets(&view, number, surface);
@@ -78,8 +84,8 @@ impl<'a> Scene<'a> {
 
         Self {
             background: drawing.background.bytes(),
-            balls: Sorted::new(&grid, balls, |ball| ball.bounds),
-            rods: Sorted::new(&grid, rods, |rod| rod.bounds),
+            balls: Sorted::new(&grid, solid_balls, |ball| ball.bounds),
+            rods: Sorted::new(&grid, solid_rods, |rod| rod.bounds),
             facets: Sorted::new(&grid, facets, |facet| facet.bounds),
             veils: Sorted::new(&grid, veils, |veil| match veil {
                 Veil::Ball(ball) => ball.bounds,
@@ -94,6 +100,7 @@ impl<'a> Scene<'a> {
     }
 
     /// Paints what hides other things.
+    #[inline(always)]
     pub(super) fn paint_opaque(&self, tile: &mut Tile, place: usize) {
         let mut farthest = f32::INFINITY;
         for (number, ball) in self.balls.at(place).enumerate() {
@@ -116,6 +123,7 @@ impl<'a> Scene<'a> {
     }
 
     /// Lays what lets light through over the rest, from back to front.
+    #[inline(always)]
     pub(super) fn paint_veils(&self, tile: &mut Tile, place: usize) {
         for veil in self.veils.at(place) {
             match veil {

@@ -10,9 +10,9 @@ pub(super) const APRON: usize = 2;
 /// Stands for the light of a thing that shows exactly its colour.
 pub(super) const FLAT: f32 = -1.0;
 
-/// Depth steps between neighbours, as fractions of the height of the picture at that depth,
-/// where an outline begins and where it is at its darkest.
-const STEPS: [f32; 2] = [0.006, 0.04];
+/// How far the depth may bend away between neighbours, as fractions of the height of the picture
+/// at that depth, where an outline begins and where it is at its darkest.
+const BENDS: [f32; 2] = [0.006, 0.04];
 
 /// A square of samples being painted.
 pub(super) struct Tile {
@@ -24,6 +24,8 @@ pub(super) struct Tile {
     pub(super) base: Vec<[u8; 4]>,
     /// Factor on its linear light, or `FLAT`.
     pub(super) lit: Vec<f32>,
+    /// Cosine between the line of sight and the middle one.
+    pub(super) slant: Vec<f32>,
     /// Red, green, blue and opacity in linear light, weighted by the opacity, once developed.
     pub(super) light: [Vec<f32>; 4],
 }
@@ -36,6 +38,7 @@ impl Default for Tile {
             depth: even(f32::INFINITY),
             base: vec![[0; 4]; SIDE * SIDE],
             lit: even(FLAT),
+            slant: even(1.0),
             light: std::array::from_fn(|_| even(0.0)),
         }
     }
@@ -43,24 +46,47 @@ impl Default for Tile {
 
 impl Tile {
     /// Makes it an empty tile of the picture.
+    #[inline(always)]
     pub(super) fn start(&mut self, scene: &Scene<'_>, place: usize) {
         self.corner = scene.grid.corner(place);
         self.depth.fill(f32::INFINITY);
         self.base.fill(scene.background);
         self.lit.fill(FLAT);
+        let step = (1.0 / scene.view.focal()) as f32;
+        let left = scene.view.across(self.corner[0]) as f32;
+        for (line, slants) in self.slant.chunks_exact_mut(SIDE).enumerate() {
+            let up = scene.view.up(self.corner[1] + line as i32) as f32;
+            for (column, slant) in slants.iter_mut().enumerate() {
+                let across = left + step * column as f32;
+                *slant = 1.0 / (1.0 + up * up + across * across).sqrt();
+            }
+        }
+    }
+
+    /// Whether all of some samples side by side show something nearer than a depth.
+    #[inline(always)]
+    pub(super) fn hides<const COUNT: usize>(&self, at: usize, depth: f32) -> bool {
+        let mut open = 0;
+        for &own in &self.depth[at..at + COUNT] {
+            open |= u32::from(own > depth);
+        }
+        open == 0
     }
 
     /// The rows of the tile that are among rows of the picture.
+    #[inline(always)]
     pub(super) fn rows(&self, from: i32, to: i32) -> std::ops::Range<usize> {
         within(from, to, self.corner[1])
     }
 
     /// The columns of the tile that are among columns of the picture.
+    #[inline(always)]
     pub(super) fn columns(&self, from: i32, to: i32) -> std::ops::Range<usize> {
         within(from, to, self.corner[0])
     }
 
     /// Depth beyond which nothing shows any more.
+    #[inline(always)]
     pub(super) fn farthest(&self) -> f32 {
         let mut lanes = [0.0_f32; 8];
         for chunk in self.depth.as_chunks::<8>().0 {
@@ -90,19 +116,20 @@ impl Tile {
     }
 
     /// Darkens lit samples that have something much farther beside them.
+    #[inline(always)]
     pub(super) fn outline(&mut self, view: &View) {
         let near = view.samples;
-        let scale = view.heights() / (STEPS[1] - STEPS[0]);
-        let start = STEPS[0] / (STEPS[1] - STEPS[0]);
+        let scale = view.heights() / (BENDS[1] - BENDS[0]);
+        let start = BENDS[0] / (BENDS[1] - BENDS[0]);
         for row in near..SIDE - near {
             let line = |row: usize, shift: usize| &self.depth[row * SIDE + shift..][..SIDE - 2 * near];
             let (own, above, below) = (line(row, near), line(row - near, near), line(row + near, near));
             let (left, right) = (line(row, 0), line(row, 2 * near));
             let lit = &mut self.lit[row * SIDE + near..][..SIDE - 2 * near];
             for at in 0..lit.len() {
-                let larger = |a: f32, b: f32| if a > b { a } else { b };
-                let farthest = larger(larger(above[at], below[at]), larger(left[at], right[at]));
-                let amount = (farthest - own[at]) / own[at] * scale - start;
+                let (upright, level) = (above[at] + below[at], left[at] + right[at]);
+                let bend = if upright > level { upright } else { level } - 2.0 * own[at];
+                let amount = bend / own[at] * scale - start;
                 let amount = if amount > 1.0 { 1.0 } else { amount };
                 let dark = amount > 0.0 && lit[at] != FLAT;
                 lit[at] = if dark { lit[at] * (1.0 - (1.0 - OUTLINE) * amount) } else { lit[at] };
@@ -111,6 +138,7 @@ impl Tile {
     }
 
     /// Turns colours into linear light.
+    #[inline(always)]
     pub(super) fn develop(&mut self) {
         let srgb = Srgb::tables();
         let [red, green, blue, opacity] = &mut self.light;
@@ -126,25 +154,25 @@ impl Tile {
     }
 
     /// The bytes of its pixels (without the apron), each the mean of its samples.
+    #[inline(always)]
     pub(super) fn average(&self, samples: usize) -> Vec<u8> {
         let srgb = Srgb::tables();
         let side = STEP / samples;
-        let share = 1.0 / (samples * samples) as f32;
-        let mut pixels = Vec::with_capacity(4 * side * side);
-        for row in 0..side {
-            for column in 0..side {
+        let mut pixels = vec![0; 4 * side * side];
+        for (row, line) in pixels.chunks_exact_mut(4 * side).enumerate() {
+            for (column, pixel) in line.as_chunks_mut::<4>().0.iter_mut().enumerate() {
                 let at = (APRON + row * samples) * SIDE + APRON + column * samples;
-                let [red, green, blue, opacity] = self.light.each_ref().map(|light| {
-                    let sum = if samples == 1 {
+                let mean = |light: &[f32]| {
+                    if samples == 1 {
                         light[at]
                     } else {
-                        light[at] + light[at + 1] + light[at + SIDE] + light[at + SIDE + 1]
-                    };
-                    sum * share
-                });
+                        0.25 * ((light[at] + light[at + 1]) + (light[at + SIDE] + light[at + SIDE + 1]))
+                    }
+                };
+                let opacity = mean(&self.light[3]);
                 let whole = if opacity > 0.0 { 1.0 / opacity } else { 0.0 };
-                let [red, green, blue] = [red, green, blue].map(|light| srgb.byte(light * whole));
-                pixels.extend([red, green, blue, (255.0 * opacity + 0.5) as u8]);
+                let byte = |channel: usize| srgb.byte(mean(&self.light[channel]) * whole);
+                *pixel = [byte(0), byte(1), byte(2), (255.0 * opacity + 0.5) as u8];
             }
         }
         pixels
@@ -152,6 +180,6 @@ impl Tile {
 }
 
 fn within(from: i32, to: i32, corner: i32) -> std::ops::Range<usize> {
-    let clamp = |place: i32| (place - corner).clamp(0, SIDE as i32) as usize;
+    let clamp = |place: i32| place.saturating_sub(corner).clamp(0, SIDE as i32) as usize;
     clamp(from)..clamp(to).max(clamp(from))
 }

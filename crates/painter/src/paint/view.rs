@@ -36,28 +36,33 @@ impl View {
     }
 
     /// A length.
+    #[inline(always)]
     pub(super) fn length(&self, length: f32) -> f64 {
         f64::from(length) * self.unit
     }
 
     /// A place; `None` if it is not finite.
+    #[inline(always)]
     pub(super) fn place(&self, place: &Point) -> Option<Seen> {
         let seen = self.direction(&(place.map(f64::from) - self.eye)) * self.unit;
         seen.iter().all(|part| part.is_finite()).then_some(seen)
     }
 
     /// A direction.
+    #[inline(always)]
     pub(super) fn direction(&self, direction: &Seen) -> Seen {
         Seen::new(direction.dot(&self.axes[0]), direction.dot(&self.axes[1]), direction.dot(&self.axes[2]))
     }
 
-    /// A plane: its normal, and its distance from the eye along it.
-    pub(super) fn plane(&self, plane: &Plane) -> (Seen, f64) {
+    /// A plane: its normal, and its distance from the eye along it; `None` if it is not finite.
+    pub(super) fn plane(&self, plane: &Plane) -> Option<(Seen, f64)> {
         let normal = plane.normal.map(f64::from);
-        (self.direction(&normal), (f64::from(plane.offset) - normal.dot(&self.eye)) * self.unit)
+        let offset = (f64::from(plane.offset) - normal.dot(&self.eye)) * self.unit;
+        (offset.is_finite() && normal.norm().is_finite()).then(|| (self.direction(&normal), offset))
     }
 
     /// Samples per unit of (offset across / depth).
+    #[inline(always)]
     pub(super) fn focal(&self) -> f64 {
         self.focal
     }
@@ -68,26 +73,31 @@ impl View {
     }
 
     /// Offset to the right per depth of the sight lines through the middle of a column of samples.
+    #[inline(always)]
     pub(super) fn across(&self, column: i32) -> f64 {
         (f64::from(column) + 0.5 - self.half[0]) / self.focal
     }
 
     /// Offset upwards per depth of the sight lines through the middle of a row of samples.
+    #[inline(always)]
     pub(super) fn up(&self, row: i32) -> f64 {
         (self.half[1] - f64::from(row) - 0.5) / self.focal
     }
 
     /// The first column whose sight lines lie at or to the right of an offset per depth.
+    #[inline(always)]
     pub(super) fn column(&self, across: f64) -> f64 {
         (across * self.focal + self.half[0] - 0.5).ceil()
     }
 
     /// Where a place appears (samples from the top left).
+    #[inline(always)]
     pub(super) fn project(&self, seen: &Seen) -> [f64; 2] {
         [self.half[0] + seen.x / seen.z * self.focal, self.half[1] - seen.y / seen.z * self.focal]
     }
 
     /// The samples within a rectangle; `None` if there are none.
+    #[inline(always)]
     pub(super) fn bounds(&self, low: [f64; 2], high: [f64; 2]) -> Option<Bounds> {
         const MARGIN: f64 = 64.0;
         let [width, height] = self.half.map(|half| 2.0 * half);

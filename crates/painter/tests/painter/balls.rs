@@ -64,14 +64,14 @@ fn removed_ball_is_gone_and_a_ball_seen_from_its_kept_side_is_whole() {
 #[test]
 fn agrees_with_a_slow_twin() {
     let mut random = Xoshiro256PlusPlus::seed_from_u64(7);
-    let camera = front(160, 120);
+    let camera = front(320, 240);
     for round in 0..20 {
         let balls: Vec<Ball> = (0..40)
             .map(|_| Ball {
                 centre: Point::from_fn(|axis, _| {
                     random.random_range(if axis == 0 { -1.0..1.1 } else { -0.4..0.4 })
                 }),
-                radius: random.random_range(0.01..0.15),
+                radius: random.random_range(0.05..0.15),
                 colour: Colour::new(random.random(), random.random(), random.random()),
             })
             .collect();
@@ -79,16 +79,17 @@ fn agrees_with_a_slow_twin() {
         let drawing = Drawing { balls, cut, ..Drawing::default() };
         let image = picture(&drawing, &camera);
         let mut off = 0;
-        for (x, y) in (0..120).flat_map(|y| (0..160).map(move |x| (x, y))) {
+        for (x, y) in (0..240).flat_map(|y| (0..320).map(move |x| (x, y))) {
             let (is, should) = (image.pixel(x, y), follow(&drawing, &camera, x, y));
             let Some(should) = should else { continue };
             off += usize::from(is.bytes().iter().zip(should.bytes()).any(|(a, b)| a.abs_diff(b) > 1));
         }
-        assert!(off <= 3, "{off} pixels differ in round {round}");
+        assert!(off <= 6, "{off} pixels differ in round {round}");
     }
 }
 
-/// What the sight line through a pixel meets first; `None` in the rim of a section.
+/// What the sight line through a pixel meets first; `None` in the rim of a section and where
+/// sections of two balls overlap.
 fn follow(drawing: &Drawing, camera: &Camera, x: u32, y: u32) -> Option<Colour> {
     let sight = camera.sight(x as f32 + 0.5, y as f32 + 0.5).map(f64::from);
     let eye = camera.eye.map(f64::from);
@@ -99,25 +100,30 @@ fn follow(drawing: &Drawing, camera: &Camera, x: u32, y: u32) -> Option<Colour> 
         let root = (to.dot(&sight).powi(2) - to.norm_squared() + radius * radius).sqrt();
         let (near, far) = (to.dot(&sight) - root, to.dot(&sight) + root);
         let depth_per_length = -sight.dot(&camera.axes[2].map(f64::from));
-        if root.is_nan() || near * depth_per_length < 1e-3 {
+        if root.is_nan() {
             continue;
         }
-        let normal = (sight * near - to) / radius;
-        let in_view = camera.axes.map(|axis| normal.dot(&axis.map(f64::from)) as f32);
-        let mut hit = (near, Some(dim(ball.colour, shade(in_view))));
-        if let Some(plane) = drawing.cut {
+        let start = near.max(1e-3 / depth_per_length);
+        let removed = drawing.cut.and_then(|plane| {
             let upright = plane.normal.map(f64::from);
             let from_eye = f64::from(plane.offset) - upright.dot(&eye);
-            if upright.dot(&sight) * near > from_eye {
-                let section = from_eye / upright.dot(&sight);
-                if !(near..far).contains(&section) {
-                    continue;
-                }
+            (upright.dot(&sight) * start > from_eye).then(|| from_eye / upright.dot(&sight))
+        });
+        let hit = match removed {
+            Some(section) if section > start && section < far => {
                 let inwards = 1.0 - (sight * section - to).norm() / radius;
-                hit = (section, (inwards > 0.2).then(|| dim(ball.colour, SECTION)));
+                (section, (inwards > 0.35).then(|| dim(ball.colour, SECTION)))
             }
-        }
-        if hit.0 < nearest.0 {
+            None if near == start => {
+                let normal = (sight * near - to) / radius;
+                let in_view = camera.axes.map(|axis| normal.dot(&axis.map(f64::from)) as f32);
+                (near, Some(dim(ball.colour, shade(in_view))))
+            }
+            _ => continue,
+        };
+        if (hit.0 - nearest.0).abs() < 1e-9 {
+            nearest.1 = None;
+        } else if hit.0 < nearest.0 {
             nearest = hit;
         }
     }

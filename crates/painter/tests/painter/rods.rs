@@ -39,7 +39,7 @@ fn area_is_that_of_a_strip_with_round_ends() {
 #[test]
 fn thin_rod_is_one_pixel_wide_without_gaps() {
     let camera = front(300, 200);
-    for (rise, quality) in [(0.0, PLAIN), (0.03, PLAIN), (0.1, FINE), (0.19, PLAIN)] {
+    for (rise, quality) in [(0.0, PLAIN), (0.0313, PLAIN), (0.0871, FINE), (0.1917, PLAIN)] {
         let image =
             paint(&rod([[0.0, -0.15, -rise], [0.0, 0.15, rise]], 1e-9, [white(); 2]), &camera, quality);
         let length = 0.3_f64.hypot(2.0 * f64::from(rise)) * f64::from(camera.focal);
