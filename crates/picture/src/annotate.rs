@@ -28,16 +28,16 @@ pub fn annotate(run: &Run, frame: &Frame, look: &Look, camera: &Camera, words: &
         page.mark(mark, camera);
     }
     if let Some(title) = &words.title {
-        page.text([page.margin, page.margin + page.size], Align::Left, 1.25, page.ink, title);
+        page.title(title);
     }
-    if words.stamp {
-        page.stamp(run, frame);
-    }
-    if words.legend {
-        for legend in legends(run, look) {
-            page.legend(&legend);
+    page.on_panel(|page| {
+        if words.stamp {
+            page.stamp(run, frame);
         }
-    }
+        if words.legend {
+            legends(run, look).iter().for_each(|legend| page.legend(legend));
+        }
+    });
     if words.bearings {
         page.scale_bar(camera);
         page.axes(camera);
@@ -79,7 +79,7 @@ impl Page {
             faint: look.theme.faint(),
             accent: look.theme.accent(),
             ground: look.theme.background(),
-            below: margin + 3.4 * size,
+            below: margin,
         }
     }
 
@@ -91,10 +91,40 @@ impl Page {
         self.items.push(Item::Line { ends: [from, to], width, colour });
     }
 
+    /// Draws on top of a panel that is as large as what is drawn.
+    fn on_panel(&mut self, draw: impl FnOnce(&mut Self)) {
+        let first = self.items.len();
+        draw(self);
+        let mut bounds: Option<[f32; 4]> = None;
+        for item in &self.items[first..] {
+            let [left, top, right, bottom] = extent(item);
+            let so_far = bounds.unwrap_or([left, top, right, bottom]);
+            bounds =
+                Some([so_far[0].min(left), so_far[1].min(top), so_far[2].max(right), so_far[3].max(bottom)]);
+        }
+        if let Some([left, top, right, bottom]) = bounds {
+            let room = 0.5 * self.size;
+            let panel = Item::Panel {
+                from: [left - room, top - room],
+                to: [right + room, bottom + room],
+                colour: self.ground.with_alpha(200),
+            };
+            self.items.insert(first, panel);
+        }
+    }
+
+    fn title(&mut self, title: &str) {
+        self.on_panel(|page| {
+            page.text([page.margin, page.margin + page.size], Align::Left, 1.25, page.ink, title);
+        });
+    }
+
     fn stamp(&mut self, run: &Run, frame: &Frame) {
         let right = self.width - self.margin;
+        // To a tenth, and without it where it is nought.
+        let increment = (10.0 * frame.time).round() / 10.0;
         let lines = [
-            format!("increment {:.1} of {}", frame.time, run.increments()),
+            format!("increment {increment} of {}", run.increments()),
             format!(
                 "free stretch {:.2}, water {} g/g",
                 frame.step.free_stretch,
@@ -103,14 +133,10 @@ impl Page {
         ];
         for (index, line) in lines.iter().enumerate() {
             let colour = if index == 0 { self.ink } else { self.faint };
-            self.text(
-                [right, self.margin + self.size * (1.0 + 1.3 * index as f32)],
-                Align::Right,
-                1.0,
-                colour,
-                line,
-            );
+            let y = self.margin + self.size * (1.0 + 1.3 * index as f32);
+            self.text([right, y], Align::Right, 1.0, colour, line);
         }
+        self.below = self.margin + 3.4 * self.size;
     }
 
     fn legend(&mut self, legend: &Legend) {
@@ -141,28 +167,37 @@ impl Page {
         self.below = to[1] + 2.0 * self.size;
     }
 
-    /// A length at the depth of the target, about a seventh of the picture's width.
+    /// A length at the depth of the target, about a tenth of the picture's width.
     fn scale_bar(&mut self, camera: &Camera) {
         let pixels_per_metre = camera.focal / camera.distance;
         let metres = round_up(0.1 * self.width / pixels_per_metre);
         let long = metres * pixels_per_metre;
         let (right, y) = (self.width - self.margin, self.height - self.margin);
-        self.line([right - long, y], [right, y], 0.2 * self.size, self.ink);
-        let words = length(f64::from(metres));
-        self.text([right - 0.5 * long, y - 0.6 * self.size], Align::Middle, 1.0, self.ink, &words);
+        self.on_panel(|page| {
+            page.line([right - long, y], [right, y], 0.2 * page.size, page.ink);
+            let words = length(f64::from(metres));
+            page.text([right - 0.5 * long, y - 0.6 * page.size], Align::Middle, 1.0, page.ink, &words);
+        });
     }
 
     fn axes(&mut self, camera: &Camera) {
         let middle = [self.margin + 1.6 * self.size, self.height - self.margin - 1.6 * self.size];
-        let names = ["x", "y", "z"];
-        for (axis, name) in names.iter().enumerate() {
+        self.items.push(Item::Panel {
+            from: [middle[0] - 2.6 * self.size, middle[1] - 2.8 * self.size],
+            to: [middle[0] + 2.8 * self.size, middle[1] + 2.6 * self.size],
+            colour: self.ground.with_alpha(200),
+        });
+        for (axis, name) in ["x", "y", "z"].iter().enumerate() {
             let (across, up) = (camera.axes[0][axis], camera.axes[1][axis]);
             let end =
                 |reach: f32| [middle[0] + reach * self.size * across, middle[1] - reach * self.size * up];
-            let (tip, label) = (end(1.7), end(2.4));
-            self.line(middle, tip, 0.12 * self.size, self.faint);
-            let at = [label[0], label[1] + 0.33 * self.size];
-            self.text(at, Align::Middle, 0.95, self.faint, name);
+            // An axis that points at the eye has no length worth a letter.
+            if across.hypot(up) > 0.15 {
+                let (tip, label) = (end(1.7), end(2.2));
+                self.line(middle, tip, 0.12 * self.size, self.ink);
+                let at = [label[0], label[1] + 0.33 * self.size];
+                self.text(at, Align::Middle, 0.95, self.ink, name);
+            }
         }
     }
 
@@ -202,9 +237,34 @@ impl Page {
         let from = [at[0] + 0.71 * radius, at[1] - 0.71 * radius];
         let to = [from[0] + 1.6 * self.size, from[1] - 1.6 * self.size];
         self.line(from, to, 0.12 * self.size, self.accent);
-        let words =
-            format!("{}; {:.0} % of the tear probability", stress(mark.tension.into()), 100.0 * mark.share);
-        self.text([to[0] + 0.3 * self.size, to[1]], Align::Left, 1.0, self.accent, &words);
+        let words = format!(
+            "{}; {:.0} % of the bead's tear probability",
+            stress(mark.tension.into()),
+            100.0 * mark.share
+        );
+        self.on_panel(|page| {
+            page.text([to[0] + 0.8 * page.size, to[1]], Align::Left, 1.0, page.ink, &words);
+        });
+    }
+}
+
+/// Left, top, right and bottom of a thing (pixels).
+fn extent(item: &Item) -> [f32; 4] {
+    match item {
+        Item::Text { at, align, size, text, .. } => {
+            let long = text_width(text, *size);
+            let left = match align {
+                Align::Left => at[0],
+                Align::Middle => at[0] - 0.5 * long,
+                Align::Right => at[0] - long,
+            };
+            [left, at[1] - 0.75 * size, left + long, at[1] + 0.2 * size]
+        }
+        Item::Panel { from, to, .. } | Item::Ramp { from, to, .. } => [from[0], from[1], to[0], to[1]],
+        Item::Line { ends: [one, other], .. } => {
+            [one[0].min(other[0]), one[1].min(other[1]), one[0].max(other[0]), one[1].max(other[1])]
+        }
+        Item::Ring { at, radius, .. } => [at[0] - radius, at[1] - radius, at[0] + radius, at[1] + radius],
     }
 }
 

@@ -6,10 +6,11 @@ use crate::{Field, Run, Scale};
 use bedswell_painter::{Ball, Colour, Drawing, Light, Mesh, Plane, Point, Rod};
 use bedswell_sim::{GrainContact, Touched};
 
-/// Opacity of a ghosted grain.
-const GHOST: u8 = 70;
-/// Radius of a bond's rod over the edge of a voxel.
-const BOND: f32 = 0.07;
+/// Opacity of a ghosted grain that a bead presses on, and of any other.
+const GHOSTS: [u8; 2] = [110, 40];
+/// Radius of a bond's rod over the edge of a voxel: slack, and at the end of the scale.
+/// What carries nothing steps back.
+const BOND: [f32; 2] = [0.022, 0.085];
 
 /// What a look shows of a frame.
 pub fn draw(run: &Run, frame: &Frame, look: &Look) -> Drawing {
@@ -20,6 +21,7 @@ pub fn draw(run: &Run, frame: &Frame, look: &Look) -> Drawing {
         draw_cell(frame, look, &mut drawing);
     }
     if look.grains != GrainLook::Hidden {
+        let pressed = frame.pressed();
         drawing.balls.extend(frame.grains.iter().map(|grain| {
             let value = match look.shade {
                 GrainShade::Plain => None,
@@ -28,7 +30,10 @@ pub fn draw(run: &Run, frame: &Frame, look: &Look) -> Drawing {
                 GrainShade::ContactForce => Some(grain.force),
             };
             let colour = value.map_or(look.theme.grain(), |value| scales.shade.colour(value));
-            let alpha = if look.grains == GrainLook::Ghosted { GHOST } else { 255 };
+            let alpha = match look.grains {
+                GrainLook::Ghosted => GHOSTS[usize::from(!pressed[grain.grain])],
+                GrainLook::Plain | GrainLook::Hidden => 255,
+            };
             Ball { centre: grain.centre, radius: grain.radius, colour: colour.with_alpha(alpha) }
         }));
     }
@@ -95,10 +100,12 @@ impl Cut {
 }
 
 fn draw_bonds(bead: &BeadView, scale: &Scale, drawing: &mut Drawing) {
-    let radius = BOND * bead.voxel_edge();
+    let edge = bead.voxel_edge();
+    let radius =
+        |tension: f32| edge * (BOND[0] + (BOND[1] - BOND[0]) * (tension.abs() / scale.high).min(1.0));
     drawing.rods.extend(bead.bond_voxels().iter().zip(&bead.bonds).map(|(voxels, &tension)| Rod {
         ends: voxels.map(|voxel| bead.middles[voxel as usize]),
-        radius,
+        radius: radius(tension),
         colours: [scale.colour(tension); 2],
     }));
 }

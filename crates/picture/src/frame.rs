@@ -165,6 +165,17 @@ impl Frame {
         image
     }
 
+    /// Which grains a bead presses on, by number.
+    pub(crate) fn pressed(&self) -> Vec<bool> {
+        let mut pressed = vec![false; self.grains.iter().map(|grain| grain.grain + 1).max().unwrap_or(0)];
+        for touch in self.beads.iter().flat_map(|bead| &bead.touches) {
+            if let Touched::Grain(grain) = touch.on {
+                pressed[grain as usize] = true;
+            }
+        }
+        pressed
+    }
+
     /// Middle of the beads (m), or of the bed without any.
     pub fn middle(&self) -> Point {
         if self.beads.is_empty() {

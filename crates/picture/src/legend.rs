@@ -19,7 +19,7 @@ pub struct Legend {
 pub fn legends(run: &Run, look: &Look) -> Vec<Legend> {
     let scales = Scales::new(run, look);
     let mut legends = Vec::new();
-    let beyond = [true, look.range < 1.0];
+    let beyond = [true, run.exceeds_range(look.range)];
     let fills = look.skin || look.section && look.cut.is_some();
     let mut stress = Vec::new();
     if fills && look.field.is_signed_stress() {

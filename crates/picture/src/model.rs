@@ -22,12 +22,15 @@ pub(crate) struct BeadModel {
     pub(crate) cells: Vec<(u32, [u32; 8])>,
 }
 
+/// Divisions of the skin's octahedron edges beyond which a voxel is not divided further.
+const FINEST: usize = 32;
+
 impl BeadModel {
     pub(crate) fn new(across: usize) -> Self {
         let lattice = Lattice::new(across);
         let locator = Locator::new(&lattice);
         let half = 0.5 * across as f64;
-        let (directions, triangles) = sphere(across);
+        let (directions, triangles) = sphere((2 * across).clamp(across, FINEST.max(across)));
         let skin = directions.iter().map(|d| locator.find(d.map(|c| c * half))).collect();
         let gel: Vec<f64> = (0..lattice.voxel_count()).map(|voxel| lattice.filled(voxel)).collect();
         let all: f64 = gel.iter().sum();

@@ -22,6 +22,8 @@ pub struct Run {
     pub(crate) states: Vec<Arc<State>>,
     models: BTreeMap<u16, Arc<BeadModel>>,
     ranges: Ranges,
+    /// Largest tension in any state (Pa).
+    peak: f32,
 }
 
 /// Largest values over the states, which the colour scales span.
@@ -61,6 +63,7 @@ impl Run {
             states: Vec::new(),
             models: BTreeMap::new(),
             ranges: Ranges::default(),
+            peak: 0.0,
         }
     }
 
@@ -70,7 +73,11 @@ impl Run {
             self.models.entry(bead.across).or_insert_with(|| Arc::new(BeadModel::new(bead.across.into())));
         }
         self.states.push(Arc::new(state));
-        self.ranges = self.ranges_of_last();
+        if let Some(frame) = self.end().and_then(|end| self.frame(end)) {
+            self.ranges = Ranges::of(&frame);
+            let principal = frame.beads.iter().flat_map(|bead| &bead.principal);
+            self.peak = principal.map(|p| p[0]).fold(self.peak, f32::max);
+        }
     }
 
     /// The latest time there is: increments count from 0, the mixed dry bed. `None` without
@@ -131,11 +138,24 @@ impl Run {
         }
     }
 
-    /// The ranges that the last state needs: it is the one that matters, and those before
-    /// it are gentler but for the first, in which the gel is nearly dry and hard.
-    fn ranges_of_last(&self) -> Ranges {
-        let Some(frame) = self.end().and_then(|end| self.frame(end)) else { return Ranges::default() };
-        let mut ranges = Ranges::default();
+    /// Whether some state has more tension than the colour scales span.
+    pub(crate) fn exceeds_range(&self, factor: f32) -> bool {
+        self.peak > factor * self.ranges.tension
+    }
+
+    /// A ball (centre, radius in m) that holds the whole bed at the end, and one that holds
+    /// the beads.
+    pub fn bounds(&self) -> Option<[(Point, f32); 2]> {
+        let frame = self.frame(self.end()?)?;
+        Some([frame.bed_bounds(), frame.bead_bounds()])
+    }
+}
+
+impl Ranges {
+    /// The ranges that a state needs. Those of the last one are used: it is the one that
+    /// matters.
+    fn of(frame: &Frame) -> Self {
+        let mut ranges = Self::default();
         for bead in &frame.beads {
             for (voxel, principal) in bead.principal.iter().enumerate() {
                 ranges.tension = ranges.tension.max(principal[0]);
@@ -149,7 +169,7 @@ impl Run {
             ranges.contact_force = ranges.contact_force.max(grain.force);
         }
         let nice = |value: f32, unit: f32| round_up(value / unit) * unit;
-        Ranges {
+        Self {
             tension: nice(ranges.tension, 1e3),
             shear: nice(ranges.shear, 1e3),
             uptake: nice(ranges.uptake, 1.0),
@@ -157,12 +177,5 @@ impl Run {
             displacement: nice(ranges.displacement, 1e-3),
             contact_force: nice(ranges.contact_force, 1e-3),
         }
-    }
-
-    /// A ball (centre, radius in m) that holds the whole bed at the end, and one that holds
-    /// the beads.
-    pub fn bounds(&self) -> Option<[(Point, f32); 2]> {
-        let frame = self.frame(self.end()?)?;
-        Some([frame.bed_bounds(), frame.bead_bounds()])
     }
 }

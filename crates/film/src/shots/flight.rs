@@ -10,8 +10,8 @@ const MARGIN: f64 = 1.08;
 const ARRIVAL: f64 = 0.6;
 /// Height of the eye above the horizon where a hot spot's shot starts (degrees).
 const DEPARTURE_ELEVATION: f64 = 20.0;
-/// Lowest and highest view of a hot spot (degrees), so that neither floor nor lid is in the way.
-const SPOT_ELEVATIONS: [f64; 2] = [-15.0, 60.0];
+/// Lowest and highest view of a hot spot (degrees), so that up stays up.
+const SPOT_ELEVATIONS: [f64; 2] = [-50.0, 60.0];
 
 impl Shot {
     /// Where the camera is at a share of the shot (0 to 1), for a picture of this size.
@@ -91,12 +91,18 @@ pub(crate) fn fitting(radius: f32, size: Size) -> f64 {
     MARGIN * f64::from(radius) / half.min(across.atan()).sin()
 }
 
+impl HotSpot {
+    /// Azimuth and elevation of the eye that sees it best (degrees).
+    pub(crate) fn seen_from(&self) -> (f64, f64) {
+        let [x, y, z] = self.outward.map(f64::from);
+        let [lowest, highest] = SPOT_ELEVATIONS;
+        (y.atan2(x).to_degrees(), z.atan2(x.hypot(y)).to_degrees().clamp(lowest, highest))
+    }
+}
+
 /// From the whole bed to the side of the spot that can be seen, then slowly round it.
 fn approach(spot: &HotSpot, turn: f64, stage: &Stage, size: Size) -> Vec<View> {
-    let [x, y, z] = spot.outward.map(f64::from);
-    let azimuth = y.atan2(x).to_degrees();
-    let [lowest, highest] = SPOT_ELEVATIONS;
-    let elevation = z.atan2(x.hypot(y)).to_degrees().clamp(lowest, highest);
+    let (azimuth, elevation) = spot.seen_from();
     let bed = View {
         at: 0.0,
         azimuth: azimuth - ARRIVAL * turn,

@@ -37,6 +37,8 @@ pub struct Shot {
     pub field: Option<Word>,
     /// A cut through the bed.
     pub cut: Option<Cut>,
+    /// Whether the bed is cut open at the place that the camera flies to, towards the eye.
+    pub opened: bool,
     /// Where its heading stands.
     pub place: Place,
 }

@@ -1,6 +1,6 @@
 use super::read_camera::read_move;
 use super::section::{Entry, Section, Source};
-use super::{Cut, Shot, ShotError, ShotList};
+use super::{Cut, Move, Shot, ShotError, ShotList, Word};
 use bedswell_painter::Size;
 use std::path::Path;
 
@@ -91,6 +91,10 @@ fn shot(section: &Section<'_>, reached: f64) -> Result<Shot, ShotError> {
     let camera = read_move(section)?;
     let from = section.number("from", 0.0..=1.0, reached)?;
     let beads = section.get("beads").map_or(Ok(Vec::new()), |beads| beads.list())?;
+    let (cut, opened) = match section.get("cut") {
+        Some(cut) if cut.text().is_ok() => (None, read_opening(&cut.word()?, &camera)?),
+        cut => (cut.map(|cut| read_cut(&cut)).transpose()?, false),
+    };
     Ok(Shot {
         seconds: section.need("seconds", "seconds = 4")?.number(0.1..=600.0)?,
         caption: section.get("caption").map(|caption| caption.text()).transpose()?.map(str::to_owned),
@@ -100,9 +104,19 @@ fn shot(section: &Section<'_>, reached: f64) -> Result<Shot, ShotError> {
         shade: section.word("shade")?,
         beads: beads.iter().map(Entry::word).collect::<Result<_, _>>()?,
         field: section.word("field")?,
-        cut: section.get("cut").map(|cut| read_cut(&cut)).transpose()?,
+        cut,
+        opened,
         place: section.place().clone(),
     })
+}
+
+/// A cut through the place that the camera flies to.
+fn read_opening(word: &Word, camera: &Move) -> Result<bool, ShotError> {
+    word.one_of(&[("through the place", ())])?;
+    match camera {
+        Move::HotSpot { .. } => Ok(true),
+        Move::Orbit { .. } | Move::Path(_) => Err(word.refuse("needs camera = \"hot spot\"")),
+    }
 }
 
 /// A cut that stays, with `offset`, or one that moves, with `from` and `to`.

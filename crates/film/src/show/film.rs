@@ -1,10 +1,10 @@
-use super::look::look;
+use super::look::{look, opening};
 use super::renderer::{RenderError, Renderer};
 use super::stage::{PLACES, stage};
 use crate::clip::{Clip, ClipError, Stored};
 use crate::shots::{Moment, Move, ShotError, ShotList};
 use bedswell_painter::{Camera, Image, paint_overlay};
-use bedswell_picture::{LikelyPlace, Run, Words, annotate, draw, likely_places};
+use bedswell_picture::{Frame, LikelyPlace, Run, Words, annotate, draw, likely_places};
 use std::ops::Range;
 use std::path::Path;
 use thiserror::Error;
@@ -58,7 +58,8 @@ pub fn make_film(
 ) -> Result<Stored, FilmError> {
     check_shots(run, shots)?;
     let mut clip = Clip::create(path, shots.size, shots.frames_per_second)?;
-    let mut crew = Crew { run, shots, renderer, places: (usize::MAX, Vec::new()) };
+    let end = run.end().and_then(|end| run.frame(end)).ok_or(FilmError::Nothing)?;
+    let mut crew = Crew { run, shots, renderer, end, places: (usize::MAX, Vec::new()) };
     let frames = shots.frames();
     for frame in 0..frames {
         let Some(moment) = shots.moment(frame) else { break };
@@ -80,7 +81,7 @@ pub fn check_shots(run: &Run, shots: &ShotList) -> Result<(), FilmError> {
         let frame =
             run.frame(shot.span[1] * run.end().ok_or(FilmError::Nothing)?).ok_or(FilmError::Nothing)?;
         let places = likely_places(&frame, PLACES);
-        shot.pose(0.0, &stage(&frame, &places), shots.size)?;
+        shot.pose(0.0, &stage(&frame, &places, None), shots.size)?;
     }
     Ok(())
 }
@@ -89,6 +90,8 @@ struct Crew<'a> {
     run: &'a Run,
     shots: &'a ShotList,
     renderer: &'a mut dyn Renderer,
+    /// How the run ends.
+    end: Frame,
     /// The likeliest places at the end of a shot, which the camera goes to, with its number.
     places: (usize, Vec<LikelyPlace>),
 }
@@ -96,19 +99,26 @@ struct Crew<'a> {
 impl Crew<'_> {
     fn shoot(&mut self, moment: &Moment<'_>) -> Result<Image, FilmError> {
         let Moment { shot, number, progress, run: share } = *moment;
-        let end = self.run.end().ok_or(FilmError::Nothing)?;
+        let end = self.end.time;
         let frame = self.run.frame(share * end).ok_or(FilmError::Nothing)?;
         if self.places.0 != number {
             let last = self.run.frame(shot.span[1] * end).ok_or(FilmError::Nothing)?;
             self.places = (number, likely_places(&last, PLACES));
         }
-        let look = look(self.shots, shot, progress)?;
-        let pose = shot.pose(progress, &stage(&frame, &self.places.1), self.shots.size)?;
+        let stage = stage(&frame, &self.places.1, Some(&self.end));
+        let mut look = look(self.shots, shot, progress)?;
+        let pose = shot.pose(progress, &stage, self.shots.size)?;
         let camera = Camera::new(&pose, self.shots.size);
         let mark = match &shot.camera {
-            Move::HotSpot { rank, .. } => self.places.1.get(rank.number - 1).copied(),
+            Move::HotSpot { rank, .. } => {
+                let index = rank.number - 1;
+                self.places.1.get(index).copied().zip(stage.hot_spots.get(index))
+            }
             Move::Orbit { .. } | Move::Path(_) => None,
         };
+        if let (true, Some((place, spot))) = (shot.opened, &mark) {
+            look.cut = Some(opening(&frame, place, spot));
+        }
         let title = format!("{}, pack {}", self.run.scene.name, self.run.pack);
         let words = Words {
             title: Some(self.shots.title.clone().unwrap_or(title)),
@@ -116,7 +126,7 @@ impl Crew<'_> {
             stamp: true,
             legend: true,
             bearings: true,
-            mark,
+            mark: mark.map(|(place, _)| place),
         };
         let mut image = self.renderer.render(&draw(self.run, &frame, &look), &camera)?;
         paint_overlay(&mut image, &annotate(self.run, &frame, &look, &camera, &words));

@@ -1,5 +1,14 @@
-use crate::shots::{Shot, ShotError, ShotList, Word};
-use bedswell_picture::{Cut, Field, GrainLook, GrainShade, Look, Theme};
+use crate::shots::{HotSpot, Shot, ShotError, ShotList, Word};
+use bedswell_picture::{Cut, Field, Frame, GrainLook, GrainShade, LikelyPlace, Look, Theme};
+
+/// The cut through a place that opens the bed towards where the place is seen from.
+pub(super) fn opening(frame: &Frame, place: &LikelyPlace, spot: &HotSpot) -> Cut {
+    let (azimuth, elevation) = spot.seen_from();
+    let (azimuth, elevation) = (azimuth as f32, elevation as f32);
+    let cut = Cut { azimuth, elevation, offset: 0.0 };
+    let normal = cut.plane(frame).normal;
+    Cut { offset: normal.dot(&(place.place - frame.middle())), ..cut }
+}
 
 /// What a shot shows, at a share of it.
 pub(super) fn look(list: &ShotList, shot: &Shot, progress: f64) -> Result<Look, ShotError> {

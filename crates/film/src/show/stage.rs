@@ -9,9 +9,14 @@ const CLOSE: f32 = 0.6;
 const ASIDE: [f32; 3] = [1.0, 0.4, 0.4];
 
 /// What the camera can look at in a frame; places are those found likeliest at some time.
-pub(super) fn stage(frame: &Frame, places: &[LikelyPlace]) -> Stage {
+/// Beads count as large as in the frame `at_end`, if there is one: the camera must not step
+/// back as they swell.
+pub(super) fn stage(frame: &Frame, places: &[LikelyPlace], at_end: Option<&Frame>) -> Stage {
     let bounds = |(centre, radius): (bedswell_painter::Point, f32)| Bounds { centre: centre.into(), radius };
-    let beads: Vec<Bounds> = frame.beads.iter().map(|bead| bounds(bead.bounds())).collect();
+    let mut beads: Vec<Bounds> = frame.beads.iter().map(|bead| bounds(bead.bounds())).collect();
+    for (bead, end) in beads.iter_mut().zip(at_end.iter().flat_map(|end| &end.beads)) {
+        bead.radius = end.bounds().1;
+    }
     let hot_spots = places.iter().filter_map(|place| {
         let bead = beads.get(place.bead)?;
         let outward = place.place - bedswell_painter::Point::from(bead.centre);

@@ -80,7 +80,7 @@ struct Prepared {
 fn prepare(run: &Run, still: &Still) -> Result<Prepared, FilmError> {
     let frame = run.frame(still.time).ok_or(FilmError::Nothing)?;
     let places = likely_places(&frame, PLACES);
-    let stage = stage(&frame, &places);
+    let stage = stage(&frame, &places, None);
     let absent = |what, asked, known: std::ops::Range<usize>| FilmError::Absent { what, asked, known };
     let mut eye = [AZIMUTH, ELEVATION];
     let (Bounds { centre, radius }, mark) = match still.subject {
@@ -94,8 +94,8 @@ fn prepare(run: &Run, still: &Still) -> Result<Prepared, FilmError> {
             let index = number.checked_sub(1).filter(|&index| index < places.len());
             let index = index.ok_or_else(|| absent("place of likely rupture", number, known))?;
             let spot = stage.hot_spots[index];
-            let [x, y, z] = spot.outward;
-            eye = [y.atan2(x).to_degrees(), z.atan2(x.hypot(y)).to_degrees().clamp(-15.0, 60.0)];
+            let (azimuth, elevation) = spot.seen_from();
+            eye = [azimuth as f32, elevation as f32];
             (spot.bounds, Some(places[index]))
         }
     };
