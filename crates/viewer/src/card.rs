@@ -49,6 +49,18 @@ pub(crate) fn choice<T: PartialEq + Copy>(ui: &mut Ui, chosen: &mut T, words: &[
     *chosen != before
 }
 
+/// Words below each other of which one is chosen; returns whether the choice changed.
+pub(crate) fn list<T: PartialEq + Copy>(ui: &mut Ui, chosen: &mut T, words: &[(T, &str)]) -> bool {
+    let before = *chosen;
+    ui.spacing_mut().item_spacing.y = 1.0;
+    ui.with_layout(Layout::top_down_justified(Align::Min), |ui| {
+        for (value, word) in words {
+            ui.selectable_value(chosen, *value, *word);
+        }
+    });
+    *chosen != before
+}
+
 /// A line with a name on the left and a value on the right.
 pub(crate) fn figure(ui: &mut Ui, palette: &Palette, name: &str, value: &str) {
     ui.horizontal(|ui| {

@@ -1,4 +1,4 @@
-use crate::args::ThemeName;
+use bedswell_picture::Theme;
 use serde::{Deserialize, Serialize};
 use std::path::{Path, PathBuf};
 
@@ -7,7 +7,7 @@ use std::path::{Path, PathBuf};
 #[serde(default)]
 pub(crate) struct Settings {
     /// Colours.
-    pub(crate) theme: ThemeName,
+    pub(crate) theme: Theme,
     /// Size of text, over its usual size.
     pub(crate) text_size: f32,
     /// Numbers of the cards that are folded.
@@ -16,7 +16,7 @@ pub(crate) struct Settings {
 
 impl Default for Settings {
     fn default() -> Self {
-        Self { theme: ThemeName::Dark, text_size: 1.0, folded: Vec::new() }
+        Self { theme: Theme::Dark, text_size: 1.0, folded: Vec::new() }
     }
 }
 
@@ -80,7 +80,7 @@ mod tests {
     fn settings_come_back_and_a_damaged_file_is_no_trouble() {
         let folder = tempfile::tempdir().unwrap();
         let file = folder.path().join("deep/window.toml");
-        let mut settings = Settings { theme: ThemeName::Print, ..Settings::default() };
+        let mut settings = Settings { theme: Theme::Print, ..Settings::default() };
         settings.resize_text(0.2);
         settings.toggle(3);
         settings.write(Some(&file));

@@ -1,7 +1,11 @@
 use crate::theme::Palette;
+use bedswell_sim::figures::digits;
 use bevy_egui::egui::{
     Align2, CursorIcon, FontId, Pos2, Rect, Sense, Shape, Stroke, Ui, Vec2, pos2, vec2,
 };
+
+/// How long it takes to play a whole run (s).
+pub(crate) const PLAY_SECONDS: f64 = 8.0;
 
 /// One figure over the course of swelling.
 #[derive(Clone, Debug, PartialEq)]
@@ -14,10 +18,20 @@ pub(crate) struct Curve {
     pub(crate) values: Vec<f64>,
 }
 
+impl Curve {
+    /// Its value at a time (increments), evenly between two.
+    fn at(&self, time: f64) -> Option<f64> {
+        let before = *self.values.get(time.floor() as usize)?;
+        let after = self.values.get(time.ceil() as usize).copied().unwrap_or(before);
+        Some(before + (after - before) * time.fract()).filter(|value| value.is_finite())
+    }
+}
+
 /// Curves side by side which share a cursor; pressing or dragging in one moves it.
 ///
-/// `last` is the last increment there may be. Returns the increment asked for.
-pub(crate) fn strip(ui: &mut Ui, palette: &Palette, curves: &[Curve], last: usize, cursor: usize) -> Option<usize> {
+/// `last` is the last increment there may be, `time` where the cursor stands (increments).
+/// Returns the increment asked for.
+pub(crate) fn strip(ui: &mut Ui, palette: &Palette, curves: &[Curve], last: usize, time: f64) -> Option<usize> {
     let gap = 14.0;
     let whole = ui.available_rect_before_wrap();
     let count = curves.len().max(1) as f32;
@@ -30,13 +44,13 @@ pub(crate) fn strip(ui: &mut Ui, palette: &Palette, curves: &[Curve], last: usiz
             .interact(rect, ui.id().with(("curve", number)), Sense::click_and_drag())
             .on_hover_cursor(CursorIcon::ResizeHorizontal);
         let frame = Frame::new(rect, curve, last);
-        frame.draw(ui, palette, curve, cursor);
+        frame.draw(ui, palette, curve, time);
         let pressed = response.clicked() || response.dragged() || response.drag_started();
         if let Some(at) = response.interact_pointer_pos().filter(|_| pressed) {
             asked = Some(frame.increment(at.x, last).min(curve.values.len().saturating_sub(1)));
         }
     }
-    asked.filter(|asked| *asked != cursor)
+    asked.filter(|asked| *asked as f64 != time)
 }
 
 /// Where one curve is drawn.
@@ -57,8 +71,8 @@ impl Frame {
         Self { rect, inner, low, high: if high > low { high } else { low + 1.0 }, last }
     }
 
-    fn place(&self, increment: usize, value: f64) -> Pos2 {
-        let along = increment as f32 / self.last.max(1) as f32;
+    fn place(&self, time: f64, value: f64) -> Pos2 {
+        let along = time as f32 / self.last.max(1) as f32;
         let up = ((value - self.low) / (self.high - self.low)) as f32;
         pos2(self.inner.left() + along * self.inner.width(), self.inner.bottom() - up * self.inner.height())
     }
@@ -68,14 +82,15 @@ impl Frame {
         (along * last as f32).round() as usize
     }
 
-    fn draw(&self, ui: &Ui, palette: &Palette, curve: &Curve, cursor: usize) {
+    fn draw(&self, ui: &Ui, palette: &Palette, curve: &Curve, time: f64) {
         let painter = ui.painter();
         let small = FontId::proportional(11.0);
         let line = Stroke::new(1.0, palette.line);
         let words = |at, anchor, text: String, colour| painter.text(at, anchor, text, small.clone(), colour);
         words(self.rect.left_top(), Align2::LEFT_TOP, curve.name.to_owned(), palette.quiet);
-        if let Some(value) = curve.values.get(cursor) {
-            let text = format!("{} {}", figures(*value), curve.unit);
+        let value = curve.at(time);
+        if let Some(value) = value {
+            let text = format!("{} {}", digits(value), curve.unit);
             painter.text(self.rect.right_top(), Align2::RIGHT_TOP, text, FontId::proportional(13.0), palette.text);
         }
         painter.line_segment([self.inner.left_bottom(), self.inner.right_bottom()], line);
@@ -87,28 +102,15 @@ impl Frame {
             .iter()
             .enumerate()
             .filter(|(_, value)| value.is_finite())
-            .map(|(increment, value)| self.place(increment, *value))
+            .map(|(increment, value)| self.place(increment as f64, *value))
             .collect();
         painter.add(Shape::line(points, Stroke::new(1.5, palette.text)));
-        let x = self.place(cursor, self.low).x;
+        let x = self.place(time, self.low).x;
         let accent = Stroke::new(1.0, palette.accent);
         painter.line_segment([pos2(x, self.inner.top()), pos2(x, self.inner.bottom())], accent);
-        if let Some(value) = curve.values.get(cursor).filter(|value| value.is_finite()) {
-            painter.circle_filled(self.place(cursor, *value), 3.5, palette.accent);
+        if let Some(value) = value {
+            painter.circle_filled(self.place(time, value), 3.5, palette.accent);
         }
-    }
-}
-
-/// A number with three significant figures, the way one reads it in a table.
-pub(crate) fn figures(value: f64) -> String {
-    if value == 0.0 || !value.is_finite() {
-        return if value == 0.0 { "0".to_owned() } else { "-".to_owned() };
-    }
-    let size = value.abs().log10().floor() as i32;
-    match size {
-        -3..=2 => format!("{value:.*}", (2 - size) as usize),
-        3..=5 => format!("{value:.0}"),
-        _ => format!("{value:.2e}"),
     }
 }
 
@@ -117,12 +119,16 @@ mod tests {
     use super::*;
 
     #[test]
-    fn numbers_read_as_in_a_table() {
-        for (value, text) in
-            [(0.0, "0"), (41.237, "41.2"), (0.012_34, "0.0123"), (1234.5, "1234"), (1.2e-6, "1.20e-6"), (f64::NAN, "-")]
-        {
-            assert_eq!(figures(value), text);
-        }
+    fn values_move_evenly_between_increments() {
+        let curve = Curve { name: "", unit: "", values: vec![0.0, 1.0, 4.0] };
+        assert_eq!([0.0, 0.5, 1.5, 2.0, 2.5].map(|time| curve.at(time)), [
+            Some(0.0),
+            Some(0.5),
+            Some(2.5),
+            Some(4.0),
+            Some(4.0)
+        ]);
+        assert_eq!(curve.at(3.0), None);
     }
 
     #[test]

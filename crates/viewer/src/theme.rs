@@ -1,4 +1,5 @@
-use crate::args::ThemeName;
+use crate::pane::ink;
+use bedswell_picture::Theme;
 use bevy_egui::egui::{
     self, Color32, CornerRadius, FontFamily, FontId, Margin, Stroke, TextStyle, Vec2, Visuals, style::WidgetVisuals,
 };
@@ -18,55 +19,56 @@ pub(crate) struct Palette {
     pub(crate) text: Color32,
     /// Of side remarks.
     pub(crate) quiet: Color32,
-    /// Of what is chosen and of the cursor.
+    /// Of the cursor, of marks and news.
     pub(crate) accent: Color32,
-    /// Of words on the accent.
-    pub(crate) on_accent: Color32,
+    /// Behind what is chosen.
+    pub(crate) chosen: Color32,
 }
 
 impl Palette {
     /// The colours of a theme.
-    pub(crate) fn of(theme: ThemeName) -> Self {
+    pub(crate) fn of(theme: Theme) -> Self {
         let rgb = Color32::from_rgb;
+        let (text, accent) = (ink(theme.ink()), ink(theme.accent()));
         match theme {
-            ThemeName::Dark => Self {
-                column: rgb(24, 28, 32),
-                card: rgb(33, 38, 43),
-                button: rgb(48, 55, 62),
-                line: rgb(52, 59, 66),
-                text: rgb(222, 226, 228),
-                quiet: rgb(146, 156, 163),
-                accent: rgb(232, 181, 84),
-                on_accent: rgb(28, 24, 16),
+            Theme::Dark => Self {
+                column: rgb(30, 34, 38),
+                card: rgb(38, 43, 48),
+                button: rgb(54, 60, 66),
+                line: rgb(56, 62, 68),
+                text,
+                quiet: rgb(150, 156, 158),
+                accent,
+                chosen: rgb(92, 86, 58),
             },
-            ThemeName::Light => Self {
-                column: rgb(228, 230, 228),
-                card: rgb(246, 246, 243),
-                button: rgb(225, 226, 222),
-                line: rgb(205, 208, 204),
-                text: rgb(36, 40, 43),
-                quiet: rgb(98, 106, 110),
-                accent: rgb(150, 92, 12),
-                on_accent: rgb(255, 252, 244),
+            Theme::Light => Self {
+                column: rgb(226, 225, 219),
+                card: rgb(246, 245, 240),
+                button: rgb(226, 224, 217),
+                line: rgb(206, 204, 197),
+                text,
+                quiet: rgb(100, 101, 98),
+                accent,
+                chosen: rgb(226, 204, 220),
             },
-            ThemeName::Print => Self {
+            Theme::Print => Self {
                 column: rgb(255, 255, 255),
                 card: rgb(255, 255, 255),
                 button: rgb(240, 240, 240),
                 line: rgb(190, 190, 190),
-                text: rgb(0, 0, 0),
-                quiet: rgb(80, 80, 80),
-                accent: rgb(20, 20, 20),
-                on_accent: rgb(255, 255, 255),
+                text,
+                quiet: rgb(84, 84, 84),
+                accent,
+                chosen: rgb(214, 214, 214),
             },
         }
     }
 }
 
 /// Gives the window the look of a theme.
-pub(crate) fn dress(context: &egui::Context, theme: ThemeName) {
+pub(crate) fn dress(context: &egui::Context, theme: Theme) {
     let palette = Palette::of(theme);
-    let dark = theme == ThemeName::Dark;
+    let dark = theme == Theme::Dark;
     context.set_theme(if dark { egui::Theme::Dark } else { egui::Theme::Light });
     context.all_styles_mut(|style| {
         style.text_styles = [
@@ -103,8 +105,8 @@ fn visuals(palette: &Palette, dark: bool) -> Visuals {
     visuals.window_stroke = Stroke::new(1.0, palette.line);
     visuals.extreme_bg_color = palette.column;
     visuals.faint_bg_color = palette.button;
-    visuals.selection.bg_fill = palette.accent;
-    visuals.selection.stroke = Stroke::new(1.0, palette.on_accent);
+    visuals.selection.bg_fill = palette.chosen;
+    visuals.selection.stroke = Stroke::new(1.0, palette.text);
     visuals.weak_text_color = Some(palette.quiet);
     visuals.slider_trailing_fill = true;
     visuals.window_shadow = egui::Shadow::NONE;

@@ -2,6 +2,7 @@ use crate::args::DrawnBy;
 use crate::driver::{Driver, NoWindow};
 use crate::gpu;
 use crate::pane::Easel;
+use crate::picture_file::keep;
 use crate::viewer::Viewer;
 use bedswell_painter::{Camera, Size};
 use bevy::asset::RenderAssetUsages;
@@ -11,12 +12,14 @@ use bevy::image::ImageSampler;
 use bevy::log::LogPlugin;
 use bevy::prelude::*;
 use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat, TextureUsages};
+use bevy::render::view::screenshot::{Screenshot, ScreenshotCaptured};
 use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
 use bevy::winit::{UpdateMode, WinitSettings};
 use bevy_egui::egui::TextureId;
 use bevy_egui::{EguiContexts, EguiPlugin, EguiPrimaryContextPass, EguiTextureHandle, EguiUserTextures};
 use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::path::PathBuf;
 use std::time::Duration;
 
 /// Opens the window and stays until it is closed.
@@ -116,9 +119,13 @@ fn look(
     picture: Res<Picture>,
     mut window: Single<&mut Window, With<PrimaryWindow>>,
     mut exit: MessageWriter<AppExit>,
+    mut commands: Commands,
 ) -> Result {
     let context = contexts.ctx_mut()?;
     viewer.look(context, picture.id.filter(|_| picture.ready));
+    if let Some(folder) = viewer.take_window_shot() {
+        shoot(&mut commands, folder);
+    }
     if window.title != viewer.title() {
         window.title = viewer.title();
     }
@@ -126,6 +133,25 @@ fn look(
         exit.write(AppExit::Success);
     }
     Ok(())
+}
+
+/// Takes a picture of the window and writes it into a folder.
+fn shoot(commands: &mut Commands, folder: PathBuf) {
+    commands.spawn(Screenshot::primary_window()).observe(
+        move |caught: On<ScreenshotCaptured>, mut viewer: ResMut<Viewer>| {
+            let size = Size { width: caught.image.width(), height: caught.image.height() };
+            let mut pixels = caught.image.data.clone().unwrap_or_default();
+            if matches!(caught.image.texture_descriptor.format, TextureFormat::Bgra8UnormSrgb | TextureFormat::Bgra8Unorm) {
+                pixels.chunks_exact_mut(4).for_each(|pixel| pixel.swap(0, 2));
+            }
+            pixels.chunks_exact_mut(4).for_each(|pixel| pixel[3] = 255);
+            let image = bedswell_painter::Image { size, pixels };
+            viewer.tell(match keep(&folder, "window", &image) {
+                Ok(path) => format!("picture written to {}", path.display()),
+                Err(error) => format!("the picture cannot be written: {error}"),
+            });
+        },
+    );
 }
 
 /// Asks the painter for what is to be seen and hangs its newest picture into the pane.

@@ -16,7 +16,7 @@ fn silhouettes_and_colours_agree() {
     let camera = Camera::new(&pose, SIZE);
     for (name, drawing) in scenes() {
         let ours = paint(&drawing, &camera, Quality { samples: 2, outlines: false });
-        let theirs = recorder.render(Arc::new(drawing), &camera).expect("a picture");
+        let theirs = recorder.draw(Arc::new(drawing), &camera).expect("a picture");
         keep(name, &ours, &theirs);
         let agreement = intersection_over_union(&ours, &theirs);
         assert!(agreement >= 0.97, "{name}: silhouettes agree to {agreement:.3}");

@@ -1,5 +1,6 @@
 use super::{Shown, camera, clear_colour, plugin, target};
 use crate::driver::{NoWindow, find_driver};
+use bedswell_film::{RenderError, Renderer};
 use bedswell_painter::{Camera, Colour, Drawing, Image, Size};
 use bevy::app::PluginsState;
 use bevy::prelude::{App, AssetPlugin, Assets, DefaultPlugins, Entity, Handle, On, PluginGroup, Resource, default};
@@ -61,7 +62,7 @@ impl Recorder {
     ///
     /// # Errors
     /// [`NoWindow::Refused`] if the driver gives no picture back.
-    pub fn render(&mut self, drawing: Arc<Drawing>, view: &Camera) -> Result<Image, NoWindow> {
+    pub fn draw(&mut self, drawing: Arc<Drawing>, view: &Camera) -> Result<Image, NoWindow> {
         let texture = self.aim(view.size, drawing.background);
         let fine = enlarged(view);
         self.app.insert_resource(Shown { drawing, camera: fine, thinnest: FINENESS as f32 });
@@ -104,6 +105,12 @@ impl Recorder {
         let entity = world.spawn(camera(texture.clone(), background)).id();
         self.target = Some((entity, texture.clone(), size));
         texture
+    }
+}
+
+impl Renderer for Recorder {
+    fn render(&mut self, drawing: &Drawing, camera: &Camera) -> Result<Image, RenderError> {
+        self.draw(Arc::new(drawing.clone()), camera).map_err(|error| RenderError(error.to_string()))
     }
 }
 

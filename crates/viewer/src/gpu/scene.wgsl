@@ -35,8 +35,11 @@ fn is_cut(place: vec3<f32>) -> bool {
     return dot(view.cut_normal, place) > view.cut_offset;
 }
 
-fn linear(encoded: vec3<f32>) -> vec3<f32> {
-    return select(pow((encoded + 0.055) / 1.055, vec3(2.4)), encoded / 12.92, encoded <= vec3(0.04045));
+// Light of a colour, from sRGB (IEC 61966-2-1); its opacity as it is.
+fn linear(colour: vec4<f32>) -> vec4<f32> {
+    let encoded = colour.rgb;
+    let light = select(pow((encoded + 0.055) / 1.055, vec3(2.4)), encoded / 12.92, encoded <= vec3(0.04045));
+    return vec4(light, colour.a);
 }
 
 // Factor on the linear light of a lit place; the light is fixed to the camera.
@@ -46,8 +49,8 @@ fn shade(normal: vec3<f32>) -> f32 {
 }
 
 // Premultiplied, as the targets want it.
-fn finish(encoded: vec3<f32>, light: f32, alpha: f32) -> vec4<f32> {
-    return vec4(linear(encoded) * light * alpha, alpha);
+fn finish(colour: vec4<f32>, light: f32, alpha: f32) -> vec4<f32> {
+    return vec4(colour.rgb * light * alpha, alpha);
 }
 
 struct BallOut {
@@ -74,7 +77,7 @@ fn ball_vertex(
     let half = radius * distance / sqrt(max(distance * distance - radius * radius, 1e-4 * radius * radius));
     let sides = vec2(f32(corner & 1u), f32(corner >> 1u)) * 2.0 - 1.0;
     let place = centre + half * (sides.x * across + sides.y * over);
-    return BallOut(in_clip(seen(place)), place, centre, radius, colour);
+    return BallOut(in_clip(seen(place)), place, centre, radius, linear(colour));
 }
 
 struct Pixel {
@@ -114,7 +117,7 @@ fn ball_fragment(in: BallOut) -> Pixel {
     let turned = 1.0 - abs(dot(normal, sight));
     let ghost = in.colour.a * mix(view.ghost_middle, 1.0, turned * turned);
     let alpha = select(ghost, 1.0, in.colour.a >= 1.0);
-    return Pixel(finish(in.colour.rgb, light, alpha), view.near / seen(place).z);
+    return Pixel(finish(in.colour, light, alpha), view.near / seen(place).z);
 }
 
 struct RodOut {
@@ -138,13 +141,13 @@ fn rod_vertex(
     let depth = max(seen(place).z, view.near);
     let half = max(radius, 0.5 * view.thinnest * depth / view.focal);
     let shifted = place + side * half * (f32(corner >> 1u) * 2.0 - 1.0);
-    return RodOut(in_clip(seen(shifted)), place, select(from_colour, to_colour, at_end));
+    return RodOut(in_clip(seen(shifted)), place, linear(select(from_colour, to_colour, at_end)));
 }
 
 @fragment
 fn rod_fragment(in: RodOut) -> @location(0) vec4<f32> {
     if is_cut(in.place) { discard; }
-    return finish(in.colour.rgb, 1.0, in.colour.a);
+    return finish(in.colour, 1.0, in.colour.a);
 }
 
 struct MeshOut {
@@ -165,7 +168,7 @@ fn mesh_vertex(
     @location(2) colour: vec4<f32>,
     @location(3) kind: u32,
 ) -> MeshOut {
-    return MeshOut(in_clip(seen(place)), place, normal, colour, kind);
+    return MeshOut(in_clip(seen(place)), place, normal, linear(colour), kind);
 }
 
 @fragment
@@ -173,8 +176,8 @@ fn mesh_fragment(in: MeshOut) -> @location(0) vec4<f32> {
     // A section that lies in the plane stays.
     let before = dot(view.cut_normal, in.place) - view.cut_offset;
     if (in.kind & CUT) != 0u && before > 0.1 * view.near { discard; }
-    if (in.kind & LIT) == 0u { return finish(in.colour.rgb, 1.0, in.colour.a); }
+    if (in.kind & LIT) == 0u { return finish(in.colour, 1.0, in.colour.a); }
     let normal = normalize(in.normal);
     let facing = select(1.0, -1.0, dot(normal, in.place - view.eye) > 0.0);
-    return finish(in.colour.rgb, shade(facing * normal), in.colour.a);
+    return finish(in.colour, shade(facing * normal), in.colour.a);
 }

@@ -45,6 +45,12 @@ struct Desk {
     closed: bool,
 }
 
+impl PartialEq for View {
+    fn eq(&self, other: &Self) -> bool {
+        Arc::ptr_eq(&self.drawing, &other.drawing) && self.pose == other.pose && self.size == other.size
+    }
+}
+
 impl Easel {
     /// Starts the thread; it calls `wake` when a picture is ready that nobody waits for.
     pub(crate) fn new(wake: impl Fn() + Send + 'static) -> Self {

@@ -74,6 +74,11 @@ impl Pane {
         [corner.x.round() as u32, corner.y.round() as u32]
     }
 
+    /// The place in the window of a pixel of the pane.
+    pub(crate) fn point(&self, [x, y]: [f32; 2]) -> bevy_egui::egui::Pos2 {
+        self.response.rect.min + vec2(x, y) / self.pixels_per_point
+    }
+
     /// The pixel of the pane under a place in the window.
     pub(crate) fn pixel(&self, at: bevy_egui::egui::Pos2) -> [f32; 2] {
         ((at - self.response.rect.min) * self.pixels_per_point).into()

@@ -29,6 +29,11 @@ impl Orbit {
         self.pose
     }
 
+    /// Looks from another pose at once.
+    pub(crate) fn set(&mut self, pose: Pose) {
+        *self = Self::new(pose);
+    }
+
     /// Starts a flight to a pose at a time (s).
     pub(crate) fn fly(&mut self, to: Pose, now: f64) {
         self.flight = Some(Flight { from: self.pose, to, start: now });

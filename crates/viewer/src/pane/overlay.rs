@@ -1,5 +1,5 @@
 use bedswell_painter::{Align, Colour, Item, Overlay};
-use bevy_egui::egui::{self, Align2, Color32, FontId, Painter, Pos2, Rect, Stroke, pos2};
+use bevy_egui::egui::{self, Align2, Color32, FontId, Mesh, Painter, Pos2, Rect, Stroke, pos2};
 
 /// Draws flat things over the pane, whose top left and pixels per point are given.
 pub(crate) fn draw(overlay: &Overlay, painter: &Painter, origin: Pos2, pixels_per_point: f32) {
@@ -25,12 +25,7 @@ pub(crate) fn draw(overlay: &Overlay, painter: &Painter, origin: Pos2, pixels_pe
                 painter.line_segment(ends.map(point), stroke);
             }
             Item::Ramp { from, to, colours } => {
-                let height = (to[1] - from[1]) / colours.len().max(1) as f32;
-                for (band, colour) in colours.iter().rev().enumerate() {
-                    let top = from[1] + band as f32 * height;
-                    let band = Rect::from_min_max(point([from[0], top]), point([to[0], top + height]));
-                    painter.rect_filled(band, 0.0, ink(*colour));
-                }
+                painter.add(ramp(point(*from), point(*to), colours));
             }
             Item::Ring { at, radius, width, colour } => {
                 let stroke = Stroke::new(width / pixels_per_point, ink(*colour));
@@ -38,6 +33,17 @@ pub(crate) fn draw(overlay: &Overlay, painter: &Painter, origin: Pos2, pixels_pe
             }
         }
     }
+}
+
+/// Even bands of colour, the first at the bottom, without seams.
+fn ramp(from: Pos2, to: Pos2, colours: &[Colour]) -> Mesh {
+    let height = (to.y - from.y) / colours.len().max(1) as f32;
+    let mut mesh = Mesh::default();
+    for (band, colour) in colours.iter().rev().enumerate() {
+        let top = from.y + band as f32 * height;
+        mesh.add_colored_rect(Rect::from_min_max(pos2(from.x, top), pos2(to.x, top + height)), ink(*colour));
+    }
+    mesh
 }
 
 /// A colour as the window knows it.

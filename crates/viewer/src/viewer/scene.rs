@@ -1,0 +1,96 @@
+use super::Viewer;
+use crate::pane::{Pane, View, draw_overlay, ink};
+use crate::theme::Palette;
+use bedswell_painter::{Camera, Overlay};
+use bedswell_picture::{Pick, Words, annotate};
+use bevy_egui::egui::{
+    Align2, CentralPanel, Context, FontId, Rect, Stroke, StrokeKind, TextureId, Ui, pos2, vec2,
+};
+
+impl Viewer {
+    /// The bed in space, and what the pointer does there.
+    pub(super) fn scene(&mut self, ui: &mut Ui, palette: &Palette, picture: Option<TextureId>) {
+        CentralPanel::no_frame().show(ui, |ui| {
+            let pane = Pane::show(ui, picture);
+            self.size = pane.size;
+            self.corner = pane.pixel_corner();
+            self.steered |= pane.steer(ui, &mut self.orbit);
+            if let Some(bed) = &mut self.bed {
+                bed.prepare(&self.look);
+                if !self.steered
+                    && let Some(pose) = bed.whole(self.size)
+                {
+                    self.orbit.set(pose);
+                }
+            }
+            let camera = Camera::new(&self.orbit.pose(), self.size);
+            self.point(&pane, &camera);
+            if let Some(overlay) = self.overlay(&camera) {
+                draw_overlay(&overlay, ui.painter(), pane.response.rect.min, pane.pixels_per_point);
+            } else {
+                let words = if self.live.is_some() { "packing the grains …" } else { "choose a pack" };
+                let (middle, font) = (pane.response.rect.center(), FontId::proportional(15.0));
+                ui.painter().text(middle, Align2::CENTER_CENTER, words, font, palette.quiet);
+            }
+            self.show_numbers(ui, palette, &pane);
+            if let Some(held) = &self.held
+                && let Some((at, _)) = camera.project(&held.place)
+            {
+                let stroke = Stroke::new(1.5, ink(self.look.theme.accent()));
+                ui.painter().circle_stroke(pane.point([at.x, at.y]), 7.0, stroke);
+            }
+        });
+    }
+
+    /// Finds what lies under the pointer; a click holds it.
+    fn point(&mut self, pane: &Pane, camera: &Camera) {
+        let Some(bed) = &self.bed else { return };
+        let response = &pane.response;
+        if let Some(at) = response.hover_pos().filter(|_| !response.dragged()) {
+            self.under_pointer = bed.pick(camera, pane.pixel(at));
+            if response.clicked() {
+                self.held = self.under_pointer;
+            }
+        } else {
+            self.under_pointer = None;
+        }
+    }
+
+    /// What is known of something picked.
+    pub(super) fn in_words(&self, pick: &Pick) -> Vec<String> {
+        let known = self.bed.as_ref().and_then(|bed| Some((bed, bed.frame()?)));
+        known.map_or_else(Vec::new, |(bed, frame)| pick.in_words(&bed.run, frame))
+    }
+
+    /// The numbers of what lies under the pointer, beside it.
+    fn show_numbers(&self, ui: &Ui, palette: &Palette, pane: &Pane) {
+        let (Some(pick), Some(at)) = (&self.under_pointer, pane.response.hover_pos()) else { return };
+        let words = self.in_words(pick).join("\n");
+        let galley = ui.painter().layout_no_wrap(words, FontId::proportional(12.0), palette.text);
+        let (room, size) = (pane.response.rect, galley.size() + vec2(16.0, 12.0));
+        let fits = |at: f32, size: f32, end: f32| if at + 14.0 + size < end { at + 14.0 } else { at - 14.0 - size };
+        let corner = pos2(fits(at.x, size.x, room.right()), fits(at.y, size.y, room.bottom()));
+        let sheet = Rect::from_min_size(corner, size);
+        ui.painter().rect(sheet, 4.0, palette.card, Stroke::new(1.0, palette.line), StrokeKind::Inside);
+        ui.painter().galley(corner + vec2(8.0, 6.0), galley, palette.text);
+    }
+
+    /// Legends, scale bar, axes and the mark of a place, over the bed.
+    pub(super) fn overlay(&self, camera: &Camera) -> Option<Overlay> {
+        let bed = self.bed.as_ref()?;
+        let mark = bed.place.and_then(|place| bed.places.get(place)).copied();
+        let words = Words { legend: true, bearings: true, mark, ..Words::default() };
+        Some(annotate(&bed.run, bed.frame()?, &self.look, camera, &words))
+    }
+
+    /// Asks for a picture where something changed.
+    pub(super) fn ask(&mut self, context: &Context) {
+        let Some(drawing) = self.bed.as_ref().and_then(|bed| bed.drawing()) else { return };
+        let view = View { drawing: drawing.clone(), pose: self.orbit.pose(), size: self.size };
+        if self.shown.as_ref() != Some(&view) {
+            self.shown = Some(view.clone());
+            self.asked = Some(view);
+            context.request_repaint_after(std::time::Duration::from_millis(500));
+        }
+    }
+}
