@@ -170,14 +170,14 @@ fn legend() -> Overlay {
         items.push(text([70.0, y + 5.0], Align::Left, 15.0, ink, &value));
     }
     let dark = Colour::new(24, 28, 36).with_alpha(225);
-    items.push(Item::Panel { from: [960.0, 560.0], to: [1256.0, 696.0], colour: dark });
+    items.push(Item::Panel { from: [900.0, 560.0], to: [1256.0, 696.0], colour: dark });
     for (row, size) in [11.0, 13.0, 14.0, 16.0, 20.0].into_iter().enumerate() {
         let at = [1244.0, 582.0 + 25.0 * row as f32];
         let words = format!("{size} px · −3.5 × 10² Pa → 12 µm³, σ, Δ 0–9°");
         items.push(text(at, Align::Right, size, Colour::new(240, 240, 236), &words));
     }
     items.push(Item::Ring { at: [640.0, 360.0], radius: 16.0, width: 2.0, colour: Colour::new(200, 60, 40) });
-    items.push(Item::Line { ends: [[656.0, 350.0], [760.0, 290.0]], width: 1.5, colour: ink });
-    items.push(text([764.0, 290.0], Align::Left, 15.0, ink, "bead 12"));
+    items.push(Item::Line { ends: [[655.0, 353.0], [1080.0, 150.0]], width: 1.5, colour: ink });
+    items.push(text([1084.0, 150.0], Align::Left, 15.0, ink, "middle of the bead"));
     Overlay { items }
 }

@@ -38,18 +38,26 @@ impl Srgb {
         self.bytes[(light * STEPS as f32 + ROUND).to_bits() as usize % (2 * STEPS)]
     }
 
-    /// Part way from one colour to another in linear light; opacity as it is.
-    pub(crate) fn blend(&self, from: [u8; 4], to: [u8; 4], fraction: f32) -> [u8; 4] {
-        self.weigh([(from, 1.0 - fraction), (to, fraction)])
+    /// Linear light of a colour, 0 to 1; opacity as it is.
+    #[inline(always)]
+    pub(crate) fn light(&self, [red, green, blue, opacity]: [u8; 4]) -> [f32; 4] {
+        [self.linear(red), self.linear(green), self.linear(blue), f32::from(opacity)]
     }
 
-    /// The weighted mean of colours in linear light; opacity as it is.
-    pub(crate) fn weigh<const N: usize>(&self, parts: [([u8; 4], f32); N]) -> [u8; 4] {
-        let sum = |channel: usize| -> f32 {
-            parts.iter().map(|(colour, weight)| weight * self.linear(colour[channel])).sum()
-        };
-        let alpha: f32 = parts.iter().map(|(colour, weight)| weight * f32::from(colour[3])).sum();
-        [self.byte(sum(0)), self.byte(sum(1)), self.byte(sum(2)), (alpha + 0.5) as u8]
+    /// Part way from one light to another.
+    #[inline(always)]
+    pub(crate) fn between(&self, [from, to]: &[[f32; 4]; 2], fraction: f32) -> [u8; 4] {
+        let mix = |channel: usize| from[channel] + (to[channel] - from[channel]) * fraction;
+        [self.byte(mix(0)), self.byte(mix(1)), self.byte(mix(2)), (mix(3) + 0.5) as u8]
+    }
+
+    /// Weighted mean of three lights.
+    #[inline(always)]
+    pub(crate) fn mean(&self, lights: &[[f32; 4]; 3], weights: [f32; 3]) -> [u8; 4] {
+        let [a, b, c] = lights;
+        let mix =
+            |channel: usize| a[channel] * weights[0] + b[channel] * weights[1] + c[channel] * weights[2];
+        [self.byte(mix(0)), self.byte(mix(1)), self.byte(mix(2)), (mix(3) + 0.5) as u8]
     }
 }
 
@@ -94,6 +102,8 @@ mod tests {
 
     #[test]
     fn half_way_between_black_and_white_is_half_the_light() {
-        assert_eq!(Srgb::tables().blend([0, 0, 0, 255], [255; 4], 0.5), [188, 188, 188, 255]);
+        let srgb = Srgb::tables();
+        let lights = [srgb.light([0, 0, 0, 255]), srgb.light([255; 4])];
+        assert_eq!(srgb.between(&lights, 0.5), [188, 188, 188, 255]);
     }
 }

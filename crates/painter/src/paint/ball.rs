@@ -110,7 +110,7 @@ impl Sphere {
                 }
                 for channel in 0..4 {
                     let light: &mut [f32; LANES] =
-                        (&mut tile.light[channel][at..at + LANES]).try_into().expect("eight samples");
+                        (&mut tile.veils[channel][at..at + LANES]).try_into().expect("eight samples");
                     for lane in 0..LANES {
                         let own = if channel < 3 { lanes.lit[lane] * colour[channel] } else { 1.0 };
                         light[lane] += opacity[lane] * (own - light[lane]);

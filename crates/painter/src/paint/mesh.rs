@@ -116,6 +116,10 @@ impl Facet {
         put: impl Fn(&mut Tile, usize, f32, [u8; 4], f32),
     ) {
         let cut = cut.filter(|_| surface.mesh.cut);
+        let srgb = Srgb::tables();
+        let colours = self.corners.map(|corner| surface.mesh.colours[corner].bytes());
+        let lights = colours.map(|colour| srgb.light(colour));
+        let even = colours[0] == colours[1] && colours[1] == colours[2];
         for line in tile.rows(self.bounds.top, self.bounds.bottom + 1) {
             let up = view.up(tile.corner[1] + line as i32);
             for column in self.columns(view, tile, up) {
@@ -131,7 +135,11 @@ impl Facet {
                         Light::Flat => FLAT,
                         Light::Lit => self.lit(surface, &sight, weights),
                     };
-                    put(tile, at, depth as f32, self.colour(surface, weights), lit);
+                    let colour = match even {
+                        true => colours[0],
+                        false => srgb.mean(&lights, weights.map(|weight| weight as f32)),
+                    };
+                    put(tile, at, depth as f32, colour, lit);
                 }
             }
         }
@@ -153,15 +161,6 @@ impl Facet {
             }
         }
         tile.columns(first as i32, end as i32)
-    }
-
-    #[inline(always)]
-    fn colour(&self, surface: &Surface<'_>, weights: [f64; 3]) -> [u8; 4] {
-        let colours = self.corners.map(|corner| surface.mesh.colours[corner].bytes());
-        if colours[0] == colours[1] && colours[1] == colours[2] {
-            return colours[0];
-        }
-        Srgb::tables().weigh::<3>(std::array::from_fn(|corner| (colours[corner], weights[corner] as f32)))
     }
 
     #[inline(always)]

@@ -22,6 +22,7 @@ pub(super) struct Strip {
 
 impl Strip {
     /// `None` if it cannot be seen.
+    #[inline(always)]
     pub(super) fn new(view: &View, cut: Option<&(Seen, f64)>, rod: &Rod) -> Option<Self> {
         let ends = [view.place(&rod.ends[0])?, view.place(&rod.ends[1])?];
         let radius = view.length(rod.radius);
@@ -55,7 +56,10 @@ impl Strip {
         let tint = |fraction: f64| match fraction {
             0.0 => colours[0],
             1.0 => colours[1],
-            _ => Srgb::tables().blend(colours[0], colours[1], fraction as f32),
+            _ => {
+                let srgb = Srgb::tables();
+                srgb.between(&colours.map(|colour| srgb.light(colour)), fraction as f32)
+            }
         };
         let [(from, near, thick), (to, far, thin)] = part.map(at);
         let widest = thick.max(thin);
@@ -88,15 +92,24 @@ impl Strip {
     /// Passes on each sample of a tile where it is the nearest.
     #[inline(always)]
     pub(super) fn scan(&self, tile: &mut Tile, put: impl Fn(&mut Tile, usize, f32, [u8; 4], f32)) {
-        let widest = f64::from(self.half[0].max(self.half[1]));
+        let srgb = Srgb::tables();
+        let even = self.colours[0] == self.colours[1];
+        let lights = self.colours.map(|colour| srgb.light(colour));
         let closer = self.closeness[1] - self.closeness[0];
         let wider = self.half[1] - self.half[0];
         let shorten = if self.length > 0.0 { 1.0 / self.length } else { 0.0 };
-        let even = self.colours[0] == self.colours[1];
+        let widest = f64::from(self.half[0].max(self.half[1]));
+        let (lean, spread) = if self.unit[1].abs() > 1e-6 {
+            (self.unit[0] / self.unit[1], widest / self.unit[1].abs())
+        } else {
+            (0.0, f64::INFINITY)
+        };
         for line in tile.rows(self.bounds.top, self.bounds.bottom + 1) {
             let y = f64::from(tile.corner[1] + line as i32) + 0.5 - self.from[1];
-            let (left, right) = self.reach(y, widest);
-            for column in tile.columns(left.max(self.bounds.left), right.min(self.bounds.right) + 1) {
+            let middle = self.from[0] + y * lean - 0.5;
+            let left = self.bounds.left.max((middle - spread).ceil() as i32);
+            let right = self.bounds.right.min((middle + spread).floor() as i32);
+            for column in tile.columns(left, right + 1) {
                 let x = f64::from(tile.corner[0] + column as i32) + 0.5 - self.from[0];
                 let forward = x * self.unit[0] + y * self.unit[1];
                 let aside = x * self.unit[1] - y * self.unit[0];
@@ -104,38 +117,40 @@ impl Strip {
                 let fraction = (along * shorten) as f32;
                 let half = f64::from(self.half[0] + wider * fraction);
                 let beyond = forward - along;
-                let blunt = beyond < 0.0 && self.blunt[0] || beyond > 0.0 && self.blunt[1];
                 let inside = if beyond == 0.0 {
                     -half < aside && aside <= half
                 } else {
+                    let blunt = self.blunt[usize::from(beyond > 0.0)];
                     !blunt && aside * aside + beyond * beyond < half * half
                 };
-                if !inside {
-                    continue;
-                }
                 let depth = 1.0 / (self.closeness[0] + closer * fraction);
                 let at = line * SIDE + column;
-                if depth < tile.depth[at] {
+                if inside && depth < tile.depth[at] {
                     let colour = if even {
                         self.colours[0]
                     } else {
-                        let share = fraction * self.closeness[1] * depth;
-                        Srgb::tables().blend(self.colours[0], self.colours[1], share)
+                        srgb.between(&lights, fraction * self.closeness[1] * depth)
                     };
                     put(tile, at, depth, colour, FLAT);
                 }
             }
         }
     }
+}
 
-    /// The columns that a row at a height below the first end crosses at most.
-    #[inline(always)]
-    fn reach(&self, y: f64, widest: f64) -> (i32, i32) {
-        if self.unit[1].abs() < 1e-6 {
-            return (i32::MIN, i32::MAX);
-        }
-        let middle = self.from[0] + y * self.unit[0] / self.unit[1];
-        let half = (widest / self.unit[1]).abs();
-        ((middle - half).floor() as i32, (middle + half).ceil() as i32)
+/// Where a rod may be seen, found fast: most rods of a pack are hidden and need no more.
+pub(super) struct Glimpse {
+    pub(super) bounds: Bounds,
+    /// Depth of its nearer end.
+    pub(super) nearest: f32,
+    /// Which rod of the drawing it is.
+    pub(super) number: usize,
+}
+
+impl Glimpse {
+    /// `None` if it cannot be seen.
+    pub(super) fn new(view: &View, cut: Option<&(Seen, f64)>, rod: &Rod, number: usize) -> Option<Self> {
+        let strip = Strip::new(view, cut, rod)?;
+        Some(Self { bounds: strip.bounds, nearest: strip.nearest, number })
     }
 }

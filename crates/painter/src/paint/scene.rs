@@ -1,7 +1,7 @@
 use super::ball::Sphere;
 use super::bins::{Bins, Bounds, Grid};
 use super::mesh::{self, Facet, Surface};
-use super::rod::Strip;
+use super::rod::{Glimpse, Strip};
 use super::tile::Tile;
 use super::view::{Seen, View};
 use crate::{Camera, Drawing, Rod};
@@ -17,7 +17,8 @@ pub(super) struct Scene<'a> {
     pub(super) background: [u8; 4],
     cut: Option<(Seen, f64)>,
     balls: Sorted<Sphere>,
-    rods: Sorted<Strip>,
+    drawing: &'a Drawing,
+    rods: Sorted<Glimpse>,
     facets: Sorted<Facet>,
     surfaces: Vec<Surface<'a>>,
     veils: Sorted<Veil>,
@@ -57,18 +58,19 @@ impl<'a> Scene<'a> {
             let of_kind = drawing.balls.par_iter().filter(|ball| (ball.colour.a == 255) == opaque);
             of_kind.filter_map(|ball| Sphere::new(&view, cut.as_ref(), ball)).collect()
         };
-        let rods = |opaque: bool| -> Vec<Strip> {
-            let is_opaque = |rod: &Rod| rod.colours.iter().all(|colour| colour.a == 255);
-            let of_kind = drawing.rods.par_iter().filter(|rod| is_opaque(rod) == opaque);
-            of_kind.filter_map(|rod| Strip::new(&view, cut.as_ref(), rod)).collect()
-        };
-        let (mut solid_balls, solid_rods) = (balls(true), rods(true));
+        let is_opaque = |rod: &Rod| rod.colours.iter().all(|colour| colour.a == 255);
+        let solid_rods = drawing.rods.par_iter().enumerate().filter(|(_, rod)| is_opaque(rod));
+        let solid_rods =
+            solid_rods.filter_map(|(number, rod)| Glimpse::new(&view, cut.as_ref(), rod, number)).collect();
+        let clear_rods = drawing.rods.iter().filter(|rod| !is_opaque(rod));
+        let clear_rods = clear_rods.filter_map(|rod| Strip::new(&view, cut.as_ref(), rod));
+        let mut solid_balls = balls(true);
         solid_balls.par_sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
         let surfaces: Vec<_> = drawing.meshes.iter().map(|mesh| Surface::new(&view, mesh)).collect();
 
         let mut veils: Vec<(f64, Veil)> = Vec::new();
         veils.extend(balls(false).into_iter().map(|ball| (ball.centre.z, Veil::Ball(ball))));
-        veils.extend(rods(false).into_iter().map(|rod| (rod.depth(), Veil::Rod(rod))));
+        veils.extend(clear_rods.map(|rod| (rod.depth(), Veil::Rod(rod))));
         let mut facets = Vec::new();
         for (number, surface) in surfaces.iter().enumerate() {
             let of_surface = mesh::facets(&view, number, surface);
@@ -93,6 +95,7 @@ impl<'a> Scene<'a> {
                 Veil::Facet(facet) => facet.bounds,
             }),
             surfaces,
+            drawing,
             cut,
             grid,
             view,
@@ -116,16 +119,36 @@ impl<'a> Scene<'a> {
             let surface = &self.surfaces[facet.surface];
             facet.scan(&self.view, self.cut.as_ref(), surface, tile, Tile::put);
         }
-        let farthest = tile.farthest();
-        for rod in self.rods.at(place).filter(|rod| rod.nearest <= farthest) {
-            rod.scan(tile, Tile::put);
+        self.paint_rods(tile, place);
+    }
+
+    /// Paints rods from the nearest to the farthest, so that each sample is seldom painted twice.
+    #[inline(always)]
+    fn paint_rods(&self, tile: &mut Tile, place: usize) {
+        let mut farthest = tile.farthest();
+        let rods = self.rods.at(place).filter(|rod| rod.nearest <= farthest);
+        let mut rods: Vec<_> = rods.map(|rod| (rod.nearest.to_bits(), rod.number)).collect();
+        rods.sort_unstable();
+        for (place, (nearest, number)) in rods.into_iter().enumerate() {
+            if place % (8 * LOOK) == 8 * LOOK - 1 {
+                farthest = tile.farthest();
+            }
+            if f32::from_bits(nearest) > farthest {
+                break;
+            }
+            if let Some(strip) = Strip::new(&self.view, self.cut.as_ref(), &self.drawing.rods[number]) {
+                strip.scan(tile, Tile::put);
+            }
         }
     }
 
     /// Lays what lets light through over the rest, from back to front.
     #[inline(always)]
     pub(super) fn paint_veils(&self, tile: &mut Tile, place: usize) {
-        for veil in self.veils.at(place) {
+        for (number, veil) in self.veils.at(place).enumerate() {
+            if number == 0 {
+                tile.start_veils();
+            }
             match veil {
                 Veil::Ball(ball) => ball.paint_ghost(&self.view, self.cut.as_ref(), tile),
                 Veil::Rod(rod) => rod.scan(tile, Tile::veil),

@@ -26,8 +26,10 @@ pub(super) struct Tile {
     pub(super) lit: Vec<f32>,
     /// Cosine between the line of sight and the middle one.
     pub(super) slant: Vec<f32>,
-    /// Red, green, blue and opacity in linear light, weighted by the opacity, once developed.
-    pub(super) light: [Vec<f32>; 4],
+    /// What lies over it: red, green and blue in linear light weighted by the opacity, and opacity.
+    pub(super) veils: [Vec<f32>; 4],
+    /// Whether anything lies over it anywhere.
+    veiled: bool,
 }
 
 impl Default for Tile {
@@ -39,7 +41,8 @@ impl Default for Tile {
             base: vec![[0; 4]; SIDE * SIDE],
             lit: even(FLAT),
             slant: even(1.0),
-            light: std::array::from_fn(|_| even(0.0)),
+            veils: std::array::from_fn(|_| even(0.0)),
+            veiled: false,
         }
     }
 }
@@ -52,6 +55,7 @@ impl Tile {
         self.depth.fill(f32::INFINITY);
         self.base.fill(scene.background);
         self.lit.fill(FLAT);
+        self.veiled = false;
         let step = (1.0 / scene.view.focal()) as f32;
         let left = scene.view.across(self.corner[0]) as f32;
         for (line, slants) in self.slant.chunks_exact_mut(SIDE).enumerate() {
@@ -103,16 +107,22 @@ impl Tile {
         (self.depth[at], self.base[at], self.lit[at]) = (depth, colour, lit);
     }
 
+    /// Makes it ready for things that let light through.
+    pub(super) fn start_veils(&mut self) {
+        self.veiled = true;
+        self.veils.iter_mut().for_each(|veil| veil.fill(0.0));
+    }
+
     /// Lays something see-through over a sample.
     #[inline(always)]
     pub(super) fn veil(&mut self, at: usize, _depth: f32, colour: [u8; 4], lit: f32) {
         let opacity = f32::from(colour[3]) / 255.0;
-        let factor = if lit == FLAT { 1.0 } else { lit };
+        let factor = factor(lit);
         for channel in 0..3 {
             let own = factor * Srgb::tables().linear(colour[channel]);
-            self.light[channel][at] += opacity * (own - self.light[channel][at]);
+            self.veils[channel][at] += opacity * (own - self.veils[channel][at]);
         }
-        self.light[3][at] += opacity * (1.0 - self.light[3][at]);
+        self.veils[3][at] += opacity * (1.0 - self.veils[3][at]);
     }
 
     /// Darkens lit samples that have something much farther beside them.
@@ -128,7 +138,8 @@ impl Tile {
             let lit = &mut self.lit[row * SIDE + near..][..SIDE - 2 * near];
             for at in 0..lit.len() {
                 let (upright, level) = (above[at] + below[at], left[at] + right[at]);
-                let bend = if upright > level { upright } else { level } - 2.0 * own[at];
+                let farther = if upright > level { upright } else { level };
+                let bend = farther - 2.0 * own[at];
                 let amount = bend / own[at] * scale - start;
                 let amount = if amount > 1.0 { 1.0 } else { amount };
                 let dark = amount > 0.0 && lit[at] != FLAT;
@@ -137,46 +148,58 @@ impl Tile {
         }
     }
 
-    /// Turns colours into linear light.
-    #[inline(always)]
-    pub(super) fn develop(&mut self) {
-        let srgb = Srgb::tables();
-        let [red, green, blue, opacity] = &mut self.light;
-        let things = self.base.iter().zip(&self.lit);
-        let light = red.iter_mut().zip(green).zip(blue).zip(opacity);
-        for ((&base, &lit), (((red, green), blue), opacity)) in things.zip(light) {
-            *opacity = f32::from(base[3]) / 255.0;
-            let factor = if lit == FLAT { *opacity } else { lit * *opacity };
-            *red = srgb.linear(base[0]) * factor;
-            *green = srgb.linear(base[1]) * factor;
-            *blue = srgb.linear(base[2]) * factor;
-        }
-    }
-
     /// The bytes of its pixels (without the apron), each the mean of its samples.
     #[inline(always)]
     pub(super) fn average(&self, samples: usize) -> Vec<u8> {
-        let srgb = Srgb::tables();
         let side = STEP / samples;
         let mut pixels = vec![0; 4 * side * side];
         for (row, line) in pixels.chunks_exact_mut(4 * side).enumerate() {
             for (column, pixel) in line.as_chunks_mut::<4>().0.iter_mut().enumerate() {
                 let at = (APRON + row * samples) * SIDE + APRON + column * samples;
-                let mean = |light: &[f32]| {
-                    if samples == 1 {
-                        light[at]
-                    } else {
-                        0.25 * ((light[at] + light[at + 1]) + (light[at + SIDE] + light[at + SIDE + 1]))
-                    }
+                *pixel = match samples {
+                    1 => self.mean([at]),
+                    _ => self.mean([at, at + 1, at + SIDE, at + SIDE + 1]),
                 };
-                let opacity = mean(&self.light[3]);
-                let whole = if opacity > 0.0 { 1.0 / opacity } else { 0.0 };
-                let byte = |channel: usize| srgb.byte(mean(&self.light[channel]) * whole);
-                *pixel = [byte(0), byte(1), byte(2), (255.0 * opacity + 0.5) as u8];
             }
         }
         pixels
     }
+
+    /// The mean colour of some samples.
+    #[inline(always)]
+    fn mean<const COUNT: usize>(&self, samples: [usize; COUNT]) -> [u8; 4] {
+        let srgb = Srgb::tables();
+        let share = 1.0 / COUNT as f32;
+        let base = self.base[samples[0]];
+        if !self.veiled && samples.iter().all(|&at| self.base[at] == base) {
+            if samples.iter().all(|&at| self.lit[at] == FLAT) {
+                return base;
+            }
+            let factor = share * samples.iter().map(|&at| factor(self.lit[at])).sum::<f32>();
+            let byte = |channel: usize| srgb.byte(srgb.linear(base[channel]) * factor);
+            return [byte(0), byte(1), byte(2), base[3]];
+        }
+        let mut sum = [0.0; 4];
+        for at in samples {
+            let veil = |channel: usize| if self.veiled { self.veils[channel][at] } else { 0.0 };
+            let base = self.base[at];
+            let opacity = f32::from(base[3]) / 255.0 * (1.0 - veil(3));
+            let factor = factor(self.lit[at]) * opacity;
+            for channel in 0..3 {
+                sum[channel] += srgb.linear(base[channel]) * factor + veil(channel);
+            }
+            sum[3] += opacity + veil(3);
+        }
+        let whole = if sum[3] > 0.0 { 1.0 / sum[3] } else { 0.0 };
+        let byte = |channel: usize| srgb.byte(sum[channel] * whole);
+        [byte(0), byte(1), byte(2), (255.0 * share * sum[3] + 0.5) as u8]
+    }
+}
+
+/// Factor on linear light, 1 for things that show exactly their colour.
+#[inline(always)]
+fn factor(lit: f32) -> f32 {
+    if lit == FLAT { 1.0 } else { lit }
 }
 
 fn within(from: i32, to: i32, corner: i32) -> std::ops::Range<usize> {

@@ -33,7 +33,7 @@ fn text_stays_within_its_box_wherever_it_is_aligned() {
         let [left, top, right, bottom] = ink(&drawn(text(align, x), Colour::default()));
         assert!((40..=43).contains(&left), "{left}");
         assert!((right as f32 - 40.0 - width).abs() < 3.0, "{right} for a width of {width}");
-        assert!(top >= 36 && bottom >= 52 && bottom <= 55, "{top} to {bottom}");
+        assert!(top >= 36 && (52..=55).contains(&bottom), "{top} to {bottom}");
     }
 }
 
