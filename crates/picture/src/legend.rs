@@ -80,9 +80,13 @@ impl Legend {
     }
 }
 
-/// Decimals that tell the quarters of a range apart.
+/// Fewest decimals that write the quarters of a range without rounding.
 fn decimals(range: f32) -> usize {
-    (2.0 - range.max(f32::MIN_POSITIVE).log10().floor()).clamp(0.0, 6.0) as usize
+    let written = |decimals: &usize| {
+        let digits = 0.25 * range * 10_f32.powi(*decimals as i32);
+        (digits - digits.round()).abs() < 1e-3 * digits
+    };
+    (0..6).find(written).unwrap_or(6)
 }
 
 #[cfg(test)]
@@ -98,6 +102,6 @@ mod tests {
             beyond: [true, false],
         };
         let words: Vec<String> = legend.marks().into_iter().map(|mark| mark.1).collect();
-        assert_eq!(words, ["−0.40 and below", "−0.20", "0.00", "0.20", "0.40"]);
+        assert_eq!(words, ["−0.4 and below", "−0.2", "0.0", "0.2", "0.4"]);
     }
 }
