@@ -15,8 +15,11 @@ use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat, T
 use bevy::render::view::screenshot::{Screenshot, ScreenshotCaptured};
 use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
 use bevy::winit::{UpdateMode, WinitSettings};
-use bevy_egui::egui::TextureId;
-use bevy_egui::{EguiContexts, EguiPlugin, EguiPrimaryContextPass, EguiTextureHandle, EguiUserTextures};
+use bevy_egui::egui::{Event, Modifiers, TextureId};
+use bevy_egui::{
+    EguiContexts, EguiInput, EguiPlugin, EguiPreUpdateSet, EguiPrimaryContextPass, EguiTextureHandle,
+    EguiUserTextures,
+};
 use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::path::PathBuf;
@@ -43,6 +46,7 @@ pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver
         .insert_resource(viewer)
         .init_resource::<Picture>()
         .add_systems(Startup, set_up)
+        .add_systems(PreUpdate, rest.after(EguiPreUpdateSet::ProcessInput).before(EguiPreUpdateSet::BeginPass))
         .add_systems(EguiPrimaryContextPass, look);
     if bevy_draws {
         gpu::plugin(&mut app);
@@ -110,6 +114,17 @@ fn set_up(
     commands.spawn((Camera2d, Tonemapping::None, DebandDither::Disabled, Msaa::Off, usages));
     picture.handle = images.add(gpu::target(1, 1));
     picture.id = Some(textures.add_image(EguiTextureHandle::Strong(picture.handle.clone())));
+}
+
+/// Lets the window rest: bevy_egui tells egui the modifier keys anew in every frame, and
+/// egui asks for another frame after any event.
+fn rest(mut inputs: Query<&mut EguiInput>, mut known: Local<Option<Modifiers>>) {
+    for mut input in &mut inputs {
+        input.events.retain(|event| match event {
+            Event::ModifiersChanged(now) => known.replace(*now) != Some(*now),
+            _ => true,
+        });
+    }
 }
 
 /// The whole window, once per frame.
