@@ -1,6 +1,5 @@
-use bedswell_painter::{Drawing, Pose, Size};
-use bedswell_picture::{Frame, LikelyPlace, Look, Pick, Run, draw, likely_places, pick};
-use bedswell_painter::{Camera, Point};
+use bedswell_painter::{Camera, Drawing, Point, Pose, Size};
+use bedswell_picture::{Cut, Frame, LikelyPlace, Look, Pick, Run, draw, likely_places, pick};
 use bedswell_sim::State;
 use std::path::PathBuf;
 use std::sync::Arc;
@@ -73,11 +72,24 @@ impl Bed {
         };
         let Some(frame) = frame else { return };
         if moved {
-            self.places = likely_places(&frame, PLACES);
-            self.place = self.place.filter(|place| *place < self.places.len());
+            self.find_places(&frame);
         }
         let drawing = Arc::new(draw(&self.run, &frame, look));
         self.moment = Some(Moment { time: self.time, look: look.clone(), frame, drawing });
+    }
+
+    /// Finds the likely places of rupture; the mark stays with the one nearest to where it was,
+    /// if that is the same place.
+    fn find_places(&mut self, frame: &Frame) {
+        let marked = self.place.and_then(|place| self.places.get(place)).copied();
+        self.places = likely_places(frame, PLACES);
+        self.place = marked.and_then(|marked| {
+            let reach = 2.5 * frame.beads.get(marked.bead)?.voxel_edge();
+            let apart = |place: &LikelyPlace| (place.place - marked.place).norm();
+            let same = |place: &LikelyPlace| place.bead == marked.bead && apart(place) < reach;
+            let near = self.places.iter().enumerate().filter(|(_, place)| same(place));
+            near.min_by(|a, b| apart(a.1).total_cmp(&apart(b.1))).map(|(number, _)| number)
+        });
     }
 
     /// What there is to see now, once it is ready.
@@ -108,17 +120,37 @@ impl Bed {
     }
 
     /// The pose from which a likely place is seen: from outside, straight over the bead.
-    pub(crate) fn near(&self, place: &LikelyPlace, size: Size) -> Option<Pose> {
+    pub(crate) fn over(&self, place: &LikelyPlace, size: Size) -> Option<Pose> {
+        let (out, radius) = self.outwards(place)?;
+        Some(looking_from(&out, &place.place, distance(0.9 * radius, size)))
+    }
+
+    /// A cut through the bead's middle and a likely place, and the pose that faces it.
+    pub(crate) fn opened(&self, place: &LikelyPlace, size: Size) -> Option<(Cut, Pose)> {
+        let (out, radius) = self.outwards(place)?;
+        let across = out.cross(&Point::z());
+        let normal = if across.norm() > 1e-3 * out.norm() { across.normalize() } else { Point::x() };
+        let pose = looking_from(&normal, &(place.place - 0.4 * out), distance(0.9 * radius, size));
+        let offset = normal.dot(&(place.place - self.frame()?.middle()));
+        Some((Cut { azimuth: pose.azimuth, elevation: 0.0, offset }, pose))
+    }
+
+    /// The way from the middle of its bead to a place, and the bead's largest radius (m).
+    fn outwards(&self, place: &LikelyPlace) -> Option<(Point, f32)> {
         let bead = self.frame()?.beads.get(place.bead)?;
         let centre = bead.centre();
         let radius = bead.nodes.iter().map(|node| (node - centre).norm()).fold(0.0, f32::max);
-        let out: Point = place.place - centre;
-        Some(Pose {
-            target: place.place.into(),
-            azimuth: out.y.atan2(out.x).to_degrees(),
-            elevation: out.z.atan2(out.x.hypot(out.y)).to_degrees().clamp(-70.0, 70.0),
-            distance: distance(0.8 * radius, size),
-        })
+        Some((place.place - centre, radius))
+    }
+}
+
+/// The pose that sees a place from a direction.
+fn looking_from(direction: &Point, place: &Point, distance: f32) -> Pose {
+    Pose {
+        target: (*place).into(),
+        azimuth: direction.y.atan2(direction.x).to_degrees().rem_euclid(360.0),
+        elevation: direction.z.atan2(direction.x.hypot(direction.y)).to_degrees().clamp(-70.0, 70.0),
+        distance,
     }
 }
 

@@ -1,4 +1,4 @@
-use bevy_egui::egui::{InputState, Key, Modifiers};
+use bevy_egui::egui::{Event, InputState, Key};
 
 /// What a key does.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -40,25 +40,25 @@ pub(crate) const HELP: &[(&str, &str)] = &[
     ("drag, arrows", "turn the bed"),
     ("right drag, Shift + arrows", "shift it"),
     ("wheel, Page Up, Page Down", "nearer, farther"),
-    ("Home", "the whole bed"),
+    ("0", "the whole bed"),
     ("Space", "play, pause"),
     ("comma, full stop", "one increment back, on"),
-    ("Shift + comma, full stop", "dry, last increment"),
+    ("Home, End", "the dry bed, the last increment"),
     ("G, H", "grains: plain, ghosted, hidden; next shade"),
     ("E", "forces between grains"),
     ("B, K, R", "bonds, skin, stress crosses of the beads"),
     ("F", "next field on skin and section"),
     ("C", "cut on, off"),
-    ("[  ]", "move the cut"),
+    ("[ ]", "move the cut"),
     ("X", "turn the cut to the next axis"),
-    ("N, Shift + N", "next, previous likely place of rupture"),
+    ("N, M", "next likely place of rupture, the one before"),
     ("1 to 9", "fold a card; 9: the packs of a study"),
     ("D, U", "next pack of the study, the one before"),
     ("O", "sort packs by the next outcome"),
     ("P, Q", "pause or go on, stop the run under way"),
-    ("S, Shift + S", "picture of the bed, of the window"),
+    ("S, W", "picture of the bed, of the window"),
     ("T", "theme: dark, light, print"),
-    ("+  -", "text size"),
+    ("+ -", "text size"),
     ("? or F1", "this help"),
     ("Esc", "close, let go"),
 ];
@@ -75,12 +75,12 @@ const KEYS: &[(Key, bool, Action)] = &[
     (Key::ArrowDown, true, Action::Shift(0, 1)),
     (Key::PageUp, false, Action::Nearer(1)),
     (Key::PageDown, false, Action::Nearer(-1)),
-    (Key::Home, false, Action::WholeBed),
+    (Key::Num0, false, Action::WholeBed),
     (Key::Space, false, Action::Play),
     (Key::Comma, false, Action::Step(-1)),
     (Key::Period, false, Action::Step(1)),
-    (Key::Comma, true, Action::FirstStep),
-    (Key::Period, true, Action::LastStep),
+    (Key::Home, false, Action::FirstStep),
+    (Key::End, false, Action::LastStep),
     (Key::G, false, Action::NextGrains),
     (Key::H, false, Action::NextShade),
     (Key::E, false, Action::ForceChains),
@@ -98,9 +98,9 @@ const KEYS: &[(Key, bool, Action)] = &[
     (Key::CloseBracket, false, Action::MoveCut(1)),
     (Key::X, false, Action::TurnCut),
     (Key::N, false, Action::HotPlace(1)),
-    (Key::N, true, Action::HotPlace(-1)),
+    (Key::M, false, Action::HotPlace(-1)),
     (Key::S, false, Action::PaneShot),
-    (Key::S, true, Action::WindowShot),
+    (Key::W, false, Action::WindowShot),
     (Key::T, false, Action::NextTheme),
     (Key::Minus, false, Action::TextSize(-1)),
     (Key::F1, false, Action::Help),
@@ -123,15 +123,49 @@ const SIGNS: &[(Key, Action)] = &[
     (Key::Questionmark, Action::Help),
 ];
 
-/// What the keys pressed since the last frame ask for.
+/// What the keys pressed since the last frame ask for, in their order.
 pub(crate) fn pressed(input: &InputState) -> Vec<Action> {
-    let Modifiers { shift, ctrl, alt, command, .. } = input.modifiers;
-    if ctrl || alt || command {
-        return Vec::new();
+    input.events.iter().filter_map(meaning).collect()
+}
+
+fn meaning(event: &Event) -> Option<Action> {
+    let Event::Key { key, pressed: true, modifiers, .. } = event else { return None };
+    if modifiers.ctrl || modifiers.alt || modifiers.command {
+        return None;
     }
-    let keys = KEYS.iter().filter(|(_, with_shift, _)| *with_shift == shift).map(|(key, _, action)| (key, action));
-    let signs = SIGNS.iter().map(|(key, action)| (key, action));
-    keys.chain(signs)
-        .flat_map(|(key, action)| std::iter::repeat_n(*action, input.num_presses(*key)))
-        .collect()
+    let sign = SIGNS.iter().find(|(sign, _)| sign == key).map(|(_, action)| *action);
+    let with_shift = |shift| KEYS.iter().find(|(known, with, _)| known == key && *with == shift);
+    sign.or_else(|| with_shift(modifiers.shift).map(|(.., action)| *action))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use bevy_egui::egui::Modifiers;
+
+    fn key(key: Key, modifiers: Modifiers) -> Event {
+        Event::Key { key, physical_key: None, pressed: true, repeat: false, modifiers }
+    }
+
+    #[test]
+    fn keys_act_in_the_order_in_which_they_were_pressed() {
+        let keys = [Key::Escape, Key::F1, Key::Comma];
+        let input =
+            InputState { events: keys.map(|k| key(k, Modifiers::NONE)).into(), ..InputState::default() };
+        assert_eq!(pressed(&input), [Action::Leave, Action::Help, Action::Step(-1)]);
+    }
+
+    #[test]
+    fn shift_makes_arrows_shift_and_signs_need_none() {
+        assert_eq!(meaning(&key(Key::ArrowUp, Modifiers::SHIFT)), Some(Action::Shift(0, -1)));
+        assert_eq!(meaning(&key(Key::Questionmark, Modifiers::SHIFT)), Some(Action::Help));
+        assert_eq!(meaning(&key(Key::C, Modifiers::CTRL)), None);
+    }
+
+    #[test]
+    fn no_key_has_two_meanings() {
+        for (number, (key, shift, _)) in KEYS.iter().enumerate() {
+            assert!(!KEYS[..number].iter().any(|(k, s, _)| k == key && s == shift), "{key:?}");
+        }
+    }
 }

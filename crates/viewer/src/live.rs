@@ -1,10 +1,10 @@
 use bedswell_sim::{
-    FolderError, Observer, RunSummary, Scene, State, StateRecorder, Step, prepare_run_folder, remove_run_files,
-    run_pack, write_run_folder,
+    FolderError, Observer, RunSummary, Scene, State, StateRecorder, Step, prepare_run_folder,
+    remove_run_files, run_pack, write_run_folder,
 };
+use std::collections::VecDeque;
 use std::ops::ControlFlow;
 use std::path::{Path, PathBuf};
-use std::collections::VecDeque;
 use std::sync::{Arc, Condvar, Mutex, MutexGuard, PoisonError};
 
 /// A run that is computed while one looks.

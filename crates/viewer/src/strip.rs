@@ -1,8 +1,6 @@
 use crate::theme::Palette;
 use bedswell_sim::figures::digits;
-use bevy_egui::egui::{
-    Align2, CursorIcon, FontId, Pos2, Rect, Sense, Shape, Stroke, Ui, Vec2, pos2, vec2,
-};
+use bevy_egui::egui::{Align2, CursorIcon, FontId, Pos2, Rect, Sense, Shape, Stroke, Ui, Vec2, pos2, vec2};
 
 /// How long it takes to play a whole run (s).
 pub(crate) const PLAY_SECONDS: f64 = 8.0;
@@ -31,7 +29,13 @@ impl Curve {
 ///
 /// `last` is the last increment there may be, `time` where the cursor stands (increments).
 /// Returns the increment asked for.
-pub(crate) fn strip(ui: &mut Ui, palette: &Palette, curves: &[Curve], last: usize, time: f64) -> Option<usize> {
+pub(crate) fn strip(
+    ui: &mut Ui,
+    palette: &Palette,
+    curves: &[Curve],
+    last: usize,
+    time: f64,
+) -> Option<usize> {
     let gap = 14.0;
     let whole = ui.available_rect_before_wrap();
     let count = curves.len().max(1) as f32;
@@ -87,11 +91,18 @@ impl Frame {
         let small = FontId::proportional(11.0);
         let line = Stroke::new(1.0, palette.line);
         let words = |at, anchor, text: String, colour| painter.text(at, anchor, text, small.clone(), colour);
-        words(self.rect.left_top(), Align2::LEFT_TOP, curve.name.to_owned(), palette.quiet);
+        let name = format!("{}, up to {} {}", curve.name, digits(self.high), curve.unit);
+        words(self.rect.left_top(), Align2::LEFT_TOP, name, palette.quiet);
         let value = curve.at(time);
         if let Some(value) = value {
             let text = format!("{} {}", digits(value), curve.unit);
-            painter.text(self.rect.right_top(), Align2::RIGHT_TOP, text, FontId::proportional(13.0), palette.text);
+            painter.text(
+                self.rect.right_top(),
+                Align2::RIGHT_TOP,
+                text,
+                FontId::proportional(13.0),
+                palette.text,
+            );
         }
         painter.line_segment([self.inner.left_bottom(), self.inner.right_bottom()], line);
         let below = |x: f32| pos2(x, self.rect.bottom());
@@ -121,13 +132,10 @@ mod tests {
     #[test]
     fn values_move_evenly_between_increments() {
         let curve = Curve { name: "", unit: "", values: vec![0.0, 1.0, 4.0] };
-        assert_eq!([0.0, 0.5, 1.5, 2.0, 2.5].map(|time| curve.at(time)), [
-            Some(0.0),
-            Some(0.5),
-            Some(2.5),
-            Some(4.0),
-            Some(4.0)
-        ]);
+        assert_eq!(
+            [0.0, 0.5, 1.5, 2.0, 2.5].map(|time| curve.at(time)),
+            [Some(0.0), Some(0.5), Some(2.5), Some(4.0), Some(4.0)]
+        );
         assert_eq!(curve.at(3.0), None);
     }
 

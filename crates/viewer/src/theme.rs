@@ -1,7 +1,9 @@
 use crate::pane::ink;
 use bedswell_picture::Theme;
+use bevy_egui::egui::epaint::FontColorTransferFunction;
 use bevy_egui::egui::{
-    self, Color32, CornerRadius, FontFamily, FontId, Margin, Stroke, TextStyle, Vec2, Visuals, style::WidgetVisuals,
+    self, Color32, CornerRadius, FontFamily, FontId, Margin, Stroke, TextStyle, Vec2, Visuals,
+    style::WidgetVisuals,
 };
 
 /// The colours of the window.
@@ -109,6 +111,9 @@ fn visuals(palette: &Palette, dark: bool) -> Visuals {
     visuals.selection.stroke = Stroke::new(1.0, palette.text);
     visuals.weak_text_color = Some(palette.quiet);
     visuals.slider_trailing_fill = true;
+    // Letters are blended in linear light, which thins dark ones on a light ground.
+    visuals.text_options.color_transfer_function =
+        if dark { FontColorTransferFunction::Gamma(0.85) } else { FontColorTransferFunction::Gamma(0.5) };
     visuals.window_shadow = egui::Shadow::NONE;
     visuals.popup_shadow = egui::Shadow::NONE;
     visuals.widgets.noninteractive = widget(palette.card, palette.text, palette.line);

@@ -29,7 +29,12 @@ use std::time::Duration;
 ///
 /// # Errors
 /// [`NoWindow::Refused`] if the display does not let a window be opened.
-pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver) -> Result<AppExit, NoWindow> {
+pub(crate) fn open(
+    viewer: Viewer,
+    size: Size,
+    drawn_by: DrawnBy,
+    driver: Driver,
+) -> Result<AppExit, NoWindow> {
     let bevy_draws = match drawn_by {
         DrawnBy::Auto => driver == Driver::Gpu,
         DrawnBy::Painter => false,
@@ -46,11 +51,15 @@ pub(crate) fn open(viewer: Viewer, size: Size, drawn_by: DrawnBy, driver: Driver
         .insert_resource(viewer)
         .init_resource::<Picture>()
         .add_systems(Startup, set_up)
-        .add_systems(PreUpdate, rest.after(EguiPreUpdateSet::ProcessInput).before(EguiPreUpdateSet::BeginPass))
+        .add_systems(
+            PreUpdate,
+            rest.after(EguiPreUpdateSet::ProcessInput).before(EguiPreUpdateSet::BeginPass),
+        )
         .add_systems(EguiPrimaryContextPass, look);
     if bevy_draws {
         gpu::plugin(&mut app);
-        app.add_systems(Startup, aim.after(set_up)).add_systems(PostUpdate, show_bevy.after(bevy_egui::EguiPostUpdateSet::EndPass));
+        app.add_systems(Startup, aim.after(set_up))
+            .add_systems(PostUpdate, show_bevy.after(bevy_egui::EguiPostUpdateSet::EndPass));
     } else {
         gpu::inset_plugin(&mut app);
         app.add_systems(PostUpdate, show_painter.after(bevy_egui::EguiPostUpdateSet::EndPass));
@@ -83,7 +92,9 @@ fn start(size: Size, driver: Driver, title: String) -> Result<App, NoWindow> {
     std::panic::set_hook(hook);
     app.map_err(|reason| {
         let text = reason.downcast_ref::<String>().cloned();
-        NoWindow::Refused(text.or_else(|| Some((*reason.downcast_ref::<&str>()?).to_owned())).unwrap_or_default())
+        NoWindow::Refused(
+            text.or_else(|| Some((*reason.downcast_ref::<&str>()?).to_owned())).unwrap_or_default(),
+        )
     })
 }
 
@@ -156,7 +167,10 @@ fn shoot(commands: &mut Commands, folder: PathBuf) {
         move |caught: On<ScreenshotCaptured>, mut viewer: ResMut<Viewer>| {
             let size = Size { width: caught.image.width(), height: caught.image.height() };
             let mut pixels = caught.image.data.clone().unwrap_or_default();
-            if matches!(caught.image.texture_descriptor.format, TextureFormat::Bgra8UnormSrgb | TextureFormat::Bgra8Unorm) {
+            if matches!(
+                caught.image.texture_descriptor.format,
+                TextureFormat::Bgra8UnormSrgb | TextureFormat::Bgra8Unorm
+            ) {
                 pixels.chunks_exact_mut(4).for_each(|pixel| pixel.swap(0, 2));
             }
             pixels.chunks_exact_mut(4).for_each(|pixel| pixel[3] = 255);
@@ -190,11 +204,8 @@ fn show_painter(
         painted.0.show(view);
     }
     let Some(painting) = painted.0.take(wait) else { return Ok(()) };
-    let size = Extent3d {
-        width: painting.size.width,
-        height: painting.size.height,
-        depth_or_array_layers: 1,
-    };
+    let size =
+        Extent3d { width: painting.size.width, height: painting.size.height, depth_or_array_layers: 1 };
     let (dimension, format) = (TextureDimension::D2, TextureFormat::Rgba8UnormSrgb);
     let mut image = Image::new(size, dimension, painting.pixels, format, RenderAssetUsages::RENDER_WORLD);
     image.texture_descriptor.usage |= TextureUsages::COPY_SRC;
@@ -227,7 +238,11 @@ fn show_bevy(
         let _ = images.insert(picture.handle.id(), image);
     }
     camera.clear_color = gpu::clear_colour(view.drawing.background);
-    commands.insert_resource(gpu::Shown { drawing: view.drawing, camera: fine, thinnest: gpu::FINENESS as f32 });
+    commands.insert_resource(gpu::Shown {
+        drawing: view.drawing,
+        camera: fine,
+        thinnest: gpu::FINENESS as f32,
+    });
     picture.ready = true;
     viewer.count_picture();
 }

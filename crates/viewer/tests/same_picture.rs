@@ -108,7 +108,8 @@ fn intersection_over_union(ours: &Image, theirs: &Image) -> f64 {
         image.pixels.chunks_exact(4).map(far).collect()
     };
     let (ours, theirs) = (covered(ours), covered(theirs));
-    let count = |pick: fn(bool, bool) -> bool| ours.iter().zip(&theirs).filter(|(a, b)| pick(**a, **b)).count();
+    let count =
+        |pick: fn(bool, bool) -> bool| ours.iter().zip(&theirs).filter(|(a, b)| pick(**a, **b)).count();
     count(|a, b| a && b) as f64 / count(|a, b| a || b) as f64
 }
 

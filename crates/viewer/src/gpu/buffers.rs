@@ -3,7 +3,7 @@ use super::{Shown, bytes};
 use bedswell_painter::{Ball, Camera, Drawing, Mesh, Rod};
 use bevy::prelude::*;
 use bevy::render::render_resource::{
-    BindGroup, Buffer, BufferInitDescriptor, BufferUsages, PipelineCache, BindGroupEntries,
+    BindGroup, BindGroupEntries, Buffer, BufferInitDescriptor, BufferUsages, PipelineCache,
 };
 use bevy::render::renderer::RenderDevice;
 use std::sync::Arc;

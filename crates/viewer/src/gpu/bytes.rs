@@ -1,5 +1,6 @@
 use bedswell_painter::{
-    AMBIENT, Ball, Camera, Colour, Drawing, GHOST_MIDDLE, LIGHT, Light, Mesh, Point, Rod, SECTION, SECTION_RIM,
+    AMBIENT, Ball, Camera, Colour, Drawing, GHOST_MIDDLE, LIGHT, Light, Mesh, Point, Rod, SECTION,
+    SECTION_RIM,
 };
 
 /// Bytes of one ball: centre, radius, colour.

@@ -1,5 +1,5 @@
-use super::bytes::{BALL, POINT, ROD};
 use super::buffers::{Batch, SceneBuffers};
+use super::bytes::{BALL, POINT, ROD};
 use bevy::core_pipeline::core_3d::CORE_3D_DEPTH_FORMAT;
 use bevy::mesh::VertexBufferLayout;
 use bevy::prelude::*;
@@ -32,15 +32,11 @@ impl FromWorld for Pipelines {
         let shader = world.resource::<SceneShader>().0.clone();
         let view = BindGroupLayoutDescriptor::new(
             "view of the bed",
-            &BindGroupLayoutEntries::single(
-                ShaderStages::VERTEX_FRAGMENT,
-                uniform_buffer_sized(false, None),
-            ),
+            &BindGroupLayoutEntries::single(ShaderStages::VERTEX_FRAGMENT, uniform_buffer_sized(false, None)),
         );
         let cache = world.resource::<PipelineCache>();
-        let queue = |solid| {
-            Kind::ALL.map(|kind| cache.queue_render_pipeline(describe(kind, solid, &view, &shader)))
-        };
+        let queue =
+            |solid| Kind::ALL.map(|kind| cache.queue_render_pipeline(describe(kind, solid, &view, &shader)));
         let (solid, clear) = (queue(true), queue(false));
         Self { view, solid, clear }
     }
@@ -104,12 +100,9 @@ impl Kind {
         use VertexFormat::{Float32, Float32x3, Uint32, Unorm8x4};
         match self {
             Self::Balls => ("ball", VertexStepMode::Instance, BALL, &[Float32x3, Float32, Unorm8x4]),
-            Self::Rods => (
-                "rod",
-                VertexStepMode::Instance,
-                ROD,
-                &[Float32x3, Float32x3, Float32, Unorm8x4, Unorm8x4],
-            ),
+            Self::Rods => {
+                ("rod", VertexStepMode::Instance, ROD, &[Float32x3, Float32x3, Float32, Unorm8x4, Unorm8x4])
+            }
             Self::Meshes => {
                 ("mesh", VertexStepMode::Vertex, POINT, &[Float32x3, Float32x3, Unorm8x4, Uint32])
             }

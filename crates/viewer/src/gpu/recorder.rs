@@ -3,7 +3,9 @@ use crate::driver::{NoWindow, find_driver};
 use bedswell_film::{RenderError, Renderer};
 use bedswell_painter::{Camera, Colour, Drawing, Image, Size};
 use bevy::app::PluginsState;
-use bevy::prelude::{App, AssetPlugin, Assets, DefaultPlugins, Entity, Handle, On, PluginGroup, Resource, default};
+use bevy::prelude::{
+    App, AssetPlugin, Assets, DefaultPlugins, Entity, Handle, On, PluginGroup, Resource, default,
+};
 use bevy::render::RenderPlugin;
 use bevy::render::pipelined_rendering::PipelinedRenderingPlugin;
 use bevy::render::view::screenshot::{Screenshot, ScreenshotCaptured};
@@ -126,9 +128,8 @@ pub(crate) fn enlarged(view: &Camera) -> Camera {
 
 /// Averages the pixels of a premultiplied picture in linear light and frees their colour of the opacity.
 fn reduced(fine: &[u8], size: Size) -> Image {
-    let linear: Vec<f32> = (0..=255u8)
-        .map(|byte| bevy::color::Srgba::gamma_function(f32::from(byte) / 255.0))
-        .collect();
+    let linear: Vec<f32> =
+        (0..=255u8).map(|byte| bevy::color::Srgba::gamma_function(f32::from(byte) / 255.0)).collect();
     let row = (size.width * FINENESS * 4) as usize;
     let mut pixels = Vec::with_capacity((size.width * size.height * 4) as usize);
     for y in 0..size.height as usize {

@@ -9,8 +9,8 @@ pub(crate) use orbit::Orbit;
 pub(crate) use overlay::{draw as draw_overlay, ink};
 
 use bedswell_painter::Size;
-use bevy_egui::egui::{PointerButton, Response, Sense, TextureId, Ui, pos2, vec2};
 use bevy_egui::egui::{Color32, Rect};
+use bevy_egui::egui::{PointerButton, Response, Sense, TextureId, Ui, pos2, vec2};
 
 /// Degrees of turn per point of a drag.
 const TURN: f32 = 0.4;

@@ -1,4 +1,5 @@
 use bedswell_painter::{Align, Colour, Item, Overlay};
+use bevy::color::Srgba;
 use bevy_egui::egui::{self, Align2, Color32, FontId, Mesh, Painter, Pos2, Rect, Stroke, pos2};
 
 /// Draws flat things over the pane, whose top left and pixels per point are given.
@@ -46,7 +47,32 @@ fn ramp(from: Pos2, to: Pos2, colours: &[Colour]) -> Mesh {
     mesh
 }
 
-/// A colour as the window knows it.
-pub(crate) fn ink(colour: Colour) -> Color32 {
-    Color32::from_rgba_unmultiplied(colour.r, colour.g, colour.b, colour.a)
+/// A colour as the window knows it: weighted by its opacity in linear light, in which the
+/// window blends.
+pub(crate) fn ink(Colour { r, g, b, a }: Colour) -> Color32 {
+    let [r, g, b] = [r, g, b].map(|part| {
+        let light = Srgba::gamma_function(f32::from(part) / 255.0) * f32::from(a) / 255.0;
+        (255.0 * Srgba::gamma_function_inverse(light)).round() as u8
+    });
+    Color32::from_rgba_premultiplied(r, g, b, a)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn opaque_colours_stay_as_they_are() {
+        for byte in 0..=255 {
+            assert_eq!(ink(Colour::new(byte, 7, 255 - byte)), Color32::from_rgb(byte, 7, 255 - byte));
+        }
+    }
+
+    #[test]
+    fn half_of_white_is_half_its_light() {
+        assert_eq!(
+            ink(Colour::new(255, 255, 255).with_alpha(128)),
+            Color32::from_rgba_premultiplied(188, 188, 188, 128)
+        );
+    }
 }

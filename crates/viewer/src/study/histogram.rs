@@ -4,7 +4,13 @@ use crate::theme::Palette;
 use bevy_egui::egui::{Align2, FontId, Rect, Sense, Stroke, Ui, pos2, vec2};
 
 /// Shows how an outcome is spread over the packs; the bar with the open pack stands out.
-pub(super) fn histogram(ui: &mut Ui, palette: &Palette, packs: &Packs, outcome: &Outcome, open: Option<usize>) {
+pub(super) fn histogram(
+    ui: &mut Ui,
+    palette: &Palette,
+    packs: &Packs,
+    outcome: &Outcome,
+    open: Option<usize>,
+) {
     let value = |row: usize| packs.rows[row].outcome.as_ref().ok().map(outcome.value);
     let values: Vec<f64> = (0..packs.rows.len()).filter_map(value).collect();
     if values.is_empty() {

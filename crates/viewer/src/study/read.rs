@@ -104,12 +104,14 @@ impl Packs {
 /// When a file is missing, damaged or of no use.
 pub(crate) fn read_packs(folder: &Path) -> Result<Packs, StudyReadError> {
     let path = folder.join("summary.json");
-    let text = std::fs::read_to_string(&path).map_err(|cause| StudyReadError::Read { path: path.clone(), cause })?;
+    let text =
+        std::fs::read_to_string(&path).map_err(|cause| StudyReadError::Read { path: path.clone(), cause })?;
     let summary: StudySummary = serde_json::from_str(&text)
         .map_err(|error| StudyReadError::Damaged { path, reason: error.to_string() })?;
     let mut levels = Vec::new();
     for (index, level) in summary.levels.iter().enumerate() {
-        let own = if summary.levels.len() > 1 { folder.join(format!("level-{index}")) } else { folder.to_owned() };
+        let own =
+            if summary.levels.len() > 1 { folder.join(format!("level-{index}")) } else { folder.to_owned() };
         levels.push((level.value.clone(), read_scene(&own.join("scene.toml"))?));
     }
     let rows = read_rows(&folder.join("outcomes.parquet"))?;

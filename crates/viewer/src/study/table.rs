@@ -114,12 +114,7 @@ fn summary(packs: &Packs) -> Vec<String> {
         overall.tear_fraction_clustered_high.or(overall.tear_fraction_wilson_high),
     );
     if let (Some(fraction), Some(low), Some(high)) = limits {
-        lines.push(format!(
-            "tear fraction {} (95 %: {} to {})",
-            digits(fraction),
-            digits(low),
-            digits(high)
-        ));
+        lines.push(format!("tear fraction {} (95 %: {} to {})", digits(fraction), digits(low), digits(high)));
     }
     lines
 }
@@ -139,7 +134,8 @@ impl Columns {
 
     /// Puts words into a column, at its right side but for names.
     fn put(ui: &mut Ui, width: f32, right: bool, words: RichText) {
-        let layout = if right { Layout::right_to_left(Align::Center) } else { Layout::left_to_right(Align::Center) };
+        let layout =
+            if right { Layout::right_to_left(Align::Center) } else { Layout::left_to_right(Align::Center) };
         let size = bevy_egui::egui::vec2(width, ui.available_height());
         ui.allocate_ui_with_layout(size, layout, |ui| {
             ui.set_min_width(width);
@@ -177,12 +173,20 @@ fn head(ui: &mut Ui, palette: &Palette, packs: &Packs, columns: &Columns, table:
     ui.separator();
 }
 
-fn row_line(ui: &mut Ui, palette: &Palette, packs: &Packs, columns: &Columns, row: usize, open: bool) -> Response {
+fn row_line(
+    ui: &mut Ui,
+    palette: &Palette,
+    packs: &Packs,
+    columns: &Columns,
+    row: usize,
+    open: bool,
+) -> Response {
     let pack = &packs.rows[row];
     let scope = ui.scope_builder(UiBuilder::new().sense(Sense::click()), |ui| {
         let rect = ui.available_rect_before_wrap();
         let height = ui.text_style_height(&bevy_egui::egui::TextStyle::Body) + 4.0;
-        let rect = bevy_egui::egui::Rect::from_min_size(rect.min, bevy_egui::egui::vec2(rect.width(), height));
+        let rect =
+            bevy_egui::egui::Rect::from_min_size(rect.min, bevy_egui::egui::vec2(rect.width(), height));
         let hovered = ui.rect_contains_pointer(rect);
         if open || hovered {
             let fill = if open { palette.chosen } else { palette.button };
@@ -221,7 +225,11 @@ mod tests {
             level: 0,
             pack: pack as u64,
             outcome: value
-                .map(|tear_probability| PackFigures { tear_probability, beads: 1.0, ..PackFigures::default() })
+                .map(|tear_probability| PackFigures {
+                    tear_probability,
+                    beads: 1.0,
+                    ..PackFigures::default()
+                })
                 .ok_or_else(|| "no equilibrium".to_owned()),
         };
         Packs {

@@ -1,8 +1,8 @@
+use super::runs::Wanted;
 use super::{Viewer, cards};
 use crate::keys::Action;
 use crate::picture_file::keep;
 use crate::strip::PLAY_SECONDS;
-use super::runs::Wanted;
 use bedswell_painter::{Camera, Quality, paint, paint_overlay};
 use bedswell_picture::{Cut, Field, GrainLook, GrainShade, Theme};
 use bevy_egui::egui::Context;
@@ -44,20 +44,26 @@ impl Viewer {
             Action::FirstStep => self.go(0.0),
             Action::LastStep => self.go(f64::INFINITY),
             Action::Fold(card) => self.fold(card),
-            Action::NextGrains => self.look.grains = next(&GrainLook::ALL.map(|(look, _)| look), self.look.grains),
-            Action::NextShade => self.look.shade = next(&GrainShade::ALL.map(|(shade, _)| shade), self.look.shade),
+            Action::NextGrains => {
+                self.look.grains = next(&GrainLook::ALL.map(|(look, _)| look), self.look.grains)
+            }
+            Action::NextShade => {
+                self.look.shade = next(&GrainShade::ALL.map(|(shade, _)| shade), self.look.shade)
+            }
             Action::ForceChains => self.look.force_chains ^= true,
             Action::Bonds => self.look.bonds ^= true,
             Action::Skin => self.look.skin ^= true,
             Action::Crosses => self.look.crosses ^= true,
             Action::NextField => self.look.field = next(&Field::ALL, self.look.field),
-            Action::CutOnOff => self.cut_on_off(),
+            Action::CutOnOff => self.cut_on_off(now),
             Action::MoveCut(sign) => self.move_cut(sign),
             Action::TurnCut => self.turn_cut(),
             Action::HotPlace(by) => self.next_place(by, now),
             Action::PaneShot => self.keep_pane(),
             Action::WindowShot => self.window_shot = Some(self.pictures_folder()),
-            Action::NextTheme => self.settings.theme = next(&Theme::ALL.map(|(theme, _)| theme), self.settings.theme),
+            Action::NextTheme => {
+                self.settings.theme = next(&Theme::ALL.map(|(theme, _)| theme), self.settings.theme)
+            }
             Action::TextSize(sign) => self.settings.resize_text(0.1 * f32::from(sign)),
             Action::Pause => self.pause(),
             Action::Stop => self.stop(),
@@ -135,15 +141,16 @@ impl Viewer {
         context.request_repaint();
     }
 
-    /// Cuts through the middle of the beads, facing the eye sideways, or takes the cut away.
-    pub(super) fn cut_on_off(&mut self) {
-        self.look.cut = match self.look.cut {
-            Some(_) => None,
-            None => {
-                let towards = (self.orbit.pose().azimuth / 90.0).round() * 90.0;
-                Some(Cut { azimuth: towards.rem_euclid(360.0), elevation: 0.0, offset: 0.0 })
-            }
-        };
+    /// Cuts through the middle of the beads, facing the eye sideways, or through the likely
+    /// place that is marked; or takes the cut away.
+    pub(super) fn cut_on_off(&mut self, now: f64) {
+        if self.look.cut.take().is_none() {
+            let towards = (self.orbit.pose().azimuth / 90.0).round() * 90.0;
+            self.look.cut = Some(Cut { azimuth: towards.rem_euclid(360.0), elevation: 0.0, offset: 0.0 });
+        }
+        if let Some(place) = self.bed.as_ref().and_then(|bed| bed.place) {
+            self.fly_to_place(place, now);
+        }
     }
 
     fn move_cut(&mut self, sign: i8) {
@@ -183,12 +190,18 @@ impl Viewer {
     /// Marks a likely place of rupture and flies there.
     pub(super) fn fly_to_place(&mut self, place: usize, now: f64) {
         let Some(bed) = &mut self.bed else { return };
-        let pose = bed.places.get(place).and_then(|place| bed.near(place, self.size));
-        if let Some(pose) = pose {
-            bed.place = Some(place);
-            self.steered = true;
-            self.orbit.fly(pose, now);
-        }
+        let Some(likely) = bed.places.get(place) else { return };
+        let pose = if self.look.cut.is_some() {
+            let opened = bed.opened(likely, self.size);
+            self.look.cut = opened.map(|(cut, _)| cut);
+            opened.map(|(_, pose)| pose)
+        } else {
+            bed.over(likely, self.size)
+        };
+        let Some(pose) = pose else { return };
+        bed.place = Some(place);
+        self.steered = true;
+        self.orbit.fly(pose, now);
     }
 
     /// Writes a picture of the bed alone, painted finely, with its legends.

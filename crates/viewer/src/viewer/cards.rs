@@ -6,7 +6,9 @@ use crate::study::table;
 use crate::theme::Palette;
 use bedswell_picture::{Field, GrainLook, GrainShade};
 use bedswell_sim::figures::{digits, force, length, probability, stress};
-use bevy_egui::egui::{Align, Align2, FontId, Label, Layout, Response, RichText, Sense, Slider, Ui, pos2, vec2};
+use bevy_egui::egui::{
+    Align, Align2, FontId, Label, Layout, Response, RichText, Sense, Slider, Ui, pos2, vec2,
+};
 
 /// Numbers of the cards.
 const GRAINS: u8 = 1;
@@ -76,9 +78,8 @@ impl Viewer {
     fn grains(&mut self, ui: &mut Ui, palette: &Palette) {
         choice(ui, &mut self.look.grains, &GrainLook::ALL);
         ui.label(RichText::new("shaded by").color(palette.quiet));
-        let words = GrainShade::ALL.map(|(shade, name)| {
-            (shade, if shade == GrainShade::Plain { "nothing" } else { name })
-        });
+        let words = GrainShade::ALL
+            .map(|(shade, name)| (shade, if shade == GrainShade::Plain { "nothing" } else { name }));
         choice(ui, &mut self.look.shade, &words);
         ui.horizontal_wrapped(|ui| {
             ui.toggle_value(&mut self.look.force_chains, "forces between grains");
@@ -95,9 +96,9 @@ impl Viewer {
         });
         ui.label(RichText::new("skin and section coloured by").color(palette.quiet));
         list(ui, &mut self.look.field, &Field::ALL.map(|field| (field, field.name())));
-        let range = Slider::new(&mut self.look.range, 0.1..=1.0).logarithmic(true).custom_formatter(|part, _| {
-            format!("{:.0} %", 100.0 * part)
-        });
+        let range = Slider::new(&mut self.look.range, 0.1..=1.0)
+            .logarithmic(true)
+            .custom_formatter(|part, _| format!("{:.0} %", 100.0 * part));
         line(ui, palette, "colours span", range);
     }
 
@@ -132,7 +133,8 @@ impl Viewer {
     fn cut(&mut self, ui: &mut Ui, palette: &Palette) {
         let on = self.look.cut.is_some();
         if ui.selectable_label(on, "cut the bed open").clicked() {
-            self.cut_on_off();
+            let now = ui.input(|input| input.time);
+            self.cut_on_off(now);
         }
         let reach = 1e3 * self.cut_reach();
         let Some(cut) = &mut self.look.cut else { return };

@@ -14,10 +14,13 @@ impl Viewer {
             .collapsible(false)
             .resizable(false)
             .show(context, |ui| {
-                Grid::new("keys").num_columns(2).spacing([24.0, 3.0]).show(ui, |ui| {
-                    for (keys, words) in HELP {
-                        ui.label(RichText::new(*keys).color(palette.accent));
-                        ui.label(*words);
+                let (left, right) = HELP.split_at(HELP.len().div_ceil(2));
+                Grid::new("keys").num_columns(4).spacing([20.0, 5.0]).show(ui, |ui| {
+                    for (number, line) in left.iter().enumerate() {
+                        for (keys, words) in std::iter::once(line).chain(right.get(number)) {
+                            ui.label(RichText::new(*keys).color(palette.accent));
+                            ui.label(*words);
+                        }
                         ui.end_row();
                     }
                 });

@@ -68,7 +68,8 @@ impl Viewer {
         let words = self.in_words(pick).join("\n");
         let galley = ui.painter().layout_no_wrap(words, FontId::proportional(12.0), palette.text);
         let (room, size) = (pane.response.rect, galley.size() + vec2(16.0, 12.0));
-        let fits = |at: f32, size: f32, end: f32| if at + 14.0 + size < end { at + 14.0 } else { at - 14.0 - size };
+        let fits =
+            |at: f32, size: f32, end: f32| if at + 14.0 + size < end { at + 14.0 } else { at - 14.0 - size };
         let corner = pos2(fits(at.x, size.x, room.right()), fits(at.y, size.y, room.bottom()));
         let sheet = Rect::from_min_size(corner, size);
         ui.painter().rect(sheet, 4.0, palette.card, Stroke::new(1.0, palette.line), StrokeKind::Inside);

@@ -6,11 +6,12 @@ use std::io::{BufRead, BufReader};
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Stdio};
 use std::time::{Duration, Instant};
+use x11rb::protocol::xproto::{ClientMessageEvent, ConnectionExt, EventMask};
 
 const PATIENCE: Duration = Duration::from_secs(120);
 
 /// The default scene, small and coarse: a few seconds.
-pub fn quick_scene() -> String {
+pub(crate) fn quick_scene() -> String {
     let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes/tree-pit.toml");
     let mut text = std::fs::read_to_string(path).unwrap();
     let changes = [
@@ -26,7 +27,7 @@ pub fn quick_scene() -> String {
 }
 
 /// A finished run below a folder.
-pub fn run_folder(below: &Path) -> PathBuf {
+pub(crate) fn run_folder(below: &Path) -> PathBuf {
     let file = below.join("scene.toml");
     std::fs::write(&file, quick_scene()).unwrap();
     let scene = read_scene(&file).unwrap();
@@ -41,15 +42,16 @@ pub fn run_folder(below: &Path) -> PathBuf {
 }
 
 /// A display of 1280 by 720 pixels with the viewer filling it.
-pub struct Desk {
+pub(crate) struct Desk {
     server: Child,
     viewer: Child,
     display: String,
+    window: u32,
 }
 
 impl Desk {
     /// Starts display and viewer, and waits for the window.
-    pub fn open(arguments: &[&OsStr]) -> Self {
+    pub(crate) fn open(arguments: &[&OsStr]) -> Self {
         let mut server = Command::new("Xvfb")
             .args(["-displayfd", "1", "-screen", "0", "1280x720x24", "-nolisten", "tcp"])
             .stdout(Stdio::piped())
@@ -65,25 +67,29 @@ impl Desk {
             .env_remove("WAYLAND_DISPLAY")
             .spawn()
             .unwrap();
-        let desk = Self { server, viewer, display };
+        let mut desk = Self { server, viewer, display, window: 0 };
         let start = Instant::now();
-        while !desk.tool(&["search", "--onlyvisible", "--name", "bedswell", "windowfocus"]) {
+        while desk.window == 0 {
             assert!(start.elapsed() < PATIENCE, "no window came up");
             std::thread::sleep(Duration::from_millis(100));
+            let found = desk.tool(&["search", "--onlyvisible", "--class", "bedswell"]);
+            desk.window = found.and_then(|found| found.lines().next()?.parse().ok()).unwrap_or(0);
         }
+        // There is no window manager to give it the keyboard.
+        desk.must(&["windowfocus", &desk.window.to_string()]);
         desk
     }
 
     /// Presses a key, such as `k` or `shift+period`.
-    pub fn key(&self, key: &str) {
+    pub(crate) fn key(&self, key: &str) {
         self.must(&["key", key]);
     }
 
-    pub fn move_to(&self, (x, y): (i32, i32)) {
+    pub(crate) fn move_to(&self, (x, y): (i32, i32)) {
         self.must(&["mousemove", &x.to_string(), &y.to_string()]);
     }
 
-    pub fn click(&self, at: (i32, i32)) {
+    pub(crate) fn click(&self, at: (i32, i32)) {
         self.move_to(at);
         self.must(&["mousedown", "1"]);
         std::thread::sleep(Duration::from_millis(150));
@@ -91,7 +97,7 @@ impl Desk {
     }
 
     /// Drags with the left button, in steps as a hand does.
-    pub fn drag(&self, from: (i32, i32), to: (i32, i32)) {
+    pub(crate) fn drag(&self, from: (i32, i32), to: (i32, i32)) {
         self.move_to(from);
         self.must(&["mousedown", "1"]);
         for step in 1..=8 {
@@ -102,7 +108,7 @@ impl Desk {
     }
 
     /// The screen once it no longer changes.
-    pub fn settled(&mut self) -> Screen {
+    pub(crate) fn settled(&mut self) -> Screen {
         let start = Instant::now();
         let mut last = self.screen();
         let mut same = 0;
@@ -117,7 +123,17 @@ impl Desk {
         last
     }
 
-    pub fn wait_until(&mut self, what: &str, mut come: impl FnMut() -> bool) {
+    /// The screen once there is something to see in an area, and it no longer changes.
+    pub(crate) fn opened(&mut self, area: Area) -> Screen {
+        let start = Instant::now();
+        while self.screen().colours(area) < 200 {
+            assert!(start.elapsed() < PATIENCE, "nothing is ever drawn");
+            std::thread::sleep(Duration::from_millis(200));
+        }
+        self.settled()
+    }
+
+    pub(crate) fn wait_until(&mut self, what: &str, mut come: impl FnMut() -> bool) {
         let start = Instant::now();
         while !come() {
             assert!(start.elapsed() < PATIENCE, "waited in vain for {what}");
@@ -127,8 +143,12 @@ impl Desk {
     }
 
     /// Closes the window as a window manager does, and gives the exit code.
-    pub fn close(&mut self) -> i32 {
-        self.must(&["search", "--onlyvisible", "--name", "bedswell", "windowquit"]);
+    pub(crate) fn close(&mut self) -> i32 {
+        let (server, _) = x11rb::connect(Some(&self.display)).unwrap();
+        let atom = |name: &[u8]| server.intern_atom(false, name).unwrap().reply().unwrap().atom;
+        let data = [atom(b"WM_DELETE_WINDOW"), 0, 0, 0, 0];
+        let message = ClientMessageEvent::new(32, self.window, atom(b"WM_PROTOCOLS"), data);
+        server.send_event(false, self.window, EventMask::NO_EVENT, message).unwrap().check().unwrap();
         let start = Instant::now();
         loop {
             if let Some(status) = self.viewer.try_wait().unwrap() {
@@ -149,17 +169,14 @@ impl Desk {
     }
 
     fn must(&self, arguments: &[&str]) {
-        assert!(self.tool(arguments), "xdotool {arguments:?} failed");
+        assert!(self.tool(arguments).is_some(), "xdotool {arguments:?} failed");
     }
 
-    fn tool(&self, arguments: &[&str]) -> bool {
-        let status = Command::new("xdotool")
-            .args(arguments)
-            .env("DISPLAY", &self.display)
-            .stdout(Stdio::null())
-            .stderr(Stdio::null())
-            .status();
-        status.expect("xdotool must be installed: see the README's set-up").success()
+    /// What the tool prints, if it succeeds.
+    fn tool(&self, arguments: &[&str]) -> Option<String> {
+        let output = Command::new("xdotool").args(arguments).env("DISPLAY", &self.display).output();
+        let output = output.expect("xdotool must be installed: see the README's set-up");
+        output.status.success().then(|| String::from_utf8_lossy(&output.stdout).into_owned())
     }
 }
 
@@ -177,15 +194,15 @@ const HEIGHT: usize = 720;
 
 /// A rectangle of the screen (pixels).
 #[derive(Clone, Copy)]
-pub struct Area {
-    pub left: i32,
-    pub top: i32,
-    pub right: i32,
-    pub bottom: i32,
+pub(crate) struct Area {
+    pub(crate) left: i32,
+    pub(crate) top: i32,
+    pub(crate) right: i32,
+    pub(crate) bottom: i32,
 }
 
 /// A screenshot: red, green, blue.
-pub struct Screen {
+pub(crate) struct Screen {
     pixels: Vec<u8>,
 }
 
@@ -200,24 +217,25 @@ impl Screen {
     }
 
     /// Share of the pixels of an area that differ from those of another screen.
-    pub fn differs(&self, other: &Self, area: Area) -> f64 {
-        let apart = |(one, other): &([u8; 3], [u8; 3])| one.iter().zip(other).any(|(a, b)| a.abs_diff(*b) > 8);
+    pub(crate) fn differs(&self, other: &Self, area: Area) -> f64 {
+        let apart =
+            |(one, other): &([u8; 3], [u8; 3])| one.iter().zip(other).any(|(a, b)| a.abs_diff(*b) > 8);
         let different = self.area(area).zip(other.area(area)).filter(apart).count();
         different as f64 / self.area(area).count() as f64
     }
 
     /// How many colours there are in an area.
-    pub fn colours(&self, area: Area) -> usize {
+    pub(crate) fn colours(&self, area: Area) -> usize {
         self.area(area).collect::<std::collections::BTreeSet<_>>().len()
     }
 
     /// How many pixels of an area have about this colour.
-    pub fn count(&self, colour: [u8; 3], area: Area) -> usize {
+    pub(crate) fn count(&self, colour: [u8; 3], area: Area) -> usize {
         self.area(area).filter(|pixel| pixel.iter().zip(&colour).all(|(a, b)| a.abs_diff(*b) < 12)).count()
     }
 
     /// Mean of all channels in an area.
-    pub fn mean(&self, area: Area) -> f64 {
+    pub(crate) fn mean(&self, area: Area) -> f64 {
         let sum: f64 = self.area(area).flatten().map(f64::from).sum();
         sum / (3.0 * self.area(area).count() as f64)
     }
