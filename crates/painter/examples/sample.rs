@@ -11,6 +11,8 @@ use std::f32::consts::TAU;
 
 /// Radius of the bead (m).
 const BEAD: f32 = 1.6e-3;
+/// Where a shape of another kind lies (m).
+const BLOB: Point = Point::new(3.4e-3, 0.9e-3, 1.2e-3);
 
 fn main() -> std::io::Result<()> {
     let mut arguments = std::env::args().skip(1);
@@ -19,7 +21,7 @@ fn main() -> std::io::Result<()> {
     let mut drawing = Drawing {
         balls: pack(600),
         rods: lattice(15, Point::zeros()),
-        meshes: vec![blob(Point::new(3.2e-3, -2.0e-3, 1.2e-3), 1.0e-3)],
+        meshes: vec![blob(BLOB, 1.0e-3)],
         cut: None,
         background: Colour::new(247, 247, 244),
     };
@@ -71,6 +73,7 @@ fn pack(count: usize) -> Vec<Ball> {
             ball.centre = ball.centre.zip_map(&half, |place, half| place.clamp(-half, half));
         }
     }
+    balls.retain(|ball| (ball.centre - BLOB).norm() > 1.1e-3 + 0.8 * ball.radius);
     balls
 }
 

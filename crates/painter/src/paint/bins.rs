@@ -12,6 +12,12 @@ pub(super) struct Bounds {
     pub(super) bottom: i32,
 }
 
+impl Bounds {
+    /// No samples at all.
+    pub(super) const NOTHING: Self =
+        Self { left: i32::MAX, right: i32::MIN, top: i32::MAX, bottom: i32::MIN };
+}
+
 /// The tiles of a picture, row by row.
 #[derive(Clone, Copy)]
 pub(super) struct Grid {
@@ -48,8 +54,8 @@ impl Grid {
     fn touched(&self, bounds: &Bounds, mut call: impl FnMut(usize)) {
         let range = |from: i32, to: i32, count: usize| {
             let (step, apron) = (STEP as i32, APRON as i32);
-            let first = (from - apron).div_euclid(step).max(0);
-            let last = (to + apron).div_euclid(step).min(count as i32 - 1);
+            let first = from.saturating_sub(apron).div_euclid(step).max(0);
+            let last = to.saturating_add(apron).div_euclid(step).min(count as i32 - 1);
             first as usize..(last + 1).max(first) as usize
         };
         let columns = range(bounds.left, bounds.right, self.across);

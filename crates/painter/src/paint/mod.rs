@@ -42,20 +42,22 @@ fn paint_with(arch: Arch, drawing: &Drawing, camera: &Camera, quality: Quality) 
     let samples = quality.samples.clamp(1, 2) as usize;
     let scene = Scene::new(drawing, camera, samples);
     let outlines = quality.outlines;
-    let patches: Vec<Vec<u8>> = (0..scene.grid.count())
-        .into_par_iter()
-        .map_init(Tile::default, |tile, place| arch.dispatch(Patch { scene: &scene, outlines, tile, place }))
-        .collect();
     let side = scene.grid.step() / samples;
-    let (width, across) = (camera.size.width as usize, scene.grid.across());
-    for (place, patch) in patches.iter().enumerate() {
-        let (left, top) = (place % across * side, place / across * side);
-        let columns = side.min(width - left);
-        for (row, strip) in patch.chunks_exact(4 * side).enumerate().take(camera.size.height as usize - top) {
-            let at = 4 * ((top + row) * width + left);
-            image.pixels[at..at + 4 * columns].copy_from_slice(&strip[..4 * columns]);
+    let (across, width) = (scene.grid.across(), camera.size.width as usize);
+    let band_bytes = (4 * width * side).max(1);
+    image.pixels.par_chunks_mut(band_bytes).enumerate().for_each(|(row, band)| {
+        let patches: Vec<Vec<u8>> = (row * across..(row + 1) * across)
+            .into_par_iter()
+            .map_init(Tile::default, |tile, place| {
+                arch.dispatch(Patch { scene: &scene, outlines, tile, place })
+            })
+            .collect();
+        for (line, pixels) in band.chunks_exact_mut(4 * width).enumerate() {
+            for (patch, pixels) in patches.iter().zip(pixels.chunks_mut(4 * side)) {
+                pixels.copy_from_slice(&patch[4 * side * line..][..pixels.len()]);
+            }
         }
-    }
+    });
     image
 }
 

@@ -31,11 +31,11 @@ impl Strip {
         }
         let mut part = [0.0, 1.0];
         let mut keep = |before: [f64; 2]| {
-            let crossing = before[0] / (before[0] - before[1]);
+            let crossing = || before[0] / (before[0] - before[1]);
             match before.map(|distance| distance > 0.0) {
                 [true, true] => part = [1.0, 0.0],
-                [true, false] => part[0] = crossing.max(part[0]),
-                [false, true] => part[1] = crossing.min(part[1]),
+                [true, false] => part[0] = crossing().max(part[0]),
+                [false, true] => part[1] = crossing().min(part[1]),
                 [false, false] => {}
             }
         };
@@ -50,8 +50,9 @@ impl Strip {
         let colours = rod.colours.map(|colour| colour.bytes());
         let at = |fraction: f64| {
             let place = ends[0] + (ends[1] - ends[0]) * fraction;
-            let half = (radius / place.z * view.focal()).max(0.5 * view.samples as f64);
-            (view.project(&place), place.z, half)
+            let closeness = 1.0 / place.z;
+            let half = (radius * closeness * view.focal()).max(0.5 * view.samples as f64);
+            (view.project_at(&place, closeness), closeness, half)
         };
         let tint = |fraction: f64| match fraction {
             0.0 => colours[0],
@@ -73,12 +74,12 @@ impl Strip {
                 std::array::from_fn(|axis| from[axis].min(to[axis]) - widest),
                 std::array::from_fn(|axis| from[axis].max(to[axis]) + widest),
             )?,
-            nearest: near.min(far) as f32,
+            nearest: ends[0].z.min(ends[1].z).max(NEAR) as f32,
             from,
-            unit: if length > 0.0 { along.map(|part| part / length) } else { [1.0, 0.0] },
+            unit: if length > 0.0 { along.map(|part| part * (1.0 / length)) } else { [1.0, 0.0] },
             length,
             half: [thick as f32, thin as f32],
-            closeness: [(1.0 / near) as f32, (1.0 / far) as f32],
+            closeness: [near as f32, far as f32],
             colours: part.map(tint),
             blunt: [part[0] > 0.0, part[1] < 1.0],
         })
@@ -138,19 +139,23 @@ impl Strip {
     }
 }
 
-/// Where a rod may be seen, found fast: most rods of a pack are hidden and need no more.
+/// Where a rod may be seen: all that is kept of rods until a tile turns out to show them.
 pub(super) struct Glimpse {
     pub(super) bounds: Bounds,
     /// Depth of its nearer end.
     pub(super) nearest: f32,
-    /// Which rod of the drawing it is.
-    pub(super) number: usize,
 }
 
 impl Glimpse {
-    /// `None` if it cannot be seen.
-    pub(super) fn new(view: &View, cut: Option<&(Seen, f64)>, rod: &Rod, number: usize) -> Option<Self> {
-        let strip = Strip::new(view, cut, rod)?;
-        Some(Self { bounds: strip.bounds, nearest: strip.nearest, number })
+    pub(super) fn new(view: &View, cut: Option<&(Seen, f64)>, rod: &Rod) -> Self {
+        Strip::new(view, cut, rod).filter(|_| is_opaque(rod)).map_or(
+            Self { bounds: Bounds::NOTHING, nearest: f32::INFINITY },
+            |strip| Self { bounds: strip.bounds, nearest: strip.nearest },
+        )
     }
+}
+
+/// Whether a rod hides what is behind it.
+pub(super) fn is_opaque(rod: &Rod) -> bool {
+    rod.colours.iter().all(|colour| colour.a == 255)
 }

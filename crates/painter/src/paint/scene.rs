@@ -1,10 +1,10 @@
 use super::ball::Sphere;
 use super::bins::{Bins, Bounds, Grid};
 use super::mesh::{self, Facet, Surface};
-use super::rod::{Glimpse, Strip};
+use super::rod::{self, Glimpse, Strip};
 use super::tile::Tile;
 use super::view::{Seen, View};
-use crate::{Camera, Drawing, Rod};
+use crate::{Camera, Drawing};
 use rayon::prelude::*;
 
 /// How many balls are painted between looks at whether the rest can be seen at all.
@@ -58,11 +58,8 @@ impl<'a> Scene<'a> {
             let of_kind = drawing.balls.par_iter().filter(|ball| (ball.colour.a == 255) == opaque);
             of_kind.filter_map(|ball| Sphere::new(&view, cut.as_ref(), ball)).collect()
         };
-        let is_opaque = |rod: &Rod| rod.colours.iter().all(|colour| colour.a == 255);
-        let solid_rods = drawing.rods.par_iter().enumerate().filter(|(_, rod)| is_opaque(rod));
-        let solid_rods =
-            solid_rods.filter_map(|(number, rod)| Glimpse::new(&view, cut.as_ref(), rod, number)).collect();
-        let clear_rods = drawing.rods.iter().filter(|rod| !is_opaque(rod));
+        let rods = drawing.rods.par_iter().map(|rod| Glimpse::new(&view, cut.as_ref(), rod)).collect();
+        let clear_rods = drawing.rods.iter().filter(|rod| !rod::is_opaque(rod));
         let clear_rods = clear_rods.filter_map(|rod| Strip::new(&view, cut.as_ref(), rod));
         let mut solid_balls = balls(true);
         solid_balls.par_sort_by(|a, b| a.nearest.total_cmp(&b.nearest));
@@ -87,7 +84,7 @@ impl<'a> Scene<'a> {
         Self {
             background: drawing.background.bytes(),
             balls: Sorted::new(&grid, solid_balls, |ball| ball.bounds),
-            rods: Sorted::new(&grid, solid_rods, |rod| rod.bounds),
+            rods: Sorted::new(&grid, rods, |rod| rod.bounds),
             facets: Sorted::new(&grid, facets, |facet| facet.bounds),
             veils: Sorted::new(&grid, veils, |veil| match veil {
                 Veil::Ball(ball) => ball.bounds,
@@ -126,17 +123,24 @@ impl<'a> Scene<'a> {
     #[inline(always)]
     fn paint_rods(&self, tile: &mut Tile, place: usize) {
         let mut farthest = tile.farthest();
-        let rods = self.rods.at(place).filter(|rod| rod.nearest <= farthest);
-        let mut rods: Vec<_> = rods.map(|rod| (rod.nearest.to_bits(), rod.number)).collect();
-        rods.sort_unstable();
-        for (place, (nearest, number)) in rods.into_iter().enumerate() {
-            if place % (8 * LOOK) == 8 * LOOK - 1 {
+        let mut order: Vec<u64> = self
+            .rods
+            .bins
+            .at(place)
+            .map(|number| (self.rods.things[number].nearest, number))
+            .filter(|(nearest, _)| *nearest <= farthest)
+            .map(|(nearest, number)| u64::from(nearest.to_bits()) << 32 | number as u64)
+            .collect();
+        order.sort_unstable();
+        for (count, key) in order.into_iter().enumerate() {
+            if count % (8 * LOOK) == 8 * LOOK - 1 {
                 farthest = tile.farthest();
             }
-            if f32::from_bits(nearest) > farthest {
+            if f32::from_bits((key >> 32) as u32) > farthest {
                 break;
             }
-            if let Some(strip) = Strip::new(&self.view, self.cut.as_ref(), &self.drawing.rods[number]) {
+            let rod = &self.drawing.rods[key as u32 as usize];
+            if let Some(strip) = Strip::new(&self.view, self.cut.as_ref(), rod) {
                 strip.scan(tile, Tile::put);
             }
         }

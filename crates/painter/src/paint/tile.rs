@@ -131,19 +131,24 @@ impl Tile {
         let near = view.samples;
         let scale = view.heights() / (BENDS[1] - BENDS[0]);
         let start = BENDS[0] / (BENDS[1] - BENDS[0]);
-        for row in near..SIDE - near {
-            let line = |row: usize, shift: usize| &self.depth[row * SIDE + shift..][..SIDE - 2 * near];
-            let (own, above, below) = (line(row, near), line(row - near, near), line(row + near, near));
-            let (left, right) = (line(row, 0), line(row, 2 * near));
-            let lit = &mut self.lit[row * SIDE + near..][..SIDE - 2 * near];
-            for at in 0..lit.len() {
+        for row in APRON..SIDE - APRON {
+            let own_place = row * SIDE + APRON;
+            let line = |place: usize| -> &[f32; STEP] {
+                self.depth[place..].first_chunk().expect("the apron is as wide as a pixel")
+            };
+            let own = line(own_place);
+            let (above, below) = (line(own_place - near * SIDE), line(own_place + near * SIDE));
+            let (left, right) = (line(own_place - near), line(own_place + near));
+            let lit: &mut [f32; STEP] =
+                self.lit[own_place..].first_chunk_mut().expect("a row has as many samples");
+            for at in 0..STEP {
                 let (upright, level) = (above[at] + below[at], left[at] + right[at]);
                 let farther = if upright > level { upright } else { level };
-                let bend = farther - 2.0 * own[at];
-                let amount = bend / own[at] * scale - start;
-                let amount = if amount > 1.0 { 1.0 } else { amount };
-                let dark = amount > 0.0 && lit[at] != FLAT;
-                lit[at] = if dark { lit[at] * (1.0 - (1.0 - OUTLINE) * amount) } else { lit[at] };
+                let amount = (farther - 2.0 * own[at]) / own[at] * scale - start;
+                let amount = if amount > 0.0 { amount } else { 0.0 };
+                let amount = if amount < 1.0 { amount } else { 1.0 };
+                let darker = lit[at] * (1.0 - (1.0 - OUTLINE) * amount);
+                lit[at] = if lit[at] == FLAT { FLAT } else { darker };
             }
         }
     }

@@ -93,7 +93,14 @@ impl View {
     /// Where a place appears (samples from the top left).
     #[inline(always)]
     pub(super) fn project(&self, seen: &Seen) -> [f64; 2] {
-        [self.half[0] + seen.x / seen.z * self.focal, self.half[1] - seen.y / seen.z * self.focal]
+        self.project_at(seen, 1.0 / seen.z)
+    }
+
+    /// The same with its reciprocal depth at hand.
+    #[inline(always)]
+    pub(super) fn project_at(&self, seen: &Seen, closeness: f64) -> [f64; 2] {
+        let scale = closeness * self.focal;
+        [self.half[0] + seen.x * scale, self.half[1] - seen.y * scale]
     }
 
     /// The samples within a rectangle; `None` if there are none.
