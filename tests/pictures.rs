@@ -122,7 +122,18 @@ fn a_still_has_its_size_and_may_have_no_background() {
     assert_eq!((width, height), (3840, 2160));
     assert!(pixels.chunks(4).all(|pixel| pixel[3] == 255), "not opaque");
 
-    let (.., pixels) = picture(&["--size", "320x180", "--transparent", "--bare", "--beads", "skin"]);
+    let (.., pixels) = picture(&[
+        "--size",
+        "320x180",
+        "--transparent",
+        "--bare",
+        "--beads",
+        "skin",
+        "--grains",
+        "hidden",
+        "--look-at",
+        "bead-0",
+    ]);
     assert_eq!(pixels[3], 0, "the corner shows a background");
     let middle = 4 * (90 * 320 + 160);
     assert_eq!(pixels[middle + 3], 255, "the bead is not solid");

@@ -59,7 +59,7 @@ fn a_run_is_turned_cut_scrubbed_picked_and_photographed() {
     assert!(scrubbed.differs(&before, BED) > 0.01, "another time looks the same");
     assert!(scrubbed.differs(&before, HEAD) > 0.005, "the head tells the same time");
     assert!(scrubbed.differs(&before, COURSE) > 0.001, "the cursors stayed");
-    desk.key("shift+period");
+    desk.key("End");
     assert_eq!(desk.settled().differs(&before, HEAD), 0.0, "the last increment is not where it was");
 
     let unpicked = desk.settled();
