@@ -52,7 +52,7 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
 
 fn stage() -> Stage {
     let bead = Bounds { centre: BEAD.0, radius: BEAD.1 };
-    let spot = Bounds { centre: [BEAD.0[0] + 2e-3, BEAD.0[1], BEAD.0[2]], radius: 6e-4 };
+    let spot = Bounds { centre: [BEAD.0[0] + 2e-3, BEAD.0[1], BEAD.0[2]], radius: 1.2e-3 };
     Stage {
         bed: Bounds { centre: [0.0; 3], radius: HALF * 3_f32.sqrt() },
         beads: vec![bead],
@@ -99,7 +99,7 @@ fn drawing(grains: &[Ball], swollen: f32, ghosts: bool) -> Drawing {
 
 /// Bonds of a cubic lattice in a ball, coloured along x.
 fn bonds(middle: Point, radius: f32) -> Vec<Rod> {
-    let half = 14_i32;
+    let half = 8_i32;
     let step = radius / half as f32;
     let place = |x: i32, y: i32, z: i32| Point::new(x as f32, y as f32, z as f32) * step;
     let colour = |x: i32| {

@@ -7,7 +7,8 @@ use std::path::Path;
 pub enum Format {
     /// H.264 in an MP4 file, sizes rounded down to even.
     Mp4,
-    /// An animated GIF of at most 640 pixels and 15 frames per second.
+    /// An animated GIF of at most 640 pixels and 15 frames per second, with 255 colours or,
+    /// where much moves, fewer.
     Gif,
     /// A folder of PNG pictures, `frame-0001.png` and so on.
     Frames,

@@ -6,11 +6,13 @@ use crate::part::Part;
 use ::gif::{DisposalMethod, Encoder, EncodingError, Frame, Repeat};
 use bedswell_painter::{Image, Size};
 use std::borrow::Cow;
+use std::io::Write;
 use std::path::Path;
 
 /// An animated GIF that repeats, with one palette for all frames and without dithering.
 ///
-/// The palette needs all frames, so they wait in memory as PNG.
+/// The palette needs all frames, so they wait in memory as PNG. Films in which nearly
+/// everything moves are written with fewer colours, so that they fit a mail.
 pub(super) struct Gif {
     part: Part,
     stored: Stored,
@@ -19,8 +21,20 @@ pub(super) struct Gif {
     given: u32,
 }
 
-/// Colours of the palette beside the one that stands for "as before".
-const COLOURS: usize = 255;
+/// How much is kept of the pictures.
+#[derive(Clone, Copy)]
+struct Care {
+    /// Colours of the palette beside the one that stands for "as before".
+    colours: usize,
+    /// Levels by which a pixel that stays may differ from what it should be.
+    close: u8,
+}
+
+/// From the best downwards; the first that gives a small file is taken.
+const CARES: [Care; 3] =
+    [Care { colours: 255, close: 6 }, Care { colours: 127, close: 8 }, Care { colours: 63, close: 12 }];
+/// Bytes that a second of film may take.
+const SMALL: usize = 900_000;
 
 impl Gif {
     pub(super) fn create(path: &Path, stored: Stored) -> Result<Self, ClipError> {
@@ -61,32 +75,52 @@ impl Sink for Gif {
         if self.kept.is_empty() {
             return Err(ClipError::Empty { path });
         }
-        self.write().map_err(|error| match error {
-            EncodingError::Io(cause) => ClipError::Write { path: path.clone(), cause },
-            other => ClipError::encoder(&path, other),
-        })?;
-        self.part.commit().map_err(ClipError::write(&path))
+        let small = SMALL * self.given as usize / self.stored.given_per_second as usize;
+        let mut file = Vec::new();
+        for care in CARES {
+            file = self.encode(care).map_err(|error| ClipError::encoder(&path, error))?;
+            if file.len() <= small {
+                break;
+            }
+        }
+        self.part.write_all(&file).and_then(|()| self.part.commit()).map_err(ClipError::write(&path))
     }
 }
 
 impl Gif {
-    fn write(&mut self) -> Result<(), EncodingError> {
+    fn encode(&self, care: Care) -> Result<Vec<u8>, EncodingError> {
         let size = self.stored.size;
-        let palette = Palette::new(&self.histogram, COLOURS);
+        let palette = Palette::new(&self.histogram, care.colours);
         let delays: Vec<u16> = (0..self.kept.len()).map(|kept| self.delay(kept)).collect();
         // One entry beyond the colours, for "as before".
         let table = [palette.colours().concat(), vec![0; 3]].concat();
-        let mut encoder = Encoder::new(&mut self.part, size.width as u16, size.height as u16, &table)?;
+        let mut file = Vec::new();
+        let mut encoder = Encoder::new(&mut file, size.width as u16, size.height as u16, &table)?;
         encoder.set_repeat(Repeat::Infinite)?;
         let mut shown = Vec::new();
         for (png, delay) in self.kept.iter().zip(delays) {
-            let next = palette.indices(&frames::read_png(png).map_err(std::io::Error::other)?);
+            let pixels = frames::read_png(png).map_err(std::io::Error::other)?;
+            let mut next = palette.indices(&pixels);
+            keep_close(&mut next, &shown, &pixels, palette.colours(), care.close);
             let mut frame = change(size, &shown, &next, palette.colours().len() as u8);
             frame.delay = delay;
             encoder.write_lzw_pre_encoded_frame(&frame)?;
             shown = next;
         }
-        Ok(())
+        drop(encoder);
+        Ok(file)
+    }
+}
+
+/// Lets pixels stay as they are shown where that comes close to what they should be: much
+/// of a picture that moves little is then not written again. The error does not add up,
+/// as it is against the true picture each time.
+fn keep_close(next: &mut [u8], shown: &[u8], pixels: &[u8], colours: &[[u8; 3]], close: u8) {
+    for ((next, &shown), pixel) in next.iter_mut().zip(shown).zip(pixels.as_chunks::<3>().0) {
+        let colour = colours[usize::from(shown)];
+        if (0..3).all(|channel| colour[channel].abs_diff(pixel[channel]) <= close) {
+            *next = shown;
+        }
     }
 }
 
@@ -150,5 +184,31 @@ impl Area {
     fn rows<'a>(&self, pixels: &'a [u8], width: usize) -> impl Iterator<Item = &'a [u8]> {
         let columns = self.left..self.left + self.width;
         pixels.chunks_exact(width).skip(self.top).take(self.height).map(move |row| &row[columns.clone()])
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn pixels_stay_only_while_they_come_close() {
+        let colours = [[100, 100, 100], [106, 100, 100], [120, 100, 100]];
+        let pixels: Vec<u8> = [[106, 100, 100], [107, 100, 100], [120, 100, 100]].concat();
+        let (shown, mut next) = ([0, 0, 0], [1, 1, 2]);
+        keep_close(&mut next, &shown, &pixels, &colours, 6);
+        assert_eq!(next, [0, 1, 2]);
+    }
+
+    #[test]
+    fn only_the_rectangle_that_differs_is_written() {
+        let size = Size { width: 5, height: 4 };
+        let shown = [0; 20];
+        let mut next = shown;
+        (next[6], next[13]) = (1, 2);
+        let frame = change(size, &shown, &next, 3);
+        assert_eq!((frame.left, frame.top, frame.width, frame.height), (1, 1, 3, 2));
+        let same = change(size, &shown, &shown, 3);
+        assert_eq!((same.width, same.height), (1, 1));
     }
 }

@@ -24,7 +24,7 @@ pub(super) struct Mp4 {
 }
 
 /// Step of the quantiser, 0 (finest) to 51: text and thin lines stay clean.
-const QUANTISER: u8 = 24;
+const QUANTISER: u8 = 27;
 /// Seconds between pictures that stand on their own, to which a player can jump.
 const JUMP: u32 = 2;
 

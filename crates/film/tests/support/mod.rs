@@ -120,7 +120,7 @@ impl Mp4File {
             }
             rest = after;
         }
-        pictures.extend(decoder.flush_remaining().unwrap().iter().map(|picture| to_image(picture)));
+        pictures.extend(decoder.flush_remaining().unwrap().iter().map(to_image));
         pictures
     }
 }
