@@ -97,7 +97,11 @@ mod tests {
             Point::from_fn(|axis, _| (step * (axis + 1) as f32 * number as f32).sin())
         };
         let tint = |number: u32| {
-            Colour::new((37 * number) as u8, 90, 200).with_alpha(if number % 3 == 0 { 80 } else { 255 })
+            Colour::new((37 * number) as u8, 90, 200).with_alpha(if number.is_multiple_of(3) {
+                80
+            } else {
+                255
+            })
         };
         let drawing = Drawing {
             balls: (0..90)

@@ -76,7 +76,7 @@ impl Strip {
             )?,
             nearest: ends[0].z.min(ends[1].z).max(NEAR) as f32,
             from,
-            unit: if length > 0.0 { along.map(|part| part * (1.0 / length)) } else { [1.0, 0.0] },
+            unit: if length > 0.0 { along.map(|part| part / length) } else { [1.0, 0.0] },
             length,
             half: [thick as f32, thin as f32],
             closeness: [near as f32, far as f32],
