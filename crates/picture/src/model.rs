@@ -1,5 +1,6 @@
 use bedswell_gel::{Lattice, Locator, MaterialPoint};
 use std::collections::HashMap;
+use std::sync::OnceLock;
 
 /// What all beads with the same number of voxels across have in common.
 pub(crate) struct BeadModel {
@@ -14,8 +15,13 @@ pub(crate) struct BeadModel {
     pub(crate) skin: Vec<MaterialPoint>,
     /// Triangles of the skin, seen anticlockwise from outside.
     pub(crate) triangles: Vec<[u32; 3]>,
-    /// Places in the ball half a voxel apart, for sections.
-    pub(crate) grid: Vec<MaterialPoint>,
+    grid: OnceLock<Grid>,
+}
+
+/// Places in the ball half a voxel apart, for sections.
+#[derive(Default)]
+pub(crate) struct Grid {
+    pub(crate) points: Vec<MaterialPoint>,
     /// Distance of each from the centre over the ball's radius, when dry.
     pub(crate) radii: Vec<f32>,
     /// Cells between eight places each, x fastest, with the voxel that carries their middle.
@@ -34,23 +40,28 @@ impl BeadModel {
         let skin = directions.iter().map(|d| locator.find(d.map(|c| c * half))).collect();
         let gel: Vec<f64> = (0..lattice.voxel_count()).map(|voxel| lattice.filled(voxel)).collect();
         let all: f64 = gel.iter().sum();
-        let mut model = Self {
+        Self {
             bonds: lattice.bonds().iter().map(|&(low, high, _)| [low as u32, high as u32]).collect(),
             corners: (0..lattice.voxel_count()).map(|v| lattice.corners_of(v).map(|n| n as u32)).collect(),
             gel: gel.into_iter().map(|gel| (gel / all) as f32).collect(),
             skin,
             triangles,
-            grid: Vec::new(),
-            radii: Vec::new(),
-            cells: Vec::new(),
+            grid: OnceLock::new(),
             lattice,
-        };
-        model.fill_grid(&locator);
-        model
+        }
     }
 
-    fn fill_grid(&mut self, locator: &Locator) {
-        let across = self.lattice.across() as i32;
+    /// Made when a section is first asked for.
+    pub(crate) fn grid(&self) -> &Grid {
+        self.grid.get_or_init(|| Grid::new(&self.lattice))
+    }
+}
+
+impl Grid {
+    fn new(lattice: &Lattice) -> Self {
+        let locator = Locator::new(lattice);
+        let mut grid = Self::default();
+        let across = lattice.across() as i32;
         let place = |[x, y, z]: [i32; 3]| [x, y, z].map(|c| 0.5 * f64::from(c - across));
         let radius =
             |at: [i32; 3]| place(at).iter().map(|c| c * c).sum::<f64>().sqrt() * 2.0 / f64::from(across);
@@ -66,16 +77,17 @@ impl BeadModel {
                     }
                     let corners = corners.map(|corner| {
                         *index.entry(corner).or_insert_with(|| {
-                            self.grid.push(locator.find(place(corner)));
-                            self.radii.push(radius(corner) as f32);
-                            self.grid.len() as u32 - 1
+                            grid.points.push(locator.find(place(corner)));
+                            grid.radii.push(radius(corner) as f32);
+                            grid.points.len() as u32 - 1
                         })
                     });
                     let middle = locator.find(place([x, y, z]).map(|c| c + 0.25));
-                    self.cells.push((middle.voxel, corners));
+                    grid.cells.push((middle.voxel, corners));
                 }
             }
         }
+        grid
     }
 }
 

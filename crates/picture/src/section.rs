@@ -29,6 +29,7 @@ impl Corner {
 /// The face that a plane cuts through a bead, coloured by a field. `None` where it misses.
 pub(crate) fn section(bead: &BeadView, plane: &Plane, field: Field, scale: &Scale) -> Option<Mesh> {
     let model = &bead.model;
+    let grid = model.grid();
     let values = bead.values(field);
     let above: Vec<f32> = bead.nodes.iter().map(|node| plane.normal.dot(node) - plane.offset).collect();
     let crossed: Vec<bool> = (model.corners.iter())
@@ -50,16 +51,16 @@ pub(crate) fn section(bead: &BeadView, plane: &Plane, field: Field, scale: &Scal
         light: Light::Flat,
         cut: false,
     };
-    for (voxel, cell) in &model.cells {
+    for (voxel, cell) in &grid.cells {
         if !crossed[*voxel as usize] {
             continue;
         }
         let corners = cell.map(|point| {
             *found.entry(point).or_insert_with(|| {
-                let material = &model.grid[point as usize];
+                let material = &grid.points[point as usize];
                 let place = bead.place(material);
                 let value = average(&values, material);
-                let corner = Corner { place, radius: model.radii[point as usize], value };
+                let corner = Corner { place, radius: grid.radii[point as usize], value };
                 (corner, plane.normal.dot(&place) - plane.offset)
             })
         });

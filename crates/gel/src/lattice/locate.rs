@@ -35,7 +35,9 @@ impl Locator {
     /// ball or just outside.
     pub fn find(&self, place: [f64; 3]) -> MaterialPoint {
         let place = place.map(|c| c + self.half);
-        let voxel = host(place, |voxel| self.voxel_at.contains_key(voxel));
+        let around = place.map(|c| c as u16);
+        let within = place.iter().all(|c| *c >= 0.0) && self.voxel_at.contains_key(&around);
+        let voxel = if within { around } else { host(place, |voxel| self.voxel_at.contains_key(voxel)) };
         let nodes = combination(place, voxel, &self.node_at);
         MaterialPoint {
             voxel: self.voxel_at[&voxel],
