@@ -12,7 +12,7 @@ pub fn encode_png(image: &Image) -> Vec<u8> {
     let mut encoder = Encoder::new(&mut file, image.size.width, image.size.height);
     encoder.set_color(ColorType::Rgba);
     encoder.set_depth(BitDepth::Eight);
-    encoder.set_compression(Compression::Balanced);
+    encoder.set_compression(Compression::Fast);
     encoder.set_source_srgb(SrgbRenderingIntent::Perceptual);
     encoder
         .write_header()
