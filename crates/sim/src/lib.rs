@@ -21,7 +21,7 @@ pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
     BeadAmount, Beads, Bed, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
-    SoilGrading, Strength, Water, read_scene,
+    SoilGrading, Strength, Water, nearest_word, read_scene,
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{

@@ -1,8 +1,8 @@
 //! Typed reading of TOML tables, with errors that say where and what to do.
 
 use super::length::parse_length;
-use super::word::nearest;
 use super::{Place, ShotError, Word};
+use bedswell_sim::nearest_word;
 use std::ops::{Range, RangeInclusive};
 use std::path::Path;
 use std::sync::Arc;
@@ -66,7 +66,7 @@ impl<'t> Section<'t> {
         let Some(key) = self.table.keys().find(|key| !known.contains(&key.get_ref().as_ref())) else {
             return Ok(());
         };
-        let advice = match nearest(key.get_ref(), known) {
+        let advice = match nearest_word(key.get_ref(), known) {
             Some(near) => format!("did you mean `{}`?", self.dotted(near)),
             None => format!("the keys known here are {}", known.join(", ")),
         };

@@ -1,4 +1,5 @@
 use super::{Place, ShotError};
+use bedswell_sim::nearest_word;
 use std::fmt;
 
 /// A word of a shot list whose meaning is settled by whoever draws, with its line for the
@@ -23,8 +24,8 @@ impl Word {
         let found = known.iter().find(|(word, _)| *word == self.text).map(|(_, meaning)| meaning.clone());
         found.ok_or_else(|| {
             let words: Vec<&str> = known.iter().map(|&(word, _)| word).collect();
-            let guess =
-                nearest(&self.text, &words).map_or(String::new(), |word| format!(" did you mean {word:?}?"));
+            let guess = nearest_word(&self.text, &words)
+                .map_or(String::new(), |word| format!(" did you mean {word:?}?"));
             let words: Vec<String> = words.iter().map(|word| format!("{word:?}")).collect();
             self.refuse(format!("not known;{guess} choose one of {}", words.join(", ")))
         })
@@ -45,29 +46,6 @@ impl fmt::Display for Word {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         f.write_str(&self.text)
     }
-}
-
-/// The known word that a slip of the pen most likely meant.
-pub(super) fn nearest<'k>(written: &str, known: &[&'k str]) -> Option<&'k str> {
-    let (distance, word) = known.iter().map(|word| (edits(written, word), *word)).min()?;
-    (distance <= 1 + written.len() / 4).then_some(word)
-}
-
-/// Insertions, deletions and replacements that turn one word into the other
-/// (Levenshtein 1966).
-fn edits(from: &str, to: &str) -> usize {
-    let to: Vec<char> = to.chars().collect();
-    let mut row: Vec<usize> = (0..=to.len()).collect();
-    for (i, a) in from.chars().enumerate() {
-        let mut diagonal = row[0];
-        row[0] = i + 1;
-        for (j, &b) in to.iter().enumerate() {
-            let replaced = diagonal + usize::from(a != b);
-            diagonal = row[j + 1];
-            row[j + 1] = replaced.min(row[j] + 1).min(diagonal + 1);
-        }
-    }
-    row[to.len()]
 }
 
 #[cfg(test)]

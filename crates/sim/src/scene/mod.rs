@@ -20,4 +20,5 @@ pub use write::SPHERES_FILE;
 
 pub(crate) use raw::{Node, Value, read_document};
 pub(crate) use read::scene_from;
+pub use section::nearest_word;
 pub(crate) use section::{Entry, Section, refuse_unknown};

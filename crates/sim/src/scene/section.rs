@@ -58,7 +58,7 @@ pub(crate) fn refuse_unknown(prefix: &str, table: &Table, known: &[&str]) -> Res
         Some((key, node)) => Err(SceneError::UnknownKey {
             place: node.place.clone(),
             key: format!("{prefix}{key}"),
-            suggestion: nearest(key, known).map(|near| format!("{prefix}{near}")),
+            suggestion: nearest_word(key, known).map(|near| format!("{prefix}{near}")),
             known: known.iter().map(|&key| key.to_owned()).collect(),
         }),
     }
@@ -159,8 +159,8 @@ impl<'a> Entry<'a> {
     }
 }
 
-/// The known key that a slip of the pen most likely meant.
-fn nearest<'k>(written: &str, known: &[&'k str]) -> Option<&'k str> {
+/// The known word that a slip of the pen most likely meant.
+pub fn nearest_word<'k>(written: &str, known: &[&'k str]) -> Option<&'k str> {
     let (distance, key) = known.iter().map(|key| (edits(written, key), *key)).min()?;
     (distance <= 1 + written.len() / 4).then_some(key)
 }
@@ -188,9 +188,9 @@ mod tests {
 
     #[test]
     fn slips_of_the_pen_find_their_key() {
-        assert_eq!(nearest("porosty", &["grains", "porosity"]), Some("porosity"));
-        assert_eq!(nearest("grain", &["grains", "porosity"]), Some("grains"));
-        assert_eq!(nearest("wavelength", &["grains", "porosity"]), None);
+        assert_eq!(nearest_word("porosty", &["grains", "porosity"]), Some("porosity"));
+        assert_eq!(nearest_word("grain", &["grains", "porosity"]), Some("grains"));
+        assert_eq!(nearest_word("wavelength", &["grains", "porosity"]), None);
         assert_eq!(edits("kitten", "sitting"), 3);
     }
 }
