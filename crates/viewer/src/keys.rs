@@ -150,8 +150,8 @@ mod tests {
     #[test]
     fn keys_act_in_the_order_in_which_they_were_pressed() {
         let keys = [Key::Escape, Key::F1, Key::Comma];
-        let input =
-            InputState { events: keys.map(|k| key(k, Modifiers::NONE)).into(), ..InputState::default() };
+        let mut input = InputState::default();
+        input.events = keys.map(|k| key(k, Modifiers::NONE)).into();
         assert_eq!(pressed(&input), [Action::Leave, Action::Help, Action::Step(-1)]);
     }
 

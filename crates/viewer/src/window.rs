@@ -1,10 +1,10 @@
 use crate::args::DrawnBy;
 use crate::driver::{Driver, NoWindow};
 use crate::gpu;
-use crate::pane::Easel;
+use crate::pane::{Easel, Panels};
 use crate::picture_file::keep;
 use crate::viewer::Viewer;
-use bedswell_painter::{Camera, Size};
+use bedswell_painter::Size;
 use bevy::asset::RenderAssetUsages;
 use bevy::camera::CameraMainTextureUsages;
 use bevy::core_pipeline::tonemapping::{DebandDither, Tonemapping};
@@ -17,8 +17,8 @@ use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
 use bevy::winit::{UpdateMode, WinitSettings};
 use bevy_egui::egui::{Event, Modifiers, TextureId};
 use bevy_egui::{
-    EguiContexts, EguiInput, EguiPlugin, EguiPreUpdateSet, EguiPrimaryContextPass, EguiTextureHandle,
-    EguiUserTextures,
+    EguiContext, EguiContexts, EguiInput, EguiPlugin, EguiPostUpdateSet, EguiPreUpdateSet,
+    EguiPrimaryContextPass, EguiRenderOutput, EguiTextureHandle, EguiUserTextures,
 };
 use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
@@ -59,10 +59,13 @@ pub(crate) fn open(
     if bevy_draws {
         gpu::plugin(&mut app);
         app.add_systems(Startup, aim.after(set_up))
-            .add_systems(PostUpdate, show_bevy.after(bevy_egui::EguiPostUpdateSet::EndPass));
+            .add_systems(PostUpdate, show_bevy.after(EguiPostUpdateSet::EndPass));
     } else {
         gpu::inset_plugin(&mut app);
-        app.add_systems(PostUpdate, show_painter.after(bevy_egui::EguiPostUpdateSet::EndPass));
+        app.add_systems(
+            PostUpdate,
+            show_painter.after(EguiPostUpdateSet::ProcessOutput).before(EguiPostUpdateSet::PostProcessOutput),
+        );
     }
     Ok(app.run())
 }
@@ -122,7 +125,9 @@ fn set_up(
     mut picture: ResMut<Picture>,
 ) {
     let usages = CameraMainTextureUsages::default().with(TextureUsages::COPY_DST);
-    commands.spawn((Camera2d, Tonemapping::None, DebandDither::Disabled, Msaa::Off, usages));
+    // Panels that are spared stay from the frame before.
+    let camera = Camera { clear_color: ClearColorConfig::None, ..default() };
+    commands.spawn((Camera2d, camera, Tonemapping::None, DebandDither::Disabled, Msaa::Off, usages));
     picture.handle = images.add(gpu::target(1, 1));
     picture.id = Some(textures.add_image(EguiTextureHandle::Strong(picture.handle.clone())));
 }
@@ -187,23 +192,26 @@ fn shoot(commands: &mut Commands, folder: PathBuf) {
 fn show_painter(
     mut viewer: ResMut<Viewer>,
     painted: Option<Res<PaintedBy>>,
-    mut contexts: EguiContexts,
+    context: Single<&mut EguiContext>,
+    mut output: Single<&mut EguiRenderOutput>,
+    mut panels: Local<Panels>,
     picture: Res<Picture>,
     mut images: ResMut<Assets<Image>>,
     mut commands: Commands,
-) -> Result {
+) {
     let Some(painted) = painted else {
-        let context = contexts.ctx_mut()?.clone();
+        let context = context.into_inner().get_mut().clone();
         commands.insert_resource(PaintedBy(Easel::new(move || context.request_repaint())));
-        return Ok(());
+        return;
     };
     let asked = viewer.take_view();
+    panels.spare(&mut output, asked.is_some() && !viewer.covers_bed());
     // Panels and picture appear together unless the painter is slow.
-    let wait = if asked.is_some() { PATIENCE } else { Duration::ZERO };
-    if let Some(view) = asked {
-        painted.0.show(view);
-    }
-    let Some(painting) = painted.0.take(wait) else { return Ok(()) };
+    let painting = match asked {
+        Some(view) => painted.0.show(view, PATIENCE),
+        None => painted.0.take(),
+    };
+    let Some(painting) = painting else { return };
     let size =
         Extent3d { width: painting.size.width, height: painting.size.height, depth_or_array_layers: 1 };
     let (dimension, format) = (TextureDimension::D2, TextureFormat::Rgba8UnormSrgb);
@@ -213,7 +221,6 @@ fn show_painter(
     let [x, y] = viewer.corner();
     commands.insert_resource(gpu::Inset { image: picture.handle.clone(), corner: UVec2::new(x, y) });
     viewer.count_picture();
-    Ok(())
 }
 
 /// Bevy's camera on the bed.
@@ -226,11 +233,11 @@ fn show_bevy(
     mut viewer: ResMut<Viewer>,
     mut picture: ResMut<Picture>,
     mut images: ResMut<Assets<Image>>,
-    mut camera: Single<&mut bevy::camera::Camera, With<Camera3d>>,
+    mut camera: Single<&mut Camera, With<Camera3d>>,
     mut commands: Commands,
 ) {
     let Some(view) = viewer.take_view() else { return };
-    let fine = gpu::enlarged(&Camera::new(&view.pose, view.size));
+    let fine = gpu::enlarged(&bedswell_painter::Camera::new(&view.pose, view.size));
     let Size { width, height } = fine.size;
     if images.get(&picture.handle).is_none_or(|image| (image.width(), image.height()) != (width, height)) {
         let mut image = gpu::target(width, height);

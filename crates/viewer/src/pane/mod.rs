@@ -3,10 +3,12 @@
 mod easel;
 mod orbit;
 mod overlay;
+mod panels;
 
 pub(crate) use easel::{Easel, View};
 pub(crate) use orbit::Orbit;
 pub(crate) use overlay::{draw as draw_overlay, ink};
+pub(crate) use panels::Panels;
 
 use bedswell_painter::Size;
 use bevy_egui::egui::{Color32, Rect};
@@ -26,7 +28,7 @@ pub(crate) struct Pane {
 }
 
 impl Pane {
-    /// Fills what is left of the window with the newest picture.
+    /// Fills what is left of the window with a picture; without, what lies below shows.
     pub(crate) fn show(ui: &mut Ui, picture: Option<TextureId>) -> Self {
         let pixels_per_point = ui.ctx().pixels_per_point();
         let points = ui.available_size();
@@ -72,11 +74,6 @@ impl Pane {
     pub(crate) fn pixel_corner(&self) -> [u32; 2] {
         let corner = self.response.rect.min * self.pixels_per_point;
         [corner.x.round() as u32, corner.y.round() as u32]
-    }
-
-    /// The place in the window of a pixel of the pane.
-    pub(crate) fn point(&self, [x, y]: [f32; 2]) -> bevy_egui::egui::Pos2 {
-        self.response.rect.min + vec2(x, y) / self.pixels_per_point
     }
 
     /// The pixel of the pane under a place in the window.

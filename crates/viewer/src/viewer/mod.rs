@@ -158,6 +158,10 @@ impl Viewer {
             self.act(action, context);
         }
         self.move_on(context);
+        if self.measure.turn(context) {
+            self.steered = true;
+            self.orbit.turn(1.5, 0.0);
+        }
         self.dress(context);
         let palette = Palette::of(self.look.theme);
         let whole = UiBuilder::new().layer_id(LayerId::background()).max_rect(context.viewport_rect());
@@ -175,11 +179,7 @@ impl Viewer {
         });
         self.scene(&mut ui, &palette, picture);
         self.show_help(context, &palette);
-        if self.measure.turn(context) {
-            self.orbit.turn(1.5, 0.0);
-        }
         self.done |= self.measure.done();
-        self.ask(context);
     }
 
     /// Gives the window its theme and text size.

@@ -1,11 +1,9 @@
 use super::Viewer;
 use crate::pane::{Pane, View, draw_overlay, ink};
 use crate::theme::Palette;
-use bedswell_painter::{Camera, Overlay};
+use bedswell_painter::{Camera, Item, Overlay};
 use bedswell_picture::{Pick, Words, annotate};
-use bevy_egui::egui::{
-    Align2, CentralPanel, Context, FontId, Rect, Stroke, StrokeKind, TextureId, Ui, pos2, vec2,
-};
+use bevy_egui::egui::{Align2, CentralPanel, FontId, Rect, Stroke, StrokeKind, TextureId, Ui, pos2, vec2};
 
 impl Viewer {
     /// The bed in space, and what the pointer does there.
@@ -25,21 +23,29 @@ impl Viewer {
             }
             let camera = Camera::new(&self.orbit.pose(), self.size);
             self.point(&pane, &camera);
-            if let Some(overlay) = self.overlay(&camera) {
-                draw_overlay(&overlay, ui.painter(), pane.response.rect.min, pane.pixels_per_point);
-            } else {
+            let overlay = self.overlay(&camera);
+            if overlay.is_none() {
+                let ground = ink(self.look.theme.background());
+                ui.painter().rect_filled(pane.response.rect, 0.0, ground);
                 let words = if self.live.is_some() { "packing the grains …" } else { "choose a pack" };
                 let (middle, font) = (pane.response.rect.center(), FontId::proportional(15.0));
                 ui.painter().text(middle, Align2::CENTER_CENTER, words, font, palette.quiet);
+            } else if picture.is_some() {
+                let overlay = overlay.as_ref().into_iter();
+                overlay.for_each(|o| {
+                    draw_overlay(o, ui.painter(), pane.response.rect.min, pane.pixels_per_point)
+                });
             }
             self.show_numbers(ui, palette, &pane);
-            if let Some(held) = &self.held
-                && let Some((at, _)) = camera.project(&held.place)
-            {
-                let stroke = Stroke::new(1.5, ink(self.look.theme.accent()));
-                ui.painter().circle_stroke(pane.point([at.x, at.y]), 7.0, stroke);
-            }
+            self.ask(overlay);
         });
+    }
+
+    /// Whether the window has something over the bed that the picture itself does not hold.
+    pub(crate) fn covers_bed(&self) -> bool {
+        self.under_pointer.is_some()
+            || self.help
+            || self.bed.as_ref().is_none_or(|bed| bed.drawing().is_none())
     }
 
     /// Finds what lies under the pointer; a click holds it.
@@ -76,22 +82,31 @@ impl Viewer {
         ui.painter().galley(corner + vec2(8.0, 6.0), galley, palette.text);
     }
 
-    /// Legends, scale bar, axes and the mark of a place, over the bed.
+    /// Legends, scale bar, axes and marks over the bed, once there is one.
     pub(super) fn overlay(&self, camera: &Camera) -> Option<Overlay> {
         let bed = self.bed.as_ref()?;
         let mark = bed.place.and_then(|place| bed.places.get(place)).copied();
         let words = Words { legend: true, bearings: true, mark, ..Words::default() };
-        Some(annotate(&bed.run, bed.frame()?, &self.look, camera, &words))
+        let mut overlay = annotate(&bed.run, bed.frame()?, &self.look, camera, &words);
+        if let Some((at, _)) = self.held.and_then(|held| camera.project(&held.place)) {
+            let colour = self.look.theme.accent();
+            overlay.items.push(Item::Ring { at: at.into(), radius: 7.0, width: 1.5, colour });
+        }
+        Some(overlay)
     }
 
     /// Asks for a picture where something changed.
-    pub(super) fn ask(&mut self, context: &Context) {
+    fn ask(&mut self, overlay: Option<Overlay>) {
         let Some(drawing) = self.bed.as_ref().and_then(|bed| bed.drawing()) else { return };
-        let view = View { drawing: drawing.clone(), pose: self.orbit.pose(), size: self.size };
+        let view = View {
+            drawing: drawing.clone(),
+            pose: self.orbit.pose(),
+            size: self.size,
+            overlay: overlay.unwrap_or_default(),
+        };
         if self.shown.as_ref() != Some(&view) {
             self.shown = Some(view.clone());
             self.asked = Some(view);
-            context.request_repaint_after(std::time::Duration::from_millis(500));
         }
     }
 }
