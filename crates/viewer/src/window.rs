@@ -11,14 +11,16 @@ use bevy::core_pipeline::tonemapping::{DebandDither, Tonemapping};
 use bevy::image::ImageSampler;
 use bevy::log::LogPlugin;
 use bevy::prelude::*;
+use bevy::render::RenderPlugin;
 use bevy::render::render_resource::{Extent3d, TextureDimension, TextureFormat, TextureUsages};
 use bevy::render::view::screenshot::{Screenshot, ScreenshotCaptured};
 use bevy::window::{PresentMode, PrimaryWindow, WindowResolution};
 use bevy::winit::{UpdateMode, WinitSettings};
 use bevy_egui::egui::{Event, Modifiers, TextureId};
 use bevy_egui::{
-    EguiContext, EguiContexts, EguiInput, EguiPlugin, EguiPostUpdateSet, EguiPreUpdateSet,
-    EguiPrimaryContextPass, EguiRenderOutput, EguiTextureHandle, EguiUserTextures,
+    EguiContext, EguiContexts, EguiGlobalSettings, EguiInput, EguiPlugin, EguiPostUpdateSet,
+    EguiPreUpdateSet, EguiPrimaryContextPass, EguiRenderOutput, EguiTextureHandle, EguiUserTextures,
+    PrimaryEguiContext,
 };
 use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
@@ -84,6 +86,8 @@ fn start(size: Size, driver: Driver, title: String) -> Result<App, NoWindow> {
     };
     let plugins = DefaultPlugins
         .set(WindowPlugin { primary_window: Some(window), ..default() })
+        // A window that rests would not show what is compiled later.
+        .set(RenderPlugin { synchronous_pipeline_compilation: true, ..default() })
         .set(LogPlugin { filter: "error".to_owned(), ..default() });
     let hook = std::panic::take_hook();
     std::panic::set_hook(Box::new(|_| {}));
@@ -123,11 +127,22 @@ fn set_up(
     mut images: ResMut<Assets<Image>>,
     mut textures: ResMut<EguiUserTextures>,
     mut picture: ResMut<Picture>,
+    mut panels: ResMut<EguiGlobalSettings>,
 ) {
+    // Panels belong to the window's camera, not to the bed's.
+    panels.auto_create_primary_context = false;
     let usages = CameraMainTextureUsages::default().with(TextureUsages::COPY_DST);
     // Panels that are spared stay from the frame before.
     let camera = Camera { clear_color: ClearColorConfig::None, ..default() };
-    commands.spawn((Camera2d, camera, Tonemapping::None, DebandDither::Disabled, Msaa::Off, usages));
+    commands.spawn((
+        PrimaryEguiContext,
+        Camera2d,
+        camera,
+        Tonemapping::None,
+        DebandDither::Disabled,
+        Msaa::Off,
+        usages,
+    ));
     picture.handle = images.add(gpu::target(1, 1));
     picture.id = Some(textures.add_image(EguiTextureHandle::Strong(picture.handle.clone())));
 }
