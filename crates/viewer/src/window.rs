@@ -207,15 +207,15 @@ fn shoot(commands: &mut Commands, folder: PathBuf) {
 fn show_painter(
     mut viewer: ResMut<Viewer>,
     painted: Option<Res<PaintedBy>>,
-    context: Single<&mut EguiContext>,
-    mut output: Single<&mut EguiRenderOutput>,
+    window: Single<(&mut EguiContext, &mut EguiRenderOutput)>,
     mut panels: Local<Panels>,
     picture: Res<Picture>,
     mut images: ResMut<Assets<Image>>,
     mut commands: Commands,
 ) {
+    let (mut context, mut output) = window.into_inner();
     let Some(painted) = painted else {
-        let context = context.into_inner().get_mut().clone();
+        let context = context.get_mut().clone();
         commands.insert_resource(PaintedBy(Easel::new(move || context.request_repaint())));
         return;
     };
