@@ -27,10 +27,13 @@ pub enum NoWindow {
     Driver,
     /// The display refused, or its client libraries are missing.
     #[error(
-        "the window cannot be opened ({0}); on X these libraries must be there: \
+        "the display lets no window be opened; on X these libraries must be there: \
          apt-get install libx11-6 libx11-xcb1 libxcursor1 libxi6 libxrandr2 libxkbcommon-x11-0"
     )]
-    Refused(String),
+    Refused,
+    /// The driver takes pictures and gives none back.
+    #[error("the Vulkan driver gives no picture back; bring it up to date, or draw with the painter")]
+    NoPicture,
 }
 
 /// Finds the driver that Bevy will use, before Bevy starts: it panics without one.

@@ -5,6 +5,9 @@ use bevy_egui::egui::{Align2, CursorIcon, FontId, Pos2, Rect, Sense, Shape, Stro
 /// How long it takes to play a whole run (s).
 pub(crate) const PLAY_SECONDS: f64 = 8.0;
 
+/// Width of a curve (points) that has room for more words.
+const ROOMY: f32 = 230.0;
+
 /// One figure over the course of swelling.
 #[derive(Clone, Debug, PartialEq)]
 pub(crate) struct Curve {
@@ -70,7 +73,7 @@ impl Frame {
     fn new(rect: Rect, curve: &Curve, last: usize) -> Self {
         let finite = || curve.values.iter().copied().filter(|value| value.is_finite());
         let low = finite().fold(0.0, f64::min);
-        let high = finite().fold(low, f64::max);
+        let high = finite().fold(0.0, f64::max);
         let inner = Rect::from_min_max(rect.min + vec2(0.0, 20.0), rect.max - vec2(0.0, 15.0));
         Self { rect, inner, low, high: if high > low { high } else { low + 1.0 }, last }
     }
@@ -91,7 +94,10 @@ impl Frame {
         let small = FontId::proportional(11.0);
         let line = Stroke::new(1.0, palette.line);
         let words = |at, anchor, text: String, colour| painter.text(at, anchor, text, small.clone(), colour);
-        let name = format!("{}, up to {} {}", curve.name, digits(self.high), curve.unit);
+        let mut name = curve.name.to_owned();
+        if self.rect.width() > ROOMY && !curve.values.is_empty() {
+            name += &format!(", up to {} {}", digits(self.high), curve.unit);
+        }
         words(self.rect.left_top(), Align2::LEFT_TOP, name, palette.quiet);
         let value = curve.at(time);
         if let Some(value) = value {

@@ -2,7 +2,7 @@ use crate::args::Arguments;
 use crate::error::ViewError;
 use crate::study::{Packs, read_packs};
 use bedswell_picture::Run;
-use bedswell_sim::{Scene, read_scene, read_study};
+use bedswell_sim::{Scene, prepare_run_folder, read_scene, read_study};
 use std::path::{Path, PathBuf};
 
 /// What is to be looked at.
@@ -37,7 +37,12 @@ pub(crate) fn open(path: &Path, arguments: &Arguments) -> Result<Subject, ViewEr
     let out = |name: String| arguments.out.clone().unwrap_or_else(|| Path::new("out").join(name));
     if let Ok(scene) = read_scene(path) {
         let folder = out(format!("{}-pack-{}", scene.name, arguments.pack));
-        return Ok(Subject::Scene(Box::new(ToRun { scene, pack: arguments.pack, folder })));
+        let to_run = ToRun { scene, pack: arguments.pack, folder };
+        if finished(&to_run).is_none() {
+            // Ask for the folder before there is a window.
+            prepare_run_folder(&to_run.folder, &to_run.scene, to_run.pack)?;
+        }
+        return Ok(Subject::Scene(Box::new(to_run)));
     }
     // A study file, or an error that tells what is wrong with either.
     let study = read_study(path)?;

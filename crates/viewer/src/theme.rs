@@ -46,7 +46,7 @@ impl Palette {
             Theme::Light => Self {
                 column: rgb(226, 225, 219),
                 card: rgb(246, 245, 240),
-                button: rgb(226, 224, 217),
+                button: rgb(212, 210, 203),
                 line: rgb(206, 204, 197),
                 text,
                 quiet: rgb(100, 101, 98),

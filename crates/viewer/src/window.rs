@@ -97,12 +97,7 @@ fn start(size: Size, driver: Driver, title: String) -> Result<App, NoWindow> {
         app
     }));
     std::panic::set_hook(hook);
-    app.map_err(|reason| {
-        let text = reason.downcast_ref::<String>().cloned();
-        NoWindow::Refused(
-            text.or_else(|| Some((*reason.downcast_ref::<&str>()?).to_owned())).unwrap_or_default(),
-        )
-    })
+    app.map_err(|_| NoWindow::Refused)
 }
 
 /// How long the window waits for the painter before it shows the picture before.

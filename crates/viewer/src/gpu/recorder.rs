@@ -63,7 +63,7 @@ impl Recorder {
     /// Draws one picture, every pixel averaged from four.
     ///
     /// # Errors
-    /// [`NoWindow::Refused`] if the driver gives no picture back.
+    /// [`NoWindow::NoPicture`] if the driver gives none back.
     pub fn draw(&mut self, drawing: Arc<Drawing>, view: &Camera) -> Result<Image, NoWindow> {
         let texture = self.aim(view.size, drawing.background);
         let fine = enlarged(view);
@@ -83,7 +83,7 @@ impl Recorder {
                 return Ok(reduced(&image.data.unwrap_or_default(), view.size));
             }
         }
-        Err(NoWindow::Refused("the driver gives no picture back".to_owned()))
+        Err(NoWindow::NoPicture)
     }
 
     /// The texture to draw a picture of a size into, with the camera before it.

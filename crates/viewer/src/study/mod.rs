@@ -5,5 +5,5 @@ mod read;
 mod table;
 
 pub use read::StudyReadError;
-pub(crate) use read::{Packs, read_packs};
+pub(crate) use read::{PackFigures, Packs, read_packs};
 pub(crate) use table::{Table, table};

@@ -1,4 +1,4 @@
-use bedswell_sim::{Scene, SceneError, Study, StudySummary, read_scene};
+use bedswell_sim::{RunSummary, Scene, SceneError, Study, StudySummary, read_scene};
 use parquet::file::reader::{FileReader, SerializedFileReader};
 use parquet::record::{Field, Row};
 use std::fs::File;
@@ -95,6 +95,24 @@ impl Packs {
         } else {
             format!("pack-{}", row.pack)
         })
+    }
+}
+
+impl From<&RunSummary> for PackFigures {
+    fn from(run: &RunSummary) -> Self {
+        let mut figures = Self { heave: run.heave_m, ..Self::default() };
+        for bead in &run.beads {
+            figures.add(&Self {
+                torn: f64::from(u8::from(bead.torn)),
+                beads: 1.0,
+                tear_probability: bead.tear_probability,
+                uptake: bead.uptake_g_per_g,
+                tension: bead.tension_q99_pa,
+                heave: 0.0,
+            });
+        }
+        figures.divide();
+        figures
     }
 }
 

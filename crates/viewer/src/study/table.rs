@@ -30,12 +30,21 @@ pub(super) struct Outcome {
 
 /// The outcomes that the table shows.
 pub(super) const OUTCOMES: [Outcome; 5] = [
-    Outcome { name: "torn", value: |pack| pack.torn / pack.beads, words: percent },
+    Outcome { name: "torn", value: |pack| pack.torn / pack.beads, words: torn },
     Outcome { name: "tear prob.", value: |pack| pack.tear_probability, words: percent },
     Outcome { name: "uptake", value: |pack| pack.uptake, words: |value| format!("{} g/g", digits(value)) },
     Outcome { name: "99 % tension", value: |pack| pack.tension, words: stress },
     Outcome { name: "heave", value: |pack| pack.heave, words: length },
 ];
+
+/// The share of a pack's beads that tore.
+fn torn(value: f64) -> String {
+    match value {
+        0.0 => "none".to_owned(),
+        1.0 => "all".to_owned(),
+        _ => percent(value),
+    }
+}
 
 fn percent(value: f64) -> String {
     format!("{} %", digits(100.0 * value))

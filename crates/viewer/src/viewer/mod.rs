@@ -168,11 +168,11 @@ impl Viewer {
         let mut ui = Ui::new(context.clone(), "window".into(), whole);
         let bar = Frame::new().fill(palette.column).inner_margin(Margin::symmetric(12, 7));
         Panel::top("head").frame(bar).show(&mut ui, |ui| self.head(ui, &palette));
+        Panel::bottom("course").frame(bar).exact_size(126.0).show(&mut ui, |ui| self.course(ui, &palette));
         if self.study.is_some() && !self.settings.folded.contains(&cards::STUDY) {
             let width = 0.5 * ui.available_width() - 60.0;
             Panel::left("study").frame(bar).exact_size(width).show(&mut ui, |ui| self.packs(ui, &palette));
         }
-        Panel::bottom("course").frame(bar).exact_size(126.0).show(&mut ui, |ui| self.course(ui, &palette));
         let column = Frame::new().fill(palette.column).inner_margin(Margin::same(8));
         Panel::right("cards").frame(column).exact_size(272.0).resizable(false).show(&mut ui, |ui| {
             ScrollArea::vertical().auto_shrink(false).show(ui, |ui| self.cards(ui, &palette));

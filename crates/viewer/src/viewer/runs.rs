@@ -1,6 +1,7 @@
 use super::Viewer;
 use crate::bed::Bed;
 use crate::live::{Live, News, Will};
+use crate::study::PackFigures;
 use crate::subject::{ToRun, finished};
 use bedswell_picture::Run;
 use bevy_egui::egui::Context;
@@ -43,6 +44,9 @@ impl Viewer {
     fn pack(&mut self, row: usize) -> Option<ToRun> {
         let (packs, table) = self.study.as_mut()?;
         let pack = packs.rows.get(row)?;
+        if table.open == Some(row) && self.live.is_some() {
+            return None;
+        }
         table.open = Some(row);
         let (_, scene) = packs.levels.get(pack.level)?;
         Some(ToRun { scene: scene.clone(), pack: pack.pack, folder: packs.folder_of(pack) })
@@ -71,6 +75,11 @@ impl Viewer {
         match news {
             News::State(state) => bed.push(*state),
             News::Done(summary) => {
+                if let Some((packs, table)) = &mut self.study
+                    && let Some(row) = table.open.and_then(|row| packs.rows.get_mut(row))
+                {
+                    row.outcome = Ok(PackFigures::from(&*summary));
+                }
                 bed.run.summary = Some(Arc::new(*summary));
                 self.message = Some(format!("finished; written to {}", bed.folder.display()));
                 self.live = None;
