@@ -11,6 +11,9 @@ const BED: Area = Area { left: 4, top: 40, right: 880, bottom: 590 };
 const CARDS: Area = Area { left: 1012, top: 40, right: 1276, bottom: 590 };
 const COURSE: Area = Area { left: 140, top: 600, right: 1276, bottom: 716 };
 const HEAD: Area = Area { left: 4, top: 4, right: 800, bottom: 32 };
+/// The table of a study's packs, and the bed beside it.
+const TABLE: Area = Area { left: 4, top: 210, right: 570, bottom: 590 };
+const STUDY_BED: Area = Area { left: 590, top: 40, right: 870, bottom: 590 };
 /// The middle of the bed's part of the window, where the bead is.
 const BEAD: (i32, i32) = (504, 290);
 /// Marks in the dark theme.
@@ -111,4 +114,54 @@ fn a_scene_runs_while_one_looks_and_leaves_a_folder_that_can_be_finished() {
     assert!(run.states.len() >= 3, "{} states", run.states.len());
     bedswell_sim::prepare_run_folder(&out, &run.scene, run.pack)
         .expect("the folder takes the same run again");
+}
+
+#[test]
+fn bevy_fills_the_window_with_the_same_picture_as_the_painter() {
+    let folder = tempfile::tempdir().unwrap();
+    let run = run_folder(folder.path());
+    let screen = |by: &str| {
+        let arguments =
+            [run.as_os_str(), "--remember".as_ref(), "none".as_ref(), "--drawn-by".as_ref(), by.as_ref()];
+        let mut desk = Desk::open(&arguments);
+        desk.opened(BED);
+        desk.move_to((1270, 5));
+        desk.key("k");
+        desk.key("g");
+        let screen = desk.settled();
+        assert_eq!(desk.close(), 0, "the viewer did not end well");
+        screen
+    };
+    let (painted, drawn) = (screen("painter"), screen("bevy"));
+    // Letters and the edges of things differ a little.
+    assert!(drawn.differs(&painted, BED) < 0.02, "{} of the bed differs", drawn.differs(&painted, BED));
+    assert!(drawn.differs(&painted, CARDS) < 0.001, "the cards differ");
+}
+
+#[test]
+fn a_study_opens_with_its_packs_and_a_pack_that_is_chosen_is_run() {
+    let folder = tempfile::tempdir().unwrap();
+    let study = support::study_folder(folder.path(), 3);
+    let mut desk = Desk::open(&[study.as_os_str(), "--remember".as_ref(), "none".as_ref()]);
+    let first = study.join("packs");
+    let runs = |count: usize| {
+        let packs = std::fs::read_dir(&first).into_iter().flatten().flatten();
+        packs.filter(|pack| pack.path().join("summary.json").is_file()).count() == count
+    };
+    desk.wait_until("the run of the first pack", || runs(1));
+    desk.move_to((1270, 5));
+    let opened = desk.settled();
+    assert!(opened.colours(TABLE) > 20, "no table");
+
+    desk.key("o");
+    let sorted = desk.settled();
+    assert!(sorted.differs(&opened, TABLE) > 0.002, "sorting by another outcome changes nothing");
+    assert_eq!(sorted.differs(&opened, STUDY_BED), 0.0, "sorting changed the bed");
+
+    desk.key("d");
+    desk.wait_until("the run of another pack", || runs(2));
+    desk.move_to((1270, 5));
+    let other = desk.settled();
+    assert!(other.differs(&sorted, STUDY_BED) > 0.05, "another pack looks the same");
+    assert_eq!(desk.close(), 0, "the viewer did not end well");
 }

@@ -1,10 +1,14 @@
 //! A virtual display with the viewer on it, and a run for it to show.
 
-use bedswell_sim::{StateRecorder, prepare_run_folder, read_scene, run_pack, write_run_folder};
+use bedswell_sim::{
+    StateRecorder, Study, StudyObserver, StudyOptions, prepare_run_folder, read_scene, read_study, run_pack,
+    run_study, write_run_folder,
+};
 use std::ffi::OsStr;
 use std::io::{BufRead, BufReader};
 use std::path::{Path, PathBuf};
 use std::process::{Child, Command, Stdio};
+use std::sync::{Mutex, MutexGuard, PoisonError};
 use std::time::{Duration, Instant};
 use x11rb::protocol::xproto::{ClientMessageEvent, ConnectionExt, EventMask};
 
@@ -41,17 +45,44 @@ pub(crate) fn run_folder(below: &Path) -> PathBuf {
     folder
 }
 
+/// A finished study of a number of packs below a folder.
+pub(crate) fn study_folder(below: &Path, packs: u64) -> PathBuf {
+    let file = below.join("scene.toml");
+    std::fs::write(&file, quick_scene()).unwrap();
+    let study = Study { packs, ..read_study(&file).unwrap() };
+    let folder = below.join("study");
+    let options = StudyOptions { threads: 2, csv: false };
+    run_study(&study, &folder, options, &|scene, pack| run_pack(scene, pack, &mut ()), &mut Nobody).unwrap();
+    folder
+}
+
+/// Does not watch.
+struct Nobody;
+
+impl StudyObserver for Nobody {
+    fn progress(&mut self, _: u64, _: u64) {}
+
+    fn failed(&mut self, _: usize, _: u64, reason: &str) {
+        panic!("{reason}");
+    }
+}
+
 /// A display of 1280 by 720 pixels with the viewer filling it.
 pub(crate) struct Desk {
     server: Child,
     viewer: Child,
     display: String,
     window: u32,
+    /// One desk at a time: several would starve each other of the processor.
+    _turn: MutexGuard<'static, ()>,
 }
+
+static TURN: Mutex<()> = Mutex::new(());
 
 impl Desk {
     /// Starts display and viewer, and waits for the window.
     pub(crate) fn open(arguments: &[&OsStr]) -> Self {
+        let turn = TURN.lock().unwrap_or_else(PoisonError::into_inner);
         let mut server = Command::new("Xvfb")
             .args(["-displayfd", "1", "-screen", "0", "1280x720x24", "-nolisten", "tcp"])
             .stdout(Stdio::piped())
@@ -67,7 +98,7 @@ impl Desk {
             .env_remove("WAYLAND_DISPLAY")
             .spawn()
             .unwrap();
-        let mut desk = Self { server, viewer, display, window: 0 };
+        let mut desk = Self { server, viewer, display, window: 0, _turn: turn };
         let start = Instant::now();
         while desk.window == 0 {
             assert!(start.elapsed() < PATIENCE, "no window came up");
