@@ -1,5 +1,5 @@
 use bedswell_painter::{Camera, Drawing, Point, Pose, Size};
-use bedswell_picture::{Cut, Frame, LikelyPlace, Look, Pick, Run, draw, likely_places, pick};
+use bedswell_picture::{Cut, Frame, LikelyPlace, Look, Pick, Picked, Run, draw, likely_places, pick};
 use bedswell_sim::State;
 use std::path::PathBuf;
 use std::sync::Arc;
@@ -60,22 +60,23 @@ impl Bed {
         }
     }
 
-    /// Makes ready what a look shows of the time.
-    pub(crate) fn prepare(&mut self, look: &Look) {
+    /// Makes ready what a look shows of the time; returns whether that is another time.
+    pub(crate) fn prepare(&mut self, look: &Look) -> bool {
         let (frame, moved) = match self.moment.take() {
             Some(moment) if moment.time == self.time && moment.look == *look => {
                 self.moment = Some(moment);
-                return;
+                return false;
             }
             Some(moment) if moment.time == self.time => (Some(moment.frame), false),
             _ => (self.run.frame(self.time), true),
         };
-        let Some(frame) = frame else { return };
+        let Some(frame) = frame else { return false };
         if moved {
             self.find_places(&frame);
         }
         let drawing = Arc::new(draw(&self.run, &frame, look));
         self.moment = Some(Moment { time: self.time, look: look.clone(), frame, drawing });
+        moved
     }
 
     /// Finds the likely places of rupture; the mark stays with the one nearest to where it was,
@@ -100,6 +101,29 @@ impl Bed {
     /// How the look draws it.
     pub(crate) fn drawing(&self) -> Option<&Arc<Drawing>> {
         self.moment.as_ref().map(|moment| &moment.drawing)
+    }
+
+    /// The same thing at the present time, where it is now.
+    pub(crate) fn follow(&self, mut pick: Pick) -> Option<Pick> {
+        let frame = self.frame()?;
+        pick.place = match pick.what {
+            Picked::Grain(grain) => frame.grains.get(grain)?.centre,
+            Picked::Gel { bead, voxel } => *frame.beads.get(bead)?.middles.get(voxel)?,
+            Picked::Bond { bead, bond } => {
+                let bead = frame.beads.get(bead)?;
+                let ends = bead.bond_voxels().get(bond)?.map(|voxel| bead.middles[voxel as usize]);
+                0.5 * (ends[0] + ends[1])
+            }
+        };
+        Some(pick)
+    }
+
+    /// A pick that can be followed: of a grain's periodic images, the grain itself.
+    pub(crate) fn hold(&self, mut pick: Pick) -> Pick {
+        if let (Picked::Grain(index), Some(frame)) = (pick.what, self.frame()) {
+            pick.what = Picked::Grain(frame.grains[index].grain);
+        }
+        pick
     }
 
     /// What lies under a pixel.

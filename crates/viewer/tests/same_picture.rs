@@ -21,7 +21,7 @@ fn silhouettes_and_colours_agree() {
         let agreement = intersection_over_union(&ours, &theirs);
         assert!(agreement >= 0.97, "{name}: silhouettes agree to {agreement:.3}");
         let apart = mean_difference(&ours, &theirs);
-        assert!(apart < 2.0, "{name}: colours differ by {apart:.2} of 255 on average");
+        assert!(apart < 1.0, "{name}: colours differ by {apart:.2} of 255 on average");
     }
 }
 

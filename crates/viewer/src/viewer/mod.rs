@@ -163,6 +163,7 @@ impl Viewer {
             self.orbit.turn(1.5, 0.0);
         }
         self.dress(context);
+        self.prepare();
         let palette = Palette::of(self.look.theme);
         let whole = UiBuilder::new().layer_id(LayerId::background()).max_rect(context.viewport_rect());
         let mut ui = Ui::new(context.clone(), "window".into(), whole);

@@ -13,13 +13,11 @@ impl Viewer {
             self.size = pane.size;
             self.corner = pane.pixel_corner();
             self.steered |= pane.steer(ui, &mut self.orbit);
-            if let Some(bed) = &mut self.bed {
-                bed.prepare(&self.look);
-                if !self.steered
-                    && let Some(pose) = bed.whole(self.size)
-                {
-                    self.orbit.set(pose);
-                }
+            self.prepare();
+            if !self.steered
+                && let Some(pose) = self.bed.as_ref().and_then(|bed| bed.whole(self.size))
+            {
+                self.orbit.set(pose);
             }
             let camera = Camera::new(&self.orbit.pose(), self.size);
             self.point(&pane, &camera);
@@ -41,6 +39,16 @@ impl Viewer {
         });
     }
 
+    /// Makes ready what there is to see; what is held is followed through time.
+    pub(super) fn prepare(&mut self) {
+        if let Some(bed) = &mut self.bed
+            && bed.prepare(&self.look)
+        {
+            self.held = self.held.and_then(|held| bed.follow(held));
+            self.under_pointer = None;
+        }
+    }
+
     /// Whether the window has something over the bed that the picture itself does not hold.
     pub(crate) fn covers_bed(&self) -> bool {
         self.under_pointer.is_some()
@@ -55,7 +63,7 @@ impl Viewer {
         if let Some(at) = response.hover_pos().filter(|_| !response.dragged()) {
             self.under_pointer = bed.pick(camera, pane.pixel(at));
             if response.clicked() {
-                self.held = self.under_pointer;
+                self.held = self.under_pointer.map(|pick| bed.hold(pick));
             }
         } else {
             self.under_pointer = None;
