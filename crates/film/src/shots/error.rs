@@ -1,22 +1,6 @@
-use std::fmt;
-use std::path::{Path, PathBuf};
-use std::sync::Arc;
+pub use bedswell_sim::Place;
+use std::path::PathBuf;
 use thiserror::Error;
-
-/// Where in a file something stands.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub struct Place {
-    /// The file.
-    pub file: Arc<Path>,
-    /// Line, from 1.
-    pub line: usize,
-}
-
-impl fmt::Display for Place {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}, line {}", self.file.display(), self.line)
-    }
-}
 
 /// Why a shot list was refused.
 #[derive(Debug, Error)]
