@@ -1,24 +1,30 @@
 //! Grains that push, rub and roll on each other between a floor and a lid.
 
+mod boundary;
+mod contact_list;
 mod contacts;
+mod error;
 mod motion;
 mod rest;
+mod spring;
 
+pub use boundary::Boundary;
+pub use error::AssemblyError;
 pub use rest::{Contact, Partner, Rest};
 
-use crate::contact_law::{ContactLaw, ContactLawError};
-use bedswell_geometry::{Cell, Sphere, Vector};
-use contacts::ContactList;
-use thiserror::Error;
+use crate::contact_law::ContactLaw;
+use bedswell_geometry::{Cell, Sphere, Vector, volume_of_radius};
+use contact_list::ContactList;
 
 /// A set of grains in a cell, marched towards rest by
 /// [`compute_contacts`](Self::compute_contacts), loads from elsewhere, and
 /// [`advance`](Self::advance), in this order, once per step.
 ///
-/// Sides of the cell that are not periodic are open, except the floor (z = 0) and
-/// the lid (z = `cell.size.z`), which are flat and as rough as the grains. In a
-/// cell periodic in all three directions there is neither: a [`Lid::Stress`] is
-/// then a pressure on all sides, and the box shrinks or grows as one.
+/// Sides of the cell that are not periodic are open, except the floor (z = 0), the
+/// lid (z = `cell.size.z`) and the wall of a pot, if there is one: they are as rough
+/// as the grains and touch them as flat plates do. In a cell periodic in all three
+/// directions there is no plate: a [`Lid::Stress`] is then a pressure on all sides,
+/// and the box shrinks or grows as one.
 ///
 /// The unit of time is the step, and masses are fictitious: the final rest is
 /// real, the way to it is only quasi-static.
@@ -41,14 +47,24 @@ pub struct Assembly {
     pub torques: Vec<Vector>,
     /// Sum of the stiffnesses that touch each grain (N/m).
     pub stiffnesses: Vec<f64>,
+    /// Constant force on each grain (N), such as its weight less its buoyancy; zero
+    /// at first.
+    pub weights: Vec<Vector>,
+    /// Grains that stay where they are while others move (a rough floor, a glued
+    /// layer); none at first.
+    pub pinned: Vec<bool>,
     /// How grains push and rub.
     pub law: ContactLaw,
     /// What holds or loads the lid.
     pub lid: Lid,
+    /// Radius (m) of an upright pot around the middle of the cell's floor; set by
+    /// [`with_wall`](Self::with_wall).
+    pub wall: Option<f64>,
     /// Grains and lid stay where they are (bench arrays); contacts and loads are
     /// still computed.
     pub held: bool,
     lid_state: LidState,
+    boundary: Boundary,
     contacts: ContactList,
 }
 
@@ -59,6 +75,8 @@ pub enum Lid {
     Fixed,
     /// The lid moves in z under this stress (Pa), positive when it presses.
     Stress(f64),
+    /// There is no lid: `cell.size.z` is a nominal height, and grains may lie above.
+    Open,
 }
 
 /// Load and motion of the lid. Between floor and lid these are forces (N) and m
@@ -68,36 +86,6 @@ struct LidState {
     velocity: f64,
     force: f64,
     stiffness: f64,
-}
-
-/// Why grains cannot be put into a cell.
-#[derive(Clone, Debug, PartialEq, Error)]
-pub enum AssemblyError {
-    /// A radius or centre is not a usable number.
-    #[error(
-        "grain {index} has radius {radius} m and centre {centre:?} m: the radius must be above 0 and all must be finite"
-    )]
-    Sphere {
-        /// Index of the grain.
-        index: usize,
-        /// Its radius (m).
-        radius: f64,
-        /// Its centre (m).
-        centre: [f64; 3],
-    },
-    /// A grain would overlap its own periodic image.
-    #[error("grain {index} is {diameter} m wide, more than the periodic cell's {length} m: widen the cell")]
-    WiderThanCell {
-        /// Index of the grain.
-        index: usize,
-        /// Its diameter (m).
-        diameter: f64,
-        /// The cell's length (m).
-        length: f64,
-    },
-    /// The contact law is unusable.
-    #[error(transparent)]
-    Law(#[from] ContactLawError),
 }
 
 impl Assembly {
@@ -129,13 +117,38 @@ impl Assembly {
             forces: vec![Vector::zeros(); count],
             torques: vec![Vector::zeros(); count],
             stiffnesses: vec![0.0; count],
+            weights: vec![Vector::zeros(); count],
+            pinned: vec![false; count],
             law,
             lid,
+            wall: None,
             held: false,
             lid_state: LidState::default(),
+            boundary: Boundary::default(),
             contacts: ContactList::new(&radii),
             radii,
         })
+    }
+
+    /// The same grains in an upright pot of the given radius (m), whose axis stands on
+    /// the middle of the floor.
+    ///
+    /// # Errors
+    /// A radius that is no size, a cell that is periodic in x or y, or a grain wider
+    /// than the pot.
+    pub fn with_wall(mut self, radius: f64) -> Result<Self, AssemblyError> {
+        if !(radius.is_finite() && radius > 0.0) {
+            return Err(AssemblyError::WallRadius(radius));
+        }
+        if self.cell.periodic[0] || self.cell.periodic[1] {
+            return Err(AssemblyError::WallInPeriodicCell);
+        }
+        if let Some(index) = self.radii.iter().position(|&grain| grain > radius) {
+            let (diameter, pot) = (2.0 * self.radii[index], 2.0 * radius);
+            return Err(AssemblyError::WiderThanPot { index, diameter, pot });
+        }
+        self.wall = Some(radius);
+        Ok(self)
     }
 
     /// Adds a load from elsewhere (the gel) on a grain until the next
@@ -148,14 +161,6 @@ impl Assembly {
         self.stiffnesses[grain] += stiffness;
     }
 
-    /// Adds an upward load (N) from elsewhere on the lid, with its stiffness (N/m),
-    /// until the next `compute_contacts`.
-    #[inline]
-    pub fn add_lid_load(&mut self, force_z: f64, stiffness: f64) {
-        self.lid_state.force += force_z;
-        self.lid_state.stiffness += stiffness;
-    }
-
     /// The grains as spheres, with their centres inside the box.
     pub fn spheres(&self) -> Vec<Sphere> {
         self.centres
@@ -165,11 +170,19 @@ impl Assembly {
             .collect()
     }
 
-    /// Volume of the grains over the volume of the whole cell, floor to lid;
+    /// Area (m²) of floor and lid: the pot's disc, or the whole cell.
+    pub fn section(&self) -> f64 {
+        match self.wall {
+            Some(radius) => std::f64::consts::PI * radius * radius,
+            None => self.cell.size.x * self.cell.size.y,
+        }
+    }
+
+    /// Volume of the grains over the volume of the whole cell or pot, floor to lid;
     /// overlaps count twice.
     pub fn solid_fraction(&self) -> f64 {
-        self.radii.iter().map(|&radius| bedswell_geometry::volume_of_radius(radius)).sum::<f64>()
-            / self.cell.volume()
+        self.radii.iter().map(|&radius| volume_of_radius(radius)).sum::<f64>()
+            / (self.section() * self.cell.size.z)
     }
 
     /// Keeps the first `count` grains, with the contacts among them, and takes the
@@ -182,6 +195,8 @@ impl Assembly {
         self.forces.truncate(count);
         self.torques.truncate(count);
         self.stiffnesses.truncate(count);
+        self.weights.truncate(count);
+        self.pinned.truncate(count);
         self.contacts.truncate(count);
     }
 

@@ -5,7 +5,7 @@ mod contact_law;
 mod grading;
 mod packing;
 
-pub use assembly::{Assembly, AssemblyError, Contact, Lid, Partner, Rest};
+pub use assembly::{Assembly, AssemblyError, Boundary, Contact, Lid, Partner, Rest};
 pub use contact_law::{ContactLaw, ContactLawError, Normal, mindlin_ratio};
 pub use grading::{Grading, GradingError, MassCurve, SizeNumbers};
 pub use packing::{

@@ -119,7 +119,7 @@ fn a_squeezed_bed_let_go_only_loses_energy() {
             let radius = grains.radii[contact.grain];
             let reduced = match contact.partner {
                 Partner::Grain(other) => radius * grains.radii[other] / (radius + grains.radii[other]),
-                Partner::Floor | Partner::Lid => radius,
+                Partner::Floor | Partner::Lid | Partner::Wall => radius,
             };
             contact.force.powi(2) / (4.0 * modulus * reduced)
         };

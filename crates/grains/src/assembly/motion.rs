@@ -21,11 +21,14 @@ impl Assembly {
             return;
         }
         for grain in 0..self.centres.len() {
+            if self.pinned[grain] {
+                continue;
+            }
             let floor = self.law.normal.typical_stiffness(self.radii[grain]);
             let mass = MASS_PER_STIFFNESS * self.stiffnesses[grain].max(floor);
             let velocity = &mut self.velocities[grain];
-            if self.stiffnesses[grain] == 0.0 {
-                // Nothing touches it: no damping would ever stop it.
+            if self.stiffnesses[grain] == 0.0 && self.weights[grain] == Vector::zeros() {
+                // Nothing acts on it: no damping would ever stop it.
                 *velocity *= FREE_FLIGHT;
             }
             push(velocity, &self.forces[grain], mass, damping);
@@ -35,7 +38,7 @@ impl Assembly {
                 push(&mut self.spins[grain], &self.torques[grain], inertia, damping);
             }
         }
-        if self.lid != Lid::Fixed {
+        if matches!(self.lid, Lid::Stress(_)) {
             self.advance_lid(damping);
         }
         self.contacts.slip = true;
@@ -50,7 +53,7 @@ impl Assembly {
             // A contact then answers three motions, and the box is the heaviest.
             (typical * 4.0 * radius * radius * count, LID_SPEED, 4.0)
         } else {
-            let layer = self.cell.size.x * self.cell.size.y / (4.0 * radius * radius);
+            let layer = self.section() / (4.0 * radius * radius);
             (typical * layer.max(1.0), LID_SPEED * self.cell.size.z, MASS_PER_STIFFNESS)
         };
         let state = &mut self.lid_state;
@@ -72,7 +75,7 @@ impl Assembly {
 /// Fictitious mass over the sum of the stiffnesses that touch.
 const MASS_PER_STIFFNESS: f64 = 1.25;
 
-/// What a grain that nothing touches keeps of its velocity per step.
+/// What a grain on which nothing acts keeps of its velocity per step.
 const FREE_FLIGHT: f64 = 0.9;
 
 /// Fastest motion of the lid, in strain of the bed per step: it only bites while

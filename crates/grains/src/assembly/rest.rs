@@ -1,16 +1,19 @@
 use super::Assembly;
-use super::contacts::Plate;
+use super::contact_list::Plate;
 use bedswell_geometry::{Vector, offset};
 
 /// How far an assembly is from rest.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Rest {
-    /// Largest net force on a grain, or net torque over its radius (N).
+    /// Largest net force, weight included, on a grain that may move, or net torque over
+    /// its radius (N).
     pub largest_net_force: f64,
+    /// Index of that grain; 0 where there is no net force.
+    pub worst: usize,
     /// Mean normal force of the contacts (N); zero when nothing touches.
     pub mean_contact_force: f64,
     /// Net force on the lid over the force it is loaded with (in a fully periodic
-    /// cell: relative error of the pressure); zero for a lid that is held.
+    /// cell: relative error of the pressure); zero for a lid that is held or absent.
     pub lid_unbalance: f64,
     /// Deepest overlap over the smaller grain's diameter.
     pub deepest_overlap: f64,
@@ -48,6 +51,8 @@ pub enum Partner {
     Floor,
     /// The lid.
     Lid,
+    /// The wall of the pot.
+    Wall,
 }
 
 impl Assembly {
@@ -55,12 +60,17 @@ impl Assembly {
     /// [`compute_contacts`](Self::compute_contacts).
     pub fn rest(&self) -> Rest {
         let list = &self.contacts;
-        let largest_net_force = (self.forces.iter().zip(&self.torques).zip(&self.radii))
-            .map(|((force, torque), radius)| force.norm().max(torque.norm() / radius))
-            .fold(0.0, f64::max);
+        let (mut largest_net_force, mut worst) = (0.0, 0);
+        for grain in 0..self.radii.len() {
+            let net = self.forces[grain].norm().max(self.torques[grain].norm() / self.radii[grain]);
+            if net > largest_net_force && !self.pinned[grain] {
+                (largest_net_force, worst) = (net, grain);
+            }
+        }
         let lid_load = self.lid_load().abs();
         Rest {
             largest_net_force,
+            worst,
             mean_contact_force: if list.touching == 0 { 0.0 } else { list.force_sum / list.touching as f64 },
             lid_unbalance: if lid_load == 0.0 { 0.0 } else { self.lid_state.force.abs() / lid_load },
             deepest_overlap: 0.5 * list.deepest,
@@ -84,12 +94,14 @@ impl Assembly {
         });
         let plates = self.contacts.plates.iter().filter(|touch| touch.contact.force > 0.0).map(|touch| {
             let grain = touch.grain as usize;
-            let (partner, normal, height) = match touch.plate {
-                Plate::Floor => (Partner::Floor, -Vector::z(), 0.0),
-                Plate::Lid => (Partner::Lid, Vector::z(), self.cell.size.z),
+            let (centre, radius) = (self.centres[grain], self.radii[grain]);
+            let (gap, normal) = touch.plate.facing(&self.cell, self.wall, &centre, radius);
+            let partner = match touch.plate {
+                Plate::Floor => Partner::Floor,
+                Plate::Lid => Partner::Lid,
+                Plate::Wall => Partner::Wall,
             };
-            let mut position = self.centres[grain];
-            position.z = height;
+            let position = centre + normal * (radius + gap);
             Contact { grain, partner, force: touch.contact.force, normal, position }
         });
         pairs.chain(plates)
@@ -110,7 +122,7 @@ impl Assembly {
                         counts[other] += 1;
                     }
                     Partner::Grain(_) => {}
-                    Partner::Floor | Partner::Lid => counts[contact.grain] += 1,
+                    Partner::Floor | Partner::Lid | Partner::Wall => counts[contact.grain] += 1,
                 }
             }
             let mut dropped = false;

@@ -43,7 +43,7 @@ fn core_porosity(assembly: &Assembly) -> f64 {
     let solid: f64 = (assembly.centres.iter().zip(&assembly.radii))
         .map(|(centre, &radius)| cap(high - centre.z, radius) - cap(low - centre.z, radius))
         .sum();
-    1.0 - solid / (cell.size.x * cell.size.y * (high - low))
+    1.0 - solid / (assembly.section() * (high - low))
 }
 
 /// Volume (m³) of a sphere's part below a height (m) over its centre.

@@ -10,14 +10,14 @@ impl March {
     /// What there is to see of this march at `step`.
     pub(super) fn snapshot(&self, scene: &Scene, pack: u64, stage: &Gel, step: Step) -> State {
         let cell = self.grains.cell;
-        let contacts = self.grains.contacts().map(|contact| GrainContact {
-            grain: contact.grain as u32,
-            on: match contact.partner {
+        let contacts = self.grains.contacts().filter_map(|contact| {
+            let on = match contact.partner {
                 Partner::Grain(grain) => Touched::Grain(grain as u32),
                 Partner::Floor => Touched::Floor,
                 Partner::Lid => Touched::Lid,
-            },
-            force: contact.force as f32,
+                Partner::Wall => return None,
+            };
+            Some(GrainContact { grain: contact.grain as u32, on, force: contact.force as f32 })
         });
         State {
             fingerprint: crate::folder::fingerprint([scene].into_iter()),
