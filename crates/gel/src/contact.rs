@@ -171,15 +171,30 @@ pub(crate) fn add_diagonal_blocks(pressing: &[Pressing], skin: &Skin, out: &mut 
     }
 }
 
-/// Adds each node's own block as if every pair pressed, its normal unknown: a third of
-/// the stiffness along each axis.
-pub(crate) fn add_possible_blocks(contacts: &Contacts, skin: &Skin, out: &mut [Matrix]) {
-    let stiffness = Matrix::from_diagonal_element(contacts.penalty * contacts.area / 3.0);
+/// Adds each node's share of the stiffness as if every pair pressed, lumped so that it
+/// bounds what the pairs do together.
+pub(crate) fn add_possible_blocks(
+    contacts: &Contacts,
+    skin: &Skin,
+    positions: &[f64],
+    obstacles: &[Obstacle],
+    out: &mut [Matrix],
+) {
     for pair in &contacts.pairs {
+        let place = skin_position(skin, positions, pair.point as usize);
+        let normal = obstacles[pair.obstacle as usize].gap(&place).normal;
+        let stiffness = turning(&normal) * (contacts.penalty * contacts.area);
         for (node, weight) in skin.terms(pair.point as usize) {
             out[node] += stiffness * weight.abs();
         }
     }
+}
+
+/// A contact's stiffness along its normal, with a share across it: the normal turns a
+/// little before contacts are looked for again.
+pub(crate) fn turning(normal: &Vector) -> Matrix {
+    const SHARE: f64 = 0.1;
+    normal * normal.transpose() + Matrix::from_diagonal_element(SHARE)
 }
 
 /// Where a skin point is (m), or moves.

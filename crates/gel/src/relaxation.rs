@@ -1,6 +1,8 @@
 use crate::bead::Bead;
 use crate::contact::{self, Contacts, skin_position};
 use crate::elastic::{Elastic, Linearisation};
+use crate::gel_contact::Facing;
+use crate::lattice::Embedded;
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
@@ -15,9 +17,18 @@ pub struct Relaxation {
     velocities: Vec<f64>,
     /// Net force on each node with the opposite sign: the energy's gradient (N).
     gradient: Vec<f64>,
-    /// One per node.
-    masses: Vec<f64>,
+    /// One per node: heavy only along the normals of the contacts it may make, so that
+    /// the skin slides as freely as the gel inside.
+    masses: Vec<Matrix>,
+    /// Their inverses.
+    mobilities: Vec<Matrix>,
     contacts: Contacts,
+    /// Where the bead comes near itself.
+    folds: Facing,
+    /// Longest way of a node since the folds were last measured (m).
+    moved: f64,
+    /// No skin point is further from the bead's centre than this (m).
+    extent: f64,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
     drift: Vector,
     /// Sum of the stiffnesses of the points that press (N/m).
@@ -27,6 +38,12 @@ pub struct Relaxation {
     smallest_volume_ratio: f64,
     largest_contact_force: f64,
     contact_sum: Vector,
+}
+
+/// A force with a share turned against the motion.
+#[inline]
+fn damped(force: f64, velocity: f64, damping: f64) -> f64 {
+    if force * velocity > 0.0 { force * (1.0 - damping) } else { force * (1.0 + damping) }
 }
 
 /// What one skin point does to an obstacle.
@@ -52,11 +69,13 @@ const MASS_FACTOR: f64 = 2.0;
 /// nothing corrects the pressures for the penetration they take.
 const PENALTY: f64 = 64.0;
 
-/// Mean penetration that the contact pressures may take, in swollen voxel edges: where
+/// Mean penetration that the contact pressures may take, in swollen diameters: where
 /// they rise beyond the gel's stiffness, the contact stiffens with them.
-const MEAN_DEPTH: f64 = 0.005;
-/// By no more than this factor.
-const STIFFENING: f64 = 4.0;
+const MEAN_DEPTH: f64 = 1e-4;
+
+/// Longest way of a node over its longest way along one axis, for nodes that move along
+/// with the bead.
+const AXES_TO_LENGTH: f64 = 2.0 * 1.74;
 
 /// Mass of the bead as a whole over the stiffness of its contacts.
 const DRIFT_MASS_FACTOR: f64 = 4.0;
@@ -68,8 +87,12 @@ impl Relaxation {
         Self {
             velocities: vec![0.0; values],
             gradient: vec![0.0; values],
-            masses: vec![1.0; values / 3],
+            masses: vec![Matrix::identity(); values / 3],
+            mobilities: vec![Matrix::identity(); values / 3],
             contacts: Contacts::default(),
+            folds: Facing::default(),
+            moved: 0.0,
+            extent: bead.extent(),
             drift: Vector::zeros(),
             pressing_stiffness: 0.0,
             mean_pressure: 0.0,
@@ -87,7 +110,14 @@ impl Relaxation {
 
     /// Grows the bead about its centre.
     pub fn grow(&mut self, by: f64) {
+        self.moved += (by - 1.0) * self.extent;
+        self.extent *= by;
         self.bead.scale(by);
+    }
+
+    /// A bound on the distance of the skin from the bead's centre (m).
+    pub fn extent(&self) -> f64 {
+        self.extent
     }
 
     /// Finds the skin points within `reach` (m) of an obstacle and renews the node
@@ -96,8 +126,8 @@ impl Relaxation {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
-        let least = PENALTY * gel.moduli().plane_strain();
-        let stiffness = (self.mean_pressure / MEAN_DEPTH).clamp(least, STIFFENING * least);
+        let deepest = MEAN_DEPTH * lattice.across() as f64;
+        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(self.mean_pressure / deepest);
         self.contacts.penalty = stiffness / size;
         self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
         let mut state = Linearisation::default();
@@ -107,10 +137,20 @@ impl Relaxation {
         elastic.add_diagonal_blocks(&state, &mut blocks);
         // All points within reach count, so that none turns out too light for the
         // contact it is about to make.
-        contact::add_possible_blocks(&self.contacts, &lattice.skin, &mut blocks);
-        for (mass, block) in self.masses.iter_mut().zip(&blocks) {
-            *mass = MASS_FACTOR * block.trace().max(f64::MIN_POSITIVE);
+        for block in &mut blocks {
+            *block = Matrix::from_diagonal_element(block.trace().max(f64::MIN_POSITIVE));
         }
+        let positions = &self.bead.positions;
+        contact::add_possible_blocks(&self.contacts, &lattice.skin, positions, obstacles, &mut blocks);
+        for (mass, block) in self.masses.iter_mut().zip(&blocks) {
+            *mass = block * MASS_FACTOR;
+        }
+        self.mobilities.clear();
+        self.extent = self.bead.extent();
+        let folds = Facing::own(&self.bead, reach);
+        self.weigh_probes(&folds);
+        self.weigh_hosts(&folds);
+        self.folds = folds;
     }
 
     /// Net forces on the nodes, and what the skin does to the obstacles.
@@ -139,10 +179,19 @@ impl Relaxation {
         self.mean_pressure = if area > 0.0 { pressed / area } else { 0.0 };
         self.largest_contact_force = sums.iter().map(Vector::norm).fold(0.0, f64::max);
         self.contact_sum = sums.iter().sum();
+        self.press_folds();
     }
 
-    pub(crate) fn skin_place(&self, point: u32) -> Vector {
-        skin_position(&self.bead.lattice().skin, &self.bead.positions, point as usize)
+    /// Lets the bead press on itself.
+    fn press_folds(&mut self) {
+        let stiffness = 0.5 * self.point_stiffness();
+        let moved = 2.0 * std::mem::take(&mut self.moved);
+        let mut folds = std::mem::take(&mut self.folds);
+        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, stiffness, moved) {
+            self.pull(press.point, press.force);
+            self.pull_at(&press.at, -press.force);
+        }
+        self.folds = folds;
     }
 
     /// Pressure per penetration of a skin point times its area (N/m).
@@ -150,29 +199,54 @@ impl Relaxation {
         self.contacts.penalty * self.contacts.area
     }
 
-    /// Adds a force (N) on a skin point, and its stiffness (N/m).
-    pub(crate) fn pull(&mut self, point: u32, force: Vector, stiffness: f64) {
-        let stride = self.masses.len();
+    /// Adds a force (N) on a skin point.
+    pub(crate) fn pull(&mut self, point: u32, force: Vector) {
         let lattice = self.bead.shared_lattice();
-        for (node, weight) in lattice.skin.terms(point as usize) {
+        self.pull_nodes(lattice.skin.terms(point as usize), force);
+    }
+
+    /// Adds a force (N) on a place in the gel.
+    pub(crate) fn pull_at(&mut self, at: &Embedded, force: Vector) {
+        self.pull_nodes(self.bead.lattice().embedded_terms(at).into_iter(), force);
+    }
+
+    fn pull_nodes(&mut self, terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
+        let stride = self.masses.len();
+        for (node, weight) in terms {
             for axis in 0..3 {
                 self.gradient[axis * stride + node] -= weight * force[axis];
             }
         }
-        self.pressing_stiffness += stiffness;
     }
 
-    /// Makes the nodes behind a skin point heavy enough for a contact of its stiffness.
-    pub(crate) fn weigh(&mut self, point: u32) {
-        let stiffness = self.point_stiffness();
+    /// Makes the nodes behind skin points heavy enough for the contacts they may make.
+    pub(crate) fn weigh_probes(&mut self, facing: &Facing) {
         let lattice = self.bead.shared_lattice();
-        for (node, weight) in lattice.skin.terms(point as usize) {
-            self.masses[node] += MASS_FACTOR * stiffness * weight.abs();
+        for (point, _, normal) in facing.possible() {
+            self.weigh(lattice.skin.terms(point as usize), normal);
         }
     }
 
-    /// Counts a neighbouring bead's force (N) among the contact forces.
-    pub(crate) fn note_contact(&mut self, force: Vector) {
+    /// Makes the nodes behind places in the gel heavy enough for the contacts they may take.
+    pub(crate) fn weigh_hosts(&mut self, facing: &Facing) {
+        let lattice = self.bead.shared_lattice();
+        for (_, at, normal) in facing.possible() {
+            self.weigh(lattice.embedded_terms(at).into_iter(), normal);
+        }
+    }
+
+    fn weigh(&mut self, terms: impl Iterator<Item = (usize, f64)>, normal: &Vector) {
+        let mass = contact::turning(normal) * (MASS_FACTOR * self.point_stiffness());
+        for (node, weight) in terms {
+            self.masses[node] += mass * weight.abs();
+        }
+        self.mobilities.clear();
+    }
+
+    /// Counts a neighbouring bead's force (N), with its stiffness (N/m), among the
+    /// contact forces.
+    pub(crate) fn note_contact(&mut self, force: Vector, stiffness: f64) {
+        self.pressing_stiffness += stiffness;
         self.contact_sum -= force;
         self.largest_contact_force = self.largest_contact_force.max(force.norm());
     }
@@ -187,27 +261,30 @@ impl Relaxation {
         // it is stiff: as a whole it answers with a mass of its own, like a grain.
         let mass = DRIFT_MASS_FACTOR * self.pressing_stiffness;
         for axis in 0..3 {
-            if mass > 0.0 {
-                // The grains' net force is the opposite of the bead's.
-                let force = -self.contact_sum[axis];
-                let share = if force * self.drift[axis] > 0.0 { 1.0 - damping } else { 1.0 + damping };
-                self.drift[axis] += share * force / mass;
-            } else {
-                self.drift[axis] = 0.0;
-            }
-            let drift = self.drift[axis];
-            let range = axis * stride..(axis + 1) * stride;
-            let (x, v) = (&mut self.bead.positions[range.clone()], &mut self.velocities[range.clone()]);
-            for (((x, v), g), m) in x.iter_mut().zip(v).zip(&self.gradient[range]).zip(&self.masses) {
-                let force = -g;
-                let share = if force * *v > 0.0 { 1.0 - damping } else { 1.0 + damping };
-                *v += share * force / m;
-                *x += *v + drift;
-                longest = longest.max(v.abs());
-            }
-            self.bead.positions[axis * stride + nodes..(axis + 1) * stride].fill(0.0);
-            longest = longest.max(drift.abs());
+            // The grains' net force is the opposite of the bead's.
+            let force = -self.contact_sum[axis];
+            let drift = &mut self.drift[axis];
+            *drift = if mass > 0.0 { *drift + damped(force, *drift, damping) / mass } else { 0.0 };
         }
+        if self.mobilities.is_empty() {
+            let inverse = |mass: &Matrix| mass.try_inverse().unwrap_or_default();
+            self.mobilities.extend(self.masses.iter().map(inverse));
+        }
+        let (gradient, drift) = (&self.gradient, self.drift);
+        for (node, mobility) in self.mobilities[..nodes].iter().enumerate() {
+            let places = [node, stride + node, 2 * stride + node];
+            let velocity = places.map(|place| self.velocities[place]);
+            let force = Vector::from_fn(|axis, _| damped(-gradient[places[axis]], velocity[axis], damping));
+            let velocity = Vector::from(velocity) + mobility * force;
+            for axis in 0..3 {
+                self.velocities[places[axis]] = velocity[axis];
+                self.bead.positions[places[axis]] += velocity[axis] + drift[axis];
+            }
+            longest = longest.max(velocity.amax());
+        }
+        longest += drift.amax();
+        self.moved += AXES_TO_LENGTH * longest;
+        self.extent += AXES_TO_LENGTH * longest;
         longest
     }
 
@@ -227,6 +304,8 @@ impl Relaxation {
         let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
         self.bead = bead;
         self.contacts = solver.contacts;
+        self.folds = Facing::own(&self.bead, 0.0);
+        self.extent = self.bead.extent();
         self.compute_forces(gel, obstacles, |_| ());
         Ok(equilibrium)
     }
@@ -278,6 +357,11 @@ impl Relaxation {
             })
             .sum();
         depth.max(0.0) * self.contacts.area
+    }
+
+    /// Volume by which the bead overlaps itself (m³).
+    pub fn folded_volume(&self) -> f64 {
+        0.5 * self.folds.overlap
     }
 
     fn force_scale(&self, gel: &Gel) -> f64 {

@@ -1,9 +1,11 @@
 mod cut_cell;
+mod embed;
 mod locate;
 mod skin;
 
 use crate::lanes::WIDTH;
 use cut_cell::CutCell;
+pub(crate) use embed::Embedded;
 pub use locate::{Locator, MaterialPoint};
 pub(crate) use skin::Skin;
 use std::collections::HashMap;
@@ -25,6 +27,8 @@ pub struct Lattice {
     pub(crate) runs: Vec<Run>,
     /// Place of each voxel on the grid.
     voxels: Vec<[u16; 3]>,
+    /// Each voxel's neighbours at its low and high face along x, y and z.
+    neighbours: Vec<[u32; 6]>,
     /// Where each voxel lies in the columns below, which pad every run with empty
     /// voxels to whole groups of lanes.
     pub(crate) slots: Vec<u32>,
@@ -84,7 +88,8 @@ impl Lattice {
             }
             column
         };
-        let voxel_at = voxels.iter().copied().zip(0..).collect();
+        let voxel_at: HashMap<[u16; 3], u32> = voxels.iter().copied().zip(0..).collect();
+        let neighbours = voxels.iter().map(|voxel| neighbours_of(voxel, &voxel_at)).collect();
         let skin = Skin::new(across, &cells, &voxel_at, &node_at);
         Self {
             across,
@@ -94,6 +99,7 @@ impl Lattice {
             mixed: [0, 1, 2].map(|axis| column(MEAN_MIXED[axis])),
             nodes,
             voxels,
+            neighbours,
             slots,
             skin,
         }
@@ -148,14 +154,12 @@ impl Lattice {
     /// Pairs of voxels that share a face, with the axis of the face's normal:
     /// the bonds. The first voxel is on the low side.
     pub fn bonds(&self) -> Vec<(usize, usize, usize)> {
-        let index: HashMap<[u16; 3], usize> = self.voxels.iter().copied().zip(0..).collect();
         let mut bonds = Vec::with_capacity(3 * self.voxels.len());
-        for (voxel, &place) in self.voxels.iter().enumerate() {
+        for (voxel, neighbours) in self.neighbours.iter().enumerate() {
             for axis in 0..3 {
-                let mut next = place;
-                next[axis] += 1;
-                if let Some(&neighbour) = index.get(&next) {
-                    bonds.push((voxel, neighbour, axis));
+                let next = neighbours[2 * axis + 1];
+                if next != embed::NO_VOXEL {
+                    bonds.push((voxel, next as usize, axis));
                 }
             }
         }
@@ -247,6 +251,15 @@ fn nearest_kept(place: [u16; 3], kept: &HashMap<[u16; 3], CutCell>) -> Vec<([u16
         }
     }
     nearest
+}
+
+fn neighbours_of(voxel: &[u16; 3], voxel_at: &HashMap<[u16; 3], u32>) -> [u32; 6] {
+    std::array::from_fn(|face| {
+        let mut there = *voxel;
+        let axis = face / 2;
+        there[axis] = if face % 2 == 0 { there[axis].wrapping_sub(1) } else { there[axis] + 1 };
+        voxel_at.get(&there).copied().unwrap_or(embed::NO_VOXEL)
+    })
 }
 
 type NodeIndex = HashMap<[u16; 3], usize>;

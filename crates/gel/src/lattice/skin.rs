@@ -1,4 +1,5 @@
 use super::{CutCell, NodeIndex, corner_places};
+use bedswell_geometry::Vector;
 use std::collections::HashMap;
 use std::f64::consts::{FRAC_PI_2, PI};
 
@@ -18,8 +19,8 @@ const FLATTENING: f64 = 0.2;
 /// node positions.
 #[derive(Debug)]
 pub(crate) struct Skin {
-    /// Direction of each point from the centre when dry.
-    pub(crate) direction: Vec<[f64; 3]>,
+    /// Where each point is when dry, from the ball's centre (voxel edges).
+    pub(crate) place: Vec<[f64; 3]>,
     /// Dry area of every point (voxel edges squared).
     pub(crate) area: f64,
     /// The voxel that carries each point.
@@ -38,17 +39,18 @@ impl Skin {
         node_at: &NodeIndex,
     ) -> Self {
         let half = 0.5 * across as f64;
-        let direction = directions(across);
+        let place: Vec<[f64; 3]> =
+            directions(across).into_iter().map(|direction| direction.map(|c| half * c)).collect();
         let mut skin = Self {
-            area: 4.0 * PI * half * half / direction.len() as f64,
-            host: Vec::with_capacity(direction.len()),
+            area: 4.0 * PI * half * half / place.len() as f64,
+            host: Vec::with_capacity(place.len()),
             start: vec![0],
             node: Vec::new(),
             weight: Vec::new(),
-            direction,
+            place,
         };
-        for point in 0..skin.direction.len() {
-            let place = skin.direction[point].map(|c| half * (1.0 + c));
+        for point in 0..skin.place.len() {
+            let place = skin.place[point].map(|c| half + c);
             let voxel = host(place, |voxel| cells.contains_key(voxel));
             skin.host.push(voxel_at[&voxel]);
             for (node, weight) in combination(place, voxel, node_at) {
@@ -62,7 +64,12 @@ impl Skin {
 
     /// Number of points.
     pub(crate) fn len(&self) -> usize {
-        self.direction.len()
+        self.place.len()
+    }
+
+    /// Distance of two points when dry (voxel edges).
+    pub(crate) fn apart_when_dry(&self, a: usize, b: usize) -> f64 {
+        (Vector::from(self.place[a]) - Vector::from(self.place[b])).norm()
     }
 
     /// Nodes and weights of a point.
@@ -193,7 +200,7 @@ mod tests {
                 }
             }
             for axis in 0..3 {
-                let there = 8.0 * lattice.skin.direction[point][axis] + 1.0;
+                let there = lattice.skin.place[point][axis] + 1.0;
                 assert_relative_eq!(place[axis], there, epsilon = 1e-12);
             }
         }

@@ -79,8 +79,7 @@ pub(crate) fn march(
             let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
             march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
-        measure::guard(&march.beads, &march.around, &march.grains)
-            .map_err(|reason| RunError::March { increment, reason })?;
+        measure::guard(&march).map_err(|reason| RunError::March { increment, reason })?;
         let step = watch.step(increment, &stage, &march.beads, &march.grains, march.quality(&stage));
         history.push(step);
         let mut onwards = observer.step(&step, count);
@@ -126,6 +125,8 @@ pub(super) struct March {
     hold_beads: bool,
     /// Distance moved since contacts were last looked for (m).
     travel: f64,
+    /// Travel when contacts between beads were last measured (m).
+    measured: f64,
 }
 
 /// Two beads that may touch.
@@ -134,7 +135,7 @@ pub(super) struct Pair {
     pub(super) second: usize,
     /// Shift of the second to the image that the first sees (m).
     shift: Vector,
-    contact: BeadContact,
+    pub(super) contact: BeadContact,
     /// Force on the first (N).
     pub(super) force: Vector,
 }
@@ -151,6 +152,7 @@ impl March {
             beads: bed.beads.iter().map(bead).collect(),
             around: vec![Neighbourhood::default(); bed.beads.len()],
             travel: f64::INFINITY,
+            measured: 0.0,
             pairs: Vec::new(),
             hold_beads: scene.beads.held,
         }
@@ -167,13 +169,13 @@ impl March {
         if !grown.touches() {
             grown.grow(growth);
         }
-        around.extend(&grown, &self.grains, 0.5 * grown.bead().extent());
+        around.extend(&grown, &self.grains, 0.5 * grown.extent());
         let tolerance = if last {
             Tolerance { held: self.hold_beads, ..Tolerance::default() }
         } else {
             Tolerance { residual: 1e-3, corrections: 0, held: self.hold_beads }
         };
-        let settled = grown.settle(gel, &around.obstacles, tolerance).is_ok();
+        let settled = grown.settle(gel, &around.obstacles, tolerance).is_ok() && grown.folded_volume() == 0.0;
         if settled {
             *bead = grown;
             self.travel = f64::INFINITY;
@@ -190,7 +192,7 @@ impl March {
             let stage = gel.limited_to(stretch);
             for bead in &mut self.beads {
                 bead.grow(growth);
-                self.travel += (growth - 1.0) * bead.bead().extent();
+                self.travel += (growth - 1.0) * bead.extent();
             }
             self.step(&stage);
         }
@@ -248,6 +250,7 @@ impl March {
         let reach = REACH * size;
         if self.travel > 0.5 * reach {
             self.travel = 0.0;
+            self.measured = 0.0;
             for (bead, around) in self.beads.iter_mut().zip(&mut self.around) {
                 around.extend(bead, &self.grains, 2.0 * reach);
                 bead.renew(gel, &around.obstacles, reach);
@@ -260,21 +263,27 @@ impl March {
             let grains = &mut self.grains;
             bead.compute_forces(gel, &around.obstacles, |push| around.pass_on(push, grains));
         }
+        let moved = 2.0 * (self.travel - self.measured);
+        self.measured = self.travel;
         for Pair { first, second, shift, contact, force } in &mut self.pairs {
             let (before, after) = self.beads.split_at_mut(*second);
-            *force = contact.press(&mut before[*first], &mut after[0], *shift);
+            *force = contact.press(&mut before[*first], &mut after[0], *shift, moved);
         }
     }
 
     /// Finds the beads within `reach` (m) of each other.
     fn pair_up(&mut self, reach: f64) {
         self.pairs.clear();
+        let centres: Vec<Vector> = self.beads.iter().map(|bead| bead.bead().centre()).collect();
         for second in 1..self.beads.len() {
             for first in 0..second {
+                let apart = self.grains.cell.separation(&centres[first], &centres[second]);
                 let (before, after) = self.beads.split_at_mut(second);
                 let (one, other) = (&mut before[first], &mut after[0]);
-                let (centre, towards) = (one.bead().centre(), other.bead().centre());
-                let shift = centre + self.grains.cell.separation(&centre, &towards) - towards;
+                if apart.norm() > one.extent() + other.extent() + reach {
+                    continue;
+                }
+                let shift = centres[first] + apart - centres[second];
                 let contact = BeadContact::find(one, other, shift, reach);
                 if !contact.is_empty() {
                     self.pairs.push(Pair { first, second, shift, contact, force: Vector::zeros() });
@@ -308,6 +317,6 @@ impl March {
     }
 
     fn quality(&self, gel: &Gel) -> Quality {
-        Quality { swallowed: measure::swallowed(&self.beads, &self.around), ..self.rest_quality(gel) }
+        Quality { swallowed: measure::swallowed(self), ..self.rest_quality(gel) }
     }
 }

@@ -1,3 +1,4 @@
+use super::march::March;
 use super::neighbourhood::Neighbourhood;
 use crate::{BeadOutcome, Quality, Scene, Step, tear_probability};
 use bedswell_gel::{Gel, Relaxation, StressField, asphericity, uptake_of_volume_ratio};
@@ -100,51 +101,45 @@ impl Watch<'_> {
 }
 
 /// Stops a march whose state the model does not cover.
-pub(super) fn guard(beads: &[Relaxation], around: &[Neighbourhood], grains: &Assembly) -> Result<(), String> {
-    for (index, bead) in beads.iter().enumerate() {
+pub(super) fn guard(march: &March) -> Result<(), String> {
+    let cell = &march.grains.cell;
+    for (index, bead) in march.beads.iter().enumerate() {
         let width = 2.0 * bead.bead().extent();
         for axis in 0..2 {
-            if grains.cell.periodic[axis] && width > 0.9 * grains.cell.size[axis] {
+            if cell.periodic[axis] && width > 0.9 * cell.size[axis] {
                 return Err(format!(
                     "bead {index} has grown to {width:.3e} m and meets its own image in a cell {:.3e} m wide: give the bed more grains",
-                    grains.cell.size[axis]
+                    cell.size[axis]
                 ));
             }
         }
-        if let Some(place) = bead.bead().self_contact() {
-            return Err(format!(
-                "bead {index} would have to press on itself behind a grain, at ({:.3e}, {:.3e}, {:.3e}) m; such contact is not modelled: lower the lid stress or take a stiffer gel",
-                place.x, place.y, place.z
-            ));
-        }
     }
-    let share = swallowed(beads, around);
+    let share = swallowed(march);
     if share > SWALLOWED {
         return Err(format!(
-            "{:.2} % of the gel lies inside grains: the state is void; take more increments or more voxels across",
+            "{:.2} % of the gel lies inside grains or other gel: the state is void; take more increments or more voxels across",
             100.0 * share
         ));
     }
     Ok(())
 }
 
-/// Share of the beads' volume that lies inside grains: what the skin has penetrated,
-/// and whole voxels that a grain has swallowed.
-pub(super) fn swallowed(beads: &[Relaxation], around: &[Neighbourhood]) -> f64 {
-    let mut inside = 0.0;
+/// Share of the beads' volume that lies inside grains, other beads or the bead itself:
+/// what the skin has penetrated, and whole voxels that a grain has swallowed.
+pub(super) fn swallowed(march: &March) -> f64 {
+    let mut inside: f64 = march.pairs.iter().map(|pair| pair.contact.overlap()).sum();
     let mut total = 0.0;
-    for (relaxing, around) in beads.iter().zip(around) {
-        inside += relaxing.penetrated_volume(&around.obstacles);
+    for (relaxing, around) in march.beads.iter().zip(&march.around) {
+        inside += relaxing.penetrated_volume(&around.obstacles) + relaxing.folded_volume();
         let bead = relaxing.bead();
-        let volume = bead.volume();
-        let size = (volume / bead.dry_volume()).cbrt() * bead.voxel_edge();
+        let size = bead.swollen_edge();
         for voxel in 0..bead.lattice().voxel_count() {
             let place = bead.voxel_centre(voxel);
             if around.obstacles.iter().any(|obstacle| obstacle.distance(&place) < -size) {
                 inside += size.powi(3);
             }
         }
-        total += volume;
+        total += bead.volume();
     }
     if total > 0.0 { inside / total } else { 0.0 }
 }

@@ -1,0 +1,207 @@
+//! Contact of gel with gel: of two beads, or of a bead with itself behind and between
+//! grains.
+//!
+//! A skin point that has entered gel lies at some place of that gel's dry ball, whose
+//! distance to the dry surface is known exactly. Carried along by the deformation, that
+//! distance is the penetration, smooth wherever the point slides. The reaction goes to
+//! the nodes that carry the place, so that force and torque balance exactly.
+
+use crate::bead::Bead;
+use crate::contact::skin_position;
+use crate::lattice::Embedded;
+use crate::relaxation::Relaxation;
+use bedswell_geometry::Vector;
+use kiddo::{ImmutableKdTree, SquaredEuclidean};
+
+/// Skin points are looked for within this distance (swollen voxel edges): stretched
+/// skin has its points further apart than free skin.
+const SEARCH: f64 = 0.9;
+/// A bead's own gel nearer than this to a skin point when dry (voxel edges) is that
+/// point's own skin, not a fold.
+const OWN_SKIN: f64 = 2.5;
+/// Share of a gap that may be closed before it is measured again.
+const TRUSTED: f64 = 0.5;
+
+/// Where the skins of two beads are near each other, in both directions: both skins
+/// are probed, each with half the pressure.
+#[derive(Clone, Debug, Default)]
+pub struct BeadContact {
+    first_in_second: Facing,
+    second_in_first: Facing,
+}
+
+/// The skin points of one bead near the gel of another, or of its own.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Facing {
+    probes: Vec<Probe>,
+    /// Volume by which the gels overlap (m³), counted from this side.
+    pub(crate) overlap: f64,
+}
+
+#[derive(Clone, Copy, Debug)]
+struct Probe {
+    point: u32,
+    at: Embedded,
+    /// Outward normal of the gel's surface there.
+    outward: Vector,
+    /// What may be moved before the point can touch (m).
+    clearance: f64,
+}
+
+/// A force (N) on a skin point from gel that it has entered.
+pub(crate) struct Press {
+    pub(crate) point: u32,
+    pub(crate) at: Embedded,
+    pub(crate) force: Vector,
+}
+
+impl BeadContact {
+    /// Finds the places where the skins come within `reach` (m); the second bead is
+    /// seen `shift` (m) from where its coordinates say (a periodic image).
+    pub fn find(first: &mut Relaxation, second: &mut Relaxation, shift: Vector, reach: f64) -> Self {
+        let first_in_second = Facing::look(first.bead(), second.bead(), -shift, reach, false);
+        let second_in_first = Facing::look(second.bead(), first.bead(), shift, reach, false);
+        first.weigh_probes(&first_in_second);
+        second.weigh_hosts(&first_in_second);
+        second.weigh_probes(&second_in_first);
+        first.weigh_hosts(&second_in_first);
+        Self { first_in_second, second_in_first }
+    }
+
+    /// Whether the beads are out of reach of each other.
+    pub fn is_empty(&self) -> bool {
+        self.first_in_second.probes.is_empty() && self.second_in_first.probes.is_empty()
+    }
+
+    /// Volume by which the two beads overlap (m³).
+    pub fn overlap(&self) -> f64 {
+        0.5 * (self.first_in_second.overlap + self.second_in_first.overlap)
+    }
+
+    /// Adds the forces of the two beads on each other, which have come nearer by at most
+    /// `moved` (m) since the last call. Returns the force (N) on the first.
+    pub fn press(&mut self, first: &mut Relaxation, second: &mut Relaxation, shift: Vector, moved: f64) -> Vector {
+        let mut total = Vector::zeros();
+        let mut stiffnesses = 0.0;
+        for (facing, from_first) in [(&mut self.first_in_second, true), (&mut self.second_in_first, false)] {
+            let (probing, faced, seen) =
+                if from_first { (&mut *first, &mut *second, -shift) } else { (&mut *second, &mut *first, shift) };
+            let stiffness = 0.5 * probing.point_stiffness();
+            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, stiffness, moved);
+            for press in &presses {
+                probing.pull(press.point, press.force);
+                faced.pull_at(&press.at, -press.force);
+                stiffnesses += stiffness;
+                total += if from_first { press.force } else { -press.force };
+            }
+        }
+        first.note_contact(total, stiffnesses);
+        second.note_contact(-total, stiffnesses);
+        total
+    }
+}
+
+impl Facing {
+    /// The points of a bead within `reach` (m) of its own gel from elsewhere.
+    pub(crate) fn own(bead: &Bead, reach: f64) -> Self {
+        Self::look(bead, bead, Vector::zeros(), reach, true)
+    }
+
+    /// The points of `probing` within `reach` (m) of the gel of `faced`; `probing` is
+    /// seen `seen` (m) from where its coordinates say.
+    fn look(probing: &Bead, faced: &Bead, seen: Vector, reach: f64, own: bool) -> Self {
+        let lattice = faced.lattice();
+        let places: Vec<[f64; 3]> = skin_places(faced).map(Into::into).collect();
+        let Ok(tree) = ImmutableKdTree::<f64, 3>::new_from_slice(&places) else { return Self::default() };
+        let search = (SEARCH * faced.swollen_edge() + reach).powi(2);
+        let (centre, extent) = (faced.centre(), faced.extent() + reach);
+        let mut probes = Vec::new();
+        for (point, place) in skin_places(probing).enumerate() {
+            let place = place + seen;
+            if !own && (place - centre).norm_squared() > extent * extent {
+                continue;
+            }
+            let query = place.into();
+            let near = if own {
+                let near = tree.query(&query).within::<SquaredEuclidean<f64>>(search).unsorted().execute();
+                near.into_iter()
+                    .filter(|near| lattice.skin.apart_when_dry(point, near.item as usize) > OWN_SKIN)
+                    .min_by(|a, b| a.distance.total_cmp(&b.distance).then(a.item.cmp(&b.item)))
+            } else {
+                let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
+                (near.distance < search).then_some(near)
+            };
+            let Some(near) = near else { continue };
+            let start = lattice.skin_point_in_voxel(near.item as usize);
+            let point = point as u32;
+            if let Some((at, depth, outward)) = sound(faced, &place, point, start, own)
+                && depth > -reach
+            {
+                probes.push(Probe { point, at, outward, clearance: 0.0 });
+            }
+        }
+        Self { probes, overlap: 0.0 }
+    }
+
+    /// The forces on the points that have entered gel, by `stiffness` (N/m). The gels
+    /// have come nearer by at most `moved` (m) since the last call.
+    pub(crate) fn measure(
+        &mut self,
+        probing: &Bead,
+        faced: &Bead,
+        seen: Vector,
+        own: bool,
+        stiffness: f64,
+        moved: f64,
+    ) -> Vec<Press> {
+        let mut presses = Vec::new();
+        let mut depths = 0.0;
+        for probe in &mut self.probes {
+            probe.clearance -= moved;
+            if probe.clearance > 0.0 {
+                continue;
+            }
+            let place = probing.skin_point(probe.point as usize) + seen;
+            let Some((at, depth, outward)) = sound(faced, &place, probe.point, probe.at, own) else {
+                continue;
+            };
+            probe.at = at;
+            if depth > 0.0 {
+                depths += depth;
+                presses.push(Press { point: probe.point, at, force: outward * (stiffness * depth) });
+            } else {
+                probe.clearance = -TRUSTED * depth;
+            }
+        }
+        self.overlap = depths * probing.skin_point_area();
+        presses
+    }
+
+    /// The points that may press, where they may, and the normals there.
+    pub(crate) fn possible(&self) -> impl Iterator<Item = (u32, &Embedded, &Vector)> + '_ {
+        self.probes.iter().map(|probe| (probe.point, &probe.at, &probe.outward))
+    }
+}
+
+/// Where a skin point lies in gel, how deep (m; negative outside), and the outward
+/// normal there.
+fn sound(
+    faced: &Bead,
+    place: &Vector,
+    point: u32,
+    from: Embedded,
+    own: bool,
+) -> Option<(Embedded, f64, Vector)> {
+    let lattice = faced.lattice();
+    let (at, gradient) = lattice.embed(&faced.positions, place, from)?;
+    let found = lattice.depth(&at, &gradient)?;
+    if own && (found.dry - Vector::from(lattice.skin.place[point as usize])).norm() < OWN_SKIN {
+        return None;
+    }
+    Some((at, found.depth, found.outward))
+}
+
+fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {
+    let skin = &bead.lattice().skin;
+    (0..skin.len()).map(|point| skin_position(skin, &bead.positions, point))
+}

@@ -1,0 +1,189 @@
+//! Where in the gel a place in space is.
+
+use super::Lattice;
+use bedswell_geometry::{Matrix, Vector};
+
+/// A place in a voxel: trilinear coordinates from 0 to 1, a little beyond them where
+/// the voxel carries gel of a neighbour that was left out.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Embedded {
+    pub(crate) voxel: u32,
+    pub(crate) local: [f64; 3],
+}
+
+/// How a place lies to the surface of the gel it is in.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Depth {
+    /// Distance to the surface (m), positive inside, exact to first order in it.
+    pub(crate) depth: f64,
+    /// Unit normal of the surface, out of the gel.
+    pub(crate) outward: Vector,
+    /// The place as mixed in, from the ball's centre (voxel edges).
+    pub(crate) dry: Vector,
+}
+
+/// Voxels walked through before a place counts as outside.
+const LONGEST_WALK: usize = 32;
+/// Newton steps for the trilinear coordinates within one voxel.
+const NEWTON_STEPS: usize = 12;
+/// How far beyond a surface voxel its map is trusted (voxel edges).
+const BEYOND: f64 = 1.0;
+/// Accepted error of a place (voxel edges).
+const ROUNDING: f64 = 1e-11;
+
+impl Lattice {
+    /// The place of the gel that lies at `place` (m), sought from a place near it,
+    /// with the map's gradient (m per voxel edge); `None` where there is no gel.
+    pub(crate) fn embed(
+        &self,
+        positions: &[f64],
+        place: &Vector,
+        from: Embedded,
+    ) -> Option<(Embedded, Matrix)> {
+        let mut at = from;
+        for _ in 0..LONGEST_WALK {
+            let corners = self.corner_positions(positions, at.voxel);
+            let gradient = invert(&corners, place, &mut at.local)?;
+            match self.way_out(&at) {
+                Some((neighbour, axis, up)) => {
+                    at.voxel = neighbour;
+                    at.local[axis] += if up { -1.0 } else { 1.0 };
+                }
+                None if at.local.iter().all(|c| (-BEYOND..=1.0 + BEYOND).contains(c)) => {
+                    return Some((at, gradient));
+                }
+                None => return None,
+            }
+        }
+        None
+    }
+
+    /// Where a skin point lies in the voxel that carries it.
+    pub(crate) fn skin_point_in_voxel(&self, point: usize) -> Embedded {
+        let voxel = self.skin.host[point];
+        let half = 0.5 * self.across as f64;
+        let low = self.voxels[voxel as usize];
+        let place = self.skin.place[point];
+        Embedded { voxel, local: std::array::from_fn(|axis| place[axis] + half - f64::from(low[axis])) }
+    }
+
+    /// How an embedded place lies to the surface of the gel.
+    pub(crate) fn depth(&self, at: &Embedded, gradient: &Matrix) -> Option<Depth> {
+        let low = self.voxels[at.voxel as usize];
+        let half = 0.5 * self.across as f64;
+        let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half);
+        let radius = dry.norm();
+        let normal = gradient.try_inverse()?.transpose() * (dry / radius.max(f64::MIN_POSITIVE));
+        let per_metre = normal.norm();
+        (per_metre > 0.0).then(|| Depth {
+            depth: (half - radius) / per_metre,
+            outward: normal / per_metre,
+            dry,
+        })
+    }
+
+    /// The nodes of an embedded place, with weights whose sum is 1.
+    pub(crate) fn embedded_terms(&self, at: &Embedded) -> [(usize, f64); 8] {
+        let nodes = self.corners_of(at.voxel as usize);
+        let [x, y, z] = at.local;
+        let share = |c: f64, high: bool| if high { c } else { 1.0 - c };
+        std::array::from_fn(|corner| {
+            let weight = share(x, corner & 1 > 0) * share(y, corner & 2 > 0) * share(z, corner & 4 > 0);
+            (nodes[corner], weight)
+        })
+    }
+
+    /// The neighbour through the face that a place lies furthest beyond.
+    fn way_out(&self, at: &Embedded) -> Option<(u32, usize, bool)> {
+        let mut best = None;
+        let mut furthest = ROUNDING;
+        for axis in 0..3 {
+            for up in [false, true] {
+                let beyond = if up { at.local[axis] - 1.0 } else { -at.local[axis] };
+                let neighbour = self.neighbours[at.voxel as usize][2 * axis + usize::from(up)];
+                if beyond > furthest && neighbour != NO_VOXEL {
+                    furthest = beyond;
+                    best = Some((neighbour, axis, up));
+                }
+            }
+        }
+        best
+    }
+
+    fn corner_positions(&self, positions: &[f64], voxel: u32) -> [Vector; 8] {
+        let stride = positions.len() / 3;
+        self.corners_of(voxel as usize).map(|node| {
+            Vector::new(positions[node], positions[stride + node], positions[2 * stride + node])
+        })
+    }
+}
+
+/// Stands for a neighbour that is not there.
+pub(super) const NO_VOXEL: u32 = u32::MAX;
+
+/// Finds the trilinear coordinates of a place, from those given; returns the gradient
+/// there. `None` where the map cannot be inverted.
+fn invert(corners: &[Vector; 8], place: &Vector, local: &mut [f64; 3]) -> Option<Matrix> {
+    for _ in 0..NEWTON_STEPS {
+        let [x, y, z] = *local;
+        // Along x, then y, then z.
+        let ends: [Vector; 4] = std::array::from_fn(|k| corners[2 * k].lerp(&corners[2 * k + 1], x));
+        let slopes: [Vector; 4] = std::array::from_fn(|k| corners[2 * k + 1] - corners[2 * k]);
+        let (near, far) = (ends[0].lerp(&ends[1], y), ends[2].lerp(&ends[3], y));
+        let along_x = slopes[0].lerp(&slopes[1], y).lerp(&slopes[2].lerp(&slopes[3], y), z);
+        let along_y = (ends[1] - ends[0]).lerp(&(ends[3] - ends[2]), z);
+        let gradient = Matrix::from_columns(&[along_x, along_y, far - near]);
+        let step = gradient.try_inverse()? * (place - near.lerp(&far, z));
+        for axis in 0..3 {
+            local[axis] = (local[axis] + step[axis].clamp(-1.0, 1.0)).clamp(-2.0, 3.0);
+        }
+        if step.amax() < ROUNDING {
+            return (gradient.determinant() > 0.0).then_some(gradient);
+        }
+    }
+    None
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::bead::Bead;
+    use approx::assert_relative_eq;
+    use std::sync::Arc;
+
+    #[test]
+    fn a_place_is_found_from_afar_in_a_distorted_bead() {
+        let lattice = Arc::new(Lattice::new(12));
+        let mut bead = Bead::new(Arc::clone(&lattice), 6.0, Vector::zeros(), 2.0);
+        let stride = lattice.stride();
+        for node in 0..lattice.node_count() {
+            let [x, y, z] = lattice.node_offset(node);
+            bead.positions[node] += 0.4 * (0.5 * y).sin();
+            bead.positions[stride + node] += 0.05 * x * z;
+        }
+        let far = Embedded { voxel: 0, local: [0.5; 3] };
+        for voxel in [lattice.voxel_count() / 2, lattice.voxel_count() / 3, 40] {
+            let terms = lattice.embedded_terms(&Embedded { voxel: voxel as u32, local: [0.3, 0.6, 0.9] });
+            let place: Vector = terms.iter().map(|&(node, weight)| bead.node(node) * weight).sum();
+            let (at, _) = lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
+            assert_eq!(at.voxel as usize, voxel);
+            for (found, sought) in at.local.into_iter().zip([0.3, 0.6, 0.9]) {
+                assert_relative_eq!(found, sought, epsilon = 1e-9);
+            }
+        }
+    }
+
+    #[test]
+    fn depth_of_a_uniformly_swollen_bead_is_that_of_a_sphere() {
+        let lattice = Arc::new(Lattice::new(12));
+        let bead = Bead::new(Arc::clone(&lattice), 6.0, Vector::zeros(), 3.0);
+        let far = Embedded { voxel: 0, local: [0.5; 3] };
+        for (place, depth) in [(Vector::new(17.5, 0.0, 0.0), 0.5), (Vector::new(9.0, 9.0, 9.0), 18.0 - 243_f64.sqrt())] {
+            let (at, gradient) = lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
+            let found = lattice.depth(&at, &gradient).expect("the map is regular");
+            assert_relative_eq!(found.depth, depth, epsilon = 1e-9);
+            assert_relative_eq!(found.outward, place.normalize(), epsilon = 1e-9);
+        }
+        assert!(lattice.embed(&bead.positions, &Vector::new(30.0, 0.0, 0.0), far).is_none());
+    }
+}
