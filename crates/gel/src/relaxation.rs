@@ -33,8 +33,6 @@ pub struct Relaxation {
     drift: Vector,
     /// Sum of the stiffnesses of the points that press (N/m).
     pressing_stiffness: f64,
-    /// Mean pressure of the points that press (Pa).
-    mean_pressure: f64,
     smallest_volume_ratio: f64,
     largest_contact_force: f64,
     contact_sum: Vector,
@@ -69,9 +67,9 @@ const MASS_FACTOR: f64 = 2.0;
 /// nothing corrects the pressures for the penetration they take.
 const PENALTY: f64 = 64.0;
 
-/// Mean penetration that the contact pressures may take, in swollen diameters: where
-/// they rise beyond the gel's stiffness, the contact stiffens with them.
-const MEAN_DEPTH: f64 = 1e-4;
+/// Penetration, in swollen diameters, that the pressure of a gel held at its volume may
+/// take: where that rises beyond the gel's stiffness, the contact stiffens with it.
+const DEPTH: f64 = 1e-4;
 
 /// Longest way of a node over its longest way along one axis, for nodes that move along
 /// with the bead.
@@ -95,7 +93,6 @@ impl Relaxation {
             extent: bead.extent(),
             drift: Vector::zeros(),
             pressing_stiffness: 0.0,
-            mean_pressure: 0.0,
             smallest_volume_ratio: f64::INFINITY,
             largest_contact_force: 0.0,
             contact_sum: Vector::zeros(),
@@ -126,8 +123,9 @@ impl Relaxation {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
-        let deepest = MEAN_DEPTH * lattice.across() as f64;
-        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(self.mean_pressure / deepest);
+        let deepest = DEPTH * lattice.across() as f64;
+        let pressure = gel.confining_pressure(self.bead.volume() / self.bead.dry_volume());
+        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
         self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
         let mut state = Linearisation::default();
@@ -160,7 +158,7 @@ impl Relaxation {
         let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
         self.smallest_volume_ratio = elastic.add_gradient(&self.bead.positions, &mut self.gradient);
         let stiffness = self.contacts.penalty * self.contacts.area;
-        let (mut pressing, mut pressed) = (0.0, 0.0);
+        let mut pressing = 0.0;
         let mut sums = vec![Vector::zeros(); obstacles.len()];
         self.contacts.push(
             &lattice.skin,
@@ -170,13 +168,10 @@ impl Relaxation {
             |obstacle, force, position| {
                 sums[obstacle] -= force;
                 pressing += stiffness;
-                pressed += force.norm();
                 push(Push { obstacle, force: -force, position, stiffness });
             },
         );
         self.pressing_stiffness = pressing;
-        let area = self.contacts.area * pressing / stiffness;
-        self.mean_pressure = if area > 0.0 { pressed / area } else { 0.0 };
         self.largest_contact_force = sums.iter().map(Vector::norm).fold(0.0, f64::max);
         self.contact_sum = sums.iter().sum();
         self.press_folds();
