@@ -14,6 +14,10 @@ pub struct ContactLaw {
     pub friction: f64,
     /// Tangential over normal stiffness, above 0 and at most 1.
     pub tangential_ratio: f64,
+    /// Rolling friction coefficient, the largest rolling moment over the push and the
+    /// reduced radius; 0 for spheres, more for angular grains. It needs friction.
+    #[serde(default)]
+    pub rolling: f64,
 }
 
 /// Repulsion of two spheres pressed together.
@@ -43,6 +47,9 @@ pub enum ContactLawError {
     /// Negative or non-finite friction.
     #[error("friction coefficient is {0}: it must be 0 or more")]
     Friction(f64),
+    /// Negative or non-finite rolling friction.
+    #[error("rolling friction coefficient is {0}: it must be 0 or more")]
+    Rolling(f64),
     /// Tangential stiffness out of range.
     #[error("tangential over normal stiffness is {0}: it must be above 0 and at most 1")]
     TangentialRatio(f64),
@@ -61,12 +68,24 @@ impl ContactLaw {
             normal: Normal::Linear { modulus: 2.0 * stress / overlap },
             friction,
             tangential_ratio: mindlin_ratio(0.25),
+            rolling: 0.0,
         }
     }
 
     /// The same law with another friction coefficient.
     pub fn with_friction(self, friction: f64) -> Self {
         Self { friction, ..self }
+    }
+
+    /// The same law with another rolling friction coefficient.
+    pub fn with_rolling(self, rolling: f64) -> Self {
+        Self { rolling, ..self }
+    }
+
+    /// Whether contacts resist rolling.
+    #[inline]
+    pub(crate) fn resists_rolling(&self) -> bool {
+        self.friction > 0.0 && self.rolling > 0.0
     }
 
     /// Checks the ranges of the law's numbers.
@@ -83,6 +102,9 @@ impl ContactLaw {
         }
         if !(self.friction.is_finite() && self.friction >= 0.0) {
             return Err(ContactLawError::Friction(self.friction));
+        }
+        if !(self.rolling.is_finite() && self.rolling >= 0.0) {
+            return Err(ContactLawError::Rolling(self.rolling));
         }
         if !(self.tangential_ratio > 0.0 && self.tangential_ratio <= 1.0) {
             return Err(ContactLawError::TangentialRatio(self.tangential_ratio));

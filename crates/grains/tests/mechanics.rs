@@ -13,6 +13,7 @@ fn rough_spheres() -> ContactLaw {
         normal: Normal::Hertz { effective_modulus: 1.0e6 },
         friction: FRICTION,
         tangential_ratio: mindlin_ratio(0.25),
+        rolling: 0.0,
     }
 }
 

@@ -44,7 +44,7 @@ impl Assembly {
     fn push_pairs(&mut self, virial: &mut f64) {
         let Self { cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, .. } = self;
         let list = &mut self.contacts;
-        let (periodic, rough) = (cell.periodic[2], law.friction > 0.0);
+        let (periodic, rough, rolls) = (cell.periodic[2], law.friction > 0.0, law.resists_rolling());
         for pair in &mut list.pairs {
             let (a, b) = (pair.a as usize, pair.b as usize);
             let mut apart = centres[b] - centres[a];
@@ -60,7 +60,8 @@ impl Assembly {
             let distance = square.sqrt().max(f64::MIN_POSITIVE);
             let normal = apart / distance;
             let overlap = reach - distance;
-            let (push, stiffness) = law.normal.push(overlap, radii[a] * radii[b] / reach);
+            let reduced = radii[a] * radii[b] / reach;
+            let (push, stiffness) = law.normal.push(overlap, reduced);
             let mut on_b = normal * push;
             if rough {
                 // Both arms end in one point, so that angular momentum is kept.
@@ -75,6 +76,12 @@ impl Assembly {
                 let twist = normal.cross(&drag);
                 torques[a] += twist * arm_a;
                 torques[b] += twist * arm_b;
+                if rolls {
+                    let turned = if list.slip { spins[b] - spins[a] } else { Vector::zeros() };
+                    let moment = pair.contact.roll(law, &normal, turned, push, stiffness, reduced);
+                    torques[a] += moment;
+                    torques[b] -= moment;
+                }
             }
             pair.contact.force = push;
             forces[a] -= on_b;
@@ -117,6 +124,11 @@ impl Assembly {
                 let drag = touch.contact.rub(&self.law, &normal, moved, push, stiffness);
                 on_plate -= drag;
                 self.torques[grain] += normal.cross(&drag) * arm;
+                if self.law.resists_rolling() {
+                    let turned = if list.slip { -self.spins[grain] } else { Vector::zeros() };
+                    self.torques[grain] +=
+                        touch.contact.roll(&self.law, &normal, turned, push, stiffness, radius);
+                }
             }
             touch.contact.force = push;
             self.forces[grain] -= on_plate;

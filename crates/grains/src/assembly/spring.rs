@@ -7,7 +7,9 @@ pub(super) struct ContactState {
     /// Normal force (N), zero when apart.
     pub(super) force: f64,
     /// Stretch of the tangential spring (m).
-    spring: Vector,
+    pub(super) slide: Vector,
+    /// Bend of the rolling spring (rad).
+    pub(super) bend: Vector,
 }
 
 impl ContactState {
@@ -23,15 +25,45 @@ impl ContactState {
         push: f64,
         stiffness: f64,
     ) -> Vector {
-        let mut spring = self.spring + moved;
-        spring -= normal * normal.dot(&spring);
         let tangential = law.tangential_ratio * stiffness;
-        let limit = law.friction * push / tangential;
-        let square = spring.norm_squared();
-        if square > limit * limit {
-            spring *= limit / square.sqrt();
-        }
-        self.spring = spring;
-        spring * tangential
+        stretch(&mut self.slide, normal, moved, law.friction * push / tangential);
+        self.slide * tangential
+    }
+
+    /// Takes up the relative turn `turned` (rad) of the second body and returns the
+    /// moment (N m) with which it rolls the first one along: a spring that yields at
+    /// `rolling` times the push and the reduced radius R (m), an elastic-plastic rolling
+    /// spring as in Iwashita & Oda 1998 (from memory). As stiff as tangential springs at
+    /// the distance R from the contact, it bends by about as little as they do.
+    #[inline]
+    pub(super) fn roll(
+        &mut self,
+        law: &ContactLaw,
+        normal: &Vector,
+        turned: Vector,
+        push: f64,
+        stiffness: f64,
+        reduced_radius: f64,
+    ) -> Vector {
+        let rigidity = rolling_stiffness(law, stiffness, reduced_radius);
+        stretch(&mut self.bend, normal, turned, law.rolling * push * reduced_radius / rigidity);
+        self.bend * rigidity
+    }
+}
+
+/// Stiffness (N m) of a rolling spring at a contact of the given normal stiffness (N/m).
+#[inline]
+pub(super) fn rolling_stiffness(law: &ContactLaw, stiffness: f64, reduced_radius: f64) -> f64 {
+    law.tangential_ratio * stiffness * reduced_radius * reduced_radius
+}
+
+/// Lengthens a spring in the contact plane, and cuts it down to its limit.
+#[inline]
+fn stretch(spring: &mut Vector, normal: &Vector, by: Vector, limit: f64) {
+    *spring += by;
+    *spring -= normal * normal.dot(spring);
+    let square = spring.norm_squared();
+    if square > limit * limit {
+        *spring *= limit / square.sqrt();
     }
 }
