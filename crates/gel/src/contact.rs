@@ -39,9 +39,13 @@ impl Contacts {
     pub(crate) fn collect(&mut self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle], reach: f64) {
         let old = std::mem::take(&mut self.pairs);
         let mut known = old.iter().filter(|pair| pair.multiplier > 0.0).peekable();
-        for point in 0..skin.len() {
+        for point in 0..skin.len_with_inner() {
             let place = skin_position(skin, positions, point);
             for (obstacle, shape) in obstacles.iter().enumerate() {
+                let near = shape.is_within(&place, reach);
+                if !near && old.is_empty() {
+                    continue;
+                }
                 let key = (point as u32, obstacle as u32);
                 let mut multiplier = 0.0;
                 while let Some(pair) = known.next_if(|pair| (pair.point, pair.obstacle) <= key) {
@@ -49,7 +53,7 @@ impl Contacts {
                         multiplier = pair.multiplier;
                     }
                 }
-                if multiplier > 0.0 || shape.gap(&place).distance < reach {
+                if multiplier > 0.0 || near {
                     self.pairs.push(Pair { point: key.0, obstacle: key.1, multiplier });
                 }
             }
@@ -64,27 +68,27 @@ impl Contacts {
         obstacles: &[Obstacle],
         out: &mut [f64],
     ) {
-        self.push(skin, positions, obstacles, out, |_, _, _| ());
+        self.push(skin, positions, obstacles, out, |_, _| ());
     }
 
     /// Adds the contact forces' share of the energy gradient (N), and visits the
-    /// points that press: obstacle, force (N) on the skin, place (m).
+    /// points that press: obstacle, force (N) on the skin.
     pub(crate) fn push(
         &self,
         skin: &Skin,
         positions: &[f64],
         obstacles: &[Obstacle],
         out: &mut [f64],
-        mut visit: impl FnMut(usize, Vector, Vector),
+        mut visit: impl FnMut(usize, Vector),
     ) {
         let stride = positions.len() / 3;
-        self.for_each_pressing(skin, positions, obstacles, |pair, place, force, _| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, _| {
             for (node, weight) in skin.terms(pair.point as usize) {
                 for axis in 0..3 {
                     out[axis * stride + node] -= weight * force[axis];
                 }
             }
-            visit(pair.obstacle as usize, force, place);
+            visit(pair.obstacle as usize, force);
         });
     }
 
@@ -98,7 +102,7 @@ impl Contacts {
         curved: bool,
     ) -> Vec<Pressing> {
         let mut pressing = Vec::new();
-        self.for_each_pressing(skin, positions, obstacles, |pair, _, force, gap| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, gap| {
             let normal = gap.normal;
             let along = normal * normal.transpose();
             let mut stiffness = along * (self.penalty * self.area);
@@ -122,28 +126,27 @@ impl Contacts {
     /// The force (N) on each obstacle.
     pub(crate) fn forces(&self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle]) -> Vec<Vector> {
         let mut forces = vec![Vector::zeros(); obstacles.len()];
-        self.for_each_pressing(skin, positions, obstacles, |pair, _, force, _| {
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, _| {
             forces[pair.obstacle as usize] -= force;
         });
         forces
     }
 
-    /// Visits the pairs that press: the skin point's place (m), the force (N) on it
-    /// and its gap.
+    /// Visits the pairs that press: the force (N) on the skin point and its gap.
     #[inline]
     fn for_each_pressing(
         &self,
         skin: &Skin,
         positions: &[f64],
         obstacles: &[Obstacle],
-        mut visit: impl FnMut(&Pair, Vector, Vector, Gap),
+        mut visit: impl FnMut(&Pair, Vector, Gap),
     ) {
         for pair in &self.pairs {
             let place = skin_position(skin, positions, pair.point as usize);
             let gap = obstacles[pair.obstacle as usize].gap(&place);
             let pressure = pair.multiplier - self.penalty * gap.distance;
             if pressure > 0.0 {
-                visit(pair, place, gap.normal * (pressure * self.area), gap);
+                visit(pair, gap.normal * (pressure * self.area), gap);
             }
         }
     }

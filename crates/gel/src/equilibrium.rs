@@ -427,7 +427,7 @@ fn precondition(blocks: &[Matrix], modes: &RigidModes, residual: &[f64], out: &m
 fn longest_step(voxel: f64, obstacles: &[Obstacle]) -> f64 {
     obstacles.iter().fold(2.0 * voxel, |least, obstacle| match obstacle {
         Obstacle::Sphere { radius, .. } => least.min(0.25 * radius),
-        Obstacle::Cavity { .. } | Obstacle::Plane { .. } => least,
+        Obstacle::Cavity { .. } | Obstacle::Tube { .. } | Obstacle::Plane { .. } => least,
     })
 }
 

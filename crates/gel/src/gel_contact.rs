@@ -58,14 +58,23 @@ pub(crate) struct Press {
 impl BeadContact {
     /// Finds the places where the skins come within `reach` (m); the second bead is
     /// seen `shift` (m) from where its coordinates say (a periodic image).
-    pub fn find(first: &mut Relaxation, second: &mut Relaxation, shift: Vector, reach: f64) -> Self {
-        let first_in_second = Facing::look(first.bead(), second.bead(), -shift, reach, false);
-        let second_in_first = Facing::look(second.bead(), first.bead(), shift, reach, false);
-        first.weigh_probes(&first_in_second);
-        second.weigh_hosts(&first_in_second);
-        second.weigh_probes(&second_in_first);
-        first.weigh_hosts(&second_in_first);
-        Self { first_in_second, second_in_first }
+    pub fn find(first: &Relaxation, second: &Relaxation, shift: Vector, reach: f64) -> Self {
+        Self {
+            first_in_second: Facing::look(first.bead(), second.bead(), -shift, reach, false),
+            second_in_first: Facing::look(second.bead(), first.bead(), shift, reach, false),
+        }
+    }
+
+    /// Makes the first bead heavy enough for this contact.
+    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation) {
+        first.weigh_probes(&self.first_in_second);
+        first.weigh_hosts(&self.second_in_first, second.point_stiffness());
+    }
+
+    /// Makes the second bead heavy enough for this contact.
+    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation) {
+        second.weigh_probes(&self.second_in_first);
+        second.weigh_hosts(&self.first_in_second, first.point_stiffness());
     }
 
     /// Whether the beads are out of reach of each other.

@@ -23,6 +23,6 @@ pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use gel_contact::BeadContact;
 pub use lattice::{Lattice, Locator, MaterialPoint};
 pub use obstacle::Obstacle;
-pub use relaxation::{Push, Relaxation};
+pub use relaxation::{Load, Relaxation};
 pub use stress::{Bond, StressField, asphericity};
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

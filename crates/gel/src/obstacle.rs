@@ -17,6 +17,13 @@ pub enum Obstacle {
         /// Radius (m).
         radius: f64,
     },
+    /// The wall of an upright round tube that the bead is in.
+    Tube {
+        /// A point on the axis (m).
+        axis: Vector,
+        /// Radius (m).
+        radius: f64,
+    },
     /// A flat wall.
     Plane {
         /// A point on the wall (m).
@@ -44,6 +51,30 @@ impl Obstacle {
         self.gap(place).distance
     }
 
+    /// How far the surface has moved (m) from another place of the same obstacle.
+    pub(crate) fn way(&self, other: &Obstacle) -> f64 {
+        match (self, other) {
+            (
+                Obstacle::Sphere { centre: a, .. } | Obstacle::Cavity { centre: a, .. },
+                Obstacle::Sphere { centre: b, .. } | Obstacle::Cavity { centre: b, .. },
+            ) => (a - b).norm(),
+            (Obstacle::Plane { point: a, normal }, Obstacle::Plane { point: b, .. }) => (a - b).dot(normal).abs(),
+            (Obstacle::Tube { axis: a, .. }, Obstacle::Tube { axis: b, .. }) => (a - b).xy().norm(),
+            _ => f64::INFINITY,
+        }
+    }
+
+    /// Whether a point lies within `reach` (m) of the surface, or inside.
+    #[inline]
+    pub(crate) fn is_within(&self, place: &Vector, reach: f64) -> bool {
+        match self {
+            Obstacle::Sphere { centre, radius } => {
+                (place - centre).norm_squared() < (radius + reach) * (radius + reach)
+            }
+            _ => self.distance(place) < reach,
+        }
+    }
+
     #[inline]
     pub(crate) fn gap(&self, place: &Vector) -> Gap {
         match self {
@@ -56,6 +87,13 @@ impl Obstacle {
                 let offset = place - centre;
                 let distance = offset.norm().max(f64::MIN_POSITIVE);
                 Gap { distance: radius - distance, normal: -offset / distance, curvature: -1.0 / distance }
+            }
+            Obstacle::Tube { axis, radius } => {
+                let mut offset = place - axis;
+                offset.z = 0.0;
+                let distance = offset.norm().max(f64::MIN_POSITIVE);
+                // Curved about the axis only; solvers do without it.
+                Gap { distance: radius - distance, normal: -offset / distance, curvature: 0.0 }
             }
             Obstacle::Plane { point, normal } => {
                 Gap { distance: (place - point).dot(normal), normal: *normal, curvature: 0.0 }

@@ -48,6 +48,8 @@ pub enum Touched {
     Floor,
     /// The lid.
     Lid,
+    /// The pot's wall.
+    Wall,
     /// Another bead.
     Bead(u32),
 }
@@ -89,7 +91,7 @@ impl State {
         let known = |touched: Touched| match touched {
             Touched::Grain(grain) => (grain as usize) < grains,
             Touched::Bead(bead) => (bead as usize) < self.beads.len(),
-            Touched::Floor | Touched::Lid => true,
+            Touched::Floor | Touched::Lid | Touched::Wall => true,
         };
         self.radii.len() == grains
             && self.cell.iter().all(|edge| edge.is_finite() && *edge > 0.0)

@@ -38,6 +38,8 @@ pub struct Lattice {
     pub(crate) first: [Vec<f64>; 3],
     /// Volume means of ηζ, ζξ, ξη over each voxel's gel.
     pub(crate) mixed: [Vec<f64>; 3],
+    /// Share of the gel that each node carries; they sum to 1.
+    pub(crate) node_shares: Vec<f64>,
     pub(crate) skin: Skin,
 }
 
@@ -91,6 +93,7 @@ impl Lattice {
         let voxel_at: HashMap<[u16; 3], u32> = voxels.iter().copied().zip(0..).collect();
         let neighbours = voxels.iter().map(|voxel| neighbours_of(voxel, &voxel_at)).collect();
         let skin = Skin::new(across, &cells, &voxel_at, &node_at);
+        let node_shares = node_shares(&voxels, &cells, &node_at);
         Self {
             across,
             runs,
@@ -101,6 +104,7 @@ impl Lattice {
             voxels,
             neighbours,
             slots,
+            node_shares,
             skin,
         }
     }
@@ -260,6 +264,23 @@ fn neighbours_of(voxel: &[u16; 3], voxel_at: &HashMap<[u16; 3], u32>) -> [u32; 6
         there[axis] = if face % 2 == 0 { there[axis].wrapping_sub(1) } else { there[axis] + 1 };
         voxel_at.get(&there).copied().unwrap_or(embed::NO_VOXEL)
     })
+}
+
+/// Each voxel's gel on its nodes, by the mean place of the gel in the voxel.
+fn node_shares(voxels: &[[u16; 3]], cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) -> Vec<f64> {
+    let mut shares = vec![0.0; node_at.len()];
+    let total: f64 = voxels.iter().map(|voxel| cells[voxel].volume).sum();
+    for voxel in voxels {
+        let cell = &cells[voxel];
+        for (corner, place) in corner_places(voxel).iter().enumerate() {
+            let share = (0..3).map(|axis| {
+                let along = cell.first[axis] / cell.volume;
+                if corner >> axis & 1 == 1 { along } else { 1.0 - along }
+            });
+            shares[node_at[place]] += cell.volume / total * share.product::<f64>();
+        }
+    }
+    shares
 }
 
 type NodeIndex = HashMap<[u16; 3], usize>;

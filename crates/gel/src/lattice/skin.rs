@@ -6,6 +6,9 @@ use std::f64::consts::{FRAC_PI_2, PI};
 /// Distance of neighbouring skin points (voxel edges).
 const SPACING: f64 = 0.4;
 
+/// Inner points lie at least this deep below the dry surface (voxel edges).
+const INNER_DEPTH: f64 = 0.75;
+
 /// Share of the second differences that is added to the trilinear positions.
 ///
 /// A trilinear voxel keeps the dry curvature of the skin inside it and meets a flat
@@ -16,7 +19,8 @@ const SPACING: f64 = 0.4;
 const FLATTENING: f64 = 0.2;
 
 /// Contact points on the true surface of the dry ball, each a fixed combination of
-/// node positions.
+/// node positions. Points inside the gel follow them: where a grain that is small
+/// against the voxels pushes the skin's points aside, they keep it out.
 #[derive(Debug)]
 pub(crate) struct Skin {
     /// Where each point is when dry, from the ball's centre (voxel edges).
@@ -25,7 +29,7 @@ pub(crate) struct Skin {
     pub(crate) area: f64,
     /// The voxel that carries each point.
     pub(crate) host: Vec<u32>,
-    /// Where each point's terms begin.
+    /// Where the terms of each point, and of each inner point after them, begin.
     start: Vec<u32>,
     node: Vec<u32>,
     weight: Vec<f64>,
@@ -59,12 +63,46 @@ impl Skin {
             }
             skin.start.push(skin.node.len() as u32);
         }
+        skin.add_inner_points(half, cells, node_at);
         skin
     }
 
-    /// Number of points.
+    /// Adds the nodes and the voxel centres that lie deep enough in the ball.
+    fn add_inner_points(
+        &mut self,
+        half: f64,
+        cells: &HashMap<[u16; 3], CutCell>,
+        node_at: &NodeIndex,
+    ) {
+        let inside = |place: [f64; 3]| {
+            place.iter().map(|c| (c - half).powi(2)).sum::<f64>().sqrt() < half - INNER_DEPTH
+        };
+        let mut nodes: Vec<_> = node_at.iter().filter(|(place, _)| inside(place.map(f64::from))).collect();
+        nodes.sort_unstable_by_key(|(_, node)| **node);
+        for (_, &node) in nodes {
+            self.node.push(node as u32);
+            self.weight.push(1.0);
+            self.start.push(self.node.len() as u32);
+        }
+        let mut voxels: Vec<_> = cells.keys().filter(|place| inside(place.map(|c| f64::from(c) + 0.5))).collect();
+        voxels.sort_unstable_by_key(|&&[x, y, z]| (z, y, x));
+        for voxel in voxels {
+            for corner in corner_places(voxel) {
+                self.node.push(node_at[&corner] as u32);
+                self.weight.push(0.125);
+            }
+            self.start.push(self.node.len() as u32);
+        }
+    }
+
+    /// Number of points on the skin.
     pub(crate) fn len(&self) -> usize {
         self.place.len()
+    }
+
+    /// Number of points on the skin and inside.
+    pub(crate) fn len_with_inner(&self) -> usize {
+        self.start.len() - 1
     }
 
     /// Distance of two points when dry (voxel edges).
@@ -72,7 +110,7 @@ impl Skin {
         (Vector::from(self.place[a]) - Vector::from(self.place[b])).norm()
     }
 
-    /// Nodes and weights of a point.
+    /// Nodes and weights of a point, on the skin or inside.
     #[inline]
     pub(crate) fn terms(&self, point: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
         let range = self.start[point] as usize..self.start[point + 1] as usize;

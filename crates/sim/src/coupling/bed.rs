@@ -1,4 +1,5 @@
-use super::march::{DAMPING, FIRST_STRETCH};
+use super::bodies::DAMPING;
+use super::march::FIRST_STRETCH;
 use crate::{BeadAmount, RunError, Scene, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Stream, Vector, stream};
 use bedswell_grains::{Assembly, ContactLaw, Lid, PackRequest, Sides, pack};

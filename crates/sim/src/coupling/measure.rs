@@ -1,8 +1,7 @@
-use super::march::March;
-use super::neighbourhood::Neighbourhood;
+use super::bodies::Bodies;
 use crate::{BeadOutcome, Quality, Scene, Step, tear_probability};
 use bedswell_gel::{Gel, Relaxation, StressField, asphericity, uptake_of_volume_ratio};
-use bedswell_geometry::{Vector, stream};
+use bedswell_geometry::stream;
 use bedswell_grains::Assembly;
 use rand::RngExt;
 
@@ -50,22 +49,15 @@ impl Watch<'_> {
     }
 
     /// What became of the beads.
-    pub(super) fn beads(
-        &self,
-        gel: &Gel,
-        beads: &[Relaxation],
-        around: &[Neighbourhood],
-    ) -> Vec<BeadOutcome> {
+    pub(super) fn beads(&self, gel: &Gel, beads: &[Relaxation]) -> Vec<BeadOutcome> {
         beads
             .iter()
-            .zip(around)
             .enumerate()
-            .map(|(index, (bead, around))| {
+            .map(|(index, bead)| {
                 let field = StressField::of(bead.bead(), gel);
                 let (largest_tension_pa, voxel) = field.largest_tension();
                 let half = 0.5 * bead.bead().lattice().across() as f64;
-                let forces: Vec<f64> =
-                    bead.contact_forces(&around.obstacles).iter().map(Vector::norm).collect();
+                let forces: Vec<f64> = bead.loads().iter().map(|load| load.force.norm()).collect();
                 let tear_probability = self.tear_probability(&field);
                 let strength: f64 = stream(self.scene.seed, &[self.number, STRENGTH, index as u64]).random();
                 BeadOutcome {
@@ -76,7 +68,7 @@ impl Watch<'_> {
                     largest_tension_at: bead.bead().lattice().voxel_offset(voxel).map(|c| c / half),
                     tension_q99_pa: field.tension_quantile(0.99),
                     compression_q999_pa: field.compression_quantile(0.999),
-                    largest_contact_force_n: forces.iter().copied().fold(0.0, f64::max),
+                    largest_contact_force_n: bead.largest_contact_force(),
                     contacts: forces.iter().filter(|force| **force > 0.0).count(),
                     asphericity: asphericity(bead.bead(), &field),
                     tear_probability,
@@ -101,9 +93,9 @@ impl Watch<'_> {
 }
 
 /// Stops a march whose state the model does not cover.
-pub(super) fn guard(march: &March) -> Result<(), String> {
-    let cell = &march.grains.cell;
-    for (index, bead) in march.beads.iter().enumerate() {
+pub(super) fn guard(bodies: &Bodies) -> Result<(), String> {
+    let cell = &bodies.grains.cell;
+    for (index, bead) in bodies.beads.iter().enumerate() {
         let width = 2.0 * bead.bead().extent();
         for axis in 0..2 {
             if cell.periodic[axis] && width > 0.9 * cell.size[axis] {
@@ -114,7 +106,7 @@ pub(super) fn guard(march: &March) -> Result<(), String> {
             }
         }
     }
-    let share = swallowed(march);
+    let share = swallowed(bodies);
     if share > SWALLOWED {
         return Err(format!(
             "{:.2} % of the gel lies inside grains or other gel: the state is void; take more increments or more voxels across",
@@ -126,10 +118,10 @@ pub(super) fn guard(march: &March) -> Result<(), String> {
 
 /// Share of the beads' volume that lies inside grains, other beads or the bead itself:
 /// what the skin has penetrated, and whole voxels that a grain has swallowed.
-pub(super) fn swallowed(march: &March) -> f64 {
-    let mut inside: f64 = march.pairs.iter().map(|pair| pair.contact.overlap()).sum();
+pub(super) fn swallowed(bodies: &Bodies) -> f64 {
+    let mut inside: f64 = bodies.pairs.iter().map(|pair| pair.contact.overlap()).sum();
     let mut total = 0.0;
-    for (relaxing, around) in march.beads.iter().zip(&march.around) {
+    for (relaxing, around) in bodies.beads.iter().zip(&bodies.around) {
         inside += relaxing.penetrated_volume(&around.obstacles) + relaxing.folded_volume();
         let bead = relaxing.bead();
         let size = bead.swollen_edge();

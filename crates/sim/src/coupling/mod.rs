@@ -2,10 +2,12 @@
 //! is measured on the way.
 
 mod bed;
+mod bodies;
 mod march;
 mod measure;
 mod neighbourhood;
 mod snapshot;
+mod touching;
 
 pub(crate) use bed::DryBed;
 pub(crate) use march::march;

@@ -1,5 +1,5 @@
 use super::march::March;
-use super::neighbourhood::PLATES;
+use super::neighbourhood::Thing;
 use crate::state::{BeadContact, BeadState, GrainContact, State, Touched};
 use crate::{Scene, Step};
 use bedswell_gel::{Gel, Relaxation, StressField};
@@ -9,15 +9,15 @@ use bedswell_grains::Partner;
 impl March {
     /// What there is to see of this march at `step`.
     pub(super) fn snapshot(&self, scene: &Scene, pack: u64, stage: &Gel, step: Step) -> State {
-        let cell = self.grains.cell;
-        let contacts = self.grains.contacts().filter_map(|contact| {
+        let cell = self.bodies.grains.cell;
+        let contacts = self.bodies.grains.contacts().map(|contact| {
             let on = match contact.partner {
                 Partner::Grain(grain) => Touched::Grain(grain as u32),
                 Partner::Floor => Touched::Floor,
                 Partner::Lid => Touched::Lid,
-                Partner::Wall => return None,
+                Partner::Wall => Touched::Wall,
             };
-            Some(GrainContact { grain: contact.grain as u32, on, force: contact.force as f32 })
+            GrainContact { grain: contact.grain as u32, on, force: contact.force as f32 }
         });
         State {
             fingerprint: crate::folder::fingerprint([scene].into_iter()),
@@ -26,15 +26,15 @@ impl March {
             step,
             cell: single(&cell.size),
             periodic: cell.periodic,
-            centres: self.grains.spheres().iter().map(|sphere| single(&sphere.centre)).collect(),
-            radii: self.grains.radii.iter().map(|&radius| radius as f32).collect(),
+            centres: self.bodies.grains.spheres().iter().map(|sphere| single(&sphere.centre)).collect(),
+            radii: self.bodies.grains.radii.iter().map(|&radius| radius as f32).collect(),
             contacts: contacts.collect(),
-            beads: (0..self.beads.len()).map(|bead| self.bead_state(bead, stage)).collect(),
+            beads: (0..self.bodies.beads.len()).map(|bead| self.bead_state(bead, stage)).collect(),
         }
     }
 
     fn bead_state(&self, index: usize, stage: &Gel) -> BeadState {
-        let relaxing = &self.beads[index];
+        let relaxing = &self.bodies.beads[index];
         let bead = relaxing.bead();
         let field = StressField::of(bead, stage);
         let dry = bead.voxel_edge().powi(3);
@@ -52,20 +52,18 @@ impl March {
     }
 
     fn touches(&self, index: usize, relaxing: &Relaxation) -> Vec<BeadContact> {
-        let around = &self.around[index];
-        let forces = relaxing.contact_forces(&around.obstacles);
-        let on_obstacles =
-            forces.iter().enumerate().filter(|(_, force)| force.norm() > 0.0).map(|(obstacle, force)| {
-                BeadContact {
-                    on: match obstacle {
-                        0 => Touched::Floor,
-                        1 => Touched::Lid,
-                        grain => Touched::Grain(around.grains[grain - PLATES] as u32),
-                    },
-                    force: single(force),
-                }
-            });
-        let on_beads = self.pairs.iter().filter(|pair| pair.force.norm() > 0.0).filter_map(|pair| {
+        let around = &self.bodies.around[index];
+        let pressing = relaxing.loads().iter().enumerate().filter(|(_, load)| load.stiffness > 0.0);
+        let on_obstacles = pressing.map(|(obstacle, load)| BeadContact {
+            on: match around.thing(obstacle) {
+                Thing::Floor => Touched::Floor,
+                Thing::Lid => Touched::Lid,
+                Thing::Wall => Touched::Wall,
+                Thing::Grain(grain) => Touched::Grain(grain as u32),
+            },
+            force: single(&load.force),
+        });
+        let on_beads = self.bodies.pairs.iter().filter(|pair| pair.force.norm() > 0.0).filter_map(|pair| {
             let (other, force) = match index {
                 first if first == pair.first => (pair.second, -pair.force),
                 second if second == pair.second => (pair.first, pair.force),

@@ -1,0 +1,134 @@
+//! Fictitious masses of a bead's nodes: as heavy as unit steps need, and no heavier.
+
+use super::{Relaxation, damped};
+use crate::contact;
+use crate::elastic::{Elastic, Linearisation};
+use crate::gel_contact::Facing;
+use crate::obstacle::Obstacle;
+use crate::thermodynamics::Gel;
+use bedswell_geometry::{Matrix, Vector};
+
+/// Node mass over the trace of the node's own block of the stiffness. Displacements
+/// that alternate from node to node along one axis are the stiffest: with volume
+/// stiffness b and chains n per node their frequency² is 4(b + n) over a trace of
+/// about 1.5 b + 8 n, and unit steps with damping need it below some 2.8.
+const MASS_FACTOR: f64 = 2.0;
+
+/// Mass of the bead as a whole over the stiffness of its contacts.
+const DRIFT_MASS_FACTOR: f64 = 4.0;
+
+/// Masses are matrices: heavy only along the normals of the contacts that a node may
+/// make, so that the skin slides as freely as the gel inside moves.
+#[derive(Clone, Debug, Default)]
+pub(super) struct Inertia {
+    /// One per node, without contacts to other beads.
+    own: Vec<Matrix>,
+    /// One per node.
+    masses: Vec<Matrix>,
+    /// Their inverses.
+    mobilities: Vec<Matrix>,
+}
+
+impl Inertia {
+    /// Masses for the gel's own stiffness and the contacts that are within reach.
+    pub(super) fn renew(&mut self, bead: &Relaxation, gel: &Gel, obstacles: &[Obstacle]) {
+        let lattice = bead.bead.shared_lattice();
+        let positions = &bead.bead.positions;
+        let mut state = Linearisation::default();
+        let elastic = Elastic { lattice: &lattice, gel, edge: bead.bead.voxel_edge() };
+        elastic.linearise(positions, false, &mut state);
+        self.own.clear();
+        self.own.resize(lattice.stride(), Matrix::zeros());
+        elastic.add_diagonal_blocks(&state, &mut self.own);
+        for block in &mut self.own {
+            *block = Matrix::from_diagonal_element(block.trace().max(f64::MIN_POSITIVE));
+        }
+        // All points within reach count, so that none turns out too light for the
+        // contact it is about to make.
+        contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
+        for (point, at, normal) in bead.folds.possible() {
+            let stiffness = contact::turning(normal) * bead.point_stiffness();
+            let terms = lattice.skin.terms(point as usize).chain(lattice.embedded_terms(at));
+            terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
+        }
+        self.own.iter_mut().for_each(|mass| *mass *= MASS_FACTOR);
+        self.forget_others();
+    }
+
+    /// Takes back what contacts to other beads added.
+    pub(super) fn forget_others(&mut self) {
+        self.masses.clone_from(&self.own);
+        self.mobilities.clear();
+    }
+
+    /// Makes nodes heavy enough for a contact of the given stiffness (N/m).
+    fn weigh(&mut self, terms: impl Iterator<Item = (usize, f64)>, normal: &Vector, stiffness: f64) {
+        let mass = contact::turning(normal) * (MASS_FACTOR * stiffness);
+        for (node, weight) in terms {
+            self.masses[node] += mass * weight.abs();
+        }
+        self.mobilities.clear();
+    }
+
+    fn mobilities(&mut self) -> &[Matrix] {
+        if self.mobilities.is_empty() {
+            self.mobilities.extend(self.masses.iter().map(|mass| mass.try_inverse().unwrap_or_default()));
+        }
+        &self.mobilities
+    }
+}
+
+impl Relaxation {
+    /// Makes the nodes behind skin points heavy enough for the contacts they may make.
+    pub(crate) fn weigh_probes(&mut self, facing: &Facing) {
+        let (lattice, stiffness) = (self.bead.shared_lattice(), self.point_stiffness());
+        for (point, _, normal) in facing.possible() {
+            self.inertia.weigh(lattice.skin.terms(point as usize), normal, stiffness);
+        }
+    }
+
+    /// Makes the nodes behind places in the gel heavy enough for the contacts they may
+    /// take from skin points of the given stiffness (N/m).
+    pub(crate) fn weigh_hosts(&mut self, facing: &Facing, stiffness: f64) {
+        let lattice = self.bead.shared_lattice();
+        for (_, at, normal) in facing.possible() {
+            self.inertia.weigh(lattice.embedded_terms(at).into_iter(), normal, stiffness);
+        }
+    }
+
+    /// Moves the nodes by one step. `damping` is the share of each force component
+    /// that is turned against the velocity (local non-viscous damping, Cundall 1987,
+    /// from memory).
+    pub fn advance(&mut self, damping: f64) {
+        self.advance_drift(damping);
+        let (stride, nodes) = (self.gradient.len() / 3, self.bead.lattice().node_count());
+        let drift = self.drift;
+        let mut fastest = 0.0_f64;
+        for (node, mobility) in self.inertia.mobilities()[..nodes].iter().enumerate() {
+            let places = [node, stride + node, 2 * stride + node];
+            let velocity = Vector::from(places.map(|place| self.velocities[place]));
+            let force = places.map(|place| -self.gradient[place]);
+            let force = Vector::from_fn(|axis, _| damped(force[axis], velocity[axis], damping));
+            let velocity = velocity + mobility * force;
+            let way = velocity + drift;
+            for axis in 0..3 {
+                self.velocities[places[axis]] = velocity[axis];
+                self.bead.positions[places[axis]] += way[axis];
+            }
+            fastest = fastest.max(way.norm_squared());
+        }
+        self.moved += fastest.sqrt();
+        self.last_way = fastest.sqrt() + std::mem::take(&mut self.grown);
+    }
+
+    /// The nodes' masses together would make the bead far heavier than what holds it is
+    /// stiff: as a whole it answers with a mass of its own, like a grain.
+    fn advance_drift(&mut self, damping: f64) {
+        let mass = DRIFT_MASS_FACTOR * self.pressing_stiffness;
+        let force = self.net_force();
+        for axis in 0..3 {
+            let drift = &mut self.drift[axis];
+            *drift = if mass > 0.0 { *drift + damped(force[axis], *drift, damping) / mass } else { 0.0 };
+        }
+    }
+}

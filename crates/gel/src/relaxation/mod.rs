@@ -1,0 +1,343 @@
+//! A bead on its way to rest together with what moves around it.
+
+mod inertia;
+
+use crate::bead::Bead;
+use crate::contact::{Contacts, skin_position};
+use crate::elastic::Elastic;
+use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
+use crate::gel_contact::Facing;
+use crate::lattice::Embedded;
+use crate::obstacle::Obstacle;
+use crate::thermodynamics::Gel;
+use bedswell_geometry::Vector;
+use inertia::Inertia;
+
+/// A bead on its way to rest together with movable obstacles, by damped explicit
+/// steps of unit time. Node masses are fictitious and follow the stiffness, so that
+/// the steps are stable; only the rest they lead to is real.
+#[derive(Clone, Debug)]
+pub struct Relaxation {
+    bead: Bead,
+    velocities: Vec<f64>,
+    /// Net force on each node with the opposite sign: the energy's gradient (N).
+    gradient: Vec<f64>,
+    inertia: Inertia,
+    contacts: Contacts,
+    /// What the bead does to each obstacle.
+    loads: Vec<Load>,
+    /// Where the bead comes near itself.
+    folds: Facing,
+    /// Way of the fastest node since folds were last measured (m).
+    moved: f64,
+    /// The same of the last step, with the growth before it.
+    last_way: f64,
+    grown: f64,
+    /// Nodes and obstacles where they were when contacts were last looked for.
+    listed: Listed,
+    /// Velocity of the bead as a whole (m per step), besides that of its nodes.
+    drift: Vector,
+    /// The bead's weight, less its buoyancy (N).
+    weight: Vector,
+    /// Sum of the stiffnesses of the points that press (N/m).
+    pressing_stiffness: f64,
+    smallest_volume_ratio: f64,
+    largest_contact_force: f64,
+    /// Sum of the forces of the bead on others (N).
+    contact_sum: Vector,
+}
+
+/// What a bead does to an obstacle. Its skin is smooth: forces point along normals.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Load {
+    /// Force on it (N).
+    pub force: Vector,
+    /// Sum of the stiffnesses of the points that press on it (N/m).
+    pub stiffness: f64,
+}
+
+#[derive(Clone, Debug, Default)]
+struct Listed {
+    positions: Vec<f64>,
+    obstacles: Vec<Obstacle>,
+    extent: f64,
+}
+
+/// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
+/// nothing corrects the pressures for the penetration they take.
+const PENALTY: f64 = 64.0;
+
+/// Penetration, in swollen diameters, that the pressure of a gel held at its volume may
+/// take: where that rises beyond the gel's stiffness, the contact stiffens with it.
+const DEPTH: f64 = 1e-4;
+
+/// A skin point's way over that of the nodes that carry it: the sum of the magnitudes of
+/// its weights.
+const POINT_WAY: f64 = 1.8;
+
+impl Relaxation {
+    /// A bead at rest.
+    pub fn new(bead: Bead) -> Self {
+        let values = bead.positions.len();
+        Self {
+            velocities: vec![0.0; values],
+            gradient: vec![0.0; values],
+            inertia: Inertia::default(),
+            contacts: Contacts::default(),
+            loads: Vec::new(),
+            folds: Facing::default(),
+            moved: 0.0,
+            last_way: 0.0,
+            grown: 0.0,
+            listed: Listed::default(),
+            drift: Vector::zeros(),
+            weight: Vector::zeros(),
+            pressing_stiffness: 0.0,
+            smallest_volume_ratio: f64::INFINITY,
+            largest_contact_force: 0.0,
+            contact_sum: Vector::zeros(),
+            bead,
+        }
+    }
+
+    /// The bead.
+    pub fn bead(&self) -> &Bead {
+        &self.bead
+    }
+
+    /// Grows the bead about its centre.
+    pub fn grow(&mut self, by: f64) {
+        let way = (by - 1.0) * self.extent();
+        self.moved += way;
+        self.grown += way;
+        self.bead.scale(by);
+    }
+
+    /// Gives the bead a weight (N), less its buoyancy.
+    pub fn set_weight(&mut self, weight: Vector) {
+        self.weight = weight;
+    }
+
+    /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere
+    /// in the bead, and renews the node masses. The obstacles' indices must not change
+    /// over the march. Contacts to other beads must be weighed anew.
+    pub fn renew(&mut self, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
+        let size = gel.free_stretch() * self.bead.voxel_edge();
+        let lattice = self.bead.shared_lattice();
+        self.contacts.area = lattice.skin.area * size * size;
+        let deepest = DEPTH * lattice.across() as f64;
+        let pressure = gel.confining_pressure(self.bead.volume() / self.bead.dry_volume());
+        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
+        self.contacts.penalty = stiffness / size;
+        self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
+        self.folds = Facing::own(&self.bead, reach);
+        self.moved = 0.0;
+        let mut inertia = std::mem::take(&mut self.inertia);
+        inertia.renew(self, gel, obstacles);
+        self.inertia = inertia;
+        self.listed = Listed {
+            positions: self.bead.positions.clone(),
+            obstacles: obstacles.to_vec(),
+            extent: self.bead.extent(),
+        };
+    }
+
+    /// Distance (m) by which a skin point and an obstacle may have come nearer since
+    /// contacts were last looked for; without end when they never were.
+    pub fn approach(&self, obstacles: &[Obstacle]) -> f64 {
+        if self.listed.obstacles.len() != obstacles.len() {
+            return f64::INFINITY;
+        }
+        let stride = self.gradient.len() / 3;
+        let mut furthest = 0.0_f64;
+        for node in 0..self.bead.lattice().node_count() {
+            let way: f64 = [node, stride + node, 2 * stride + node]
+                .iter()
+                .map(|&place| (self.bead.positions[place] - self.listed.positions[place]).powi(2))
+                .sum();
+            furthest = furthest.max(way);
+        }
+        let obstacles = self.listed.obstacles.iter().zip(obstacles).map(|(before, now)| before.way(now));
+        POINT_WAY * furthest.sqrt() + obstacles.fold(0.0, f64::max)
+    }
+
+    /// Distance of the skin from the bead's centre (m), at most, when contacts were last
+    /// looked for.
+    pub fn extent(&self) -> f64 {
+        if self.listed.extent > 0.0 { self.listed.extent } else { self.bead.extent() }
+    }
+
+    /// A bound on how far a skin point has moved in the last step (m).
+    pub fn last_way(&self) -> f64 {
+        POINT_WAY * self.last_way
+    }
+
+    /// Takes back the masses that contacts to other beads added.
+    pub fn forget_others(&mut self) {
+        self.inertia.forget_others();
+    }
+
+    /// Net forces on the nodes, and the loads on the obstacles.
+    pub fn compute_forces(&mut self, gel: &Gel, obstacles: &[Obstacle]) {
+        self.gradient.fill(0.0);
+        let lattice = self.bead.shared_lattice();
+        let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
+        self.smallest_volume_ratio = elastic.add_gradient(&self.bead.positions, &mut self.gradient);
+        if self.weight != Vector::zeros() {
+            let stride = self.gradient.len() / 3;
+            for (node, share) in lattice.node_shares.iter().enumerate() {
+                for axis in 0..3 {
+                    self.gradient[axis * stride + node] -= share * self.weight[axis];
+                }
+            }
+        }
+        let stiffness = self.point_stiffness();
+        self.loads.clear();
+        self.loads.resize(obstacles.len(), Load::default());
+        let loads = &mut self.loads;
+        let visit = |obstacle: usize, force: Vector| {
+            loads[obstacle].force -= force;
+            loads[obstacle].stiffness += stiffness;
+        };
+        self.contacts.push(&lattice.skin, &self.bead.positions, obstacles, &mut self.gradient, visit);
+        self.pressing_stiffness = self.loads.iter().map(|load| load.stiffness).sum();
+        self.largest_contact_force = self.loads.iter().map(|load| load.force.norm()).fold(0.0, f64::max);
+        self.contact_sum = self.loads.iter().map(|load| load.force).sum();
+        self.press_folds();
+    }
+
+    /// What the bead does to each obstacle, since the last `compute_forces`.
+    pub fn loads(&self) -> &[Load] {
+        &self.loads
+    }
+
+    /// Lets the bead press on itself.
+    fn press_folds(&mut self) {
+        let stiffness = 0.5 * self.point_stiffness();
+        let moved = 2.0 * POINT_WAY * std::mem::take(&mut self.moved);
+        let mut folds = std::mem::take(&mut self.folds);
+        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, stiffness, moved) {
+            self.pull(press.point, press.force);
+            self.pull_at(&press.at, -press.force);
+        }
+        self.folds = folds;
+    }
+
+    /// Pressure per penetration of a skin point times its area (N/m).
+    pub(crate) fn point_stiffness(&self) -> f64 {
+        self.contacts.penalty * self.contacts.area
+    }
+
+    /// Adds a force (N) on a skin point.
+    pub(crate) fn pull(&mut self, point: u32, force: Vector) {
+        let lattice = self.bead.shared_lattice();
+        self.pull_nodes(lattice.skin.terms(point as usize), force);
+    }
+
+    /// Adds a force (N) on a place in the gel.
+    pub(crate) fn pull_at(&mut self, at: &Embedded, force: Vector) {
+        self.pull_nodes(self.bead.lattice().embedded_terms(at).into_iter(), force);
+    }
+
+    fn pull_nodes(&mut self, terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
+        let stride = self.gradient.len() / 3;
+        for (node, weight) in terms {
+            for axis in 0..3 {
+                self.gradient[axis * stride + node] -= weight * force[axis];
+            }
+        }
+    }
+
+    /// Counts a neighbouring bead's force (N), with its stiffness (N/m), among the
+    /// contact forces.
+    pub(crate) fn note_contact(&mut self, force: Vector, stiffness: f64) {
+        self.pressing_stiffness += stiffness;
+        self.contact_sum -= force;
+        self.largest_contact_force = self.largest_contact_force.max(force.norm());
+    }
+
+    /// Brings the bead to equilibrium among obstacles that stay where they are, by
+    /// Newton steps that do not know contact of the bead with itself. Where none is
+    /// found the bead stays as it was.
+    ///
+    /// # Errors
+    /// When no equilibrium is found.
+    pub fn settle(
+        &mut self,
+        gel: &Gel,
+        obstacles: &[Obstacle],
+        tolerance: Tolerance,
+    ) -> Result<Equilibrium, EquilibriumError> {
+        let mut bead = self.bead.clone();
+        let mut solver = Solver::with_contacts(&bead, self.contacts.clone());
+        let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
+        self.bead = bead;
+        self.contacts = solver.contacts;
+        self.folds = Facing::own(&self.bead, 0.0);
+        self.listed = Listed::default();
+        self.compute_forces(gel, obstacles);
+        Ok(equilibrium)
+    }
+
+    /// Whether any skin point presses on something.
+    pub fn touches(&self) -> bool {
+        self.largest_contact_force > 0.0
+    }
+
+    /// Norm of the net nodal forces over the largest contact force, or over G R²
+    /// while nothing touches.
+    pub fn residual(&self, gel: &Gel) -> f64 {
+        dot(&self.gradient, &self.gradient).sqrt() / self.force_scale(gel)
+    }
+
+    /// Net force on the bead over its largest contact force.
+    pub fn balance(&self, gel: &Gel) -> f64 {
+        self.net_force().norm() / self.force_scale(gel)
+    }
+
+    fn net_force(&self) -> Vector {
+        self.weight - self.contact_sum
+    }
+
+    /// Largest force on one obstacle or one other bead (N).
+    pub fn largest_contact_force(&self) -> f64 {
+        self.largest_contact_force
+    }
+
+    /// The smallest voxel volume ratio to dry; at or below 1 the state is void.
+    pub fn smallest_volume_ratio(&self) -> f64 {
+        self.smallest_volume_ratio
+    }
+
+    /// Volume (m³) that the pressing skin encloses inside obstacles.
+    pub fn penetrated_volume(&self, obstacles: &[Obstacle]) -> f64 {
+        let lattice = self.bead.shared_lattice();
+        let depth: f64 = self
+            .contacts
+            .pairs
+            .iter()
+            .map(|pair| {
+                let place = skin_position(&lattice.skin, &self.bead.positions, pair.point as usize);
+                let distance = obstacles[pair.obstacle as usize].gap(&place).distance;
+                if pair.multiplier > self.contacts.penalty * distance { -distance } else { 0.0 }
+            })
+            .sum();
+        depth.max(0.0) * self.contacts.area
+    }
+
+    /// Volume by which the bead overlaps itself (m³).
+    pub fn folded_volume(&self) -> f64 {
+        0.5 * self.folds.overlap
+    }
+
+    fn force_scale(&self, gel: &Gel) -> f64 {
+        let rest = gel.moduli().shear * (gel.free_stretch() * self.bead.dry_radius()).powi(2);
+        self.largest_contact_force.max(1e-3 * rest)
+    }
+}
+
+/// A force with a share turned against the motion.
+#[inline]
+fn damped(force: f64, velocity: f64, damping: f64) -> f64 {
+    if force * velocity > 0.0 { force * (1.0 - damping) } else { force * (1.0 + damping) }
+}

@@ -1,0 +1,100 @@
+use super::neighbourhood::Neighbourhood;
+use super::touching::{self, Pair};
+use bedswell_gel::{Gel, Relaxation};
+use bedswell_geometry::Vector;
+use bedswell_grains::Assembly;
+use rayon::prelude::*;
+
+/// Share of each force component on grains and lid that is turned against the motion.
+/// Little of it lets slow rearrangements come to their end soonest.
+pub(super) const DAMPING: f64 = 0.2;
+/// The same on the gel's nodes.
+const GEL_DAMPING: f64 = 0.4;
+/// Skin points within this many swollen voxel edges of an obstacle are followed.
+const REACH: f64 = 0.3;
+
+/// Grains and beads in motion.
+#[derive(Clone, Debug)]
+pub(super) struct Bodies {
+    pub(super) grains: Assembly,
+    pub(super) beads: Vec<Relaxation>,
+    pub(super) around: Vec<Neighbourhood>,
+    /// Pairs of beads that may touch.
+    pub(super) pairs: Vec<Pair>,
+    /// Where the grains were when the beads' neighbours were last looked for.
+    listed: Vec<Vector>,
+}
+
+impl Bodies {
+    pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>) -> Self {
+        let around = vec![Neighbourhood::default(); beads.len()];
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new() }
+    }
+
+    /// Forces on everything, at the places where everything is.
+    pub(super) fn compute_forces(&mut self, gel: &Gel) {
+        self.look_around(gel);
+        let (grains, beads) = (&mut self.grains, &mut self.beads);
+        let around = &self.around;
+        rayon::join(
+            || grains.compute_contacts(),
+            || {
+                beads
+                    .par_iter_mut()
+                    .zip(around)
+                    .for_each(|(bead, around)| bead.compute_forces(gel, &around.obstacles));
+            },
+        );
+        for (bead, around) in self.beads.iter().zip(&self.around) {
+            around.pass_on(bead, &mut self.grains);
+        }
+        self.pairs.iter_mut().for_each(|pair| pair.press(&mut self.beads));
+    }
+
+    /// Moves everything by one step.
+    pub(super) fn advance(&mut self) {
+        let (grains, beads) = (&mut self.grains, &mut self.beads);
+        rayon::join(
+            || grains.advance(DAMPING),
+            || beads.par_iter_mut().for_each(|bead| bead.advance(GEL_DAMPING)),
+        );
+        self.pairs.iter_mut().for_each(|pair| pair.note_way(&self.beads));
+    }
+
+    pub(super) fn step(&mut self, gel: &Gel) {
+        self.compute_forces(gel);
+        self.advance();
+    }
+
+    /// Looks for contacts anew where something has moved too far since the last look.
+    fn look_around(&mut self, gel: &Gel) {
+        let edge = self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
+        let reach = REACH * edge * gel.free_stretch();
+        let all = self.grains_strayed(0.5 * reach);
+        if all {
+            self.listed.clone_from(&self.grains.centres);
+        }
+        let grains = &self.grains;
+        let due: Vec<bool> = (self.beads.par_iter_mut().zip(&mut self.around))
+            .map(|(bead, around)| {
+                around.update(bead, grains);
+                let due = all || bead.approach(&around.obstacles) > 0.5 * reach;
+                if due {
+                    around.extend(bead, grains, 2.0 * reach);
+                    bead.renew(gel, &around.obstacles, reach);
+                }
+                due
+            })
+            .collect();
+        if due.contains(&true) && self.beads.len() > 1 {
+            touching::look(&mut self.pairs, &mut self.beads, &self.grains.cell, &due, reach);
+        }
+    }
+
+    /// Whether a grain has moved by more than `limit` (m) since the last look.
+    fn grains_strayed(&self, limit: f64) -> bool {
+        self.listed.len() != self.grains.centres.len()
+            || (self.grains.centres.iter().zip(&self.listed))
+                .any(|(now, before)| (now - before).norm_squared() > limit * limit)
+    }
+}
