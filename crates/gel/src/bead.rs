@@ -81,12 +81,6 @@ impl Bead {
         self.voxel_edge() * (self.volume() / self.dry_volume()).cbrt()
     }
 
-    /// Area of the skin that each of its points stands for in a bead swollen to this
-    /// volume (m²).
-    pub(crate) fn skin_point_area(&self) -> f64 {
-        self.lattice.skin.area * self.swollen_edge().powi(2)
-    }
-
     /// Volume of the dry gel (m³).
     pub fn dry_volume(&self) -> f64 {
         let filled: f64 = (0..self.lattice.voxel_count()).map(|voxel| self.lattice.filled(voxel)).sum();

@@ -96,7 +96,7 @@ impl BeadContact {
             let (probing, faced, seen) =
                 if from_first { (&mut *first, &mut *second, -shift) } else { (&mut *second, &mut *first, shift) };
             let stiffness = 0.5 * probing.point_stiffness();
-            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, stiffness, moved);
+            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, (stiffness, probing.point_area()), moved);
             for press in &presses {
                 probing.pull(press.point, press.force);
                 faced.pull_at(&press.at, -press.force);
@@ -152,7 +152,8 @@ impl Facing {
         Self { probes, overlap: 0.0 }
     }
 
-    /// The forces on the points that have entered gel, by `stiffness` (N/m). The gels
+    /// The forces on the points that have entered gel, by their `stiffness` (N/m) and
+    /// the area (m²) that each stands for. The gels
     /// have come nearer by at most `moved` (m) since the last call.
     pub(crate) fn measure(
         &mut self,
@@ -160,7 +161,7 @@ impl Facing {
         faced: &Bead,
         seen: Vector,
         own: bool,
-        stiffness: f64,
+        (stiffness, area): (f64, f64),
         moved: f64,
     ) -> Vec<Press> {
         let mut presses = Vec::new();
@@ -182,7 +183,7 @@ impl Facing {
                 probe.clearance = -TRUSTED * depth;
             }
         }
-        self.overlap = depths * probing.skin_point_area();
+        self.overlap = depths * area;
         presses
     }
 

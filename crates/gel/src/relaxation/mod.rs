@@ -216,7 +216,7 @@ impl Relaxation {
         let stiffness = 0.5 * self.point_stiffness();
         let moved = 2.0 * POINT_WAY * std::mem::take(&mut self.moved);
         let mut folds = std::mem::take(&mut self.folds);
-        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, stiffness, moved) {
+        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, (stiffness, self.point_area()), moved) {
             self.pull(press.point, press.force);
             self.pull_at(&press.at, -press.force);
         }
@@ -226,6 +226,11 @@ impl Relaxation {
     /// Pressure per penetration of a skin point times its area (N/m).
     pub(crate) fn point_stiffness(&self) -> f64 {
         self.contacts.penalty * self.contacts.area
+    }
+
+    /// Area that each skin point stands for (m²).
+    pub(crate) fn point_area(&self) -> f64 {
+        self.contacts.area
     }
 
     /// Adds a force (N) on a skin point.

@@ -174,11 +174,6 @@ impl March {
                 {
                     return Ok(());
                 }
-                if let Some(bead) = self.bodies.beads.iter().position(|bead| bead.smallest_volume_ratio() <= 1.0) {
-                    return Err(format!(
-                        "a voxel of bead {bead} was pressed out of water; take more increments or a smaller lid stress"
-                    ));
-                }
             }
             self.bodies.advance();
         }

@@ -106,6 +106,11 @@ pub(super) fn guard(bodies: &Bodies) -> Result<(), String> {
             }
         }
     }
+    if let Some(bead) = bodies.beads.iter().position(|bead| bead.smallest_volume_ratio() <= 1.0) {
+        return Err(format!(
+            "a voxel of bead {bead} was pressed out of water; take more increments or a smaller lid stress"
+        ));
+    }
     let share = swallowed(bodies);
     if share > SWALLOWED {
         return Err(format!(
