@@ -28,6 +28,8 @@ const LONGEST_WALK: usize = 32;
 const NEWTON_STEPS: usize = 12;
 /// How far beyond a surface voxel its map is trusted (voxel edges).
 const BEYOND: f64 = 1.0;
+/// How far a place may slide before contacts are looked for again (voxel edges).
+const SLIDE: f64 = 0.5;
 /// Accepted error of a place (voxel edges).
 const ROUNDING: f64 = 1e-11;
 
@@ -91,6 +93,24 @@ impl Lattice {
             let weight = share(x, corner & 1 > 0) * share(y, corner & 2 > 0) * share(z, corner & 4 > 0);
             (nodes[corner], weight)
         })
+    }
+
+    /// The nodes that an embedded place may come to lean on when it slides by a part of a
+    /// voxel, with weights that bound theirs.
+    pub(crate) fn possible_terms(&self, at: &Embedded) -> Vec<(usize, f64)> {
+        let mut terms = self.embedded_terms(at).to_vec();
+        for axis in 0..3 {
+            for up in [false, true] {
+                let inside = if up { 1.0 - at.local[axis] } else { at.local[axis] };
+                let neighbour = self.neighbours[at.voxel as usize][2 * axis + usize::from(up)];
+                if inside < SLIDE && neighbour != NO_VOXEL {
+                    let mut slid = Embedded { voxel: neighbour, ..*at };
+                    slid.local[axis] = if up { SLIDE - inside } else { 1.0 - (SLIDE - inside) };
+                    terms.extend(self.embedded_terms(&slid));
+                }
+            }
+        }
+        terms
     }
 
     /// The neighbour through the face that a place lies furthest beyond.

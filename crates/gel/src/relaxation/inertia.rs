@@ -48,7 +48,7 @@ impl Inertia {
         contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
         for (point, at, normal) in bead.folds.possible() {
             let stiffness = contact::turning(normal) * bead.point_stiffness();
-            let terms = lattice.skin.terms(point as usize).chain(lattice.embedded_terms(at));
+            let terms = lattice.skin.terms(point as usize).chain(lattice.possible_terms(at));
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
         self.own.iter_mut().for_each(|mass| *mass *= MASS_FACTOR);
@@ -92,7 +92,7 @@ impl Relaxation {
     pub(crate) fn weigh_hosts(&mut self, facing: &Facing, stiffness: f64) {
         let lattice = self.bead.shared_lattice();
         for (_, at, normal) in facing.possible() {
-            self.inertia.weigh(lattice.embedded_terms(at).into_iter(), normal, stiffness);
+            self.inertia.weigh(lattice.possible_terms(at).into_iter(), normal, stiffness);
         }
     }
 
