@@ -16,9 +16,12 @@ use kiddo::{ImmutableKdTree, SquaredEuclidean};
 /// Skin points are looked for within this distance (swollen voxel edges): stretched
 /// skin has its points further apart than free skin.
 const SEARCH: f64 = 0.9;
-/// A bead's own gel nearer than this to a skin point when dry (voxel edges) is that
-/// point's own skin, not a fold.
-const OWN_SKIN: f64 = 2.5;
+/// A bead's own gel nearer than the first to a skin point when dry (voxel edges) is that
+/// point's own skin, not a fold; from the second on it is a fold like any other gel, and
+/// in between ever more so: the bottom of a crease is finer than the voxels.
+const OWN_SKIN: [f64; 2] = [2.0, 4.0];
+/// Penetration beyond which the push does not grow (swollen voxel edges).
+const DEEPEST_PUSH: f64 = 0.02;
 /// Share of a gap that may be closed before it is measured again.
 const TRUSTED: f64 = 0.5;
 
@@ -134,7 +137,7 @@ impl Facing {
             let near = if own {
                 let near = tree.query(&query).within::<SquaredEuclidean<f64>>(search).unsorted().execute();
                 near.into_iter()
-                    .filter(|near| lattice.skin.apart_when_dry(point, near.item as usize) > OWN_SKIN)
+                    .filter(|near| lattice.skin.apart_when_dry(point, near.item as usize) > OWN_SKIN[0])
                     .min_by(|a, b| a.distance.total_cmp(&b.distance).then(a.item.cmp(&b.item)))
             } else {
                 let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
@@ -143,7 +146,7 @@ impl Facing {
             let Some(near) = near else { continue };
             let start = lattice.skin_point_in_voxel(near.item as usize);
             let point = point as u32;
-            if let Some((at, depth, outward)) = sound(faced, &place, point, start, own)
+            if let Some((at, depth, outward, _)) = sound(faced, &place, point, start, own)
                 && depth > -reach
             {
                 probes.push(Probe { point, at, outward, clearance: 0.0 });
@@ -166,19 +169,21 @@ impl Facing {
     ) -> Vec<Press> {
         let mut presses = Vec::new();
         let mut depths = 0.0;
+        let deepest = DEEPEST_PUSH * (area / probing.lattice().skin.area).sqrt();
         for probe in &mut self.probes {
             probe.clearance -= moved;
             if probe.clearance > 0.0 {
                 continue;
             }
             let place = probing.skin_point(probe.point as usize) + seen;
-            let Some((at, depth, outward)) = sound(faced, &place, probe.point, probe.at, own) else {
+            let Some((at, depth, outward, share)) = sound(faced, &place, probe.point, probe.at, own) else {
                 continue;
             };
             probe.at = at;
             if depth > 0.0 {
-                depths += depth;
-                presses.push(Press { point: probe.point, at, force: outward * (stiffness * depth) });
+                depths += share * depth;
+                let push = stiffness * share * depth.min(deepest);
+                presses.push(Press { point: probe.point, at, force: outward * push });
             } else {
                 probe.clearance = -TRUSTED * depth;
             }
@@ -193,22 +198,26 @@ impl Facing {
     }
 }
 
-/// Where a skin point lies in gel, how deep (m; negative outside), and the outward
-/// normal there.
+/// Where a skin point lies in gel, how deep (m; negative outside), the outward normal
+/// there, and how much of a contact that is.
 fn sound(
     faced: &Bead,
     place: &Vector,
     point: u32,
     from: Embedded,
     own: bool,
-) -> Option<(Embedded, f64, Vector)> {
+) -> Option<(Embedded, f64, Vector, f64)> {
     let lattice = faced.lattice();
     let (at, gradient) = lattice.embed(&faced.positions, place, from)?;
     let found = lattice.depth(&at, &gradient)?;
-    if own && (found.dry - Vector::from(lattice.skin.place[point as usize])).norm() < OWN_SKIN {
-        return None;
-    }
-    Some((at, found.depth, found.outward))
+    let [skin, fold] = OWN_SKIN;
+    let share = if own {
+        let apart = (found.dry - Vector::from(lattice.skin.place[point as usize])).norm();
+        ((apart - skin) / (fold - skin)).clamp(0.0, 1.0)
+    } else {
+        1.0
+    };
+    (share > 0.0).then_some((at, found.depth, found.outward, share))
 }
 
 fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {
