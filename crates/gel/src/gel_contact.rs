@@ -2,13 +2,13 @@
 //! grains.
 //!
 //! A skin point that has entered gel lies at some place of that gel's dry ball, whose
-//! distance to the dry surface is known exactly. Carried along by the deformation, that
-//! distance is the penetration, smooth wherever the point slides. The reaction goes to
-//! the nodes that carry the place, so that force and torque balance exactly.
+//! distance g to the dry surface is known exactly and is smooth wherever the point
+//! slides. The contact is an energy of g alone: its forces on the point and on the nodes
+//! that carry the place balance exactly, in force and torque, and cannot feed the motion.
 
 use crate::bead::Bead;
 use crate::contact::skin_position;
-use crate::lattice::Embedded;
+use crate::lattice::{Depth, Embedded};
 use crate::relaxation::Relaxation;
 use bedswell_geometry::Vector;
 use kiddo::{ImmutableKdTree, SquaredEuclidean};
@@ -20,7 +20,7 @@ const SEARCH: f64 = 0.9;
 /// point's own skin, not a fold; from the second on it is a fold like any other gel, and
 /// in between ever more so: the bottom of a crease is finer than the voxels.
 const OWN_SKIN: [f64; 2] = [2.0, 4.0];
-/// Penetration beyond which the push does not grow (swollen voxel edges).
+/// Penetration beyond which the push does not grow (voxel edges).
 const DEEPEST_PUSH: f64 = 0.02;
 /// Share of a gap that may be closed before it is measured again.
 const TRUSTED: f64 = 0.5;
@@ -98,12 +98,12 @@ impl BeadContact {
         for (facing, from_first) in [(&mut self.first_in_second, true), (&mut self.second_in_first, false)] {
             let (probing, faced, seen) =
                 if from_first { (&mut *first, &mut *second, -shift) } else { (&mut *second, &mut *first, shift) };
-            let stiffness = 0.5 * probing.point_stiffness();
-            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, (stiffness, probing.point_area()), moved);
+            let push = probing.push_by(faced);
+            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, push, moved);
             for press in &presses {
                 probing.pull(press.point, press.force);
                 faced.pull_at(&press.at, -press.force);
-                stiffnesses += stiffness;
+                stiffnesses += push.stiffness;
                 total += if from_first { press.force } else { -press.force };
             }
         }
@@ -146,49 +146,50 @@ impl Facing {
             let Some(near) = near else { continue };
             let start = lattice.skin_point_in_voxel(near.item as usize);
             let point = point as u32;
-            if let Some((at, depth, outward, _)) = sound(faced, &place, point, start, own)
-                && depth > -reach
+            if let Some((at, found)) = sound(faced, &place, start)
+                && fold(faced, point, &found, own).0 > 0.0
+                && found.distance() > -reach
             {
-                probes.push(Probe { point, at, outward, clearance: 0.0 });
+                probes.push(Probe { point, at, outward: found.outward(), clearance: 0.0 });
             }
         }
         Self { probes, overlap: 0.0 }
     }
 
-    /// The forces on the points that have entered gel, by their `stiffness` (N/m) and
-    /// the area (m²) that each stands for. The gels
-    /// have come nearer by at most `moved` (m) since the last call.
+    /// The forces on the points that have entered gel. The gels have come nearer by at
+    /// most `moved` (m) since the last call.
     pub(crate) fn measure(
         &mut self,
         probing: &Bead,
         faced: &Bead,
         seen: Vector,
         own: bool,
-        (stiffness, area): (f64, f64),
+        law: Push,
         moved: f64,
     ) -> Vec<Press> {
         let mut presses = Vec::new();
         let mut depths = 0.0;
-        let deepest = DEEPEST_PUSH * (area / probing.lattice().skin.area).sqrt();
         for probe in &mut self.probes {
             probe.clearance -= moved;
             if probe.clearance > 0.0 {
                 continue;
             }
             let place = probing.skin_point(probe.point as usize) + seen;
-            let Some((at, depth, outward, share)) = sound(faced, &place, probe.point, probe.at, own) else {
-                continue;
-            };
+            let Some((at, found)) = sound(faced, &place, probe.at) else { continue };
             probe.at = at;
-            if depth > 0.0 {
-                depths += share * depth;
-                let push = stiffness * share * depth.min(deepest);
-                presses.push(Press { point: probe.point, at, force: outward * push });
-            } else {
-                probe.clearance = -TRUSTED * depth;
+            if found.depth <= 0.0 {
+                probe.clearance = -TRUSTED * found.distance();
+                continue;
+            }
+            let (share, slope) = fold(faced, probe.point, &found, own);
+            if share > 0.0 {
+                let (energy, push) = law.energy(found.depth);
+                let force = found.carry * (found.inward * (share * push) + slope * energy);
+                presses.push(Press { point: probe.point, at, force: -force });
+                depths += share * found.depth;
             }
         }
-        self.overlap = depths * area;
+        self.overlap = depths * law.edge * law.area;
         presses
     }
 
@@ -198,26 +199,47 @@ impl Facing {
     }
 }
 
-/// Where a skin point lies in gel, how deep (m; negative outside), the outward normal
-/// there, and how much of a contact that is.
-fn sound(
-    faced: &Bead,
-    place: &Vector,
-    point: u32,
-    from: Embedded,
-    own: bool,
-) -> Option<(Embedded, f64, Vector, f64)> {
-    let lattice = faced.lattice();
-    let (at, gradient) = lattice.embed(&faced.positions, place, from)?;
-    let found = lattice.depth(&at, &gradient)?;
+/// How entered gel pushes a skin point out.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Push {
+    /// Stiffness of a point (N/m).
+    pub(crate) stiffness: f64,
+    /// Area that a point stands for (m²).
+    pub(crate) area: f64,
+    /// Edge of a free-swollen voxel of the entered gel (m).
+    pub(crate) edge: f64,
+}
+
+impl Push {
+    /// Energy (J) at a depth in voxel edges, and its slope (J per voxel edge): square at
+    /// first, then straight.
+    fn energy(&self, depth: f64) -> (f64, f64) {
+        let scale = self.stiffness * self.edge * self.edge;
+        let pushed = depth.min(DEEPEST_PUSH);
+        (scale * pushed * (depth - 0.5 * pushed), scale * pushed)
+    }
+}
+
+/// Where a place lies in gel.
+fn sound(faced: &Bead, place: &Vector, from: Embedded) -> Option<(Embedded, Depth)> {
+    let (at, gradient) = faced.lattice().embed(&faced.positions, place, from)?;
+    Some((at, faced.lattice().depth(&at, &gradient)?))
+}
+
+/// How much of a fold a skin point's contact with the gel at a place is, and the slope of
+/// that over the dry place (per voxel edge); wholly, if the gel is another bead's.
+fn fold(faced: &Bead, point: u32, found: &Depth, own: bool) -> (f64, Vector) {
+    if !own {
+        return (1.0, Vector::zeros());
+    }
     let [skin, fold] = OWN_SKIN;
-    let share = if own {
-        let apart = (found.dry - Vector::from(lattice.skin.place[point as usize])).norm();
-        ((apart - skin) / (fold - skin)).clamp(0.0, 1.0)
-    } else {
-        1.0
-    };
-    (share > 0.0).then_some((at, found.depth, found.outward, share))
+    let offset = found.dry - Vector::from(faced.lattice().skin.place[point as usize]);
+    let apart = offset.norm();
+    let along = ((apart - skin) / (fold - skin)).clamp(0.0, 1.0);
+    // Smooth at both ends.
+    let share = along * along * (3.0 - 2.0 * along);
+    let slope = 6.0 * along * (1.0 - along) / (fold - skin);
+    (share, offset * (slope / apart.max(f64::MIN_POSITIVE)))
 }
 
 fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {

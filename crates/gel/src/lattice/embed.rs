@@ -14,12 +14,27 @@ pub(crate) struct Embedded {
 /// How a place lies to the surface of the gel it is in.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Depth {
-    /// Distance to the surface (m), positive inside, exact to first order in it.
-    pub(crate) depth: f64,
-    /// Unit normal of the surface, out of the gel.
-    pub(crate) outward: Vector,
     /// The place as mixed in, from the ball's centre (voxel edges).
     pub(crate) dry: Vector,
+    /// Distance to the dry surface (voxel edges), positive inside.
+    pub(crate) depth: f64,
+    /// Its gradient over the dry place.
+    pub(crate) inward: Vector,
+    /// Carries gradients over the dry place to gradients over the place (voxel edges per
+    /// m): the inverse transpose of the deformation gradient.
+    pub(crate) carry: Matrix,
+}
+
+impl Depth {
+    /// Distance to the surface (m), positive inside, to first order.
+    pub(crate) fn distance(&self) -> f64 {
+        self.depth / (self.carry * self.inward).norm()
+    }
+
+    /// Unit normal of the surface, out of the gel.
+    pub(crate) fn outward(&self) -> Vector {
+        -(self.carry * self.inward).normalize()
+    }
 }
 
 /// Voxels walked through before a place counts as outside.
@@ -74,14 +89,9 @@ impl Lattice {
         let low = self.voxels[at.voxel as usize];
         let half = 0.5 * self.across as f64;
         let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half);
-        let radius = dry.norm();
-        let normal = gradient.try_inverse()?.transpose() * (dry / radius.max(f64::MIN_POSITIVE));
-        let per_metre = normal.norm();
-        (per_metre > 0.0).then(|| Depth {
-            depth: (half - radius) / per_metre,
-            outward: normal / per_metre,
-            dry,
-        })
+        let radius = dry.norm().max(f64::MIN_POSITIVE);
+        let carry = gradient.try_inverse()?.transpose();
+        Some(Depth { dry, depth: half - radius, inward: -dry / radius, carry })
     }
 
     /// The nodes of an embedded place, with weights whose sum is 1.
@@ -201,8 +211,8 @@ mod tests {
         for (place, depth) in [(Vector::new(17.5, 0.0, 0.0), 0.5), (Vector::new(9.0, 9.0, 9.0), 18.0 - 243_f64.sqrt())] {
             let (at, gradient) = lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
             let found = lattice.depth(&at, &gradient).expect("the map is regular");
-            assert_relative_eq!(found.depth, depth, epsilon = 1e-9);
-            assert_relative_eq!(found.outward, place.normalize(), epsilon = 1e-9);
+            assert_relative_eq!(found.distance(), depth, epsilon = 1e-9);
+            assert_relative_eq!(found.outward(), place.normalize(), epsilon = 1e-9);
         }
         assert!(lattice.embed(&bead.positions, &Vector::new(30.0, 0.0, 0.0), far).is_none());
     }

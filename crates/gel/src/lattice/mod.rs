@@ -5,7 +5,7 @@ mod skin;
 
 use crate::lanes::WIDTH;
 use cut_cell::CutCell;
-pub(crate) use embed::Embedded;
+pub(crate) use embed::{Depth, Embedded};
 pub use locate::{Locator, MaterialPoint};
 pub(crate) use skin::Skin;
 use std::collections::HashMap;

@@ -6,7 +6,7 @@ use crate::bead::Bead;
 use crate::contact::{Contacts, skin_position};
 use crate::elastic::Elastic;
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
-use crate::gel_contact::Facing;
+use crate::gel_contact::{Facing, Push};
 use crate::lattice::Embedded;
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
@@ -213,10 +213,10 @@ impl Relaxation {
 
     /// Lets the bead press on itself.
     fn press_folds(&mut self) {
-        let stiffness = 0.5 * self.point_stiffness();
+        let push = self.push_by(self);
         let moved = 2.0 * POINT_WAY * std::mem::take(&mut self.moved);
         let mut folds = std::mem::take(&mut self.folds);
-        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, (stiffness, self.point_area()), moved) {
+        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, push, moved) {
             self.pull(press.point, press.force);
             self.pull_at(&press.at, -press.force);
         }
@@ -228,9 +228,11 @@ impl Relaxation {
         self.contacts.penalty * self.contacts.area
     }
 
-    /// Area that each skin point stands for (m²).
-    pub(crate) fn point_area(&self) -> f64 {
-        self.contacts.area
+    /// How the gel of `faced` pushes this bead's skin points out: both skins are probed,
+    /// each with half the pressure.
+    pub(crate) fn push_by(&self, faced: &Relaxation) -> Push {
+        let edge = (faced.contacts.area / faced.bead.lattice().skin.area).sqrt();
+        Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge }
     }
 
     /// Adds a force (N) on a skin point.
