@@ -3,8 +3,8 @@
 use super::Lattice;
 use bedswell_geometry::{Matrix, Vector};
 
-/// A place in a voxel: trilinear coordinates from 0 to 1, a little beyond them where
-/// the voxel carries gel of a neighbour that was left out.
+/// A place in a voxel, or in a sliver (numbered after the voxels): trilinear coordinates
+/// from 0 to 1, beyond them outside the ball.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Embedded {
     pub(crate) voxel: u32,
@@ -41,7 +41,7 @@ impl Depth {
 const LONGEST_WALK: usize = 32;
 /// Newton steps for the trilinear coordinates within one voxel.
 const NEWTON_STEPS: usize = 12;
-/// How far beyond a surface voxel its map is trusted (voxel edges).
+/// How far outside the ball a place is still followed (voxel edges).
 const BEYOND: f64 = 1.0;
 /// How far a place may slide before contacts are looked for again (voxel edges).
 const SLIDE: f64 = 0.5;
@@ -86,7 +86,7 @@ impl Lattice {
 
     /// How an embedded place lies to the surface of the gel.
     pub(crate) fn depth(&self, at: &Embedded, gradient: &Matrix) -> Option<Depth> {
-        let low = self.voxels[at.voxel as usize];
+        let low = self.place_of(at.voxel);
         let half = 0.5 * self.across as f64;
         let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half);
         let radius = dry.norm().max(f64::MIN_POSITIVE);
@@ -95,20 +95,26 @@ impl Lattice {
     }
 
     /// The nodes of an embedded place, with weights whose sum is 1.
-    pub(crate) fn embedded_terms(&self, at: &Embedded) -> [(usize, f64); 8] {
-        let nodes = self.corners_of(at.voxel as usize);
+    pub(crate) fn embedded_terms(&self, at: &Embedded) -> Vec<(usize, f64)> {
         let [x, y, z] = at.local;
         let share = |c: f64, high: bool| if high { c } else { 1.0 - c };
-        std::array::from_fn(|corner| {
+        let mut terms = Vec::with_capacity(8);
+        for (corner, node) in self.covering_corners(at.voxel).into_iter().enumerate() {
             let weight = share(x, corner & 1 > 0) * share(y, corner & 2 > 0) * share(z, corner & 4 > 0);
-            (nodes[corner], weight)
-        })
+            match node.checked_sub(self.nodes.len()) {
+                None => terms.push((node, weight)),
+                Some(beyond) => {
+                    terms.extend(self.shell.corners[beyond].iter().map(|&(n, w)| (n as usize, w * weight)));
+                }
+            }
+        }
+        terms
     }
 
     /// The nodes that an embedded place may come to lean on when it slides by a part of a
     /// voxel, with weights that bound theirs.
     pub(crate) fn possible_terms(&self, at: &Embedded) -> Vec<(usize, f64)> {
-        let mut terms = self.embedded_terms(at).to_vec();
+        let mut terms = self.embedded_terms(at);
         for axis in 0..3 {
             for up in [false, true] {
                 let inside = if up { 1.0 - at.local[axis] } else { at.local[axis] };
@@ -140,10 +146,30 @@ impl Lattice {
         best
     }
 
+    /// Corners of a voxel or sliver, x fastest.
+    fn covering_corners(&self, voxel: u32) -> [usize; 8] {
+        match (voxel as usize).checked_sub(self.voxels.len()) {
+            None => self.corners_of(voxel as usize),
+            Some(sliver) => self.shell.slivers[sliver].map(|corner| corner as usize),
+        }
+    }
+
+    fn place_of(&self, voxel: u32) -> [u16; 3] {
+        match (voxel as usize).checked_sub(self.voxels.len()) {
+            None => self.voxels[voxel as usize],
+            Some(sliver) => self.shell.places[sliver],
+        }
+    }
+
     fn corner_positions(&self, positions: &[f64], voxel: u32) -> [Vector; 8] {
         let stride = positions.len() / 3;
-        self.corners_of(voxel as usize).map(|node| {
-            Vector::new(positions[node], positions[stride + node], positions[2 * stride + node])
+        let place =
+            |node: usize| Vector::new(positions[node], positions[stride + node], positions[2 * stride + node]);
+        self.covering_corners(voxel).map(|corner| match corner.checked_sub(self.nodes.len()) {
+            None => place(corner),
+            Some(beyond) => {
+                self.shell.corners[beyond].iter().map(|&(node, weight)| place(node as usize) * weight).sum()
+            }
         })
     }
 }

@@ -1,12 +1,14 @@
 mod cut_cell;
 mod embed;
 mod locate;
+mod shell;
 mod skin;
 
 use crate::lanes::WIDTH;
 use cut_cell::CutCell;
 pub(crate) use embed::{Depth, Embedded};
 pub use locate::{Locator, MaterialPoint};
+use shell::Shell;
 pub(crate) use skin::Skin;
 use std::collections::HashMap;
 
@@ -27,8 +29,10 @@ pub struct Lattice {
     pub(crate) runs: Vec<Run>,
     /// Place of each voxel on the grid.
     voxels: Vec<[u16; 3]>,
-    /// Each voxel's neighbours at its low and high face along x, y and z.
+    /// Neighbours of each voxel, and of each sliver of the shell after them, at the low
+    /// and high face along x, y and z.
     neighbours: Vec<[u32; 6]>,
+    shell: Shell,
     /// Where each voxel lies in the columns below, which pad every run with empty
     /// voxels to whole groups of lanes.
     pub(crate) slots: Vec<u32>,
@@ -91,7 +95,11 @@ impl Lattice {
             column
         };
         let voxel_at: HashMap<[u16; 3], u32> = voxels.iter().copied().zip(0..).collect();
-        let neighbours = voxels.iter().map(|voxel| neighbours_of(voxel, &voxel_at)).collect();
+        let shell = Shell::new(&shell::slivers(across, &cells), &node_at);
+        let covering: HashMap<[u16; 3], u32> =
+            voxels.iter().chain(&shell.places).copied().zip(0..).collect();
+        let neighbours =
+            voxels.iter().chain(&shell.places).map(|voxel| neighbours_of(voxel, &covering)).collect();
         let skin = Skin::new(across, &cells, &voxel_at, &node_at);
         let node_shares = node_shares(&voxels, &cells, &node_at);
         Self {
@@ -103,6 +111,7 @@ impl Lattice {
             nodes,
             voxels,
             neighbours,
+            shell,
             slots,
             node_shares,
             skin,
@@ -159,10 +168,10 @@ impl Lattice {
     /// the bonds. The first voxel is on the low side.
     pub fn bonds(&self) -> Vec<(usize, usize, usize)> {
         let mut bonds = Vec::with_capacity(3 * self.voxels.len());
-        for (voxel, neighbours) in self.neighbours.iter().enumerate() {
+        for (voxel, neighbours) in self.neighbours[..self.voxels.len()].iter().enumerate() {
             for axis in 0..3 {
                 let next = neighbours[2 * axis + 1];
-                if next != embed::NO_VOXEL {
+                if (next as usize) < self.voxels.len() {
                     bonds.push((voxel, next as usize, axis));
                 }
             }
