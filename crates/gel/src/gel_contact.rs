@@ -49,6 +49,7 @@ struct Probe {
     outward: Vector,
     /// What may be moved before the point can touch (m).
     clearance: f64,
+    pressing: bool,
 }
 
 /// A force (N) on a skin point from gel that it has entered.
@@ -114,9 +115,18 @@ impl BeadContact {
 }
 
 impl Facing {
-    /// The points of a bead within `reach` (m) of its own gel from elsewhere.
-    pub(crate) fn own(bead: &Bead, reach: f64) -> Self {
-        Self::look(bead, bead, Vector::zeros(), reach, true)
+    /// The points of a bead within `reach` (m) of its own gel from elsewhere. Those of
+    /// `before` that press are followed on: where they have slid to, nothing else may
+    /// lead.
+    pub(crate) fn own(bead: &Bead, reach: f64, before: &Facing) -> Self {
+        let mut facing = Self::look(bead, bead, Vector::zeros(), reach, true);
+        for probe in before.probes.iter().filter(|probe| probe.pressing) {
+            match facing.probes.binary_search_by_key(&probe.point, |other| other.point) {
+                Ok(place) => facing.probes[place] = *probe,
+                Err(place) => facing.probes.insert(place, *probe),
+            }
+        }
+        facing
     }
 
     /// The points of `probing` within `reach` (m) of the gel of `faced`; `probing` is
@@ -127,6 +137,10 @@ impl Facing {
         let Ok(tree) = ImmutableKdTree::<f64, 3>::new_from_slice(&places) else { return Self::default() };
         let search = (SEARCH * faced.swollen_edge() + reach).powi(2);
         let (centre, extent) = (faced.centre(), faced.extent() + reach);
+        let normals = if own { faced.skin_normals() } else { Vec::new() };
+        let opposed = |a: usize, b: usize| {
+            normals[a].dot(&normals[b]) < 0.0 && lattice.skin.apart_when_dry(a, b) > OWN_SKIN[0]
+        };
         let mut probes = Vec::new();
         for (point, place) in skin_places(probing).enumerate() {
             let place = place + seen;
@@ -137,7 +151,7 @@ impl Facing {
             let near = if own {
                 let near = tree.query(&query).within::<SquaredEuclidean<f64>>(search).unsorted().execute();
                 near.into_iter()
-                    .filter(|near| lattice.skin.apart_when_dry(point, near.item as usize) > OWN_SKIN[0])
+                    .filter(|near| opposed(point, near.item as usize))
                     .min_by(|a, b| a.distance.total_cmp(&b.distance).then(a.item.cmp(&b.item)))
             } else {
                 let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
@@ -150,7 +164,7 @@ impl Facing {
                 && fold(faced, point, &found, own).0 > 0.0
                 && found.distance() > -reach
             {
-                probes.push(Probe { point, at, outward: found.outward(), clearance: 0.0 });
+                probes.push(Probe { point, at, outward: found.outward(), clearance: 0.0, pressing: false });
             }
         }
         Self { probes, overlap: 0.0 }
@@ -175,14 +189,17 @@ impl Facing {
                 continue;
             }
             let place = probing.skin_point(probe.point as usize) + seen;
+            probe.pressing = false;
             let Some((at, found)) = sound(faced, &place, probe.at) else { continue };
             probe.at = at;
+            probe.outward = found.outward();
             if found.depth <= 0.0 {
                 probe.clearance = -TRUSTED * found.distance();
                 continue;
             }
             let (share, slope) = fold(faced, probe.point, &found, own);
             if share > 0.0 {
+                probe.pressing = true;
                 let (energy, push) = law.energy(found.depth);
                 let force = found.carry * (found.inward * (share * push) + slope * energy);
                 presses.push(Press { point: probe.point, at, force: -force });

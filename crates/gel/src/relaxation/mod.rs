@@ -130,7 +130,7 @@ impl Relaxation {
         let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
         self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
-        self.folds = Facing::own(&self.bead, reach);
+        self.folds = Facing::own(&self.bead, reach, &self.folds);
         self.moved = 0.0;
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles);
@@ -280,7 +280,7 @@ impl Relaxation {
         let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
         self.bead = bead;
         self.contacts = solver.contacts;
-        self.folds = Facing::own(&self.bead, 0.0);
+        self.folds = Facing::own(&self.bead, 0.0, &Facing::default());
         self.listed = Listed::default();
         self.compute_forces(gel, obstacles);
         Ok(equilibrium)
