@@ -7,10 +7,10 @@
 //! that carry the place balance exactly, in force and torque, and cannot feed the motion.
 
 use crate::bead::Bead;
-use crate::contact::skin_position;
+use crate::contact::{self, skin_position};
 use crate::lattice::{Depth, Embedded};
 use crate::relaxation::Relaxation;
-use bedswell_geometry::Vector;
+use bedswell_geometry::{Matrix, Vector};
 use kiddo::{ImmutableKdTree, SquaredEuclidean};
 
 /// Skin points are looked for within this distance (swollen voxel edges): stretched
@@ -22,6 +22,10 @@ const SEARCH: f64 = 0.9;
 const OWN_SKIN: [f64; 2] = [2.0, 4.0];
 /// Penetration beyond which the push does not grow (voxel edges).
 const DEEPEST_PUSH: f64 = 0.02;
+/// What a contact's stiffness is taken to be at most, over what it is: both skins press
+/// at the same place, each through nodes with weights of both signs, and gel that is
+/// compressed on the way is stiffer.
+const MARGIN: f64 = 4.0;
 /// Share of a gap that may be closed before it is measured again.
 const TRUSTED: f64 = 0.5;
 
@@ -45,8 +49,8 @@ pub(crate) struct Facing {
 struct Probe {
     point: u32,
     at: Embedded,
-    /// Outward normal of the gel's surface there.
-    outward: Vector,
+    /// Gradient of the depth there (voxel edges per m), inward.
+    slope: Vector,
     /// What may be moved before the point can touch (m).
     clearance: f64,
     pressing: bool,
@@ -71,14 +75,14 @@ impl BeadContact {
 
     /// Makes the first bead heavy enough for this contact.
     pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation) {
-        first.weigh_probes(&self.first_in_second);
-        first.weigh_hosts(&self.second_in_first, second.point_stiffness());
+        first.weigh_probes(&self.first_in_second, first.push_by(second));
+        first.weigh_hosts(&self.second_in_first, second.push_by(first));
     }
 
     /// Makes the second bead heavy enough for this contact.
     pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation) {
-        second.weigh_probes(&self.second_in_first);
-        second.weigh_hosts(&self.first_in_second, first.point_stiffness());
+        second.weigh_probes(&self.second_in_first, second.push_by(first));
+        second.weigh_hosts(&self.first_in_second, first.push_by(second));
     }
 
     /// Whether the beads are out of reach of each other.
@@ -164,7 +168,7 @@ impl Facing {
                 && fold(faced, point, &found, own).0 > 0.0
                 && found.distance() > -reach
             {
-                probes.push(Probe { point, at, outward: found.outward(), clearance: 0.0, pressing: false });
+                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0, pressing: false });
             }
         }
         Self { probes, overlap: 0.0 }
@@ -192,7 +196,7 @@ impl Facing {
             probe.pressing = false;
             let Some((at, found)) = sound(faced, &place, probe.at) else { continue };
             probe.at = at;
-            probe.outward = found.outward();
+            probe.slope = found.carry * found.inward;
             if found.depth <= 0.0 {
                 probe.clearance = -TRUSTED * found.distance();
                 continue;
@@ -210,9 +214,14 @@ impl Facing {
         presses
     }
 
-    /// The points that may press, where they may, and the normals there.
-    pub(crate) fn possible(&self) -> impl Iterator<Item = (u32, &Embedded, &Vector)> + '_ {
-        self.probes.iter().map(|probe| (probe.point, &probe.at, &probe.outward))
+    /// The points that may press, where they may, and their stiffness (N/m) in space.
+    pub(crate) fn possible(&self, law: Push) -> impl Iterator<Item = (u32, &Embedded, Matrix)> + '_ {
+        self.probes.iter().map(move |probe| {
+            let slope = probe.slope * law.edge;
+            let share = slope.norm_squared().max(1.0);
+            let stiffness = contact::turning(&slope.normalize()) * (MARGIN * law.stiffness * share);
+            (probe.point, &probe.at, stiffness)
+        })
     }
 }
 

@@ -3,7 +3,7 @@
 use super::{Relaxation, damped};
 use crate::contact;
 use crate::elastic::{Elastic, Linearisation};
-use crate::gel_contact::Facing;
+use crate::gel_contact::{Facing, Push};
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::{Matrix, Vector};
@@ -46,8 +46,7 @@ impl Inertia {
         // All points within reach count, so that none turns out too light for the
         // contact it is about to make.
         contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
-        for (point, at, normal) in bead.folds.possible() {
-            let stiffness = contact::turning(normal) * bead.point_stiffness();
+        for (point, at, stiffness) in bead.folds.possible(bead.push_by(bead)) {
             let terms = lattice.skin.terms(point as usize).chain(lattice.possible_terms(at));
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
@@ -62,8 +61,8 @@ impl Inertia {
     }
 
     /// Makes nodes heavy enough for a contact of the given stiffness (N/m).
-    fn weigh(&mut self, terms: impl Iterator<Item = (usize, f64)>, normal: &Vector, stiffness: f64) {
-        let mass = contact::turning(normal) * (MASS_FACTOR * stiffness);
+    fn weigh(&mut self, terms: impl Iterator<Item = (usize, f64)>, stiffness: Matrix) {
+        let mass = stiffness * MASS_FACTOR;
         for (node, weight) in terms {
             self.masses[node] += mass * weight.abs();
         }
@@ -80,19 +79,18 @@ impl Inertia {
 
 impl Relaxation {
     /// Makes the nodes behind skin points heavy enough for the contacts they may make.
-    pub(crate) fn weigh_probes(&mut self, facing: &Facing) {
-        let (lattice, stiffness) = (self.bead.shared_lattice(), self.point_stiffness());
-        for (point, _, normal) in facing.possible() {
-            self.inertia.weigh(lattice.skin.terms(point as usize), normal, stiffness);
+    pub(crate) fn weigh_probes(&mut self, facing: &Facing, law: Push) {
+        let lattice = self.bead.shared_lattice();
+        for (point, _, stiffness) in facing.possible(law) {
+            self.inertia.weigh(lattice.skin.terms(point as usize), stiffness);
         }
     }
 
-    /// Makes the nodes behind places in the gel heavy enough for the contacts they may
-    /// take from skin points of the given stiffness (N/m).
-    pub(crate) fn weigh_hosts(&mut self, facing: &Facing, stiffness: f64) {
+    /// Makes the nodes behind places in the gel heavy enough for the contacts they may take.
+    pub(crate) fn weigh_hosts(&mut self, facing: &Facing, law: Push) {
         let lattice = self.bead.shared_lattice();
-        for (_, at, normal) in facing.possible() {
-            self.inertia.weigh(lattice.possible_terms(at).into_iter(), normal, stiffness);
+        for (_, at, stiffness) in facing.possible(law) {
+            self.inertia.weigh(lattice.possible_terms(at).into_iter(), stiffness);
         }
     }
 
