@@ -30,11 +30,6 @@ impl Depth {
     pub(crate) fn distance(&self) -> f64 {
         self.depth / (self.carry * self.inward).norm()
     }
-
-    /// Unit normal of the surface, out of the gel.
-    pub(crate) fn outward(&self) -> Vector {
-        -(self.carry * self.inward).normalize()
-    }
 }
 
 /// Voxels walked through before a place counts as outside.
@@ -238,7 +233,8 @@ mod tests {
             let (at, gradient) = lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
             let found = lattice.depth(&at, &gradient).expect("the map is regular");
             assert_relative_eq!(found.distance(), depth, epsilon = 1e-9);
-            assert_relative_eq!(found.outward(), place.normalize(), epsilon = 1e-9);
+            let inward = (found.carry * found.inward).normalize();
+            assert_relative_eq!(inward, -place.normalize(), epsilon = 1e-9);
         }
         assert!(lattice.embed(&bead.positions, &Vector::new(30.0, 0.0, 0.0), far).is_none());
     }
