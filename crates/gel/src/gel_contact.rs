@@ -22,6 +22,9 @@ const SEARCH: f64 = 0.9;
 const OWN_SKIN: [f64; 2] = [2.0, 4.0];
 /// Penetration beyond which the push does not grow (voxel edges).
 const DEEPEST_PUSH: f64 = 0.02;
+/// Depth beyond which a point cannot have come through the surface nearby (voxel edges):
+/// where gel is crumpled, the map of places may have other answers.
+const TOO_DEEP: f64 = 0.75;
 /// What a contact's stiffness is taken to be at most, over what it is: both skins press
 /// at the same place, each through nodes with weights of both signs, and gel that is
 /// compressed on the way is stiffer.
@@ -167,6 +170,7 @@ impl Facing {
             if let Some((at, found)) = sound(faced, &place, start)
                 && fold(faced, point, &found, own).0 > 0.0
                 && found.distance() > -reach
+                && found.depth < TOO_DEEP
             {
                 probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0, pressing: false });
             }
@@ -202,7 +206,7 @@ impl Facing {
                 continue;
             }
             let (share, slope) = fold(faced, probe.point, &found, own);
-            if share > 0.0 {
+            if share > 0.0 && found.depth < TOO_DEEP {
                 probe.pressing = true;
                 let (energy, push) = law.energy(found.depth);
                 let force = found.carry * (found.inward * (share * push) + slope * energy);
