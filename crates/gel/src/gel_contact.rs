@@ -25,6 +25,8 @@ const DEEPEST_PUSH: f64 = 0.02;
 /// Depth beyond which a point cannot have come through the surface nearby (voxel edges):
 /// where gel is crumpled, the map of places may have other answers.
 const TOO_DEEP: f64 = 0.75;
+/// A force that has faded to this share is none.
+const NOTHING: f64 = 1e-9;
 /// What a contact's stiffness is taken to be at most, over what it is: both skins press
 /// at the same place, each through nodes with weights of both signs, and gel that is
 /// compressed on the way is stiffer.
@@ -56,7 +58,8 @@ struct Probe {
     slope: Vector,
     /// What may be moved before the point can touch (m).
     clearance: f64,
-    pressing: bool,
+    /// Force on the point (N).
+    force: Vector,
 }
 
 /// A force (N) on a skin point from gel that it has entered.
@@ -127,7 +130,7 @@ impl Facing {
     /// lead.
     pub(crate) fn own(bead: &Bead, reach: f64, before: &Facing) -> Self {
         let mut facing = Self::look(bead, bead, Vector::zeros(), reach, true);
-        for probe in before.probes.iter().filter(|probe| probe.pressing) {
+        for probe in before.probes.iter().filter(|probe| probe.force != Vector::zeros()) {
             match facing.probes.binary_search_by_key(&probe.point, |other| other.point) {
                 Ok(place) => facing.probes[place] = *probe,
                 Err(place) => facing.probes.insert(place, *probe),
@@ -172,7 +175,7 @@ impl Facing {
                 && found.distance() > -reach
                 && found.depth < TOO_DEEP
             {
-                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0, pressing: false });
+                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0, force: Vector::zeros() });
             }
         }
         Self { probes, overlap: 0.0 }
@@ -193,26 +196,18 @@ impl Facing {
         let mut depths = 0.0;
         for probe in &mut self.probes {
             probe.clearance -= moved;
-            if probe.clearance > 0.0 {
+            if probe.clearance > 0.0 && probe.force == Vector::zeros() {
                 continue;
             }
             let place = probing.skin_point(probe.point as usize) + seen;
-            probe.pressing = false;
-            let Some((at, found)) = sound(faced, &place, probe.at) else { continue };
-            probe.at = at;
-            probe.slope = found.carry * found.inward;
-            if found.depth <= 0.0 {
-                probe.clearance = -TRUSTED * found.distance();
-                continue;
+            let (force, depth) = probe.push(faced, &place, own, law);
+            probe.force = probe.force.lerp(&force, law.promptness);
+            if probe.force.norm() > NOTHING * law.stiffness * law.edge {
+                presses.push(Press { point: probe.point, at: probe.at, force: probe.force });
+            } else {
+                probe.force = Vector::zeros();
             }
-            let (share, slope) = fold(faced, probe.point, &found, own);
-            if share > 0.0 && found.depth < TOO_DEEP {
-                probe.pressing = true;
-                let (energy, push) = law.energy(found.depth);
-                let force = found.carry * (found.inward * (share * push) + slope * energy);
-                presses.push(Press { point: probe.point, at, force: -force });
-                depths += share * found.depth;
-            }
+            depths += depth;
         }
         self.overlap = depths * law.edge * law.area;
         presses
@@ -229,6 +224,27 @@ impl Facing {
     }
 }
 
+impl Probe {
+    /// The force (N) on the point at a place, and its depth (voxel edges) as far as the
+    /// contact counts.
+    fn push(&mut self, faced: &Bead, place: &Vector, own: bool, law: Push) -> (Vector, f64) {
+        let nothing = (Vector::zeros(), 0.0);
+        let Some((at, found)) = sound(faced, place, self.at) else { return nothing };
+        self.at = at;
+        self.slope = found.carry * found.inward;
+        if found.depth <= 0.0 {
+            self.clearance = -TRUSTED * found.distance();
+            return nothing;
+        }
+        let (share, slope) = fold(faced, self.point, &found, own);
+        if share <= 0.0 || found.depth >= TOO_DEEP {
+            return nothing;
+        }
+        let (energy, push) = law.energy(found.depth);
+        (found.carry * (found.inward * (-share * push) - slope * energy), share * found.depth)
+    }
+}
+
 /// How entered gel pushes a skin point out.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Push {
@@ -238,6 +254,9 @@ pub(crate) struct Push {
     pub(crate) area: f64,
     /// Edge of a free-swollen voxel of the entered gel (m).
     pub(crate) edge: f64,
+    /// Share of a change of force that comes at once: where crumpled gel has no steady
+    /// answer, its mean over some steps is one.
+    pub(crate) promptness: f64,
 }
 
 impl Push {

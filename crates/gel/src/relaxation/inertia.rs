@@ -97,10 +97,7 @@ impl Relaxation {
     /// Moves the nodes by one step. `damping` is the share of each force component
     /// that is turned against the velocity (local non-viscous damping, Cundall 1987,
     /// from memory).
-    ///
-    /// `caution` makes the nodes heavier, by a factor of 1 or more: slower, and steadier
-    /// where gel that is pressed together answers more stiffly than its masses know.
-    pub fn advance(&mut self, damping: f64, caution: f64) {
+    pub fn advance(&mut self, damping: f64) {
         self.advance_drift(damping);
         let (stride, nodes) = (self.gradient.len() / 3, self.bead.lattice().node_count());
         let drift = self.drift;
@@ -110,7 +107,7 @@ impl Relaxation {
             let velocity = Vector::from(places.map(|place| self.velocities[place]));
             let force = places.map(|place| -self.gradient[place]);
             let force = Vector::from_fn(|axis, _| damped(force[axis], velocity[axis], damping));
-            let velocity = velocity + mobility * force / caution;
+            let velocity = velocity + mobility * force / self.caution;
             let way = velocity + drift;
             for axis in 0..3 {
                 self.velocities[places[axis]] = velocity[axis];

@@ -33,6 +33,8 @@ pub struct Relaxation {
     /// The same of the last step, with the growth before it.
     last_way: f64,
     grown: f64,
+    /// How much heavier than usual the nodes are.
+    caution: f64,
     /// Nodes and obstacles where they were when contacts were last looked for.
     listed: Listed,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
@@ -89,6 +91,7 @@ impl Relaxation {
             moved: 0.0,
             last_way: 0.0,
             grown: 0.0,
+            caution: 1.0,
             listed: Listed::default(),
             drift: Vector::zeros(),
             weight: Vector::zeros(),
@@ -116,6 +119,12 @@ impl Relaxation {
     /// Gives the bead a weight (N), less its buoyancy.
     pub fn set_weight(&mut self, weight: Vector) {
         self.weight = weight;
+    }
+
+    /// Makes the nodes heavier than usual, by a factor of 1 or more: slower, and steadier
+    /// where gel is pressed on gel.
+    pub fn set_caution(&mut self, caution: f64) {
+        self.caution = caution;
     }
 
     /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere
@@ -232,7 +241,8 @@ impl Relaxation {
     /// each with half the pressure.
     pub(crate) fn push_by(&self, faced: &Relaxation) -> Push {
         let edge = (faced.contacts.area / faced.bead.lattice().skin.area).sqrt();
-        Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge }
+        let promptness = 1.0 / self.caution;
+        Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge, promptness }
     }
 
     /// Adds a force (N) on a skin point.

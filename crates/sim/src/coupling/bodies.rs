@@ -23,14 +23,12 @@ pub(super) struct Bodies {
     pub(super) pairs: Vec<Pair>,
     /// Where the grains were when the beads' neighbours were last looked for.
     listed: Vec<Vector>,
-    /// How much heavier than usual the gel's nodes are.
-    pub(super) caution: f64,
 }
 
 impl Bodies {
     pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>) -> Self {
         let around = vec![Neighbourhood::default(); beads.len()];
-        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), caution: 1.0 }
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new() }
     }
 
     /// Forces on everything, at the places where everything is.
@@ -55,10 +53,10 @@ impl Bodies {
 
     /// Moves everything by one step.
     pub(super) fn advance(&mut self) {
-        let (grains, beads, caution) = (&mut self.grains, &mut self.beads, self.caution);
+        let (grains, beads) = (&mut self.grains, &mut self.beads);
         rayon::join(
             || grains.advance(DAMPING),
-            || beads.par_iter_mut().for_each(|bead| bead.advance(GEL_DAMPING, caution)),
+            || beads.par_iter_mut().for_each(|bead| bead.advance(GEL_DAMPING)),
         );
         self.pairs.iter_mut().for_each(|pair| pair.note_way(&self.beads));
     }

@@ -13,9 +13,9 @@ pub(super) const FIRST_STRETCH: f64 = 1.25;
 const RAMP_STEPS: usize = 60;
 /// Steps without rest after which the gel's nodes are made heavier, by which factor, and
 /// up to which.
-const PATIENCE: usize = 3_000;
+const PATIENCE: usize = 2_500;
 const CAUTION: f64 = 2.0;
-const MOST_CAUTION: f64 = 16.0;
+const MOST_CAUTION: f64 = 32.0;
 /// Steps between looks at the residuals.
 const LOOK: usize = 10;
 /// Largest residual (grains, gel) of a recorded state on the way.
@@ -169,10 +169,10 @@ impl March {
 
     /// Steps until grains, lid and beads are at rest.
     fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
-        self.bodies.caution = 1.0;
         for step in 0..target.steps {
-            if step > 0 && step % PATIENCE == 0 {
-                self.bodies.caution = (self.bodies.caution * CAUTION).min(MOST_CAUTION);
+            if step % PATIENCE == 0 {
+                let caution = CAUTION.powi((step / PATIENCE) as i32).min(MOST_CAUTION);
+                self.bodies.beads.iter_mut().for_each(|bead| bead.set_caution(caution));
             }
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
