@@ -95,17 +95,6 @@ impl Bead {
         filled * self.voxel_edge().powi(3)
     }
 
-    /// Outward unit normals of the skin points, carried along by the deformation (Nanson).
-    pub(crate) fn skin_normals(&self) -> Vec<Vector> {
-        let skin = &self.lattice.skin;
-        let gradients = self.gradients();
-        let carried = |point: usize| {
-            let carry = gradients[skin.host[point] as usize].try_inverse().unwrap_or_default().transpose();
-            (carry * Vector::from(skin.place[point])).try_normalize(0.0).unwrap_or_default()
-        };
-        (0..skin.len()).map(carried).collect()
-    }
-
     /// Mean deformation gradient of every voxel, from dry.
     pub(crate) fn gradients(&self) -> Vec<bedswell_geometry::Matrix> {
         elastic::gradients(&self.lattice, self.voxel_edge(), &self.positions)

@@ -1,5 +1,4 @@
-//! Contact of gel with gel: of two beads, or of a bead with itself behind and between
-//! grains.
+//! Contact of two beads.
 //!
 //! A skin point that has entered gel lies at some place of that gel's dry ball, whose
 //! distance g to the dry surface is known exactly and is smooth wherever the point
@@ -16,17 +15,11 @@ use kiddo::{ImmutableKdTree, SquaredEuclidean};
 /// Skin points are looked for within this distance (swollen voxel edges): stretched
 /// skin has its points further apart than free skin.
 const SEARCH: f64 = 0.9;
-/// A bead's own gel nearer than the first to a skin point when dry (voxel edges) is that
-/// point's own skin, not a fold; from the second on it is a fold like any other gel, and
-/// in between ever more so: the bottom of a crease is finer than the voxels.
-const OWN_SKIN: [f64; 2] = [2.0, 4.0];
 /// Penetration beyond which the push does not grow (voxel edges).
 const DEEPEST_PUSH: f64 = 0.02;
 /// Depth beyond which a point cannot have come through the surface nearby (voxel edges):
 /// where gel is crumpled, the map of places may have other answers.
 const TOO_DEEP: f64 = 0.75;
-/// A force that has faded to this share is none.
-const NOTHING: f64 = 1e-9;
 /// What a contact's stiffness is taken to be at most, over what it is: both skins press
 /// at the same place, each through nodes with weights of both signs, and gel that is
 /// compressed on the way is stiffer.
@@ -42,7 +35,7 @@ pub struct BeadContact {
     second_in_first: Facing,
 }
 
-/// The skin points of one bead near the gel of another, or of its own.
+/// The skin points of one bead near the gel of another.
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Facing {
     probes: Vec<Probe>,
@@ -58,8 +51,6 @@ struct Probe {
     slope: Vector,
     /// What may be moved before the point can touch (m).
     clearance: f64,
-    /// Force on the point (N).
-    force: Vector,
 }
 
 /// A force (N) on a skin point from gel that it has entered.
@@ -74,8 +65,8 @@ impl BeadContact {
     /// seen `shift` (m) from where its coordinates say (a periodic image).
     pub fn find(first: &Relaxation, second: &Relaxation, shift: Vector, reach: f64) -> Self {
         Self {
-            first_in_second: Facing::look(first.bead(), second.bead(), -shift, reach, false),
-            second_in_first: Facing::look(second.bead(), first.bead(), shift, reach, false),
+            first_in_second: Facing::look(first.bead(), second.bead(), -shift, reach),
+            second_in_first: Facing::look(second.bead(), first.bead(), shift, reach),
         }
     }
 
@@ -110,7 +101,7 @@ impl BeadContact {
             let (probing, faced, seen) =
                 if from_first { (&mut *first, &mut *second, -shift) } else { (&mut *second, &mut *first, shift) };
             let push = probing.push_by(faced);
-            let presses = facing.measure(probing.bead(), faced.bead(), seen, false, push, moved);
+            let presses = facing.measure(probing.bead(), faced.bead(), seen, push, moved);
             for press in &presses {
                 probing.pull(press.point, press.force);
                 faced.pull_at(&press.at, -press.force);
@@ -125,57 +116,32 @@ impl BeadContact {
 }
 
 impl Facing {
-    /// The points of a bead within `reach` (m) of its own gel from elsewhere. Those of
-    /// `before` that press are followed on: where they have slid to, nothing else may
-    /// lead.
-    pub(crate) fn own(bead: &Bead, reach: f64, before: &Facing) -> Self {
-        let mut facing = Self::look(bead, bead, Vector::zeros(), reach, true);
-        for probe in before.probes.iter().filter(|probe| probe.force != Vector::zeros()) {
-            match facing.probes.binary_search_by_key(&probe.point, |other| other.point) {
-                Ok(place) => facing.probes[place] = *probe,
-                Err(place) => facing.probes.insert(place, *probe),
-            }
-        }
-        facing
-    }
-
     /// The points of `probing` within `reach` (m) of the gel of `faced`; `probing` is
     /// seen `seen` (m) from where its coordinates say.
-    fn look(probing: &Bead, faced: &Bead, seen: Vector, reach: f64, own: bool) -> Self {
+    fn look(probing: &Bead, faced: &Bead, seen: Vector, reach: f64) -> Self {
         let lattice = faced.lattice();
         let places: Vec<[f64; 3]> = skin_places(faced).map(Into::into).collect();
         let Ok(tree) = ImmutableKdTree::<f64, 3>::new_from_slice(&places) else { return Self::default() };
         let search = (SEARCH * faced.swollen_edge() + reach).powi(2);
         let (centre, extent) = (faced.centre(), faced.extent() + reach);
-        let normals = if own { faced.skin_normals() } else { Vec::new() };
-        let opposed = |a: usize, b: usize| {
-            normals[a].dot(&normals[b]) < 0.0 && lattice.skin.apart_when_dry(a, b) > OWN_SKIN[0]
-        };
         let mut probes = Vec::new();
         for (point, place) in skin_places(probing).enumerate() {
             let place = place + seen;
-            if !own && (place - centre).norm_squared() > extent * extent {
+            if (place - centre).norm_squared() > extent * extent {
                 continue;
             }
             let query = place.into();
-            let near = if own {
-                let near = tree.query(&query).within::<SquaredEuclidean<f64>>(search).unsorted().execute();
-                near.into_iter()
-                    .filter(|near| opposed(point, near.item as usize))
-                    .min_by(|a, b| a.distance.total_cmp(&b.distance).then(a.item.cmp(&b.item)))
-            } else {
-                let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
-                (near.distance < search).then_some(near)
-            };
-            let Some(near) = near else { continue };
+            let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
+            if near.distance > search {
+                continue;
+            }
             let start = lattice.skin_point_in_voxel(near.item as usize);
             let point = point as u32;
             if let Some((at, found)) = sound(faced, &place, start)
-                && fold(faced, point, &found, own).0 > 0.0
                 && found.distance() > -reach
                 && found.depth < TOO_DEEP
             {
-                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0, force: Vector::zeros() });
+                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0 });
             }
         }
         Self { probes, overlap: 0.0 }
@@ -188,7 +154,6 @@ impl Facing {
         probing: &Bead,
         faced: &Bead,
         seen: Vector,
-        own: bool,
         law: Push,
         moved: f64,
     ) -> Vec<Press> {
@@ -196,16 +161,13 @@ impl Facing {
         let mut depths = 0.0;
         for probe in &mut self.probes {
             probe.clearance -= moved;
-            if probe.clearance > 0.0 && probe.force == Vector::zeros() {
+            if probe.clearance > 0.0 {
                 continue;
             }
             let place = probing.skin_point(probe.point as usize) + seen;
-            let (force, depth) = probe.push(faced, &place, own, law);
-            probe.force = probe.force.lerp(&force, law.promptness);
-            if probe.force.norm() > NOTHING * law.stiffness * law.edge {
-                presses.push(Press { point: probe.point, at: probe.at, force: probe.force });
-            } else {
-                probe.force = Vector::zeros();
+            let (force, depth) = probe.push(faced, &place, law);
+            if depth > 0.0 {
+                presses.push(Press { point: probe.point, at: probe.at, force });
             }
             depths += depth;
         }
@@ -227,7 +189,7 @@ impl Facing {
 impl Probe {
     /// The force (N) on the point at a place, and its depth (voxel edges) as far as the
     /// contact counts.
-    fn push(&mut self, faced: &Bead, place: &Vector, own: bool, law: Push) -> (Vector, f64) {
+    fn push(&mut self, faced: &Bead, place: &Vector, law: Push) -> (Vector, f64) {
         let nothing = (Vector::zeros(), 0.0);
         let Some((at, found)) = sound(faced, place, self.at) else { return nothing };
         self.at = at;
@@ -236,12 +198,10 @@ impl Probe {
             self.clearance = -TRUSTED * found.distance();
             return nothing;
         }
-        let (share, slope) = fold(faced, self.point, &found, own);
-        if share <= 0.0 || found.depth >= TOO_DEEP {
+        if found.depth >= TOO_DEEP {
             return nothing;
         }
-        let (energy, push) = law.energy(found.depth);
-        (found.carry * (found.inward * (-share * push) - slope * energy), share * found.depth)
+        (found.carry * found.inward * -law.push(found.depth), found.depth)
     }
 }
 
@@ -254,18 +214,12 @@ pub(crate) struct Push {
     pub(crate) area: f64,
     /// Edge of a free-swollen voxel of the entered gel (m).
     pub(crate) edge: f64,
-    /// Share of a change of force that comes at once: where crumpled gel has no steady
-    /// answer, its mean over some steps is one.
-    pub(crate) promptness: f64,
 }
 
 impl Push {
-    /// Energy (J) at a depth in voxel edges, and its slope (J per voxel edge): square at
-    /// first, then straight.
-    fn energy(&self, depth: f64) -> (f64, f64) {
-        let scale = self.stiffness * self.edge * self.edge;
-        let pushed = depth.min(DEEPEST_PUSH);
-        (scale * pushed * (depth - 0.5 * pushed), scale * pushed)
+    /// Slope of the energy (J per voxel edge) at a depth in voxel edges.
+    fn push(&self, depth: f64) -> f64 {
+        self.stiffness * self.edge * self.edge * depth.min(DEEPEST_PUSH)
     }
 }
 
@@ -273,22 +227,6 @@ impl Push {
 fn sound(faced: &Bead, place: &Vector, from: Embedded) -> Option<(Embedded, Depth)> {
     let (at, gradient) = faced.lattice().embed(&faced.positions, place, from)?;
     Some((at, faced.lattice().depth(&at, &gradient)?))
-}
-
-/// How much of a fold a skin point's contact with the gel at a place is, and the slope of
-/// that over the dry place (per voxel edge); wholly, if the gel is another bead's.
-fn fold(faced: &Bead, point: u32, found: &Depth, own: bool) -> (f64, Vector) {
-    if !own {
-        return (1.0, Vector::zeros());
-    }
-    let [skin, fold] = OWN_SKIN;
-    let offset = found.dry - Vector::from(faced.lattice().skin.place[point as usize]);
-    let apart = offset.norm();
-    let along = ((apart - skin) / (fold - skin)).clamp(0.0, 1.0);
-    // Smooth at both ends.
-    let share = along * along * (3.0 - 2.0 * along);
-    let slope = 6.0 * along * (1.0 - along) / (fold - skin);
-    (share, offset * (slope / apart.max(f64::MIN_POSITIVE)))
 }
 
 fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {

@@ -5,6 +5,7 @@ mod contact;
 mod datasheet;
 mod elastic;
 mod equilibrium;
+mod fold;
 mod gel_contact;
 mod lanes;
 mod lattice;

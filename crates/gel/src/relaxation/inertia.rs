@@ -46,8 +46,8 @@ impl Inertia {
         // All points within reach count, so that none turns out too light for the
         // contact it is about to make.
         contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
-        for (point, at, stiffness) in bead.folds.possible(bead.push_by(bead)) {
-            let terms = lattice.skin.terms(point as usize).chain(lattice.possible_terms(at));
+        for (point, stiffness) in bead.folds.possible(bead.fold_law()) {
+            let terms = lattice.skin.terms(point as usize);
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
         self.own.iter_mut().for_each(|mass| *mass *= MASS_FACTOR);
@@ -115,7 +115,6 @@ impl Relaxation {
             }
             fastest = fastest.max(way.norm_squared());
         }
-        self.moved += fastest.sqrt();
         self.last_way = fastest.sqrt() + std::mem::take(&mut self.grown);
     }
 

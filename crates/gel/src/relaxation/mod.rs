@@ -6,7 +6,8 @@ use crate::bead::Bead;
 use crate::contact::{Contacts, skin_position};
 use crate::elastic::Elastic;
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
-use crate::gel_contact::{Facing, Push};
+use crate::fold::{FoldLaw, Folds};
+use crate::gel_contact::Push;
 use crate::lattice::Embedded;
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
@@ -27,10 +28,8 @@ pub struct Relaxation {
     /// What the bead does to each obstacle.
     loads: Vec<Load>,
     /// Where the bead comes near itself.
-    folds: Facing,
-    /// Way of the fastest node since folds were last measured (m).
-    moved: f64,
-    /// The same of the last step, with the growth before it.
+    folds: Folds,
+    /// Way of the fastest node in the last step, with the growth before it (m).
     last_way: f64,
     grown: f64,
     /// How much heavier than usual the nodes are.
@@ -87,8 +86,7 @@ impl Relaxation {
             inertia: Inertia::default(),
             contacts: Contacts::default(),
             loads: Vec::new(),
-            folds: Facing::default(),
-            moved: 0.0,
+            folds: Folds::default(),
             last_way: 0.0,
             grown: 0.0,
             caution: 1.0,
@@ -110,9 +108,7 @@ impl Relaxation {
 
     /// Grows the bead about its centre.
     pub fn grow(&mut self, by: f64) {
-        let way = (by - 1.0) * self.extent();
-        self.moved += way;
-        self.grown += way;
+        self.grown += (by - 1.0) * self.extent();
         self.bead.scale(by);
     }
 
@@ -139,8 +135,7 @@ impl Relaxation {
         let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
         self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
-        self.folds = Facing::own(&self.bead, reach, &self.folds);
-        self.moved = 0.0;
+        self.folds = Folds::find(&self.bead, self.fold_law(), reach);
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles);
         self.inertia = inertia;
@@ -222,13 +217,13 @@ impl Relaxation {
 
     /// Lets the bead press on itself.
     fn press_folds(&mut self) {
-        let push = self.push_by(self);
-        let moved = 2.0 * POINT_WAY * std::mem::take(&mut self.moved);
+        let law = self.fold_law();
         let mut folds = std::mem::take(&mut self.folds);
-        for press in folds.measure(&self.bead, &self.bead, Vector::zeros(), true, push, moved) {
-            self.pull(press.point, press.force);
-            self.pull_at(&press.at, -press.force);
-        }
+        let (bead, gradient) = (&self.bead, &mut self.gradient);
+        folds.press(bead, law, |a, b, force| {
+            pull_nodes(gradient, bead.lattice().skin.terms(a as usize), force);
+            pull_nodes(gradient, bead.lattice().skin.terms(b as usize), -force);
+        });
         self.folds = folds;
     }
 
@@ -240,29 +235,26 @@ impl Relaxation {
     /// How the gel of `faced` pushes this bead's skin points out: both skins are probed,
     /// each with half the pressure.
     pub(crate) fn push_by(&self, faced: &Relaxation) -> Push {
-        let edge = (faced.contacts.area / faced.bead.lattice().skin.area).sqrt();
-        let promptness = 1.0 / self.caution;
-        Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge, promptness }
+        Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge: faced.free_edge() }
+    }
+
+    fn fold_law(&self) -> FoldLaw {
+        FoldLaw { stiffness: self.point_stiffness(), area: self.contacts.area, edge: self.free_edge() }
+    }
+
+    /// Edge of a free-swollen voxel when contacts were last looked for (m).
+    fn free_edge(&self) -> f64 {
+        (self.contacts.area / self.bead.lattice().skin.area).sqrt()
     }
 
     /// Adds a force (N) on a skin point.
     pub(crate) fn pull(&mut self, point: u32, force: Vector) {
-        let lattice = self.bead.shared_lattice();
-        self.pull_nodes(lattice.skin.terms(point as usize), force);
+        pull_nodes(&mut self.gradient, self.bead.lattice().skin.terms(point as usize), force);
     }
 
     /// Adds a force (N) on a place in the gel.
     pub(crate) fn pull_at(&mut self, at: &Embedded, force: Vector) {
-        self.pull_nodes(self.bead.lattice().embedded_terms(at).into_iter(), force);
-    }
-
-    fn pull_nodes(&mut self, terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
-        let stride = self.gradient.len() / 3;
-        for (node, weight) in terms {
-            for axis in 0..3 {
-                self.gradient[axis * stride + node] -= weight * force[axis];
-            }
-        }
+        pull_nodes(&mut self.gradient, self.bead.lattice().embedded_terms(at).into_iter(), force);
     }
 
     /// Counts a neighbouring bead's force (N), with its stiffness (N/m), among the
@@ -290,7 +282,7 @@ impl Relaxation {
         let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
         self.bead = bead;
         self.contacts = solver.contacts;
-        self.folds = Facing::own(&self.bead, 0.0, &Facing::default());
+        self.folds = Folds::find(&self.bead, self.fold_law(), 0.0);
         self.listed = Listed::default();
         self.compute_forces(gel, obstacles);
         Ok(equilibrium)
@@ -342,14 +334,29 @@ impl Relaxation {
         depth.max(0.0) * self.contacts.area
     }
 
-    /// Volume by which the bead overlaps itself (m³).
+    /// Whether the bead presses on itself.
+    pub fn is_folded(&self) -> bool {
+        self.folds.pressing > 0
+    }
+
+    /// Volume that folded skins may have lost to each other (m³).
     pub fn folded_volume(&self) -> f64 {
-        0.5 * self.folds.overlap
+        self.folds.overlap
     }
 
     fn force_scale(&self, gel: &Gel) -> f64 {
         let rest = gel.moduli().shear * (gel.free_stretch() * self.bead.dry_radius()).powi(2);
         self.largest_contact_force.max(1e-3 * rest)
+    }
+}
+
+/// Adds a force (N) on nodes to the energy's gradient.
+fn pull_nodes(gradient: &mut [f64], terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
+    let stride = gradient.len() / 3;
+    for (node, weight) in terms {
+        for axis in 0..3 {
+            gradient[axis * stride + node] -= weight * force[axis];
+        }
     }
 }
 

@@ -148,7 +148,7 @@ impl March {
             Tolerance { residual: 1e-3, corrections: 0, held: self.hold_beads }
         };
         let settled =
-            grown.settle(gel, &around.obstacles, tolerance).is_ok() && grown.folded_volume() == 0.0;
+            grown.settle(gel, &around.obstacles, tolerance).is_ok() && !grown.is_folded();
         if settled {
             *bead = grown;
         }
