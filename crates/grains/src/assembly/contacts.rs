@@ -18,6 +18,9 @@ impl Assembly {
         self.contacts.touching = 0;
         self.contacts.deepest = 0.0;
         self.boundary = Boundary::default();
+        if let Some(ledger) = &mut self.ledger {
+            ledger.clear_loads();
+        }
         self.lid_state.stiffness = 0.0;
         let mut virial = 0.0;
         self.push_pairs(&mut virial);
@@ -42,7 +45,9 @@ impl Assembly {
     /// Contact forces between grains. In a fully periodic cell they resist its
     /// shrinking: `virial` gathers their work per strain (J).
     fn push_pairs(&mut self, virial: &mut f64) {
-        let Self { cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, .. } = self;
+        let Self {
+            cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, ledger, ..
+        } = self;
         let list = &mut self.contacts;
         let (periodic, rough, rolls) = (cell.periodic[2], law.friction > 0.0, law.resists_rolling());
         for pair in &mut list.pairs {
@@ -54,6 +59,15 @@ impl Assembly {
             let reach = radii[a] + radii[b];
             let square = apart.norm_squared();
             if square >= reach * reach {
+                if pair.contact.force > 0.0
+                    && let Some(ledger) = ledger
+                {
+                    let turns = spins[a] * radii[a] + spins[b] * radii[b];
+                    let moved = velocities[b] - velocities[a] - turns.cross(&apart.normalize());
+                    let turned = spins[b] - spins[a];
+                    ledger.part(law, &pair.contact, [moved, turned], radii[a] * radii[b] / reach);
+                    ledger.open(pair.contact.force, square.sqrt() - reach);
+                }
                 pair.contact = ContactState::default();
                 continue;
             }
@@ -62,6 +76,12 @@ impl Assembly {
             let overlap = reach - distance;
             let reduced = radii[a] * radii[b] / reach;
             let (push, stiffness) = law.normal.push(overlap, reduced);
+            if pair.contact.force == 0.0
+                && list.slip
+                && let Some(ledger) = ledger
+            {
+                ledger.close(push, (velocities[a] - velocities[b]).dot(&normal) - overlap);
+            }
             let mut on_b = normal * push;
             if rough {
                 // Both arms end in one point, so that angular momentum is kept.
@@ -71,16 +91,20 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
+                let turned = if list.slip && rolls { spins[b] - spins[a] } else { Vector::zeros() };
+                let before = pair.contact;
                 let drag = pair.contact.rub(law, &normal, moved, push, stiffness);
                 on_b -= drag;
                 let twist = normal.cross(&drag);
                 torques[a] += twist * arm_a;
                 torques[b] += twist * arm_b;
                 if rolls {
-                    let turned = if list.slip { spins[b] - spins[a] } else { Vector::zeros() };
                     let moment = pair.contact.roll(law, &normal, turned, push, stiffness, reduced);
                     torques[a] += moment;
                     torques[b] -= moment;
+                }
+                if let Some(ledger) = ledger {
+                    ledger.slip(law, [&before, &pair.contact], [moved, turned], stiffness, reduced);
                 }
             }
             pair.contact.force = push;
@@ -100,20 +124,36 @@ impl Assembly {
 
     /// Contact forces with floor, lid and wall.
     fn push_plates(&mut self) {
+        let rolls = self.law.resists_rolling();
         let list = &mut self.contacts;
         for touch in &mut list.plates {
             let grain = touch.grain as usize;
             let radius = self.radii[grain];
             let (gap, normal) = touch.plate.facing(&self.cell, self.wall, &self.centres[grain], radius);
             if gap >= 0.0 || (touch.plate == Plate::Lid && self.lid == Lid::Open) {
+                if touch.contact.force > 0.0
+                    && let Some(ledger) = &mut self.ledger
+                {
+                    let turned = -self.spins[grain];
+                    let moved = (turned * radius).cross(&normal) - self.velocities[grain];
+                    ledger.part(&self.law, &touch.contact, [moved, turned], radius);
+                    ledger.open(touch.contact.force, gap);
+                }
                 touch.contact = ContactState::default();
                 continue;
             }
             let (push, stiffness) = self.law.normal.push(-gap, radius);
+            let plate_speed = if touch.plate == Plate::Lid { self.lid_state.velocity } else { 0.0 };
+            let approach = self.velocities[grain] - Vector::z() * plate_speed;
+            if touch.contact.force == 0.0
+                && list.slip
+                && let Some(ledger) = &mut self.ledger
+            {
+                ledger.close(push, approach.dot(&normal) + gap);
+            }
             let mut on_plate = normal * push;
             if self.law.friction > 0.0 {
                 let arm = radius + gap;
-                let plate_speed = if touch.plate == Plate::Lid { self.lid_state.velocity } else { 0.0 };
                 let moved = if list.slip {
                     Vector::z() * plate_speed
                         - self.velocities[grain]
@@ -121,13 +161,18 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
+                let turned = if list.slip && rolls { -self.spins[grain] } else { Vector::zeros() };
+                let before = touch.contact;
                 let drag = touch.contact.rub(&self.law, &normal, moved, push, stiffness);
                 on_plate -= drag;
                 self.torques[grain] += normal.cross(&drag) * arm;
-                if self.law.resists_rolling() {
-                    let turned = if list.slip { -self.spins[grain] } else { Vector::zeros() };
+                if rolls {
                     self.torques[grain] +=
                         touch.contact.roll(&self.law, &normal, turned, push, stiffness, radius);
+                }
+                if let Some(ledger) = &mut self.ledger {
+                    let states = [&before, &touch.contact];
+                    ledger.slip(&self.law, states, [moved, turned], stiffness, radius);
                 }
             }
             touch.contact.force = push;
