@@ -64,8 +64,9 @@ fn level_in_words(level: &LevelSummary) -> String {
     for response in
         RESPONSES.iter().filter(|response| !["tear_probability", "torn_fraction"].contains(&response.name))
     {
-        let figure = estimate(level.figure(response), response.show);
-        text += format!("  {:<18}{figure} {}", response.title, response.unit).trim_end();
+        let figure = level.figure(response);
+        let unit = if figure.is_some() { response.unit } else { "" };
+        text += format!("  {:<18}{} {unit}", response.title, estimate(figure, response.show)).trim_end();
         text.push('\n');
     }
     if level.stopped_early {

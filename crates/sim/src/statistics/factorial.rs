@@ -18,6 +18,9 @@ pub(super) type Group = Vec<(usize, usize)>;
 /// A weighted sum of means over groups.
 pub(super) type Contrast = Vec<(f64, Group)>;
 
+/// Part of the terms' size below which their sum is rounding.
+const ROUNDING: f64 = 1e-13;
+
 /// The contrasts with their intervals.
 ///
 /// The mean of a group weighs every combination alike. It is not known (nor is any
@@ -41,10 +44,13 @@ pub(super) fn bootstrap_contrasts(
         let means: Vec<f64> = responses.iter().map(|packs| mean_of_known(packs, chosen)).collect();
         let mean_over =
             |group: &[usize]| group.iter().map(|&one| means[one]).sum::<f64>() / group.len() as f64;
-        contrasts
-            .iter()
-            .map(|terms| terms.iter().map(|(weight, group)| weight * mean_over(group)).sum())
-            .collect()
+        let sum = |terms: &Vec<(f64, Vec<usize>)>| {
+            let parts: Vec<f64> = terms.iter().map(|(weight, group)| weight * mean_over(group)).collect();
+            let (sum, size) = parts.iter().fold((0.0, 0.0), |at, part| (at.0 + part, at.1 + part.abs()));
+            // What rounding leaves where terms cancel is nought.
+            if sum.abs() <= ROUNDING * size { 0.0 } else { sum }
+        };
+        contrasts.iter().map(sum).collect()
     })
 }
 

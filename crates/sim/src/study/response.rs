@@ -49,9 +49,14 @@ impl Response {
     }
 }
 
-/// A probability; one that no number of packs could tell from nought is not spelled out.
+/// A probability, or a change of one; what no number of packs could tell from nought is
+/// not spelled out.
 fn chance(value: f64) -> String {
-    if 0.0 < value && value < 1e-4 { "<0.0001".into() } else { digits(value) }
+    match value {
+        _ if value == 0.0 || value.abs() >= 1e-4 => digits(value),
+        _ if value > 0.0 => "<0.0001".into(),
+        _ => ">-0.0001".into(),
+    }
 }
 
 fn milli(value: f64) -> String {

@@ -30,63 +30,55 @@ pub(super) struct Group {
 }
 
 impl FigureTable {
-    /// The lines of the table.
+    /// The lines of the table, of which the first two are headings (three where labels have
+    /// lines of their own).
     pub(super) fn lines(&self) -> Vec<String> {
-        let cells: Vec<Vec<[String; 3]>> = self.rows.iter().map(|(_, figures)| self.cells(figures)).collect();
-        let heads = [self.figure, "low", "high"].map(str::to_owned);
-        let widths: Vec<[usize; 3]> = (0..self.groups.len())
-            .map(|group| {
-                let column = |side: usize| cells.iter().map(move |row| &row[group][side]);
-                [0, 1, 2].map(|side| widest(column(side)).max(width(&heads[side])))
-            })
-            .collect();
-        let group_width = |group: usize| {
-            let columns = widths[group].iter().sum::<usize>() + 2 * GAP;
-            columns.max(width(&self.groups[group].heading))
-        };
-        let figures = |cells: &[[String; 3]]| {
-            let group = |(group, sides): (usize, &[String; 3])| {
-                let [first, low, high] = [0, 1, 2].map(|side| right(&sides[side], widths[group][side]));
-                right(&[first, low, high].join(&" ".repeat(GAP)), group_width(group))
-            };
-            cells.iter().enumerate().map(group).collect::<Vec<_>>().join(&" ".repeat(GROUP_GAP))
-        };
-        let headings: Vec<String> = self
-            .groups
-            .iter()
-            .enumerate()
-            .map(|(group, Group { heading, .. })| right(heading, group_width(group)))
-            .collect();
-        let headings = headings.join(&" ".repeat(GROUP_GAP));
-        let under = figures(&vec![heads.clone(); self.groups.len()]);
+        let (labels, figures) = (self.label_lines(), self.figure_lines());
+        let indent = " ".repeat(INDENT);
+        let together =
+            |labels: &str, figures: &str| format!("{indent}{labels}{}{figures}", " ".repeat(GROUP_GAP));
+        if width(&together(&labels[0], &figures[0])) <= WIDTH {
+            return labels.iter().zip(&figures).map(|(labels, figures)| together(labels, figures)).collect();
+        }
+        let above = |labels: &str| format!("{indent}{}", labels.trim_end());
+        let below = |figures: &str| format!("{indent}{indent}{figures}");
+        let mut lines = vec![above(&labels[1]), below(&figures[0]), below(&figures[1])];
+        for (labels, figures) in labels.iter().zip(&figures).skip(2) {
+            lines.extend([above(labels), below(figures)]);
+        }
+        lines
+    }
 
-        let label_widths: Vec<usize> = (0..self.labels.len())
-            .map(|label| widest(self.rows.iter().map(|row| &row.0[label])).max(width(&self.labels[label])))
-            .collect();
-        let labels = |texts: &[String]| {
-            let padded = texts.iter().zip(&label_widths).map(|(text, width)| left(text, *width));
+    /// The labels' side of each line.
+    fn label_lines(&self) -> Vec<String> {
+        let blank = vec![String::new(); self.labels.len()];
+        let rows = [&blank, &self.labels].into_iter().chain(self.rows.iter().map(|row| &row.0));
+        let widths: Vec<usize> =
+            (0..self.labels.len()).map(|label| widest(rows.clone().map(|row| &row[label]))).collect();
+        let line = |texts: &Vec<String>| {
+            let padded = texts.iter().zip(&widths).map(|(text, width)| format!("{text:<width$}"));
             padded.collect::<Vec<_>>().join(&" ".repeat(GAP))
         };
-        let blank = vec![String::new(); self.labels.len()];
-        let beside = INDENT + width(&labels(&blank)) + GROUP_GAP + width(&under) <= WIDTH;
-        let line = |texts: &[String], figures: &str| {
-            let (indent, labels) = (" ".repeat(INDENT), labels(texts));
-            if beside {
-                vec![format!("{indent}{labels}{}{figures}", " ".repeat(GROUP_GAP))]
-            } else {
-                vec![format!("{indent}{}", labels.trim_end()), format!("{indent}{indent}{figures}")]
-            }
-        };
-        let mut lines = line(&blank, &headings);
-        lines.extend(line(&self.labels, &under));
-        if !beside {
-            // The labels' headings, then those of the figures below them.
-            lines = vec![lines.swap_remove(2), lines.swap_remove(1), lines.swap_remove(2)];
-        }
-        lines.extend(
-            self.rows.iter().zip(&cells).flat_map(|((texts, _), cells)| line(texts, &figures(cells))),
-        );
-        lines
+        rows.map(line).collect()
+    }
+
+    /// The figures' side of each line.
+    fn figure_lines(&self) -> Vec<String> {
+        let heads = vec![[self.figure, "low", "high"].map(str::to_owned); self.groups.len()];
+        let rows: Vec<Vec<[String; 3]>> =
+            [heads].into_iter().chain(self.rows.iter().map(|(_, figures)| self.cells(figures))).collect();
+        let groups = self.groups.iter().enumerate().map(|(group, Group { heading, .. })| {
+            let widths = [0, 1, 2].map(|side| widest(rows.iter().map(|row| &row[group][side])));
+            let line = |row: &Vec<[String; 3]>| {
+                [0, 1, 2].map(|side| right(&row[group][side], widths[side])).join(&" ".repeat(GAP))
+            };
+            let lines: Vec<String> = [heading.clone()].into_iter().chain(rows.iter().map(line)).collect();
+            let width = widest(lines.iter());
+            lines.iter().map(|line| right(line, width)).collect::<Vec<_>>()
+        });
+        let groups: Vec<Vec<String>> = groups.collect();
+        let line = |index: usize| groups.iter().map(|group| group[index].as_str()).collect::<Vec<_>>();
+        (0..rows.len() + 1).map(|index| line(index).join(&" ".repeat(GROUP_GAP))).collect()
     }
 
     fn cells(&self, figures: &[Option<Measure>]) -> Vec<[String; 3]> {
@@ -104,10 +96,6 @@ fn widest<'a>(texts: impl Iterator<Item = &'a String>) -> usize {
 
 fn width(text: &str) -> usize {
     text.chars().count()
-}
-
-fn left(text: &str, width: usize) -> String {
-    format!("{text:<width$}")
 }
 
 fn right(text: &str, width: usize) -> String {
