@@ -191,8 +191,12 @@ impl Assembly {
     /// Volume of the grains over the volume of the whole cell or pot, floor to lid;
     /// overlaps count twice.
     pub fn solid_fraction(&self) -> f64 {
-        self.radii.iter().map(|&radius| volume_of_radius(radius)).sum::<f64>()
-            / (self.section() * self.cell.size.z)
+        self.solid_volume() / (self.section() * self.cell.size.z)
+    }
+
+    /// Volume of the grains (m³); overlaps count twice.
+    pub fn solid_volume(&self) -> f64 {
+        self.radii.iter().map(|&radius| volume_of_radius(radius)).sum()
     }
 
     /// Keeps the first `count` grains, with the contacts among them, and takes the

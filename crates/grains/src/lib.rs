@@ -11,5 +11,6 @@ pub use contact_law::{ContactLaw, ContactLawError, Normal, mindlin_ratio};
 pub use force_statistics::{FORCE_QUANTILES, ForceStatistics};
 pub use grading::{Grading, GradingError, MassCurve, SizeNumbers};
 pub use packing::{
-    POROSITY_TOLERANCE, Pack, PackError, PackReport, PackRequest, Sides, beads_for_dose, pack,
+    POROSITY_TOLERANCE, Pack, PackError, PackReport, PackRequest, Pot, Sides, beads_for_dose, pack,
+    submerged_weight, wall_porosity_rise,
 };

@@ -1,6 +1,12 @@
 use super::{Assembly, Lid};
 
 impl Assembly {
+    /// Volume of the grains over the filled volume, floor to
+    /// [`filled_height`](Self::filled_height); overlaps count twice.
+    pub fn filled_fraction(&self) -> f64 {
+        self.solid_volume() / (self.section() * self.filled_height())
+    }
+
     /// Height (m) to which the cell is filled: that of the lid, or where the top is open
     /// the mean height of the surface as seen from above.
     pub fn filled_height(&self) -> f64 {
