@@ -71,10 +71,7 @@ fn a_study_of_two_factors_tells_combinations_and_effects() {
         assert!(text.contains(words), "no {words:?} in:\n{text}");
     }
     let tables = text.lines().filter(|line| line.starts_with("  "));
-    assert!(
-        tables.clone().count() >= 4 + 2 + 1 && tables.clone().all(|line| line.chars().count() <= 100),
-        "{text}"
-    );
+    assert!(tables.clone().count() > 6 && tables.clone().all(|line| line.chars().count() <= 100), "{text}");
 
     let summary = env.json("out/summary.json");
     assert_eq!(summary["levels"][3]["values"], serde_json::json!(["0.02 mol/L", "10"]));

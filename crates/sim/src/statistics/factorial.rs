@@ -34,13 +34,29 @@ pub(super) fn bootstrap_contrasts(
     seed: u64,
 ) -> Vec<Option<Measure>> {
     let numbers = pack_numbers(combinations);
+    bootstrap(numbers.len(), seed, contrasts_of_packs(combinations, contrasts, &numbers))
+}
+
+/// The contrasts alone; not a number where one is not known.
+pub(super) fn contrast_values(combinations: &[Combination], contrasts: &[Contrast]) -> Vec<f64> {
+    let numbers = pack_numbers(combinations);
+    let all: Vec<usize> = (0..numbers.len()).collect();
+    contrasts_of_packs(combinations, contrasts, &numbers)(&all)
+}
+
+/// What the contrasts come to for packs chosen from `numbers` by their indices.
+fn contrasts_of_packs(
+    combinations: &[Combination],
+    contrasts: &[Contrast],
+    numbers: &[u64],
+) -> impl Fn(&[usize]) -> Vec<f64> {
     // The response of each pack at each combination; not a number where it is not known.
-    let responses: Vec<Vec<f64>> = combinations.iter().map(|one| responses(one, &numbers)).collect();
+    let responses: Vec<Vec<f64>> = combinations.iter().map(|one| responses(one, numbers)).collect();
     let contrasts: Vec<Vec<(f64, Vec<usize>)>> = contrasts
         .iter()
         .map(|terms| terms.iter().map(|(weight, group)| (*weight, members(combinations, group))).collect())
         .collect();
-    bootstrap(numbers.len(), seed, |chosen| {
+    move |chosen| {
         let means: Vec<f64> = responses.iter().map(|packs| mean_of_known(packs, chosen)).collect();
         let mean_over =
             |group: &[usize]| group.iter().map(|&one| means[one]).sum::<f64>() / group.len() as f64;
@@ -51,7 +67,7 @@ pub(super) fn bootstrap_contrasts(
             if sum.abs() <= ROUNDING * size { 0.0 } else { sum }
         };
         contrasts.iter().map(sum).collect()
-    })
+    }
 }
 
 /// Levels that a factor has among the combinations.

@@ -1,5 +1,5 @@
 use super::Measure;
-use super::factorial::{Combination, Contrast, bootstrap_contrasts, levels_of};
+use super::factorial::{Combination, Contrast, bootstrap_contrasts, contrast_values, levels_of};
 
 /// How far two factors are from adding up, where they are farthest.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -19,20 +19,27 @@ pub(crate) struct Deviation {
 pub(crate) fn largest_deviations(combinations: &[Combination], seed: u64) -> Vec<Deviation> {
     let factors = combinations.first().map_or(0, |one| one.levels.len());
     let pairs = (0..factors).flat_map(|first| (first + 1..factors).map(move |second| [first, second]));
-    pairs.filter_map(|pair| largest_deviation(combinations, pair, seed)).collect()
+    let places: Vec<_> = pairs.filter_map(|pair| Some((pair, farthest_place(combinations, pair)?))).collect();
+    let contrasts: Vec<Contrast> = places.iter().map(|&(pair, levels)| contrast(pair, levels)).collect();
+    let deviations = bootstrap_contrasts(combinations, &contrasts, seed);
+    let found = places.into_iter().zip(deviations);
+    found
+        .filter_map(|((factors, levels), deviation)| {
+            Some(Deviation { factors, levels, deviation: deviation? })
+        })
+        .collect()
 }
 
-fn largest_deviation(combinations: &[Combination], factors: [usize; 2], seed: u64) -> Option<Deviation> {
+/// The levels at which two factors are farthest from adding up, if all are known.
+fn farthest_place(combinations: &[Combination], factors: [usize; 2]) -> Option<[usize; 2]> {
     let [rows, columns] = factors.map(|factor| levels_of(combinations, factor));
     let places: Vec<[usize; 2]> = (0..rows).flat_map(|a| (0..columns).map(move |b| [a, b])).collect();
     let contrasts: Vec<Contrast> = places.iter().map(|&levels| contrast(factors, levels)).collect();
-    let deviations: Vec<Measure> =
-        bootstrap_contrasts(combinations, &contrasts, seed).into_iter().collect::<Option<_>>()?;
-    let sizes: Vec<f64> = deviations.iter().map(|deviation| deviation.value.abs()).collect();
+    let sizes: Vec<f64> = contrast_values(combinations, &contrasts).into_iter().map(f64::abs).collect();
     let largest = sizes.iter().copied().fold(0.0, f64::max);
     // Of places alike but for rounding, as all are of two factors with two levels, the last.
-    let largest = sizes.iter().rposition(|&size| size >= (1.0 - 1e-9) * largest)?;
-    Some(Deviation { factors, levels: places[largest], deviation: deviations[largest] })
+    let farthest = sizes.iter().rposition(|&size| size >= (1.0 - 1e-9) * largest)?;
+    sizes.iter().all(|size| size.is_finite()).then(|| places[farthest])
 }
 
 fn contrast([first, second]: [usize; 2], [a, b]: [usize; 2]) -> Contrast {

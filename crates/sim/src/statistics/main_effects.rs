@@ -1,5 +1,5 @@
 use super::Measure;
-use super::factorial::{Combination, bootstrap_contrasts, levels_of};
+use super::factorial::{Combination, Contrast, bootstrap_contrasts, levels_of};
 
 /// What one level of a factor does.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -14,18 +14,19 @@ pub(crate) struct MainEffect {
 /// combination without packs has none.
 pub(crate) fn main_effects(combinations: &[Combination], seed: u64) -> Vec<Vec<MainEffect>> {
     let factors = combinations.first().map_or(0, |one| one.levels.len());
-    (0..factors)
-        .map(|factor| {
-            let levels = levels_of(combinations, factor);
-            let mean = |level| vec![(1.0, vec![(factor, level)])];
-            let difference = |level| vec![(1.0, vec![(factor, level)]), (-1.0, vec![(factor, 0)])];
-            let contrasts: Vec<_> = (0..levels).map(mean).chain((1..levels).map(difference)).collect();
-            let measures = bootstrap_contrasts(combinations, &contrasts, seed);
-            let (means, differences) = measures.split_at(levels);
-            let differences = [None].into_iter().chain(differences.iter().copied());
-            means.iter().zip(differences).map(|(&mean, difference)| MainEffect { mean, difference }).collect()
-        })
-        .collect()
+    let levels: Vec<usize> = (0..factors).map(|factor| levels_of(combinations, factor)).collect();
+    let mean = |factor, level| vec![(1.0, vec![(factor, level)])];
+    let difference = |factor, level| vec![(1.0, vec![(factor, level)]), (-1.0, vec![(factor, 0)])];
+    let contrasts: Vec<Contrast> = (0..factors)
+        .flat_map(|factor| (0..levels[factor]).map(move |level| (factor, level)))
+        .flat_map(|(factor, level)| [mean(factor, level), difference(factor, level)])
+        .collect();
+    let mut measures = bootstrap_contrasts(combinations, &contrasts, seed).into_iter();
+    let mut effect = |level| {
+        let (mean, difference) = (measures.next().flatten(), measures.next().flatten());
+        MainEffect { mean, difference: difference.filter(|_| level > 0) }
+    };
+    levels.iter().map(|&levels| (0..levels).map(&mut effect).collect()).collect()
 }
 
 #[cfg(test)]
