@@ -1,4 +1,4 @@
-use super::figure_table::{FigureTable, Group, Row};
+use super::figure_table::{FigureTable, Group};
 use bedswell_sim::{
     Effects, Factor, FactorEffect, Measure, RESPONSES, Response, StudySummary, Variation,
     combination_in_words,
@@ -111,13 +111,12 @@ fn rank_correlations(study: &StudySummary, effects: &[&Effects]) -> Option<Strin
     let rows = short_names(study).into_iter().enumerate().map(|(index, name)| {
         (vec![name], effects.iter().map(|one| one.factors[index].rank_correlation).collect())
     });
-    let rows: Vec<Row> = rows.filter(|(_, figures): &Row| figures.iter().any(Option::is_some)).collect();
     let group = |response: &Response| Group {
         heading: response.title.into(),
         show: Box::new(|value| signed(value, format!("{value:.2}"))),
     };
     let groups = shown().map(group).collect();
-    let table = FigureTable { labels: vec!["factor".into()], groups, figure: "rank", rows };
+    let table = FigureTable { labels: vec!["factor".into()], groups, figure: "rank", rows: rows.collect() };
     titled("Rank correlation (Spearman), from -1 to 1:", table)
 }
 
@@ -151,8 +150,9 @@ fn remarks(study: &StudySummary) -> Option<String> {
     (!lines.is_empty()).then(|| lines.join("\n"))
 }
 
-/// The table under its heading; none without rows.
-fn titled(heading: &str, table: FigureTable) -> Option<String> {
+/// The table under its heading; none if it knows no figure.
+fn titled(heading: &str, mut table: FigureTable) -> Option<String> {
+    table.rows.retain(|(_, figures)| figures.iter().any(Option::is_some));
     (!table.rows.is_empty()).then(|| format!("{heading}\n{}", table.lines().join("\n")))
 }
 
