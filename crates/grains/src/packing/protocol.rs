@@ -291,7 +291,7 @@ fn separate(grains: &mut Assembly) -> usize {
 
 /// Goes on where a loose bed still gives way; returns the steps.
 fn wait(grains: &mut Assembly) -> usize {
-    if at_rest(grains) { 0 } else { march(grains, LIVELY, 0.1 * REST_REQUIRED, 40_000) }
+    if at_rest(grains) { 0 } else { march(grains, LIVELY, 0.5 * REST_REQUIRED, 40_000) }
 }
 
 /// Marches until net forces fall below `tolerance` of the mean contact force, for
