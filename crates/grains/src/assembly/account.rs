@@ -1,5 +1,5 @@
 use super::Assembly;
-use super::spring::{ContactState, rolling_stiffness};
+use super::spring::rolling_stiffness;
 use crate::contact_law::ContactLaw;
 use bedswell_geometry::{Vector, offset};
 
@@ -61,25 +61,35 @@ impl Assembly {
     /// Elastic energy (J) of all contacts at the last
     /// [`compute_contacts`](Self::compute_contacts).
     pub fn stored_energy(&self) -> f64 {
-        let pairs = self.contacts.pairs.iter().filter(|pair| pair.contact.force > 0.0).map(|pair| {
-            let (a, b) = (pair.a as usize, pair.b as usize);
-            let reach = self.radii[a] + self.radii[b];
-            let apart = self.centres[b] + offset(&self.cell, pair.image) - self.centres[a];
-            self.energy_of(&pair.contact, reach - apart.norm(), self.radii[a] * self.radii[b] / reach)
-        });
+        let pairs = (self.contacts.pairs.iter().enumerate())
+            .filter(|(_, pair)| pair.contact.force > 0.0)
+            .map(|(index, pair)| {
+                let (a, b) = (pair.a as usize, pair.b as usize);
+                let reach = self.radii[a] + self.radii[b];
+                let apart = self.centres[b] + offset(&self.cell, pair.image) - self.centres[a];
+                let bend = self.contacts.bends.get(index).copied().unwrap_or_default();
+                self.energy_of(
+                    [pair.contact.slide, bend],
+                    reach - apart.norm(),
+                    self.radii[a] * self.radii[b] / reach,
+                )
+            });
         let plates = self.contacts.plates.iter().filter(|touch| touch.contact.force > 0.0).map(|touch| {
             let grain = touch.grain as usize;
             let (centre, radius) = (self.centres[grain], self.radii[grain]);
             let (gap, _) = touch.plate.facing(&self.cell, self.wall, &centre, radius);
-            self.energy_of(&touch.contact, -gap, radius)
+            self.energy_of([touch.contact.slide, touch.bend], -gap, radius)
         });
         pairs.chain(plates).sum()
     }
 
-    fn energy_of(&self, contact: &ContactState, overlap: f64, reduced_radius: f64) -> f64 {
-        let (_, stiffness) = self.law.normal.push(overlap, reduced_radius);
-        self.law.normal.energy(overlap, reduced_radius)
-            + spring_energy(&self.law, contact, stiffness, reduced_radius)
+    /// Energy (J) of a contact whose tangential and rolling springs are stretched as given.
+    fn energy_of(&self, [slide, bend]: [Vector; 2], overlap: f64, reduced_radius: f64) -> f64 {
+        let law = &self.law;
+        let (_, stiffness) = law.normal.push(overlap, reduced_radius);
+        law.normal.energy(overlap, reduced_radius)
+            + 0.5 * law.tangential_ratio * stiffness * slide.norm_squared()
+            + 0.5 * rolling_stiffness(law, stiffness, reduced_radius) * bend.norm_squared()
     }
 }
 
@@ -102,35 +112,24 @@ impl Ledger {
         self.lid_force = 0.0;
     }
 
-    /// Books what the springs of a contact lost by slipping while its surfaces moved by
-    /// `moved` (m) and turned by `turned` (rad): mean force times slip.
-    pub(super) fn slip(
-        &mut self,
-        law: &ContactLaw,
-        [before, after]: [&ContactState; 2],
-        [moved, turned]: [Vector; 2],
-        stiffness: f64,
-        reduced_radius: f64,
-    ) {
-        let lost =
-            |before: Vector, by: Vector, after: Vector| 0.5 * (before + after).dot(&(before + by - after));
-        self.sums.friction += law.tangential_ratio * stiffness * lost(before.slide, moved, after.slide);
-        if law.resists_rolling() {
-            self.sums.friction +=
-                rolling_stiffness(law, stiffness, reduced_radius) * lost(before.bend, turned, after.bend);
-        }
+    /// Books what a spring lost by slipping, its mean force times its slip, while its ends
+    /// moved by `by` and its stretch went from `before` to `after` (m or rad).
+    pub(super) fn slip(&mut self, stiffness: f64, before: Vector, by: Vector, after: Vector) {
+        self.sums.friction += stiffness * 0.5 * (before + after).dot(&(before + by - after));
     }
 
-    /// Books what the springs of a contact lose that has parted in the last step.
+    /// Books what the tangential and rolling springs of a contact lose that has parted in
+    /// the last step.
     pub(super) fn part(
         &mut self,
         law: &ContactLaw,
-        contact: &ContactState,
-        motion: [Vector; 2],
+        [slide, bend]: [Vector; 2],
+        [moved, turned]: [Vector; 2],
         reduced_radius: f64,
     ) {
         let (_, stiffness) = law.normal.push(0.0, reduced_radius);
-        self.slip(law, [contact, &ContactState::default()], motion, stiffness, reduced_radius);
+        self.slip(law.tangential_ratio * stiffness, slide, moved, Vector::zeros());
+        self.slip(rolling_stiffness(law, stiffness, reduced_radius), bend, turned, Vector::zeros());
     }
 
     /// Books a contact that closed within the last step, after `gap` (m) without force:
@@ -164,10 +163,4 @@ impl Ledger {
         sums.lifted += grains.lid_load() * lid_velocity;
         sums.damping += grains.lid_state.force * lid_velocity;
     }
-}
-
-/// Energy (J) of a contact's tangential and rolling springs.
-fn spring_energy(law: &ContactLaw, contact: &ContactState, stiffness: f64, reduced_radius: f64) -> f64 {
-    0.5 * law.tangential_ratio * stiffness * contact.slide.norm_squared()
-        + 0.5 * rolling_stiffness(law, stiffness, reduced_radius) * contact.bend.norm_squared()
 }

@@ -1,5 +1,5 @@
 use super::contact_list::Plate;
-use super::spring::ContactState;
+use super::spring::{ContactState, roll, rolling_stiffness};
 use super::{Assembly, Boundary, Lid};
 use bedswell_geometry::{Vector, offset};
 
@@ -23,7 +23,12 @@ impl Assembly {
         }
         self.lid_state.stiffness = 0.0;
         let mut virial = 0.0;
-        self.push_pairs(&mut virial);
+        // Without an account there is nothing to book, and nothing to ask in the loop.
+        if self.ledger.is_some() {
+            self.push_pairs::<true>(&mut virial);
+        } else {
+            self.push_pairs::<false>(&mut virial);
+        }
         if !self.cell.periodic[2] {
             self.push_plates();
         }
@@ -44,13 +49,17 @@ impl Assembly {
 
     /// Contact forces between grains. In a fully periodic cell they resist its
     /// shrinking: `virial` gathers their work per strain (J).
-    fn push_pairs(&mut self, virial: &mut f64) {
+    fn push_pairs<const BOOKED: bool>(&mut self, virial: &mut f64) {
         let Self {
             cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, ledger, ..
         } = self;
+        let mut ledger = ledger.as_mut().filter(|_| BOOKED);
         let list = &mut self.contacts;
         let (periodic, rough, rolls) = (cell.periodic[2], law.friction > 0.0, law.resists_rolling());
-        for pair in &mut list.pairs {
+        if rolls {
+            list.bends.resize(list.pairs.len(), Vector::zeros());
+        }
+        for (index, pair) in list.pairs.iter_mut().enumerate() {
             let (a, b) = (pair.a as usize, pair.b as usize);
             let mut apart = centres[b] - centres[a];
             if pair.image != [0; 3] {
@@ -59,16 +68,17 @@ impl Assembly {
             let reach = radii[a] + radii[b];
             let square = apart.norm_squared();
             if square >= reach * reach {
-                if pair.contact.force > 0.0
-                    && let Some(ledger) = ledger
-                {
-                    let turns = spins[a] * radii[a] + spins[b] * radii[b];
-                    let moved = velocities[b] - velocities[a] - turns.cross(&apart.normalize());
-                    let turned = spins[b] - spins[a];
-                    ledger.part(law, &pair.contact, [moved, turned], radii[a] * radii[b] / reach);
-                    ledger.open(pair.contact.force, square.sqrt() - reach);
+                if pair.contact.force > 0.0 {
+                    let bend = if rolls { std::mem::take(&mut list.bends[index]) } else { Vector::zeros() };
+                    if let Some(ledger) = &mut ledger {
+                        let turns = spins[a] * radii[a] + spins[b] * radii[b];
+                        let moved = velocities[b] - velocities[a] - turns.cross(&apart.normalize());
+                        let motion = [moved, spins[b] - spins[a]];
+                        ledger.part(law, [pair.contact.slide, bend], motion, radii[a] * radii[b] / reach);
+                        ledger.open(pair.contact.force, square.sqrt() - reach);
+                    }
+                    pair.contact = ContactState::default();
                 }
-                pair.contact = ContactState::default();
                 continue;
             }
             let distance = square.sqrt().max(f64::MIN_POSITIVE);
@@ -78,7 +88,7 @@ impl Assembly {
             let (push, stiffness) = law.normal.push(overlap, reduced);
             if pair.contact.force == 0.0
                 && list.slip
-                && let Some(ledger) = ledger
+                && let Some(ledger) = &mut ledger
             {
                 ledger.close(push, (velocities[a] - velocities[b]).dot(&normal) - overlap);
             }
@@ -91,20 +101,25 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
-                let turned = if list.slip && rolls { spins[b] - spins[a] } else { Vector::zeros() };
-                let before = pair.contact;
+                let before = pair.contact.slide;
                 let drag = pair.contact.rub(law, &normal, moved, push, stiffness);
                 on_b -= drag;
                 let twist = normal.cross(&drag);
                 torques[a] += twist * arm_a;
                 torques[b] += twist * arm_b;
+                if let Some(ledger) = &mut ledger {
+                    ledger.slip(law.tangential_ratio * stiffness, before, moved, pair.contact.slide);
+                }
                 if rolls {
-                    let moment = pair.contact.roll(law, &normal, turned, push, stiffness, reduced);
+                    let turned = if list.slip { spins[b] - spins[a] } else { Vector::zeros() };
+                    let bend = &mut list.bends[index];
+                    let before = *bend;
+                    let moment = roll(bend, law, &normal, turned, push, stiffness, reduced);
                     torques[a] += moment;
                     torques[b] -= moment;
-                }
-                if let Some(ledger) = ledger {
-                    ledger.slip(law, [&before, &pair.contact], [moved, turned], stiffness, reduced);
+                    if let Some(ledger) = &mut ledger {
+                        ledger.slip(rolling_stiffness(law, stiffness, reduced), before, turned, *bend);
+                    }
                 }
             }
             pair.contact.force = push;
@@ -136,10 +151,12 @@ impl Assembly {
                 {
                     let turned = -self.spins[grain];
                     let moved = (turned * radius).cross(&normal) - self.velocities[grain];
-                    ledger.part(&self.law, &touch.contact, [moved, turned], radius);
+                    let springs = [touch.contact.slide, touch.bend];
+                    ledger.part(&self.law, springs, [moved, turned], radius);
                     ledger.open(touch.contact.force, gap);
                 }
                 touch.contact = ContactState::default();
+                touch.bend = Vector::zeros();
                 continue;
             }
             let (push, stiffness) = self.law.normal.push(-gap, radius);
@@ -161,18 +178,23 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
-                let turned = if list.slip && rolls { -self.spins[grain] } else { Vector::zeros() };
-                let before = touch.contact;
+                let before = touch.contact.slide;
                 let drag = touch.contact.rub(&self.law, &normal, moved, push, stiffness);
                 on_plate -= drag;
                 self.torques[grain] += normal.cross(&drag) * arm;
-                if rolls {
-                    self.torques[grain] +=
-                        touch.contact.roll(&self.law, &normal, turned, push, stiffness, radius);
-                }
                 if let Some(ledger) = &mut self.ledger {
-                    let states = [&before, &touch.contact];
-                    ledger.slip(&self.law, states, [moved, turned], stiffness, radius);
+                    let tangential = self.law.tangential_ratio * stiffness;
+                    ledger.slip(tangential, before, moved, touch.contact.slide);
+                }
+                if rolls {
+                    let turned = if list.slip { -self.spins[grain] } else { Vector::zeros() };
+                    let before = touch.bend;
+                    self.torques[grain] +=
+                        roll(&mut touch.bend, &self.law, &normal, turned, push, stiffness, radius);
+                    if let Some(ledger) = &mut self.ledger {
+                        let rigidity = rolling_stiffness(&self.law, stiffness, radius);
+                        ledger.slip(rigidity, before, turned, touch.bend);
+                    }
                 }
             }
             touch.contact.force = push;

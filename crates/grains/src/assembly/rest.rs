@@ -65,9 +65,10 @@ impl Assembly {
     pub fn rest(&self) -> Rest {
         let list = &self.contacts;
         let (mut largest_net_force, mut worst) = (0.0, 0);
-        for grain in 0..self.radii.len() {
-            let net = self.forces[grain].norm().max(self.torques[grain].norm() / self.radii[grain]);
-            if net > largest_net_force && !self.pinned[grain] {
+        let loads = self.forces.iter().zip(&self.torques).zip(self.radii.iter().zip(&self.pinned));
+        for (grain, ((force, torque), (radius, &pinned))) in loads.enumerate() {
+            let net = force.norm().max(torque.norm() / radius);
+            if net > largest_net_force && !pinned {
                 (largest_net_force, worst) = (net, grain);
             }
         }
