@@ -1,18 +1,22 @@
 //! A study may be stopped at any moment, by a kill or a full disk: finished packs
 //! survive and the end is the same.
 
+use crate::studies::factorial_of;
 use crate::support::{COMMAND, TestEnv, ended};
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
 
-const STUDY: [&str; 6] = ["study", "scene.toml", "--packs", "8", "--csv", "--out"];
+const STUDY: [&str; 6] = ["study", "study.toml", "--packs", "2", "--csv", "--out"];
 
-fn results(env: &TestEnv, folder: &str) -> [Vec<u8>; 3] {
-    ["outcomes.parquet", "outcomes.csv", "summary.json"].map(|name| env.read(&format!("{folder}/{name}")))
+fn results(env: &TestEnv, folder: &str) -> [Vec<u8>; 4] {
+    ["outcomes.parquet", "outcomes.csv", "levels.parquet", "summary.json"]
+        .map(|name| env.read(&format!("{folder}/{name}")))
 }
 
-fn uninterrupted(env: &TestEnv) -> [Vec<u8>; 3] {
+/// The results of a study of four combinations that nothing interrupts.
+fn uninterrupted(env: &TestEnv) -> [Vec<u8>; 4] {
     env.write_fast_scene("scene.toml");
+    env.write("study.toml", &factorial_of("scene.toml"));
     env.succeed(&[&STUDY[..], &["whole", "--threads", "1"]].concat());
     results(env, "whole")
 }

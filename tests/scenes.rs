@@ -58,7 +58,7 @@ fn hasten(scene: &str) -> String {
         Some(("increments", _)) => "increments = 15".to_owned(),
         // The dose that keeps as many beads among half the grains.
         Some(("dose", _)) => "dose = \"1.2 g/kg\"".to_owned(),
-        Some(("values", _)) => "values = [\"3 mm\"]".to_owned(),
+        Some(("values", values)) => format!("values = {}]", values.split([',', ']']).next().unwrap()),
         _ => line.to_owned(),
     };
     scene.lines().map(quick).collect::<Vec<_>>().join("\n")

@@ -1,5 +1,6 @@
 //! Grains that push, rub and roll on each other between a floor and a lid.
 
+mod account;
 mod boundary;
 mod contact_list;
 mod contacts;
@@ -7,12 +8,15 @@ mod error;
 mod motion;
 mod rest;
 mod spring;
+mod surface;
 
+pub use account::WorkAccount;
 pub use boundary::Boundary;
 pub use error::AssemblyError;
 pub use rest::{Contact, Partner, Rest};
 
 use crate::contact_law::ContactLaw;
+use account::Ledger;
 use bedswell_geometry::{Cell, Sphere, Vector, volume_of_radius};
 use contact_list::ContactList;
 
@@ -65,6 +69,7 @@ pub struct Assembly {
     pub held: bool,
     lid_state: LidState,
     boundary: Boundary,
+    ledger: Option<Box<Ledger>>,
     contacts: ContactList,
 }
 
@@ -125,6 +130,7 @@ impl Assembly {
             held: false,
             lid_state: LidState::default(),
             boundary: Boundary::default(),
+            ledger: None,
             contacts: ContactList::new(&radii),
             radii,
         })
@@ -159,6 +165,10 @@ impl Assembly {
         self.forces[grain] += force;
         self.torques[grain] += torque;
         self.stiffnesses[grain] += stiffness;
+        if let Some(ledger) = &mut self.ledger {
+            ledger.forces[grain] += force;
+            ledger.torques[grain] += torque;
+        }
     }
 
     /// The grains as spheres, with their centres inside the box.
@@ -181,12 +191,16 @@ impl Assembly {
     /// Volume of the grains over the volume of the whole cell or pot, floor to lid;
     /// overlaps count twice.
     pub fn solid_fraction(&self) -> f64 {
-        self.radii.iter().map(|&radius| volume_of_radius(radius)).sum::<f64>()
-            / (self.section() * self.cell.size.z)
+        self.solid_volume() / (self.section() * self.cell.size.z)
+    }
+
+    /// Volume of the grains (m³); overlaps count twice.
+    pub fn solid_volume(&self) -> f64 {
+        self.radii.iter().map(|&radius| volume_of_radius(radius)).sum()
     }
 
     /// Keeps the first `count` grains, with the contacts among them, and takes the
-    /// others out.
+    /// others out; an account of work ends.
     pub fn truncate(&mut self, count: usize) {
         self.centres.truncate(count);
         self.radii.truncate(count);
@@ -198,6 +212,7 @@ impl Assembly {
         self.weights.truncate(count);
         self.pinned.truncate(count);
         self.contacts.truncate(count);
+        self.ledger = None;
     }
 
     /// Stops all motion; contact history stays.

@@ -130,6 +130,15 @@ impl Normal {
         }
     }
 
+    /// Energy (J) stored at an overlap δ (m), the integral of [`push`](Self::push).
+    pub(crate) fn energy(&self, overlap: f64, reduced_radius: f64) -> f64 {
+        let (push, _) = self.push(overlap, reduced_radius);
+        match self {
+            Self::Linear { .. } => 0.5 * push * overlap,
+            Self::Hertz { .. } => 0.4 * push * overlap,
+        }
+    }
+
     /// The stiffness (N/m) of an ordinary contact of a grain of the given radius
     /// (m) with its like, overlapping by 10⁻⁴ of the diameter.
     pub(crate) fn typical_stiffness(&self, radius: f64) -> f64 {

@@ -2,11 +2,13 @@
 
 mod dose;
 mod error;
+mod pot;
 mod protocol;
 mod report;
 
 pub use dose::beads_for_dose;
 pub use error::PackError;
+pub use pot::{Pot, submerged_weight, wall_porosity_rise};
 pub use report::PackReport;
 
 use crate::assembly::Assembly;
@@ -17,19 +19,20 @@ use protocol::Recipe;
 #[derive(Clone, Debug, PartialEq)]
 pub struct PackRequest {
     /// Grain diameters (m), as [`MassCurve::sample`](crate::MassCurve::sample)
-    /// gives them.
+    /// gives them. None, where there are beads enough to be a bed of their own.
     pub grains: Vec<f64>,
     /// Dry beads mixed in among the grains.
     pub beads: usize,
     /// Their diameter (m).
     pub bead_diameter: f64,
-    /// Pores over the whole cell from floor to lid, the dry beads counted as solid.
-    /// `None`: as loose as the preparation leaves it.
+    /// Pores over the whole cell from floor to lid (under an open top, to the mean
+    /// surface), the dry beads counted as solid. `None`: as loose as the preparation leaves it.
     pub porosity: Option<f64>,
     /// Hand out a bed looser than this friction can hold as it is, its grains apart
     /// from each other, instead of refusing it: the lid's stress will close it.
     pub accept_loose: bool,
-    /// Vertical stress under the lid (Pa), above 0.
+    /// Vertical stress under the lid (Pa), above 0; of the lid that levels the bed before
+    /// it is taken off, where the top is open.
     pub lid_stress: f64,
     /// Friction coefficient during preparation. With none the pack is compressed to
     /// random close packing; the more there is, the looser it can be.
@@ -39,12 +42,14 @@ pub struct PackRequest {
 }
 
 /// What closes a pack's cell.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Sides {
     /// Periodic in x and y, between a floor and a lid: a bed.
     FloorAndLid,
     /// Periodic in all directions, under pressure: the inside of an endless bed.
     Periodic,
+    /// A round pot with a rough wall, in which grains have weight.
+    Pot(Pot),
 }
 
 /// A pack at rest under its lid.
@@ -130,13 +135,13 @@ fn pack_to_porosity(recipe: &Recipe, request: &PackRequest, porosity: f64, rando
         return Ok((free, steps));
     }
     // Bracket the target by the start that closed too far and the loosest one.
-    let mut dense = (target, grains.solid_fraction());
+    let mut dense = (target, grains.filled_fraction());
     let (loosest, taken) = recipe.collapse(LOOSE_START, recipe.friction, random)?;
     steps += taken;
     if hits(&loosest, target) {
         return Ok((loosest, steps));
     }
-    let mut loose = (LOOSE_START, loosest.solid_fraction());
+    let mut loose = (LOOSE_START, loosest.filled_fraction());
     for _ in 0..ATTEMPTS {
         if loose.1 > target || dense.1 < target {
             break;
@@ -147,11 +152,11 @@ fn pack_to_porosity(recipe: &Recipe, request: &PackRequest, porosity: f64, rando
         if hits(&grains, target) {
             return Ok((grains, steps));
         }
-        let reached = (start, grains.solid_fraction());
+        let reached = (start, grains.filled_fraction());
         if reached.1 > target { dense = reached } else { loose = reached }
     }
     let (densest, _) = recipe.compress_smooth(random)?;
-    Err(out_of_reach(target, densest.solid_fraction(), loosest.solid_fraction()))
+    Err(out_of_reach(target, densest.filled_fraction(), loosest.filled_fraction()))
 }
 
 /// A bed between random points that can still be pushed apart and random close
@@ -162,7 +167,7 @@ fn pack_densely(recipe: &Recipe, target: f64, random: &mut Stream) -> Attempt {
     if hits(&grains, target) {
         return Ok((grains, steps));
     }
-    let densest = grains.solid_fraction();
+    let densest = grains.filled_fraction();
     let (mut smooth, mut rough) = (0.0, recipe.friction);
     for _ in 0..ATTEMPTS {
         if target > densest {
@@ -174,10 +179,10 @@ fn pack_densely(recipe: &Recipe, target: f64, random: &mut Stream) -> Attempt {
         if hits(&grains, target) {
             return Ok((grains, steps));
         }
-        if grains.solid_fraction() > target { smooth = friction } else { rough = friction }
+        if grains.filled_fraction() > target { smooth = friction } else { rough = friction }
     }
     let (loosest, _) = recipe.collapse(LOOSE_START, recipe.friction, random)?;
-    Err(out_of_reach(target, densest, loosest.solid_fraction()))
+    Err(out_of_reach(target, densest, loosest.filled_fraction()))
 }
 
 /// Start of a dense bed over random close packing: the densest random points that
@@ -188,7 +193,7 @@ const DENSE_START: f64 = 0.95;
 type Attempt = Result<(Assembly, usize), PackError>;
 
 fn hits(grains: &Assembly, target: f64) -> bool {
-    (grains.solid_fraction() - target).abs() < 0.9 * POROSITY_TOLERANCE && at_rest(grains)
+    (grains.filled_fraction() - target).abs() < 0.9 * POROSITY_TOLERANCE && at_rest(grains)
 }
 
 fn at_rest(grains: &Assembly) -> bool {

@@ -1,8 +1,10 @@
 //! Beds under their own weight, in a periodic cell and in a pot.
 
+#![allow(clippy::print_stdout, reason = "the measured figures are worth reading")]
+
 use approx::assert_relative_eq;
 use bedswell_geometry::{Cell, Sphere, Vector, stream, volume_of_radius};
-use bedswell_grains::{Assembly, AssemblyError, ContactLaw, Lid};
+use bedswell_grains::{Assembly, AssemblyError, ContactLaw, Lid, Normal, Partner};
 use rand::RngExt;
 
 const RADIUS: f64 = 1.0e-3;
@@ -37,12 +39,75 @@ fn dropped(count: usize, cell: Cell, wall: Option<f64>, friction: f64) -> Assemb
     grains
 }
 
+/// Steps until the bed, once it lies, is stiffened tenfold and at rest again. Stiffening
+/// is slow: at once it would throw the bed up.
+fn settle(grains: &mut Assembly) -> usize {
+    let mut steps = rest(grains, 0.1);
+    for tolerance in [1.0e-2, 1.0e-3] {
+        for _ in 0..STIFFENING {
+            let Normal::Linear { modulus } = &mut grains.law.normal else {
+                unreachable!("falls with springs")
+            };
+            *modulus *= 10.0_f64.sqrt().powf(1.0 / STIFFENING as f64);
+            grains.compute_contacts();
+            grains.advance(DAMPING);
+        }
+        steps += STIFFENING + rest(grains, tolerance);
+    }
+    steps
+}
+
+const STIFFENING: usize = 500;
+const DAMPING: f64 = 0.2;
+
+/// Steps until net forces are `tolerance` of the mean contact force.
+fn rest(grains: &mut Assembly, tolerance: f64) -> usize {
+    for step in 0..40_000 {
+        grains.compute_contacts();
+        let rest = grains.rest();
+        if rest.mean_contact_force > 0.0 && rest.residual() < tolerance {
+            return step;
+        }
+        grains.advance(DAMPING);
+    }
+    panic!("not at rest: {:?}", grains.rest());
+}
+
 fn weight(grains: &Assembly) -> f64 {
     -grains.weights.iter().map(|weight| weight.z).sum::<f64>()
 }
 
 fn square(side: f64) -> Cell {
     Cell { size: Vector::new(side, side, side), periodic: [false; 3] }
+}
+
+#[test]
+fn a_dropped_bed_rests_on_its_floor() {
+    let mut grains = dropped(3_000, Cell::with_floor_and_lid(Vector::repeat(22.0e-3)), None, 0.5);
+    let steps = settle(&mut grains);
+    let boundary = grains.boundary();
+    println!("periodic: {steps} steps, {:?}, {boundary:?}", grains.rest());
+    assert_relative_eq!(-boundary.floor.z, weight(&grains), max_relative = 1.0e-3);
+    assert_eq!(boundary.lid, Vector::zeros());
+    assert_eq!(boundary.wall, Vector::zeros());
+}
+
+#[test]
+fn a_bed_dropped_into_a_pot_rests_on_floor_and_wall() {
+    let mut grains = dropped(3_000, square(24.0e-3), Some(12.0e-3), 0.5);
+    let steps = settle(&mut grains);
+    let boundary = grains.boundary();
+    println!("pot: {steps} steps, {:?}, {boundary:?}", grains.rest());
+    assert_relative_eq!(-boundary.floor.z - boundary.wall.z, weight(&grains), max_relative = 1.0e-3);
+    assert!(boundary.wall.z < 0.0, "the wall carries a part: {boundary:?}");
+    let on_wall: f64 =
+        grains.contacts().filter(|c| c.partner == Partner::Wall).map(|contact| contact.force).sum();
+    assert_relative_eq!(on_wall, boundary.wall_push, max_relative = 1.0e-12);
+    assert!(boundary.wall.xy().norm() < 0.05 * boundary.wall_push, "pushes around cancel: {boundary:?}");
+    let middle = 0.5 * grains.cell.size;
+    for centre in &grains.centres {
+        assert!((centre.xy() - middle.xy()).norm() < 12.0e-3 - 0.99 * RADIUS && centre.z > 0.99 * RADIUS);
+    }
 }
 
 #[test]

@@ -25,10 +25,11 @@ pub use scene::{
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
-    Clustered, Estimate, Interval, bootstrap_mean, clopper_pearson, clustered_fraction, mean_strength,
-    strength_ratio, tear_probability, wilson,
+    Clustered, Estimate, Interval, Measure, bootstrap_mean, clopper_pearson, clustered_fraction,
+    mean_strength, strength_ratio, tear_probability, wilson,
 };
 pub use study::{
-    FailedPack, Level, LevelSummary, PackRunner, Study, StudyObserver, StudyOptions, StudySummary,
+    Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,
+    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, Variation, combination_in_words,
     read_study, run_study,
 };

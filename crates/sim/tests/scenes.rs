@@ -78,7 +78,8 @@ fn a_study_varies_one_key_of_its_scene() {
             _ => unreachable!(),
         })
         .collect();
-    assert_eq!(study.factor.as_deref(), Some("soil.median"));
+    assert_eq!(study.factors.len(), 1);
+    assert_eq!(study.factors[0].key, "soil.median");
     assert_eq!(medians, [2.4e-3, 3e-3, 3.6e-3]);
     assert_eq!(study.packs, 8);
 }
@@ -86,7 +87,7 @@ fn a_study_varies_one_key_of_its_scene() {
 #[test]
 fn a_study_of_a_scene_is_that_scene_alone() {
     let study = read_study(&scenes().join("tree-pit.toml")).unwrap();
-    assert_eq!(study.factor, None);
+    assert_eq!(study.factors, []);
     assert_eq!(study.levels.len(), 1);
     assert_eq!(study.levels[0].scene, example("tree-pit.toml"));
 }

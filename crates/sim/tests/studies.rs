@@ -1,8 +1,8 @@
 //! Studies: nothing lost, nothing done twice, and the same files however they were made.
 
 use bedswell_sim::{
-    BeadOutcome, FolderError, PackOutcome, Quality, RunError, Scene, Study, StudyOptions, StudySummary,
-    read_study, run_study,
+    BeadAmount, BeadOutcome, FolderError, PackOutcome, Quality, RESPONSES, RunError, Scene, Study,
+    StudyOptions, StudySummary, read_study, run_study,
 };
 use std::path::Path;
 use std::sync::atomic::{AtomicU64, Ordering};
@@ -50,32 +50,49 @@ fn study(packs: u64, half_width: Option<f64>) -> Study {
     Study { packs, half_width, ..read_study(&path).unwrap() }
 }
 
+/// A study of this text beside the example scenes.
+fn study_of(factors: &str) -> Study {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("study.toml");
+    let scene = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes/dosed-mix.toml");
+    std::fs::write(&path, format!("scene = {scene:?}\npacks = 4\n{factors}")).unwrap();
+    read_study(&path).unwrap()
+}
+
+const DOSE_AND_LOAD: &str = "[[factor]]\nkey = \"beads.dose\"\nvalues = [\"0.6 g/kg\", \"1.2 g/kg\", \"1.8 g/kg\"]\n\
+                             [[factor]]\nkey = \"bed.lid_stress\"\nvalues = [\"0.2 kPa\", \"0.4 kPa\"]\n";
+const RANGES: &str = "samples = 20\n[[factor]]\nkey = \"beads.dose\"\nfrom = \"0.6 g/kg\"\nto = \"1.8 g/kg\"\n\
+                      [[factor]]\nkey = \"bed.lid_stress\"\nfrom = \"0.1 kPa\"\nto = \"1 kPa\"\nlogarithmic = true\n\
+                      [[factor]]\nkey = \"beads.across\"\nvalues = [8, 10]\n";
+
 fn conduct(study: &Study, folder: &Path, threads: usize) -> StudySummary {
     run_study(study, folder, StudyOptions { threads, csv: true }, &stand_in, &mut ()).unwrap()
 }
 
-fn files(folder: &Path) -> [Vec<u8>; 3] {
-    ["outcomes.parquet", "outcomes.csv", "summary.json"].map(|name| std::fs::read(folder.join(name)).unwrap())
+fn files(folder: &Path) -> [Vec<u8>; 5] {
+    ["outcomes.parquet", "outcomes.csv", "levels.parquet", "levels.csv", "summary.json"]
+        .map(|name| std::fs::read(folder.join(name)).unwrap())
 }
 
 #[test]
 fn the_files_do_not_depend_on_the_number_of_threads() {
-    let study = study(24, Some(0.12));
-    let [one, four] = [1, 4].map(|threads| {
-        let folder = tempfile::tempdir().unwrap();
-        conduct(&study, folder.path(), threads);
-        files(folder.path())
-    });
-    assert!(one == four);
+    for study in [study(24, Some(0.12)), study_of(DOSE_AND_LOAD), study_of(RANGES)] {
+        let [one, four] = [1, 4].map(|threads| {
+            let folder = tempfile::tempdir().unwrap();
+            conduct(&study, folder.path(), threads);
+            files(folder.path())
+        });
+        assert!(one == four, "{}", study.name);
+    }
 }
 
 #[test]
 fn a_study_stopped_at_any_point_ends_in_the_same_files() {
-    let study = study(6, None);
+    let study = study_of(DOSE_AND_LOAD);
     let whole = tempfile::tempdir().unwrap();
     conduct(&study, whole.path(), 2);
     let journal = std::fs::read(whole.path().join("journal.txt")).unwrap();
-    for cut in (0..journal.len()).step_by(997) {
+    for cut in (0..journal.len()).step_by(1997) {
         let folder = tempfile::tempdir().unwrap();
         std::fs::write(folder.path().join("journal.txt"), &journal[..cut]).unwrap();
         conduct(&study, folder.path(), 3);
@@ -154,4 +171,85 @@ fn the_folder_of_another_study_is_refused() {
     let error = run_study(&other, folder.path(), options, &stand_in, &mut ()).unwrap_err();
     assert!(matches!(error, FolderError::Occupied { .. }), "{error}");
     assert!(files(folder.path()) == before);
+}
+
+/// A stand-in whose heave follows the scene by a known law, with scatter from the pack's
+/// number that is the same at every level.
+fn lawful(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
+    let BeadAmount::Dose(dose) = scene.beads.amount else { unreachable!("the scene has a dose") };
+    let law = 1e3 * dose + (scene.bed.lid_stress / 100.0).ln();
+    let outcome = stand_in(scene, pack)?;
+    Ok(PackOutcome { heave_m: law + 0.1 * pack as f64, ..outcome })
+}
+
+fn heave_of(study: &Study) -> bedswell_sim::Effects {
+    let folder = tempfile::tempdir().unwrap();
+    let options = StudyOptions { threads: 2, csv: false };
+    let summary = run_study(study, folder.path(), options, &lawful, &mut ()).unwrap();
+    assert_eq!(summary.effects.len(), RESPONSES.len());
+    summary.effects.into_iter().find(|effects| effects.response == "heave_m").unwrap()
+}
+
+#[test]
+fn the_effects_of_a_full_factorial_are_those_of_the_law() {
+    let heave = heave_of(&study_of(DOSE_AND_LOAD));
+    let change = |factor: usize, level: usize| heave.factors[factor].levels[level].difference.unwrap();
+    let expected = [(0, 1, 0.6), (0, 2, 1.2), (1, 1, 2_f64.ln())];
+    for (factor, level, value) in expected {
+        let change = change(factor, level);
+        // What packs of one number share cancels in differences, so that no scatter is left.
+        for figure in [change.value, change.low.unwrap(), change.high.unwrap()] {
+            approx::assert_abs_diff_eq!(figure, value, epsilon = 1e-9);
+        }
+    }
+    // In the means it is all there: packs 0 to 3 are 0.15 ± 0.1 apart from the law.
+    let mean = heave.factors[0].levels[0].mean.unwrap();
+    approx::assert_abs_diff_eq!(mean.mean, 0.6 + 0.5 * (2_f64.ln() + 4_f64.ln()) + 0.15, epsilon = 1e-9);
+    assert!(mean.high.unwrap() - mean.low.unwrap() > 0.1, "{mean:?}");
+    assert_eq!(heave.interactions.len(), 1);
+    approx::assert_abs_diff_eq!(heave.interactions[0].deviation.value, 0.0, epsilon = 1e-9);
+    assert_eq!(heave.explained, None);
+}
+
+#[test]
+fn the_effects_over_a_latin_hypercube_are_those_of_the_law() {
+    let heave = heave_of(&study_of(RANGES));
+    approx::assert_abs_diff_eq!(heave.factors[0].over_range.unwrap().value, 1.2, epsilon = 1e-9);
+    approx::assert_abs_diff_eq!(heave.factors[1].over_range.unwrap().value, 10_f64.ln(), epsilon = 1e-9);
+    let across = &heave.factors[2].levels;
+    approx::assert_abs_diff_eq!(across[1].difference.unwrap().value, 0.0, epsilon = 1e-9);
+    assert!(across[0].mean.is_some() && across[0].difference.is_none());
+    approx::assert_abs_diff_eq!(heave.explained.unwrap(), 1.0, epsilon = 1e-9);
+    assert!(heave.factors[1].rank_correlation.unwrap().value > 0.5, "{heave:?}");
+}
+
+#[test]
+fn every_combination_has_a_row_that_begins_with_its_values() {
+    let folder = tempfile::tempdir().unwrap();
+    conduct(&study_of(DOSE_AND_LOAD), folder.path(), 2);
+    let table = |name: &str| -> Vec<String> {
+        let text = std::fs::read_to_string(folder.path().join(name)).unwrap();
+        text.lines().map(str::to_owned).collect()
+    };
+    let levels = table("levels.csv");
+    let head = "beads.dose,beads.dose [g/kg],bed.lid_stress,bed.lid_stress [kPa],uptake_g_per_g,\
+                uptake_g_per_g_low,uptake_g_per_g_high,";
+    assert!(levels[0].starts_with(head) && levels[0].ends_with("packs,failed,level"), "{}", levels[0]);
+    assert_eq!(levels.len(), 1 + 6);
+    // The last factor changes fastest.
+    assert!(levels[2].starts_with("\"0.6 g/kg\",6e-1,\"0.4 kPa\",4e-1,"), "{}", levels[2]);
+    assert!(levels[6].ends_with(",4,0,5"), "{}", levels[6]);
+    let outcomes = table("outcomes.csv");
+    assert!(outcomes[0].starts_with("level,beads.dose,beads.dose [g/kg],bed.lid_stress,"), "{}", outcomes[0]);
+    assert_eq!(outcomes.len(), 1 + 6 * 4 * 2);
+}
+
+#[test]
+fn a_summary_reads_back_as_it_was_written() {
+    for study in [study(2, None), study_of(RANGES)] {
+        let folder = tempfile::tempdir().unwrap();
+        let summary = conduct(&study, folder.path(), 2);
+        let text = std::fs::read_to_string(folder.path().join("summary.json")).unwrap();
+        assert_eq!(serde_json::from_str::<StudySummary>(&text).unwrap(), summary);
+    }
 }

@@ -1,9 +1,13 @@
+mod factors_in_words;
+mod figure_table;
+
 use crate::args::Study;
 use crate::exit::Exit;
 use crate::output::{say, say_json};
 use crate::progress::Progress;
-use bedswell_sim::figures::{digits, estimate, length, probability, stress};
-use bedswell_sim::{LevelSummary, StudyOptions, StudySummary, read_study, run_pack, run_study};
+use bedswell_sim::figures::{digits, estimate, probability};
+use bedswell_sim::{LevelSummary, RESPONSES, StudyOptions, StudySummary, read_study, run_pack, run_study};
+use factors_in_words::factors_in_words;
 use std::path::Path;
 
 /// Runs the packs of a study and tells the tear probability.
@@ -28,17 +32,11 @@ pub(super) fn study(arguments: &Study, json: bool) -> anyhow::Result<Exit> {
 }
 
 fn in_words(study: &StudySummary, folder: &Path) -> String {
-    let mut text = format!("{}\n", study.name);
-    for level in &study.levels {
-        if let Some(factor) = &study.factor {
-            text += &format!("\n{factor} = {}\n", level.value);
-        } else {
-            text.push('\n');
-        }
-        text += &level_in_words(level);
-    }
-    text += &format!("\nIn brackets: 95 % limits. Table and summary are in {}", folder.display());
-    text
+    let text = match study.levels.as_slice() {
+        [level] if study.factors.is_empty() => format!("{}\n\n{}", study.name, level_in_words(level)),
+        _ => format!("{}\n", factors_in_words(study)),
+    };
+    format!("{text}\nWith 95 % limits. Tables and summary are in {}", folder.display())
 }
 
 fn level_in_words(level: &LevelSummary) -> String {
@@ -50,7 +48,7 @@ fn level_in_words(level: &LevelSummary) -> String {
     let score = limits(level.tear_fraction_wilson_low, level.tear_fraction_wilson_high);
     let mut text = format!(
         "  tear probability  {}\n  torn beads        {} of {} in {} packs: {} {exact}; Wilson {score}\n",
-        estimate(level.tear_probability, probability),
+        estimate(level.responses.get("tear_probability").copied().flatten(), probability),
         level.torn,
         level.beads,
         level.packs,
@@ -62,13 +60,15 @@ fn level_in_words(level: &LevelSummary) -> String {
             limits(level.tear_fraction_clustered_low, level.tear_fraction_clustered_high)
         );
     }
-    text += &format!(
-        "  water taken up    {} g/g; {} of the free volume\n  tension, 99 %     {}\n  rise of the lid   {}\n",
-        estimate(level.uptake_g_per_g, digits),
-        estimate(level.volume_ratio, digits),
-        estimate(level.tension_q99_pa, stress),
-        estimate(level.heave_m, length),
-    );
+    // Tears are told above.
+    for response in
+        RESPONSES.iter().filter(|response| !["tear_probability", "torn_fraction"].contains(&response.name))
+    {
+        let figure = level.figure(response);
+        let unit = if figure.is_some() { response.unit } else { "" };
+        text += format!("  {:<18}{} {unit}", response.title, estimate(figure, response.show)).trim_end();
+        text.push('\n');
+    }
     if level.stopped_early {
         text += "  stopped early     the tear fraction is known as well as asked\n";
     }

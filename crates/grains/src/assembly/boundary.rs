@@ -29,6 +29,9 @@ impl Assembly {
         self.lid_state.force += force_z;
         self.lid_state.stiffness += stiffness;
         self.boundary.lid.z += force_z;
+        if let Some(ledger) = &mut self.ledger {
+            ledger.lid_force += force_z;
+        }
     }
 
     /// Adds a load (N) from elsewhere on the floor until the next `compute_contacts`.

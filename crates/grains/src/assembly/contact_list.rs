@@ -7,6 +7,9 @@ use bedswell_geometry::{Cell, Vector, close_pairs};
 #[derive(Clone, Debug)]
 pub(super) struct ContactList {
     pub(super) pairs: Vec<Pair>,
+    /// Bends of the pairs' rolling springs (rad), in the same order; empty until contacts
+    /// resist rolling, so that they cost nothing where they do not.
+    pub(super) bends: Vec<Vector>,
     pub(super) plates: Vec<PlatePair>,
     /// Sum of the normal forces (N), number of contacts, and deepest overlap over
     /// the smaller grain's radius, at the last `compute_contacts`.
@@ -28,6 +31,7 @@ impl ContactList {
         let mean_diameter = 2.0 * radii.iter().sum::<f64>() / radii.len().max(1) as f64;
         Self {
             pairs: Vec::new(),
+            bends: Vec::new(),
             plates: Vec::new(),
             force_sum: 0.0,
             touching: 0,
@@ -41,7 +45,12 @@ impl ContactList {
     }
 
     pub(super) fn truncate(&mut self, count: usize) {
-        self.pairs.retain(|pair| (pair.b as usize) < count);
+        let mut bends = std::mem::take(&mut self.bends).into_iter();
+        self.pairs.retain(|pair| {
+            let keep = (pair.b as usize) < count;
+            self.bends.extend(bends.next().filter(|_| keep));
+            keep
+        });
         self.plates.retain(|touch| (touch.grain as usize) < count);
         self.listed_centres.truncate(count);
     }
@@ -84,6 +93,8 @@ pub(super) struct PlatePair {
     pub(super) grain: u32,
     pub(super) plate: Plate,
     pub(super) contact: ContactState,
+    /// Bend of the rolling spring (rad).
+    pub(super) bend: Vector,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -133,24 +144,29 @@ impl Assembly {
             })
             .collect();
         let margin = self.contacts.margin;
+        let bends = std::mem::take(&mut self.contacts.bends);
         let old = std::mem::take(&mut self.contacts.pairs);
-        let mut old = old.into_iter().filter(|pair| pair.contact.force > 0.0).map(|mut pair| {
-            let (of_a, of_b) = (wraps[pair.a as usize], wraps[pair.b as usize]);
-            pair.image = [0, 1, 2].map(|axis| pair.image[axis] + of_b[axis] - of_a[axis]);
-            pair
-        });
+        let mut old = (old.into_iter().enumerate()).filter(|(_, pair)| pair.contact.force > 0.0).map(
+            |(index, mut pair)| {
+                let (of_a, of_b) = (wraps[pair.a as usize], wraps[pair.b as usize]);
+                pair.image = [0, 1, 2].map(|axis| pair.image[axis] + of_b[axis] - of_a[axis]);
+                (index, pair)
+            },
+        );
         let mut before = old.next();
-        self.contacts.pairs = close_pairs(&self.cell, &self.centres, &self.radii, margin)
+        let list = &mut self.contacts;
+        list.pairs = close_pairs(&self.cell, &self.centres, &self.radii, margin)
             .into_iter()
             .map(|close| {
                 let key = (close.a, close.b, close.image);
-                while before.is_some_and(|pair| (pair.a, pair.b, pair.image) < key) {
+                while before.is_some_and(|(_, pair)| (pair.a, pair.b, pair.image) < key) {
                     before = old.next();
                 }
-                let contact = match before {
-                    Some(pair) if (pair.a, pair.b, pair.image) == key => pair.contact,
-                    _ => ContactState::default(),
-                };
+                let known = before.filter(|(_, pair)| (pair.a, pair.b, pair.image) == key);
+                if !bends.is_empty() {
+                    list.bends.push(known.map_or_else(Vector::zeros, |(index, _)| bends[index]));
+                }
+                let contact = known.map_or_else(ContactState::default, |(_, pair)| pair.contact);
                 Pair { a: close.a, b: close.b, image: close.image, contact }
             })
             .collect();
@@ -171,10 +187,10 @@ impl Assembly {
                 let (gap, _) = plate.facing(&self.cell, self.wall, &self.centres[grain], self.radii[grain]);
                 if gap < margin {
                     let key = (grain as u32, plate);
-                    let contact = old
+                    let (contact, bend) = old
                         .binary_search_by_key(&key, |touch| (touch.grain, touch.plate))
-                        .map_or(ContactState::default(), |at| old[at].contact);
-                    self.contacts.plates.push(PlatePair { grain: grain as u32, plate, contact });
+                        .map_or_else(|_| Default::default(), |at| (old[at].contact, old[at].bend));
+                    self.contacts.plates.push(PlatePair { grain: grain as u32, plate, contact, bend });
                 }
             }
         }

@@ -1,5 +1,5 @@
 use super::contact_list::Plate;
-use super::spring::ContactState;
+use super::spring::{ContactState, roll, rolling_stiffness};
 use super::{Assembly, Boundary, Lid};
 use bedswell_geometry::{Vector, offset};
 
@@ -18,9 +18,17 @@ impl Assembly {
         self.contacts.touching = 0;
         self.contacts.deepest = 0.0;
         self.boundary = Boundary::default();
+        if let Some(ledger) = &mut self.ledger {
+            ledger.clear_loads();
+        }
         self.lid_state.stiffness = 0.0;
         let mut virial = 0.0;
-        self.push_pairs(&mut virial);
+        // Without an account there is nothing to book, and nothing to ask in the loop.
+        if self.ledger.is_some() {
+            self.push_pairs::<true>(&mut virial);
+        } else {
+            self.push_pairs::<false>(&mut virial);
+        }
         if !self.cell.periodic[2] {
             self.push_plates();
         }
@@ -41,11 +49,17 @@ impl Assembly {
 
     /// Contact forces between grains. In a fully periodic cell they resist its
     /// shrinking: `virial` gathers their work per strain (J).
-    fn push_pairs(&mut self, virial: &mut f64) {
-        let Self { cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, .. } = self;
+    fn push_pairs<const BOOKED: bool>(&mut self, virial: &mut f64) {
+        let Self {
+            cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, ledger, ..
+        } = self;
+        let mut ledger = ledger.as_mut().filter(|_| BOOKED);
         let list = &mut self.contacts;
         let (periodic, rough, rolls) = (cell.periodic[2], law.friction > 0.0, law.resists_rolling());
-        for pair in &mut list.pairs {
+        if rolls {
+            list.bends.resize(list.pairs.len(), Vector::zeros());
+        }
+        for (index, pair) in list.pairs.iter_mut().enumerate() {
             let (a, b) = (pair.a as usize, pair.b as usize);
             let mut apart = centres[b] - centres[a];
             if pair.image != [0; 3] {
@@ -54,7 +68,17 @@ impl Assembly {
             let reach = radii[a] + radii[b];
             let square = apart.norm_squared();
             if square >= reach * reach {
-                pair.contact = ContactState::default();
+                if pair.contact.force > 0.0 {
+                    let bend = if rolls { std::mem::take(&mut list.bends[index]) } else { Vector::zeros() };
+                    if let Some(ledger) = &mut ledger {
+                        let turns = spins[a] * radii[a] + spins[b] * radii[b];
+                        let moved = velocities[b] - velocities[a] - turns.cross(&apart.normalize());
+                        let motion = [moved, spins[b] - spins[a]];
+                        ledger.part(law, [pair.contact.slide, bend], motion, radii[a] * radii[b] / reach);
+                        ledger.open(pair.contact.force, square.sqrt() - reach);
+                    }
+                    pair.contact = ContactState::default();
+                }
                 continue;
             }
             let distance = square.sqrt().max(f64::MIN_POSITIVE);
@@ -62,6 +86,12 @@ impl Assembly {
             let overlap = reach - distance;
             let reduced = radii[a] * radii[b] / reach;
             let (push, stiffness) = law.normal.push(overlap, reduced);
+            if pair.contact.force == 0.0
+                && list.slip
+                && let Some(ledger) = &mut ledger
+            {
+                ledger.close(push, (velocities[a] - velocities[b]).dot(&normal) - overlap);
+            }
             let mut on_b = normal * push;
             if rough {
                 // Both arms end in one point, so that angular momentum is kept.
@@ -71,16 +101,25 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
+                let before = pair.contact.slide;
                 let drag = pair.contact.rub(law, &normal, moved, push, stiffness);
                 on_b -= drag;
                 let twist = normal.cross(&drag);
                 torques[a] += twist * arm_a;
                 torques[b] += twist * arm_b;
+                if let Some(ledger) = &mut ledger {
+                    ledger.slip(law.tangential_ratio * stiffness, before, moved, pair.contact.slide);
+                }
                 if rolls {
                     let turned = if list.slip { spins[b] - spins[a] } else { Vector::zeros() };
-                    let moment = pair.contact.roll(law, &normal, turned, push, stiffness, reduced);
+                    let bend = &mut list.bends[index];
+                    let before = *bend;
+                    let moment = roll(bend, law, &normal, turned, push, stiffness, reduced);
                     torques[a] += moment;
                     torques[b] -= moment;
+                    if let Some(ledger) = &mut ledger {
+                        ledger.slip(rolling_stiffness(law, stiffness, reduced), before, turned, *bend);
+                    }
                 }
             }
             pair.contact.force = push;
@@ -100,20 +139,38 @@ impl Assembly {
 
     /// Contact forces with floor, lid and wall.
     fn push_plates(&mut self) {
+        let rolls = self.law.resists_rolling();
         let list = &mut self.contacts;
         for touch in &mut list.plates {
             let grain = touch.grain as usize;
             let radius = self.radii[grain];
             let (gap, normal) = touch.plate.facing(&self.cell, self.wall, &self.centres[grain], radius);
             if gap >= 0.0 || (touch.plate == Plate::Lid && self.lid == Lid::Open) {
+                if touch.contact.force > 0.0
+                    && let Some(ledger) = &mut self.ledger
+                {
+                    let turned = -self.spins[grain];
+                    let moved = (turned * radius).cross(&normal) - self.velocities[grain];
+                    let springs = [touch.contact.slide, touch.bend];
+                    ledger.part(&self.law, springs, [moved, turned], radius);
+                    ledger.open(touch.contact.force, gap);
+                }
                 touch.contact = ContactState::default();
+                touch.bend = Vector::zeros();
                 continue;
             }
             let (push, stiffness) = self.law.normal.push(-gap, radius);
+            let plate_speed = if touch.plate == Plate::Lid { self.lid_state.velocity } else { 0.0 };
+            let approach = self.velocities[grain] - Vector::z() * plate_speed;
+            if touch.contact.force == 0.0
+                && list.slip
+                && let Some(ledger) = &mut self.ledger
+            {
+                ledger.close(push, approach.dot(&normal) + gap);
+            }
             let mut on_plate = normal * push;
             if self.law.friction > 0.0 {
                 let arm = radius + gap;
-                let plate_speed = if touch.plate == Plate::Lid { self.lid_state.velocity } else { 0.0 };
                 let moved = if list.slip {
                     Vector::z() * plate_speed
                         - self.velocities[grain]
@@ -121,13 +178,23 @@ impl Assembly {
                 } else {
                     Vector::zeros()
                 };
+                let before = touch.contact.slide;
                 let drag = touch.contact.rub(&self.law, &normal, moved, push, stiffness);
                 on_plate -= drag;
                 self.torques[grain] += normal.cross(&drag) * arm;
-                if self.law.resists_rolling() {
+                if let Some(ledger) = &mut self.ledger {
+                    let tangential = self.law.tangential_ratio * stiffness;
+                    ledger.slip(tangential, before, moved, touch.contact.slide);
+                }
+                if rolls {
                     let turned = if list.slip { -self.spins[grain] } else { Vector::zeros() };
+                    let before = touch.bend;
                     self.torques[grain] +=
-                        touch.contact.roll(&self.law, &normal, turned, push, stiffness, radius);
+                        roll(&mut touch.bend, &self.law, &normal, turned, push, stiffness, radius);
+                    if let Some(ledger) = &mut self.ledger {
+                        let rigidity = rolling_stiffness(&self.law, stiffness, radius);
+                        ledger.slip(rigidity, before, turned, touch.bend);
+                    }
                 }
             }
             touch.contact.force = push;

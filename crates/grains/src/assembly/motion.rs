@@ -21,6 +21,10 @@ impl Assembly {
         if self.held {
             return;
         }
+        let before = self
+            .ledger
+            .is_some()
+            .then(|| (self.velocities.clone(), self.spins.clone(), self.lid_state.velocity));
         let inertia_factor = if self.law.resists_rolling() { 8.0 / 3.0 } else { 2.0 };
         for grain in 0..self.centres.len() {
             if self.pinned[grain] {
@@ -42,6 +46,10 @@ impl Assembly {
         }
         if matches!(self.lid, Lid::Stress(_)) {
             self.advance_lid(damping);
+        }
+        if let (Some(mut ledger), Some(before)) = (self.ledger.take(), before) {
+            ledger.step(self, &before);
+            self.ledger = Some(ledger);
         }
         self.contacts.slip = true;
     }

@@ -35,8 +35,12 @@ pub struct Contact {
     pub partner: Partner,
     /// Normal force (N).
     pub force: f64,
+    /// Tangential force on the grain (N).
+    pub drag: Vector,
     /// Unit vector from the grain to its partner.
     pub normal: Vector,
+    /// From the grain's centre to its partner's, or to the foot on a plate (m).
+    pub branch: Vector,
     /// Middle of the overlap (m), next to the grain's centre: it may lie outside
     /// the box along periodic axes.
     pub position: Vector,
@@ -61,9 +65,10 @@ impl Assembly {
     pub fn rest(&self) -> Rest {
         let list = &self.contacts;
         let (mut largest_net_force, mut worst) = (0.0, 0);
-        for grain in 0..self.radii.len() {
-            let net = self.forces[grain].norm().max(self.torques[grain].norm() / self.radii[grain]);
-            if net > largest_net_force && !self.pinned[grain] {
+        let loads = self.forces.iter().zip(&self.torques).zip(self.radii.iter().zip(&self.pinned));
+        for (grain, ((force, torque), (radius, &pinned))) in loads.enumerate() {
+            let net = force.norm().max(torque.norm() / radius);
+            if net > largest_net_force && !pinned {
                 (largest_net_force, worst) = (net, grain);
             }
         }
@@ -83,12 +88,16 @@ impl Assembly {
             let (a, b) = (pair.a as usize, pair.b as usize);
             let apart = self.centres[b] + offset(&self.cell, pair.image) - self.centres[a];
             let distance = apart.norm();
-            let depth = self.radii[a] + self.radii[b] - distance;
+            let reach = self.radii[a] + self.radii[b];
+            let depth = reach - distance;
+            let (_, stiffness) = self.law.normal.push(depth, self.radii[a] * self.radii[b] / reach);
             Contact {
                 grain: a,
                 partner: Partner::Grain(b),
                 force: pair.contact.force,
+                drag: pair.contact.slide * (self.law.tangential_ratio * stiffness),
                 normal: apart / distance,
+                branch: apart,
                 position: self.centres[a] + apart * ((self.radii[a] - 0.5 * depth) / distance),
             }
         });
@@ -101,8 +110,17 @@ impl Assembly {
                 Plate::Lid => Partner::Lid,
                 Plate::Wall => Partner::Wall,
             };
-            let position = centre + normal * (radius + gap);
-            Contact { grain, partner, force: touch.contact.force, normal, position }
+            let (_, stiffness) = self.law.normal.push(-gap, radius);
+            let branch = normal * (radius + gap);
+            Contact {
+                grain,
+                partner,
+                force: touch.contact.force,
+                drag: touch.contact.slide * (self.law.tangential_ratio * stiffness),
+                normal,
+                branch,
+                position: centre + branch,
+            }
         });
         pairs.chain(plates)
     }

@@ -8,8 +8,6 @@ pub(super) struct ContactState {
     pub(super) force: f64,
     /// Stretch of the tangential spring (m).
     pub(super) slide: Vector,
-    /// Bend of the rolling spring (rad).
-    pub(super) bend: Vector,
 }
 
 impl ContactState {
@@ -29,26 +27,26 @@ impl ContactState {
         stretch(&mut self.slide, normal, moved, law.friction * push / tangential);
         self.slide * tangential
     }
+}
 
-    /// Takes up the relative turn `turned` (rad) of the second body and returns the
-    /// moment (N m) with which it rolls the first one along: a spring that yields at
-    /// `rolling` times the push and the reduced radius R (m), an elastic-plastic rolling
-    /// spring as in Iwashita & Oda 1998 (from memory). As stiff as tangential springs at
-    /// the distance R from the contact, it bends by about as little as they do.
-    #[inline]
-    pub(super) fn roll(
-        &mut self,
-        law: &ContactLaw,
-        normal: &Vector,
-        turned: Vector,
-        push: f64,
-        stiffness: f64,
-        reduced_radius: f64,
-    ) -> Vector {
-        let rigidity = rolling_stiffness(law, stiffness, reduced_radius);
-        stretch(&mut self.bend, normal, turned, law.rolling * push * reduced_radius / rigidity);
-        self.bend * rigidity
-    }
+/// Takes up the relative turn `turned` (rad) of the second body and returns the moment
+/// (N m) with which it rolls the first one along: a spring, bent by `bend` (rad), that
+/// yields at `rolling` times the push and the reduced radius R (m), an elastic-plastic
+/// rolling spring as in Iwashita & Oda 1998 (from memory). As stiff as tangential springs
+/// at the distance R from the contact, it bends by about as little as they do.
+#[inline]
+pub(super) fn roll(
+    bend: &mut Vector,
+    law: &ContactLaw,
+    normal: &Vector,
+    turned: Vector,
+    push: f64,
+    stiffness: f64,
+    reduced_radius: f64,
+) -> Vector {
+    let rigidity = rolling_stiffness(law, stiffness, reduced_radius);
+    stretch(bend, normal, turned, law.rolling * push * reduced_radius / rigidity);
+    *bend * rigidity
 }
 
 /// Stiffness (N m) of a rolling spring at a contact of the given normal stiffness (N/m).

@@ -5,7 +5,7 @@ use thiserror::Error;
 #[derive(Clone, Debug, PartialEq, Error)]
 pub enum PackError {
     /// Nothing to pack.
-    #[error("no grains to pack: ask for at least one")]
+    #[error("no grains to pack: ask for at least one, or for at least two beads")]
     NoGrains,
     /// A diameter that is no size.
     #[error("sphere {index} has a diameter of {diameter} m: it must be above 0")]
@@ -31,6 +31,21 @@ pub enum PackError {
         /// Porosity of the loosest pack.
         loosest: f64,
     },
+    /// Solids that float, or a weight that is none.
+    #[error(
+        "the {name} weigh {value} N/m³ less their buoyancy: it must be 0 or more, their density at least the fluid's"
+    )]
+    Weight {
+        /// Which of them.
+        name: &'static str,
+        /// Weight less buoyancy (N/m³).
+        value: f64,
+    },
+    /// An open top over something without weight.
+    #[error(
+        "grains or beads without weight do not stay in a pot with an open top: give them weight or a lid"
+    )]
+    NothingHoldsDown,
     /// No stress to press with.
     #[error("lid stress is {0} Pa: a pack is made by pressing on it, so it must be above 0")]
     LidStress(f64),

@@ -1,15 +1,19 @@
-use super::{PackError, PackRequest, Sides};
+use super::{PackError, PackRequest, Pot, REST_REQUIRED, Sides, at_rest};
 use crate::assembly::{Assembly, AssemblyError, Lid};
 use crate::contact_law::ContactLaw;
 use bedswell_geometry::{Cell, Sphere, Stream, Vector, volume_of_radius};
 use rand::RngExt;
+use std::f64::consts::TAU;
 
 /// The steps by which packs are made, for one checked request.
 pub(super) struct Recipe {
     radii: Vec<f64>,
     volume: f64,
     pub(super) friction: f64,
+    lid_stress: f64,
+    /// What the lowest grains bear at most (Pa).
     stress: f64,
+    weights: Vec<Vector>,
     sides: Sides,
 }
 
@@ -36,7 +40,8 @@ const DILUTE: f64 = 0.3;
 
 impl Recipe {
     pub(super) fn new(request: &PackRequest) -> Result<Self, PackError> {
-        if request.grains.is_empty() {
+        // One bead alone is no bed.
+        if request.grains.is_empty() && request.beads < 2 {
             return Err(PackError::NoGrains);
         }
         let beads = std::iter::repeat_n(&request.bead_diameter, request.beads);
@@ -50,14 +55,22 @@ impl Recipe {
         if !(request.lid_stress.is_finite() && request.lid_stress > 0.0) {
             return Err(PackError::LidStress(request.lid_stress));
         }
-        let law = ContactLaw::for_stress(request.lid_stress, STIFF, request.friction);
-        law.check().map_err(AssemblyError::from)?;
         let radii: Vec<f64> = diameters.iter().map(|diameter| 0.5 * diameter).collect();
+        let weights = weights(request, &radii)?;
+        let own = match request.sides {
+            Sides::Pot(pot) => weights.iter().map(Vector::norm).sum::<f64>() / pot.section(),
+            Sides::FloorAndLid | Sides::Periodic => 0.0,
+        };
+        let stress = request.lid_stress + own;
+        let law = ContactLaw::for_stress(stress, STIFF, request.friction);
+        law.check().map_err(AssemblyError::from)?;
         let recipe = Self {
             volume: radii.iter().map(|&radius| volume_of_radius(radius)).sum(),
             radii,
             friction: request.friction,
-            stress: request.lid_stress,
+            lid_stress: request.lid_stress,
+            stress,
+            weights,
             sides: request.sides,
         };
         recipe.check_size(request)?;
@@ -99,8 +112,7 @@ impl Recipe {
 
     /// Lid down, and let the grains find their places: soft first, then stiff.
     fn stages(&self, grains: &mut Assembly, friction: f64, tolerance: f64) -> usize {
-        grains.stop();
-        grains.lid = Lid::Stress(self.stress);
+        self.load(grains);
         let steps: usize = STAGES
             .iter()
             .map(|&overlap| {
@@ -108,7 +120,27 @@ impl Recipe {
                 march(grains, LIVELY, tolerance, if overlap > STIFF { 4_000 } else { 8_000 })
             })
             .sum();
-        steps + self.stiffen(grains, LIVELY, tolerance)
+        steps
+            + self.stiffen(grains, LIVELY, tolerance)
+            + self.uncover(grains, LIVELY, tolerance)
+            + wait(grains)
+    }
+
+    /// Weights on and lid down.
+    fn load(&self, grains: &mut Assembly) {
+        grains.stop();
+        grains.weights.clone_from(&self.weights);
+        grains.lid = Lid::Stress(self.lid_stress);
+    }
+
+    /// Takes the lid off, if the top is to be open, and lets the bed come to rest.
+    fn uncover(&self, grains: &mut Assembly, damping: f64, tolerance: f64) -> usize {
+        if !matches!(self.sides, Sides::Pot(Pot { open: true, .. })) {
+            return 0;
+        }
+        grains.stop();
+        grains.lid = Lid::Open;
+        march(grains, damping, tolerance, 8_000)
     }
 
     /// Stiffens grains that still overlap too deeply: in wide gradings a small one
@@ -129,10 +161,11 @@ impl Recipe {
 
     /// Friction on, lid down, and hold the grains where they are.
     pub(super) fn lock(&self, grains: &mut Assembly) -> usize {
-        grains.stop();
-        grains.lid = Lid::Stress(self.stress);
+        self.load(grains);
         grains.law = ContactLaw::for_stress(self.stress, STIFF, self.friction);
-        march(grains, SLUGGISH, 1.0e-4, 3_000) + self.stiffen(grains, SLUGGISH, 1.0e-4)
+        march(grains, SLUGGISH, 1.0e-4, 3_000)
+            + self.stiffen(grains, SLUGGISH, 1.0e-4)
+            + self.uncover(grains, SLUGGISH, 1.0e-4)
     }
 
     /// Spheres at random points of a cell with the given solid fraction.
@@ -141,18 +174,29 @@ impl Recipe {
         let cell = match self.sides {
             Sides::FloorAndLid => Cell::with_floor_and_lid(size),
             Sides::Periodic => Cell::periodic(size),
+            Sides::Pot(_) => Cell { size, periodic: [false; 3] },
         };
         let spheres: Vec<Sphere> = (self.radii.iter())
             .map(|&radius| {
                 let mut centre = size.map(|length| length * random.random::<f64>());
-                if self.sides == Sides::FloorAndLid {
+                if self.sides != Sides::Periodic {
                     centre.z = radius + (size.z - 2.0 * radius) * (centre.z / size.z);
+                }
+                if let Sides::Pot(pot) = self.sides {
+                    let distance = (0.5 * pot.diameter - radius) * (centre.x / size.x).sqrt();
+                    let (sin, cos) = (TAU * centre.y / size.y).sin_cos();
+                    centre.x = 0.5 * size.x + distance * cos;
+                    centre.y = 0.5 * size.y + distance * sin;
                 }
                 Sphere { centre, radius }
             })
             .collect();
         let law = ContactLaw::for_stress(self.stress, STAGES[0], 0.0);
-        Ok(Assembly::new(cell, &spheres, law, Lid::Fixed)?)
+        let grains = Assembly::new(cell, &spheres, law, Lid::Fixed)?;
+        Ok(match self.sides {
+            Sides::Pot(pot) => grains.with_wall(0.5 * pot.diameter)?,
+            Sides::FloorAndLid | Sides::Periodic => grains,
+        })
     }
 
     /// A cube, unless that is too narrow for the largest sphere. Width does not
@@ -165,6 +209,11 @@ impl Recipe {
                 let side = (self.volume / TYPICAL_SOLID).cbrt().max(WIDTHS * self.largest());
                 Vector::new(side, side, volume / (side * side))
             }
+            Sides::Pot(pot) => {
+                let mean_diameter = 2.0 * self.radii.iter().sum::<f64>() / self.radii.len() as f64;
+                let uncovered = if pot.open { UNCOVERED * mean_diameter } else { 0.0 };
+                pot.size(volume / pot.section() + uncovered)
+            }
         }
     }
 
@@ -175,14 +224,16 @@ impl Recipe {
     /// Whether the cell holds its largest grain and bead.
     fn check_size(&self, request: &PackRequest) -> Result<(), PackError> {
         let size = self.size(request.porosity.map_or(TYPICAL_SOLID, |porosity| 1.0 - porosity));
-        let count = request.grains.len() as f64;
+        let count = if request.grains.is_empty() { request.beads } else { request.grains.len() } as f64;
         // Grains it takes for a cell of least width and height.
         let needed = |diameter: f64| {
             let least = HEIGHTS * WIDTHS * WIDTHS * diameter.powi(3);
             (count * least * TYPICAL_SOLID / self.volume).ceil() as usize
         };
         let (side, height) = (size.x, size.z);
-        if request.beads > 0 && request.bead_diameter > side.min(height) {
+        // What is wider than a pot is refused as such: more grains would not help.
+        let width = if matches!(self.sides, Sides::Pot(_)) { f64::INFINITY } else { side };
+        if request.beads > 0 && request.bead_diameter > width.min(height) {
             let diameter = request.bead_diameter;
             return Err(PackError::BeadLargerThanBed { diameter, side, height, needed: needed(diameter) });
         }
@@ -193,6 +244,30 @@ impl Recipe {
         Ok(())
     }
 }
+
+/// The weight of each sphere (N); none outside pots.
+fn weights(request: &PackRequest, radii: &[f64]) -> Result<Vec<Vector>, PackError> {
+    let Sides::Pot(pot) = request.sides else { return Ok(vec![Vector::zeros(); radii.len()]) };
+    if !(pot.diameter.is_finite() && pot.diameter > 0.0) {
+        return Err(AssemblyError::WallRadius(0.5 * pot.diameter).into());
+    }
+    for (name, value) in [("grains", pot.grain_weight), ("beads", pot.bead_weight)] {
+        if !(value.is_finite() && value >= 0.0) {
+            return Err(PackError::Weight { name, value });
+        }
+    }
+    if pot.open && pot.grain_weight.min(pot.bead_weight) == 0.0 {
+        return Err(PackError::NothingHoldsDown);
+    }
+    let of = |index: usize| if index < request.grains.len() { pot.grain_weight } else { pot.bead_weight };
+    Ok((radii.iter().enumerate())
+        .map(|(index, &radius)| -Vector::z() * (of(index) * volume_of_radius(radius)))
+        .collect())
+}
+
+/// How far, in mean diameters, the mean surface of a bed lies below the lid that has
+/// levelled it.
+const UNCOVERED: f64 = 0.3;
 
 /// Solid fraction of an ordinary bed, for the cell's width.
 const TYPICAL_SOLID: f64 = 0.6;
@@ -212,6 +287,11 @@ fn separate(grains: &mut Assembly) -> usize {
     }
     grains.compute_contacts();
     2_000
+}
+
+/// Goes on where a loose bed still gives way; returns the steps.
+fn wait(grains: &mut Assembly) -> usize {
+    if at_rest(grains) { 0 } else { march(grains, LIVELY, 0.5 * REST_REQUIRED, 40_000) }
 }
 
 /// Marches until net forces fall below `tolerance` of the mean contact force, for

@@ -4,8 +4,11 @@ use std::f64::consts::PI;
 /// What a pack has come to.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct PackReport {
-    /// Pores over the whole cell, floor to lid; dry beads count as solid.
+    /// Pores over the whole cell, floor to lid or to the mean surface of an open top; dry
+    /// beads count as solid.
     pub porosity: f64,
+    /// Height over which that is (m).
+    pub height: f64,
     /// Porosity of the middle, without a layer of one median grain (by mass) at
     /// floor and lid; of the whole cell where there are none.
     pub core_porosity: f64,
@@ -23,7 +26,8 @@ pub struct PackReport {
 impl PackReport {
     pub(super) fn new(assembly: &Assembly, steps: usize) -> Self {
         Self {
-            porosity: 1.0 - assembly.solid_fraction(),
+            porosity: 1.0 - assembly.filled_fraction(),
+            height: assembly.filled_height(),
             core_porosity: core_porosity(assembly),
             contact_number: assembly.contact_number(),
             stable: assembly.lid != Lid::Fixed,
@@ -38,8 +42,9 @@ fn core_porosity(assembly: &Assembly) -> f64 {
     if cell.periodic[2] {
         return 1.0 - assembly.solid_fraction();
     }
-    let layer = (2.0 * median_radius(&assembly.radii)).min(0.25 * cell.size.z);
-    let (low, high) = (layer, cell.size.z - layer);
+    let height = assembly.filled_height();
+    let layer = (2.0 * median_radius(&assembly.radii)).min(0.25 * height);
+    let (low, high) = (layer, height - layer);
     let solid: f64 = (assembly.centres.iter().zip(&assembly.radii))
         .map(|(centre, &radius)| cap(high - centre.z, radius) - cap(low - centre.z, radius))
         .sum();

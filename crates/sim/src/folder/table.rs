@@ -16,7 +16,7 @@ pub(crate) struct Table {
 
 /// One column; its name carries its unit.
 pub(crate) struct Column {
-    pub(crate) name: &'static str,
+    pub(crate) name: String,
     /// The values of the rows that have one.
     pub(crate) values: Values,
     /// Which rows have a value; `None`: all.
@@ -33,8 +33,8 @@ pub(crate) enum Values {
 
 impl Column {
     /// A column with a value in every row.
-    pub(crate) fn new(name: &'static str, values: Values) -> Self {
-        Self { name, values, present: None }
+    pub(crate) fn new(name: impl Into<String>, values: Values) -> Self {
+        Self { name: name.into(), values, present: None }
     }
 
     fn schema_type(&self) -> Result<Type, ParquetError> {
@@ -45,7 +45,7 @@ impl Column {
             Values::Text(_) => (Physical::BYTE_ARRAY, Some(LogicalType::String)),
         };
         let repetition = if self.present.is_some() { Repetition::OPTIONAL } else { Repetition::REQUIRED };
-        Type::primitive_type_builder(self.name, physical)
+        Type::primitive_type_builder(&self.name, physical)
             .with_logical_type(logical)
             .with_repetition(repetition)
             .build()
@@ -125,7 +125,7 @@ impl Table {
 
     fn write_csv(&self, path: &Path) -> Result<(), FolderError> {
         let columns: Vec<Vec<String>> = self.columns.iter().map(Column::cells).collect();
-        let names: Vec<&str> = self.columns.iter().map(|column| column.name).collect();
+        let names: Vec<&str> = self.columns.iter().map(|column| column.name.as_str()).collect();
         write_atomically(path, |writer| {
             writeln!(writer, "{}", names.join(","))?;
             for row in 0..columns.first().map_or(0, Vec::len) {
@@ -149,12 +149,12 @@ mod tests {
             columns: vec![
                 Column::new("pack", Values::Count(vec![0, 1, 2])),
                 Column {
-                    name: "uptake_g_per_g",
+                    name: "uptake_g_per_g".into(),
                     values: Values::Number(vec![0.1, 1.0 / 3.0]),
                     present: Some([true, false, true].into()),
                 },
                 Column {
-                    name: "failure",
+                    name: "failure".into(),
                     values: Values::Text(vec!["stuck".into()]),
                     present: Some([false, true, false].into()),
                 },

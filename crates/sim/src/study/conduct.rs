@@ -2,6 +2,7 @@ use super::journal::{JOURNAL_FILE, Journal, PackEnd, Row};
 use super::outcomes::outcomes_table;
 use super::plan::Plan;
 use super::summary::summarise;
+use super::tables::levels_table;
 use super::{Study, StudySummary};
 use crate::folder::{fingerprint, write_json, write_scene};
 use crate::{FolderError, PackOutcome, RunError, Scene};
@@ -106,6 +107,7 @@ pub fn run_study(
     let summary = summarise(study, &plan, &fingerprint);
     outcomes_table(study, &plan)
         .write(folder, "outcomes", options.csv)
+        .and_then(|()| levels_table(study, &summary.levels).write(folder, "levels", options.csv))
         .and_then(|()| write_json(&folder.join("summary.json"), &summary))
         .map_err(|error| error.keeping(kept))?;
     Ok(summary)
@@ -120,7 +122,8 @@ fn work(study: &Study, plan: &Mutex<Plan>, runner: &PackRunner<'_>, sender: &Sen
             Ok(outcome) => finished(outcome),
             Err(error) => PackEnd::Failed(error.to_string()),
         };
-        if sender.send(Row { level, pack, end }).is_err() {
+        let values = study.levels[level].values.clone();
+        if sender.send(Row { level, pack, values, end }).is_err() {
             return;
         }
     }
@@ -156,7 +159,8 @@ fn open_folder(study: &Study, folder: &Path, fingerprint: &str) -> Result<(Journ
             what: "files that are no study".into(),
         });
     }
-    let opened = Journal::open(folder, fingerprint)?;
+    let factors = study.factors.iter().map(|factor| factor.key.clone()).collect();
+    let opened = Journal::open(folder, fingerprint, factors)?;
     match study.levels.as_slice() {
         [level] => write_scene(folder, "scene.toml", &level.scene)?,
         levels => {

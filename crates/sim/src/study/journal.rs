@@ -10,13 +10,15 @@ use std::path::{Path, PathBuf};
 /// Name of the journal in a study's folder.
 pub(crate) const JOURNAL_FILE: &str = "journal.txt";
 /// The form of the journal's lines; a reader refuses what it does not know.
-const FORMAT: u32 = 1;
+const FORMAT: u32 = 2;
 
 /// One finished pack.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub(crate) struct Row {
     pub(crate) level: usize,
     pub(crate) pack: u64,
+    /// The values of the factors that the header names.
+    pub(crate) values: Vec<String>,
     pub(crate) end: PackEnd,
 }
 
@@ -32,6 +34,7 @@ struct Header {
     format: u32,
     version: String,
     fingerprint: String,
+    factors: Vec<String>,
 }
 
 /// An open journal. Each line is a checksum and a JSON value, so that a line cut
@@ -44,9 +47,13 @@ pub(crate) struct Journal {
 }
 
 impl Journal {
-    /// Opens or starts the journal of the study with this fingerprint; also the
-    /// packs it already holds.
-    pub(crate) fn open(folder: &Path, fingerprint: &str) -> Result<(Self, Vec<Row>), FolderError> {
+    /// Opens or starts the journal of the study with this fingerprint and these factors;
+    /// also the packs it already holds.
+    pub(crate) fn open(
+        folder: &Path,
+        fingerprint: &str,
+        factors: Vec<String>,
+    ) -> Result<(Self, Vec<Row>), FolderError> {
         let path = folder.join(JOURNAL_FILE);
         let mut file = OpenOptions::new()
             .read(true)
@@ -65,6 +72,7 @@ impl Journal {
             format: FORMAT,
             version: env!("CARGO_PKG_VERSION").to_owned(),
             fingerprint: fingerprint.to_owned(),
+            factors,
         };
         let mut journal = Self { path, file, whole: 0 };
         let mut rows = Vec::new();
@@ -128,14 +136,18 @@ fn checked(line: &[u8]) -> Option<&str> {
 mod tests {
     use super::*;
 
+    fn open(folder: &Path, fingerprint: &str) -> Result<(Journal, Vec<Row>), FolderError> {
+        Journal::open(folder, fingerprint, vec!["bed.depth".into()])
+    }
+
     fn failed(pack: u64) -> Row {
-        Row { level: 0, pack, end: PackEnd::Failed("stuck".into()) }
+        Row { level: 0, pack, values: vec!["3 cm".into()], end: PackEnd::Failed("stuck".into()) }
     }
 
     #[test]
     fn a_journal_cut_at_any_byte_keeps_every_whole_line() {
         let folder = tempfile::tempdir().unwrap();
-        let (mut journal, _) = Journal::open(folder.path(), "f").unwrap();
+        let (mut journal, _) = open(folder.path(), "f").unwrap();
         journal.append(&failed(0)).unwrap();
         let after_first = journal.whole as usize;
         journal.append(&failed(1)).unwrap();
@@ -144,12 +156,12 @@ mod tests {
         let bytes = std::fs::read(&path).unwrap();
         for cut in 0..=bytes.len() {
             std::fs::write(&path, &bytes[..cut]).unwrap();
-            let (mut journal, rows) = Journal::open(folder.path(), "f").unwrap();
+            let (mut journal, rows) = open(folder.path(), "f").unwrap();
             let expected = usize::from(cut >= after_first) + usize::from(cut == bytes.len());
             assert_eq!(rows.len(), expected, "cut at byte {cut}");
             journal.append(&failed(7)).unwrap();
             drop(journal);
-            let (_, rows) = Journal::open(folder.path(), "f").unwrap();
+            let (_, rows) = open(folder.path(), "f").unwrap();
             assert_eq!(rows.last(), Some(&failed(7)), "cut at byte {cut}");
         }
     }
@@ -157,22 +169,22 @@ mod tests {
     #[test]
     fn an_altered_line_in_the_middle_is_refused() {
         let folder = tempfile::tempdir().unwrap();
-        let (mut journal, _) = Journal::open(folder.path(), "f").unwrap();
+        let (mut journal, _) = open(folder.path(), "f").unwrap();
         journal.append(&failed(0)).unwrap();
         journal.append(&failed(1)).unwrap();
         drop(journal);
         let path = folder.path().join(JOURNAL_FILE);
         let text = std::fs::read_to_string(&path).unwrap().replacen("stuck", "stack", 1);
         std::fs::write(&path, text).unwrap();
-        assert!(matches!(Journal::open(folder.path(), "f"), Err(FolderError::Damaged { line: 2, .. })));
+        assert!(matches!(open(folder.path(), "f"), Err(FolderError::Damaged { line: 2, .. })));
     }
 
     #[test]
     fn another_study_and_a_second_writer_are_refused() {
         let folder = tempfile::tempdir().unwrap();
-        let (journal, _) = Journal::open(folder.path(), "f").unwrap();
-        assert!(matches!(Journal::open(folder.path(), "f"), Err(FolderError::InUse { .. })));
+        let (journal, _) = open(folder.path(), "f").unwrap();
+        assert!(matches!(open(folder.path(), "f"), Err(FolderError::InUse { .. })));
         drop(journal);
-        assert!(matches!(Journal::open(folder.path(), "g"), Err(FolderError::Occupied { .. })));
+        assert!(matches!(open(folder.path(), "g"), Err(FolderError::Occupied { .. })));
     }
 }

@@ -1,6 +1,7 @@
 use super::Study;
 use super::journal::PackEnd;
 use super::plan::Plan;
+use super::tables::factor_columns;
 use crate::PackOutcome;
 use crate::folder::{Column, Table, Values, bead_columns, quality_columns};
 use std::sync::Arc;
@@ -19,15 +20,13 @@ pub(crate) fn outcomes_table(study: &Study, plan: &Plan) -> Table {
     let pack_count = |name, values: Vec<usize>| {
         Column::new(name, Values::Count(values.into_iter().map(|value| value as i64).collect()))
     };
-    let mut columns = vec![
-        Column::new("level", Values::Count(rows.iter().map(|row| row.level as i64).collect())),
-        Column::new(
-            "level_value",
-            Values::Text(rows.iter().map(|row| study.levels[row.level].value.clone()).collect()),
-        ),
+    let mut columns =
+        vec![Column::new("level", Values::Count(rows.iter().map(|row| row.level as i64).collect()))];
+    columns.extend(factor_columns(study, rows.iter().map(|row| row.level)));
+    columns.extend([
         Column::new("pack", Values::Count(rows.iter().map(|row| row.pack as i64).collect())),
         if_finished(pack_count("bead", ended.clone().map(|(_, bead)| *bead).collect())),
-    ];
+    ]);
     columns.extend(
         bead_columns(ended.clone().map(|(pack, bead)| &pack.beads[*bead])).into_iter().map(if_finished),
     );
@@ -44,7 +43,11 @@ pub(crate) fn outcomes_table(study: &Study, plan: &Plan) -> Table {
         .map(if_finished),
     );
     let reasons = rows.iter().filter_map(|row| row.outcome.as_ref().err().map(|reason| (*reason).to_owned()));
-    columns.push(Column { name: "failure", values: Values::Text(reasons.collect()), present: Some(failed) });
+    columns.push(Column {
+        name: "failure".into(),
+        values: Values::Text(reasons.collect()),
+        present: Some(failed),
+    });
     Table { columns }
 }
 

@@ -2,6 +2,7 @@
 
 use super::Study;
 use super::journal::{PackEnd, Row};
+use crate::PackOutcome;
 use crate::statistics::clustered_fraction;
 use std::collections::BTreeMap;
 
@@ -71,12 +72,22 @@ impl Plan {
         (done, self.levels.iter().map(|level| level.wanted).sum())
     }
 
-    /// The packs that count at each level, in order.
+    /// The packs that count, level by level, in order.
     pub(crate) fn rows(&self) -> impl Iterator<Item = (usize, u64, &PackEnd)> + Clone {
-        self.levels
-            .iter()
-            .enumerate()
-            .flat_map(|(index, level)| level.counted().map(move |(pack, end)| (index, pack, end)))
+        (0..self.levels.len()).flat_map(|level| self.level_rows(level))
+    }
+
+    /// The packs that count at one level, in order.
+    pub(crate) fn level_rows(&self, level: usize) -> impl Iterator<Item = (usize, u64, &PackEnd)> + Clone {
+        self.levels[level].counted().map(move |(pack, end)| (level, pack, end))
+    }
+
+    /// The packs that reached equilibrium at one level, in order.
+    pub(crate) fn finished(&self, level: usize) -> impl Iterator<Item = &PackOutcome> + Clone {
+        self.level_rows(level).filter_map(|(_, _, end)| match end {
+            PackEnd::Finished(outcome) => Some(outcome),
+            PackEnd::Failed(_) => None,
+        })
     }
 
     /// Whether a level needed fewer packs than the study allows.

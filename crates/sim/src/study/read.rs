@@ -1,6 +1,9 @@
-use super::{Level, Study};
+use super::choices::make_room;
+use super::design::{Setting, combinations};
+use super::read_factor::read_factors;
+use super::{Factor, Level, Study, combination_in_words};
 use crate::SceneError;
-use crate::scene::{Entry, Node, Section, Value, read_document, refuse_unknown, scene_from};
+use crate::scene::{Entry, Node, Value, read_document, refuse_unknown, scene_from};
 use std::path::Path;
 
 /// Packs of a study that does not say how many.
@@ -11,8 +14,10 @@ const MOST_PACKS: u64 = 1_000_000;
 /// Reads a study file, or a scene file as a study of that scene alone.
 ///
 /// A study file names its scene (`scene = "grit.toml"`, relative to itself) and
-/// holds `packs`, `half_width` and one `[factor]` with `key` and `values`; each
-/// value replaces that key of the scene and is checked as if it stood there.
+/// holds `packs`, `half_width`, and for each key that varies a `[[factor]]` with `key`
+/// and either `values` or a range, `from` and `to`, of which `samples` are drawn. Each
+/// combination of values replaces those keys of the scene and is checked as if it
+/// stood there.
 ///
 /// # Errors
 /// When either file cannot be read or holds a key or value that cannot be used.
@@ -29,13 +34,13 @@ pub fn read_study(path: &Path) -> Result<Study, SceneError> {
         }
         _ => {
             let scene = scene_from(&document, path)?;
-            let levels = vec![Level { value: String::new(), scene }];
-            let name = levels[0].scene.name.clone();
-            return Ok(Study { name, packs: USUAL_PACKS, half_width: None, factor: None, levels });
+            let name = scene.name.clone();
+            let levels = vec![Level { values: Vec::new(), positions: Vec::new(), scene }];
+            return Ok(Study { name, packs: USUAL_PACKS, half_width: None, factors: Vec::new(), levels });
         }
     };
     if let Value::Table(table) = &document.value {
-        refuse_unknown("", table, &["name", "scene", "packs", "half_width", "factor"])?;
+        refuse_unknown("", table, &["name", "scene", "packs", "half_width", "samples", "factor"])?;
     }
     let top = |key: &str| document.find(key).map(|node| Entry { key: key.to_owned(), node });
     let packs = top("packs").map_or(Ok(USUAL_PACKS), |entry| entry.whole(1..=MOST_PACKS))?;
@@ -48,45 +53,55 @@ pub fn read_study(path: &Path) -> Result<Study, SceneError> {
         }
         other => other,
     })?;
-    let (factor, levels) = read_levels(&document, &scene_document, &scene_path)?;
+    let factors = read_factors(&document)?;
+    let combinations = combinations(&document, &factors, top("samples"), seed_of(&scene_document))?;
+    let factors: Vec<Factor> = factors.into_iter().map(|given| given.factor).collect();
+    let level = |settings| read_level(&scene_document, &scene_path, &factors, settings);
+    let levels = combinations.into_iter().map(level).collect::<Result<_, _>>()?;
     let name = match top("name") {
         Some(name) => name.text()?.to_owned(),
         None => path.file_stem().map_or(String::new(), |stem| stem.to_string_lossy().into_owned()),
     };
-    Ok(Study { name, packs, half_width, factor, levels })
+    Ok(Study { name, packs, half_width, factors, levels })
 }
 
-fn read_levels(
-    document: &Node,
+/// The scene with the settings of one combination.
+fn read_level(
     scene_document: &Node,
     scene_path: &Path,
-) -> Result<(Option<String>, Vec<Level>), SceneError> {
-    let section = Section::new(document, "factor", &["key", "values"])?;
-    if !section.is_given() {
-        let scene = scene_from(scene_document, scene_path)?;
-        return Ok((None, vec![Level { value: String::new(), scene }]));
+    factors: &[Factor],
+    settings: Vec<Setting>,
+) -> Result<Level, SceneError> {
+    let mut varied = scene_document.clone();
+    for (factor, setting) in factors.iter().zip(&settings) {
+        make_room(&mut varied, &factor.key);
+        varied.set(&factor.key, setting.node.clone());
     }
-    let key = section.need("key", "key = \"soil.median\"")?;
-    let name = key.text()?;
-    if name.is_empty() || name.split('.').any(str::is_empty) || ["scene.seed", "scene.name"].contains(&name) {
-        return Err(key.refuse("must be a dotted key of the scene that may vary, such as \"soil.median\""));
+    let (values, positions): (Vec<_>, Vec<_>) =
+        settings.into_iter().map(|setting| (setting.value, setting.position)).unzip();
+    match scene_from(&varied, scene_path) {
+        Ok(scene) => Ok(Level { values, positions, scene }),
+        Err(error) if factors.is_empty() => Err(error),
+        Err(error) => Err(in_combination(error, &combination_in_words(factors, &values))),
     }
-    let values = section.need("values", "values = [\"2 mm\", \"4 mm\"]")?;
-    let levels = values
-        .list()?
-        .iter()
-        .map(|entry| {
-            let mut varied = scene_document.clone();
-            varied.set(name, entry.node.clone());
-            let value = match &entry.node.value {
-                Value::Text(text) => text.clone(),
-                _ => entry.node.written(),
-            };
-            Ok(Level { value, scene: scene_from(&varied, scene_path)? })
-        })
-        .collect::<Result<Vec<_>, SceneError>>()?;
-    if levels.is_empty() {
-        return Err(values.refuse("names no value"));
+}
+
+/// The error with the combination in which it came up.
+fn in_combination(error: SceneError, combination: &str) -> SceneError {
+    let more = |text: String| format!("{text} (in the study, at {combination})");
+    match error {
+        SceneError::Value { place, key, value, problem } => {
+            SceneError::Value { place, key, value, problem: more(problem) }
+        }
+        SceneError::Missing { place, key, mend } => SceneError::Missing { place, key, mend: more(mend) },
+        other => other,
     }
-    Ok((Some(name.to_owned()), levels))
+}
+
+/// The seed as the scene gives it; a scene without a usable one is refused later.
+fn seed_of(scene_document: &Node) -> u64 {
+    match scene_document.find("scene.seed").map(|node| &node.value) {
+        Some(Value::Integer(seed)) => u64::try_from(*seed).unwrap_or(0),
+        _ => 0,
+    }
 }

@@ -1,9 +1,12 @@
-use super::Study;
+use super::effects::effects;
 use super::journal::PackEnd;
 use super::plan::Plan;
+use super::response::RESPONSES;
+use super::{Effects, Factor, Response, Study};
+use crate::PackOutcome;
 use crate::statistics::{Estimate, bootstrap_mean, clopper_pearson, clustered_fraction, wilson};
-use crate::{BeadOutcome, PackOutcome};
 use serde::{Deserialize, Serialize};
+use std::collections::BTreeMap;
 
 /// What a study comes to; the contents of its `summary.json`.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
@@ -18,22 +21,24 @@ pub struct StudySummary {
     pub name: String,
     /// Seed of its scene.
     pub seed: u64,
-    /// The key that varies, if one does.
-    pub factor: Option<String>,
+    /// What varies; empty for a single scene.
+    pub factors: Vec<Factor>,
     /// Whether every pack that was asked for is done.
     pub complete: bool,
     /// All levels taken together.
     #[serde(flatten)]
     pub overall: LevelSummary,
-    /// Each level by itself; a single one without a factor.
+    /// Each combination by itself; a single one without factors.
     pub levels: Vec<LevelSummary>,
+    /// What the factors do to each response; empty without factors.
+    pub effects: Vec<Effects>,
 }
 
 /// What the packs of one level come to. Intervals are two-sided at 95 %.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct LevelSummary {
-    /// The factor's value; empty without a factor and for all levels together.
-    pub value: String,
+    /// The value of each factor; empty without factors and for all levels together.
+    pub values: Vec<String>,
     /// Packs that reached equilibrium.
     pub packs: u64,
     /// Packs that did not, each with its reason; they count in no figure below.
@@ -60,16 +65,9 @@ pub struct LevelSummary {
     pub tear_fraction_clustered_high: Option<f64>,
     /// Beads that count as independent.
     pub effective_beads: Option<f64>,
-    /// Weakest-link tear probability of a bead: mean over packs, bootstrap interval.
-    pub tear_probability: Option<Estimate>,
-    /// Water uptake (g/g): mean over packs, bootstrap interval.
-    pub uptake_g_per_g: Option<Estimate>,
-    /// Volume relative to free-swollen: mean over packs, bootstrap interval.
-    pub volume_ratio: Option<Estimate>,
-    /// 99 % tension quantile (Pa): mean over packs, bootstrap interval.
-    pub tension_q99_pa: Option<Estimate>,
-    /// Rise of the lid (m): mean over packs, bootstrap interval.
-    pub heave_m: Option<Estimate>,
+    /// Each response, by its name: mean over packs, bootstrap interval.
+    #[serde(flatten)]
+    pub responses: BTreeMap<String, Option<Estimate>>,
     /// Pore fraction of the mixed dry bed: mean over packs, bootstrap interval.
     pub porosity: Option<Estimate>,
 }
@@ -85,12 +83,20 @@ pub struct FailedPack {
     pub reason: String,
 }
 
+impl LevelSummary {
+    /// A response's mean over packs with its limits, if any pack tells it.
+    pub fn figure(&self, response: &Response) -> Option<Estimate> {
+        self.responses.get(response.name).copied().flatten()
+    }
+}
+
 pub(crate) fn summarise(study: &Study, plan: &Plan, fingerprint: &str) -> StudySummary {
     let seed = study.levels.first().map_or(0, |level| level.scene.seed);
     let (done, wanted) = plan.progress();
     let levels = study.levels.iter().enumerate().map(|(index, level)| LevelSummary {
+        values: level.values.clone(),
         stopped_early: plan.stopped_early(index, study.packs),
-        ..summarise_packs(&level.value, plan.rows().filter(|row| row.0 == index), seed)
+        ..summarise_packs(plan.level_rows(index), seed)
     });
     let levels: Vec<LevelSummary> = levels.collect();
     let stopped_early = levels.iter().any(|level| level.stopped_early);
@@ -100,15 +106,15 @@ pub(crate) fn summarise(study: &Study, plan: &Plan, fingerprint: &str) -> StudyS
         fingerprint: fingerprint.into(),
         name: study.name.clone(),
         seed,
-        factor: study.factor.clone(),
+        factors: study.factors.clone(),
         complete: done == wanted,
-        overall: LevelSummary { stopped_early, ..summarise_packs("", plan.rows(), seed) },
+        overall: LevelSummary { stopped_early, ..summarise_packs(plan.rows(), seed) },
         levels,
+        effects: effects(study, plan, seed),
     }
 }
 
 fn summarise_packs<'a>(
-    value: &str,
     rows: impl Iterator<Item = (usize, u64, &'a PackEnd)> + Clone,
     seed: u64,
 ) -> LevelSummary {
@@ -131,17 +137,10 @@ fn summarise_packs<'a>(
     let exact = (beads > 0).then(|| clopper_pearson(torn as f64, beads as f64));
     let clustered = clustered_fraction(&torn_beads);
 
-    let with_beads = || packs.iter().filter(|pack| !pack.beads.is_empty());
-    let over_beads = |quantity: fn(&BeadOutcome) -> f64| {
-        let means: Vec<f64> = with_beads().map(|pack| mean_over_beads(pack, quantity)).collect();
-        bootstrap_mean(&means, seed)
-    };
-    let over_packs = |quantity: fn(&PackOutcome) -> f64| {
-        let values: Vec<f64> = packs.iter().map(|pack| quantity(pack)).collect();
-        bootstrap_mean(&values, seed)
-    };
+    let figure = |response: &Response| bootstrap_mean(&response.of(packs.iter().copied()), seed);
+    let porosity: Vec<f64> = packs.iter().map(|pack| pack.porosity).collect();
     LevelSummary {
-        value: value.to_owned(),
+        values: Vec::new(),
         packs: packs.len() as u64,
         failed,
         stopped_early: false,
@@ -155,15 +154,7 @@ fn summarise_packs<'a>(
         tear_fraction_clustered_low: clustered.map(|fraction| fraction.interval.low),
         tear_fraction_clustered_high: clustered.map(|fraction| fraction.interval.high),
         effective_beads: clustered.map(|fraction| fraction.effective_trials),
-        tear_probability: over_beads(|bead| bead.tear_probability),
-        uptake_g_per_g: over_beads(|bead| bead.uptake_g_per_g),
-        volume_ratio: over_beads(|bead| bead.volume_ratio),
-        tension_q99_pa: over_beads(|bead| bead.tension_q99_pa),
-        heave_m: over_packs(|pack| pack.heave_m),
-        porosity: over_packs(|pack| pack.porosity),
+        responses: RESPONSES.iter().map(|response| (response.name.into(), figure(response))).collect(),
+        porosity: bootstrap_mean(&porosity, seed),
     }
-}
-
-fn mean_over_beads(pack: &PackOutcome, quantity: fn(&BeadOutcome) -> f64) -> f64 {
-    pack.beads.iter().map(quantity).sum::<f64>() / pack.beads.len() as f64
 }

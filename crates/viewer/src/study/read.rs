@@ -1,4 +1,6 @@
-use bedswell_sim::{RunSummary, Scene, SceneError, Study, StudySummary, read_scene};
+use bedswell_sim::{
+    Factor, Level, RunSummary, Scene, SceneError, Study, StudySummary, combination_in_words, read_scene,
+};
 use parquet::file::reader::{FileReader, SerializedFileReader};
 use parquet::record::{Field, Row};
 use std::fs::File;
@@ -35,9 +37,9 @@ pub(crate) struct Packs {
     pub(crate) name: String,
     /// Its summary, once there is one.
     pub(crate) summary: Option<StudySummary>,
-    /// The key that varies, if one does.
-    pub(crate) factor: Option<String>,
-    /// Value of the factor and scene of each level.
+    /// What varies; empty for a single scene.
+    pub(crate) factors: Vec<Factor>,
+    /// Name and scene of each level.
     pub(crate) levels: Vec<(String, Scene)>,
     /// One row per pack.
     pub(crate) rows: Vec<PackRow>,
@@ -78,12 +80,13 @@ impl Packs {
     pub(crate) fn planned(study: Study, folder: PathBuf) -> Self {
         let row = |level, pack| PackRow { level, pack, outcome: Err("not computed".to_owned()) };
         let levels = study.levels.len();
+        let named = |level: Level| (level_name(&study.factors, &level.values), level.scene);
         Self {
             name: study.name,
             summary: None,
-            factor: study.factor,
             rows: (0..levels).flat_map(|level| (0..study.packs).map(move |pack| row(level, pack))).collect(),
-            levels: study.levels.into_iter().map(|level| (level.value, level.scene)).collect(),
+            levels: study.levels.into_iter().map(named).collect(),
+            factors: study.factors,
             folder,
         }
     }
@@ -130,17 +133,26 @@ pub(crate) fn read_packs(folder: &Path) -> Result<Packs, StudyReadError> {
     for (index, level) in summary.levels.iter().enumerate() {
         let own =
             if summary.levels.len() > 1 { folder.join(format!("level-{index}")) } else { folder.to_owned() };
-        levels.push((level.value.clone(), read_scene(&own.join("scene.toml"))?));
+        let name = level_name(&summary.factors, &level.values);
+        levels.push((name, read_scene(&own.join("scene.toml"))?));
     }
     let rows = read_rows(&folder.join("outcomes.parquet"))?;
     Ok(Packs {
         name: summary.name.clone(),
-        factor: summary.factor.clone(),
+        factors: summary.factors.clone(),
         levels,
         rows,
         folder: folder.to_owned(),
         summary: Some(summary),
     })
+}
+
+/// What the table calls a level: its value, or its combination of several.
+fn level_name(factors: &[Factor], values: &[String]) -> String {
+    match values {
+        [value] => value.clone(),
+        _ => combination_in_words(factors, values),
+    }
 }
 
 fn read_rows(path: &Path) -> Result<Vec<PackRow>, StudyReadError> {

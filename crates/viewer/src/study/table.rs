@@ -89,7 +89,7 @@ pub(crate) fn table(ui: &mut Ui, palette: &Palette, packs: &Packs, table: &mut T
     ui.add_space(4.0);
     histogram(ui, palette, packs, &OUTCOMES[table.by], table.open);
     ui.add_space(4.0);
-    let columns = Columns::new(ui.available_width() - 14.0, packs.levels.len() > 1);
+    let columns = Columns::new(ui.available_width() - 14.0, packs);
     head(ui, palette, packs, &columns, table);
     let order = table.order(packs);
     let mut chosen = None;
@@ -136,8 +136,13 @@ struct Columns {
 }
 
 impl Columns {
-    fn new(width: f32, levels: bool) -> Self {
-        let (level, pack) = (if levels { 0.17 * width } else { 0.0 }, 0.1 * width);
+    fn new(width: f32, packs: &Packs) -> Self {
+        let level = match (packs.levels.len(), packs.factors.len()) {
+            (0 | 1, _) => 0.0,
+            (_, 0 | 1) => 0.17,
+            _ => 0.3,
+        };
+        let (level, pack) = (level * width, 0.1 * width);
         Self { level, pack, outcome: (width - level - pack) / OUTCOMES.len() as f32 }
     }
 
@@ -159,8 +164,11 @@ fn head(ui: &mut Ui, palette: &Palette, packs: &Packs, columns: &Columns, table:
         ui.set_height(20.0);
         let quiet = |words: &str| RichText::new(words).color(palette.quiet);
         if columns.level > 0.0 {
-            let factor = packs.factor.as_deref().unwrap_or("level");
-            Columns::put(ui, columns.level, false, quiet(factor.rsplit('.').next().unwrap_or(factor)));
+            let factor = match packs.factors.as_slice() {
+                [factor] => factor.key.rsplit('.').next().unwrap_or(&factor.key),
+                _ => "combination",
+            };
+            Columns::put(ui, columns.level, false, quiet(factor));
         }
         Columns::put(ui, columns.pack, false, quiet("pack"));
         for (number, outcome) in OUTCOMES.iter().enumerate() {
@@ -244,7 +252,7 @@ mod tests {
         Packs {
             name: String::new(),
             summary: None,
-            factor: None,
+            factors: Vec::new(),
             levels: Vec::new(),
             rows: values.iter().enumerate().map(row).collect(),
             folder: std::path::PathBuf::new(),
