@@ -14,8 +14,6 @@ pub(crate) struct Embedded {
 /// How a place lies to the surface of the gel it is in.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Depth {
-    /// The place as mixed in, from the ball's centre (voxel edges).
-    pub(crate) dry: Vector,
     /// Distance to the dry surface (voxel edges), positive inside.
     pub(crate) depth: f64,
     /// Its gradient over the dry place.
@@ -86,7 +84,7 @@ impl Lattice {
         let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half);
         let radius = dry.norm().max(f64::MIN_POSITIVE);
         let carry = gradient.try_inverse()?.transpose();
-        Some(Depth { dry, depth: half - radius, inward: -dry / radius, carry })
+        Some(Depth { depth: half - radius, inward: -dry / radius, carry })
     }
 
     /// The nodes of an embedded place, with weights whose sum is 1.

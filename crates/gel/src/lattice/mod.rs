@@ -164,6 +164,12 @@ impl Lattice {
         self.voxels[voxel].map(|c| f64::from(c) + 0.5 - 0.5 * self.across as f64)
     }
 
+    /// Whether a voxel's centre lies at least three quarters of a voxel below the surface.
+    pub fn is_inner(&self, voxel: usize) -> bool {
+        let radius = self.voxel_offset(voxel).iter().map(|c| c * c).sum::<f64>().sqrt();
+        radius < 0.5 * self.across as f64 - skin::INNER_DEPTH
+    }
+
     /// Pairs of voxels that share a face, with the axis of the face's normal:
     /// the bonds. The first voxel is on the low side.
     pub fn bonds(&self) -> Vec<(usize, usize, usize)> {

@@ -7,7 +7,7 @@ use std::f64::consts::{FRAC_PI_2, PI};
 const SPACING: f64 = 0.4;
 
 /// Inner points lie at least this deep below the dry surface (voxel edges).
-const INNER_DEPTH: f64 = 0.75;
+pub(super) const INNER_DEPTH: f64 = 0.75;
 
 /// Share of the second differences that is added to the trilinear positions.
 ///

@@ -66,11 +66,11 @@ struct Listed {
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
 /// nothing corrects the pressures for the penetration they take.
-const PENALTY: f64 = 64.0;
+const PENALTY: f64 = 128.0;
 
 /// Penetration, in swollen diameters, that the pressure of a gel held at its volume may
 /// take: where that rises beyond the gel's stiffness, the contact stiffens with it.
-const DEPTH: f64 = 1e-4;
+const DEPTH: f64 = 2.5e-5;
 
 /// A skin point's way over that of the nodes that carry it: the sum of the magnitudes of
 /// its weights.

@@ -131,6 +131,9 @@ pub(super) fn swallowed(bodies: &Bodies) -> f64 {
         let bead = relaxing.bead();
         let size = bead.swollen_edge();
         for voxel in 0..bead.lattice().voxel_count() {
+            if !bead.lattice().is_inner(voxel) {
+                continue;
+            }
             let place = bead.voxel_centre(voxel);
             if around.obstacles.iter().any(|obstacle| obstacle.distance(&place) < -size) {
                 inside += size.powi(3);
