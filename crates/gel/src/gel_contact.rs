@@ -94,12 +94,21 @@ impl BeadContact {
 
     /// Adds the forces of the two beads on each other, which have come nearer by at most
     /// `moved` (m) since the last call. Returns the force (N) on the first.
-    pub fn press(&mut self, first: &mut Relaxation, second: &mut Relaxation, shift: Vector, moved: f64) -> Vector {
+    pub fn press(
+        &mut self,
+        first: &mut Relaxation,
+        second: &mut Relaxation,
+        shift: Vector,
+        moved: f64,
+    ) -> Vector {
         let mut total = Vector::zeros();
         let mut stiffnesses = 0.0;
         for (facing, from_first) in [(&mut self.first_in_second, true), (&mut self.second_in_first, false)] {
-            let (probing, faced, seen) =
-                if from_first { (&mut *first, &mut *second, -shift) } else { (&mut *second, &mut *first, shift) };
+            let (probing, faced, seen) = if from_first {
+                (&mut *first, &mut *second, -shift)
+            } else {
+                (&mut *second, &mut *first, shift)
+            };
             let push = probing.push_by(faced);
             let presses = facing.measure(probing.bead(), faced.bead(), seen, push, moved);
             for press in &presses {

@@ -58,7 +58,9 @@ impl Obstacle {
                 Obstacle::Sphere { centre: a, .. } | Obstacle::Cavity { centre: a, .. },
                 Obstacle::Sphere { centre: b, .. } | Obstacle::Cavity { centre: b, .. },
             ) => (a - b).norm(),
-            (Obstacle::Plane { point: a, normal }, Obstacle::Plane { point: b, .. }) => (a - b).dot(normal).abs(),
+            (Obstacle::Plane { point: a, normal }, Obstacle::Plane { point: b, .. }) => {
+                (a - b).dot(normal).abs()
+            }
             (Obstacle::Tube { axis: a, .. }, Obstacle::Tube { axis: b, .. }) => (a - b).xy().norm(),
             _ => f64::INFINITY,
         }

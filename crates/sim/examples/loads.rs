@@ -3,6 +3,8 @@
 //!
 //! `cargo run --release -p bedswell-sim --example loads -- SCENE PACKS ACROSS[,ACROSS…] RATIO[,RATIO…]`
 
+#![allow(clippy::print_stdout, reason = "a program that prints a table")]
+
 use bedswell_sim::{read_scene, run_pack};
 use std::path::Path;
 use std::time::Instant;

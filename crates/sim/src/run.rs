@@ -4,7 +4,7 @@ use std::ops::ControlFlow;
 use thiserror::Error;
 
 /// Watches a pack on its way from dry to equilibrium, and may stop it.
-pub trait Observer {
+pub trait Observer: Send {
     /// Called after each increment reached joint equilibrium.
     fn step(&mut self, step: &Step, of: usize) -> ControlFlow<()>;
 
@@ -59,6 +59,9 @@ pub fn run_pack(scene: &Scene, pack: u64, observer: &mut dyn Observer) -> Result
     let gel = scene.swelling_gel();
     // Grains bear the lid's stress and, next to a bead, some of the gel's.
     let stress = scene.bed.lid_stress.max(0.05 * gel.moduli().shear);
-    let bed = DryBed::build(scene, pack, stress)?;
-    march(scene, &gel, bed, pack, observer)
+    // On a worker of the pool from the start, so that no step has to wake one.
+    rayon::scope(|_| {
+        let bed = DryBed::build(scene, pack, stress)?;
+        march(scene, &gel, bed, pack, observer)
+    })
 }

@@ -57,7 +57,7 @@ impl Lattice {
             match self.way_out(&at) {
                 Some((neighbour, axis, up)) => {
                     at.voxel = neighbour;
-                    at.local[axis] += if up { -1.0 } else { 1.0 };
+                    at.local[axis] = (at.local[axis] + if up { -1.0 } else { 1.0 }).clamp(0.0, 1.0);
                 }
                 None if at.local.iter().all(|c| (-BEYOND..=1.0 + BEYOND).contains(c)) => {
                     return Some((at, gradient));
@@ -156,8 +156,9 @@ impl Lattice {
 
     fn corner_positions(&self, positions: &[f64], voxel: u32) -> [Vector; 8] {
         let stride = positions.len() / 3;
-        let place =
-            |node: usize| Vector::new(positions[node], positions[stride + node], positions[2 * stride + node]);
+        let place = |node: usize| {
+            Vector::new(positions[node], positions[stride + node], positions[2 * stride + node])
+        };
         self.covering_corners(voxel).map(|corner| match corner.checked_sub(self.nodes.len()) {
             None => place(corner),
             Some(beyond) => {
@@ -173,7 +174,7 @@ pub(super) const NO_VOXEL: u32 = u32::MAX;
 /// Finds the trilinear coordinates of a place, from those given; returns the gradient
 /// there. `None` where the map cannot be inverted.
 fn invert(corners: &[Vector; 8], place: &Vector, local: &mut [f64; 3]) -> Option<Matrix> {
-    for _ in 0..NEWTON_STEPS {
+    for step in 0..NEWTON_STEPS {
         let [x, y, z] = *local;
         // Along x, then y, then z.
         let ends: [Vector; 4] = std::array::from_fn(|k| corners[2 * k].lerp(&corners[2 * k + 1], x));
@@ -182,11 +183,13 @@ fn invert(corners: &[Vector; 8], place: &Vector, local: &mut [f64; 3]) -> Option
         let along_x = slopes[0].lerp(&slopes[1], y).lerp(&slopes[2].lerp(&slopes[3], y), z);
         let along_y = (ends[1] - ends[0]).lerp(&(ends[3] - ends[2]), z);
         let gradient = Matrix::from_columns(&[along_x, along_y, far - near]);
-        let step = gradient.try_inverse()? * (place - near.lerp(&far, z));
+        let way = gradient.try_inverse()? * (place - near.lerp(&far, z));
         for axis in 0..3 {
-            local[axis] = (local[axis] + step[axis].clamp(-1.0, 1.0)).clamp(-2.0, 3.0);
+            local[axis] = (local[axis] + way[axis].clamp(-1.0, 1.0)).clamp(-2.0, 3.0);
         }
-        if step.amax() < ROUNDING {
+        // A place far off has no coordinates here, but the way to it is known.
+        let far = local.iter().any(|c| !(-1.0..=2.0).contains(c));
+        if way.amax() < ROUNDING || (far && step > 1) {
             return (gradient.determinant() > 0.0).then_some(gradient);
         }
     }
@@ -227,8 +230,11 @@ mod tests {
         let lattice = Arc::new(Lattice::new(12));
         let bead = Bead::new(Arc::clone(&lattice), 6.0, Vector::zeros(), 3.0);
         let far = Embedded { voxel: 0, local: [0.5; 3] };
-        for (place, depth) in [(Vector::new(17.5, 0.0, 0.0), 0.5), (Vector::new(9.0, 9.0, 9.0), 18.0 - 243_f64.sqrt())] {
-            let (at, gradient) = lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
+        for (place, depth) in
+            [(Vector::new(17.5, 0.0, 0.0), 0.5), (Vector::new(9.0, 9.0, 9.0), 18.0 - 243_f64.sqrt())]
+        {
+            let (at, gradient) =
+                lattice.embed(&bead.positions, &place, far).expect("the place is in the gel");
             let found = lattice.depth(&at, &gradient).expect("the map is regular");
             assert_relative_eq!(found.distance(), depth, epsilon = 1e-9);
             let inward = (found.carry * found.inward).normalize();

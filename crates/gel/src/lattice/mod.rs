@@ -96,8 +96,7 @@ impl Lattice {
         };
         let voxel_at: HashMap<[u16; 3], u32> = voxels.iter().copied().zip(0..).collect();
         let shell = Shell::new(&shell::slivers(across, &cells), &node_at);
-        let covering: HashMap<[u16; 3], u32> =
-            voxels.iter().chain(&shell.places).copied().zip(0..).collect();
+        let covering: HashMap<[u16; 3], u32> = voxels.iter().chain(&shell.places).copied().zip(0..).collect();
         let neighbours =
             voxels.iter().chain(&shell.places).map(|voxel| neighbours_of(voxel, &covering)).collect();
         let skin = Skin::new(across, &cells, &voxel_at, &node_at);

@@ -43,18 +43,17 @@ impl Skin {
         node_at: &NodeIndex,
     ) -> Self {
         let half = 0.5 * across as f64;
-        let place: Vec<[f64; 3]> =
-            directions(across).into_iter().map(|direction| direction.map(|c| half * c)).collect();
+        let directions = directions(across);
         let mut skin = Self {
-            area: 4.0 * PI * half * half / place.len() as f64,
-            host: Vec::with_capacity(place.len()),
+            area: 4.0 * PI * half * half / directions.len() as f64,
+            host: Vec::with_capacity(directions.len()),
             start: vec![0],
             node: Vec::new(),
             weight: Vec::new(),
-            place,
+            place: directions.iter().map(|direction| direction.map(|c| half * c)).collect(),
         };
-        for point in 0..skin.place.len() {
-            let place = skin.place[point].map(|c| half + c);
+        for direction in directions {
+            let place = direction.map(|c| half * (1.0 + c));
             let voxel = host(place, |voxel| cells.contains_key(voxel));
             skin.host.push(voxel_at[&voxel]);
             for (node, weight) in combination(place, voxel, node_at) {
@@ -68,12 +67,7 @@ impl Skin {
     }
 
     /// Adds the nodes and the voxel centres that lie deep enough in the ball.
-    fn add_inner_points(
-        &mut self,
-        half: f64,
-        cells: &HashMap<[u16; 3], CutCell>,
-        node_at: &NodeIndex,
-    ) {
+    fn add_inner_points(&mut self, half: f64, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) {
         let inside = |place: [f64; 3]| {
             place.iter().map(|c| (c - half).powi(2)).sum::<f64>().sqrt() < half - INNER_DEPTH
         };
@@ -84,7 +78,8 @@ impl Skin {
             self.weight.push(1.0);
             self.start.push(self.node.len() as u32);
         }
-        let mut voxels: Vec<_> = cells.keys().filter(|place| inside(place.map(|c| f64::from(c) + 0.5))).collect();
+        let mut voxels: Vec<_> =
+            cells.keys().filter(|place| inside(place.map(|c| f64::from(c) + 0.5))).collect();
         voxels.sort_unstable_by_key(|&&[x, y, z]| (z, y, x));
         for voxel in voxels {
             for corner in corner_places(voxel) {

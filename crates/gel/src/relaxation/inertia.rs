@@ -107,7 +107,7 @@ impl Relaxation {
             let velocity = Vector::from(places.map(|place| self.velocities[place]));
             let force = places.map(|place| -self.gradient[place]);
             let force = Vector::from_fn(|axis, _| damped(force[axis], velocity[axis], damping));
-            let velocity = velocity + mobility * force / self.caution;
+            let velocity = velocity + mobility * force;
             let way = velocity + drift;
             for axis in 0..3 {
                 self.velocities[places[axis]] = velocity[axis];

@@ -32,8 +32,6 @@ pub struct Relaxation {
     /// Way of the fastest node in the last step, with the growth before it (m).
     last_way: f64,
     grown: f64,
-    /// How much heavier than usual the nodes are.
-    caution: f64,
     /// Nodes and obstacles where they were when contacts were last looked for.
     listed: Listed,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
@@ -89,7 +87,6 @@ impl Relaxation {
             folds: Folds::default(),
             last_way: 0.0,
             grown: 0.0,
-            caution: 1.0,
             listed: Listed::default(),
             drift: Vector::zeros(),
             weight: Vector::zeros(),
@@ -115,12 +112,6 @@ impl Relaxation {
     /// Gives the bead a weight (N), less its buoyancy.
     pub fn set_weight(&mut self, weight: Vector) {
         self.weight = weight;
-    }
-
-    /// Makes the nodes heavier than usual, by a factor of 1 or more: slower, and steadier
-    /// where gel is pressed on gel.
-    pub fn set_caution(&mut self, caution: f64) {
-        self.caution = caution;
     }
 
     /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere

@@ -11,11 +11,6 @@ use std::sync::Arc;
 pub(super) const FIRST_STRETCH: f64 = 1.25;
 /// Steps over which the free stretch rises by one increment.
 const RAMP_STEPS: usize = 60;
-/// Steps without rest after which the gel's nodes are made heavier, by which factor, and
-/// up to which.
-const PATIENCE: usize = 2_500;
-const CAUTION: f64 = 2.0;
-const MOST_CAUTION: f64 = 32.0;
 /// Steps between looks at the residuals.
 const LOOK: usize = 10;
 /// Largest residual (grains, gel) of a recorded state on the way.
@@ -77,7 +72,8 @@ pub(crate) fn march(
             march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
         measure::guard(&march.bodies).map_err(|reason| RunError::March { increment, reason })?;
-        let step = watch.step(increment, &stage, &march.bodies.beads, &march.bodies.grains, march.quality(&stage));
+        let step =
+            watch.step(increment, &stage, &march.bodies.beads, &march.bodies.grains, march.quality(&stage));
         history.push(step);
         let mut onwards = observer.step(&step, count);
         if observer.looks() && onwards.is_continue() {
@@ -147,8 +143,7 @@ impl March {
         } else {
             Tolerance { residual: 1e-3, corrections: 0, held: self.hold_beads }
         };
-        let settled =
-            grown.settle(gel, &around.obstacles, tolerance).is_ok() && !grown.is_folded();
+        let settled = grown.settle(gel, &around.obstacles, tolerance).is_ok() && !grown.is_folded();
         if settled {
             *bead = grown;
         }
@@ -170,10 +165,6 @@ impl March {
     /// Steps until grains, lid and beads are at rest.
     fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         for step in 0..target.steps {
-            if step % PATIENCE == 0 {
-                let caution = CAUTION.powi((step / PATIENCE) as i32).min(MOST_CAUTION);
-                self.bodies.beads.iter_mut().for_each(|bead| bead.set_caution(caution));
-            }
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
                 let quality = self.rest_quality(gel);
@@ -208,7 +199,8 @@ impl March {
     /// How well the state is at rest, after its forces are computed.
     fn rest_quality(&self, gel: &Gel) -> Quality {
         let rest = self.bodies.grains.rest();
-        let worst = |value: &dyn Fn(&Relaxation) -> f64| self.bodies.beads.iter().map(value).fold(0.0, f64::max);
+        let worst =
+            |value: &dyn Fn(&Relaxation) -> f64| self.bodies.beads.iter().map(value).fold(0.0, f64::max);
         let moving = !self.bodies.grains.held && rest.largest_net_force > 0.0;
         Quality {
             grain_residual: if moving { rest.residual().max(rest.lid_unbalance) } else { 0.0 },
