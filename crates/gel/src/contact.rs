@@ -34,12 +34,19 @@ pub(crate) struct Pressing {
 }
 
 impl Contacts {
-    /// Collects the points within `reach` (m) of an obstacle; multipliers of pairs
-    /// that stay are kept.
-    pub(crate) fn collect(&mut self, skin: &Skin, positions: &[f64], obstacles: &[Obstacle], reach: f64) {
+    /// Collects the points within `reach` (m) of an obstacle, the first `points` of the
+    /// skin's; multipliers of pairs that stay are kept.
+    pub(crate) fn collect(
+        &mut self,
+        skin: &Skin,
+        points: usize,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        reach: f64,
+    ) {
         let old = std::mem::take(&mut self.pairs);
         let mut known = old.iter().filter(|pair| pair.multiplier > 0.0).peekable();
-        for point in 0..skin.len_with_inner() {
+        for point in 0..points {
             let place = skin_position(skin, positions, point);
             for (obstacle, shape) in obstacles.iter().enumerate() {
                 let near = shape.is_within(&place, reach);

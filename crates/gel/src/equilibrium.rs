@@ -70,6 +70,10 @@ const STAGE_GROWTH: f64 = 1.25;
 /// Stretch at which the way from dry starts: the mixing energy ends at J = 1.
 const FIRST_STRETCH: f64 = 1.05;
 const NEWTON_STEPS: usize = 60;
+/// Residual at which contact pressures are corrected. What a solve leaves undone goes into
+/// the pressures, and no later solve can take it out: a held bead then pushes its
+/// obstacles unevenly.
+const BEFORE_CORRECTIONS: f64 = 1e-2;
 
 /// Swells `bead` from the stretch it has to free swelling among `obstacles`, by
 /// stages from dry that grow its free stretch by at most a quarter.
@@ -162,7 +166,7 @@ impl Solver {
         let held = if tolerance.held { Held::Everything } else { Held::Rotation };
         for correction in 0..=tolerance.corrections {
             let last = correction == tolerance.corrections;
-            let target = if last { tolerance.residual } else { tolerance.residual.max(1e-2) };
+            let target = if last { tolerance.residual } else { tolerance.residual.max(BEFORE_CORRECTIONS) };
             self.newton(&elastic, positions, obstacles, (longest_step, rest_force), (target, held))?;
             if !last {
                 self.contacts.update_multipliers(&elastic.lattice.skin, positions, obstacles);
@@ -201,7 +205,7 @@ impl Solver {
         let mut trial = positions.clone();
         let mut residual = f64::INFINITY;
         let mut convex = false;
-        self.contacts.collect(skin, positions, obstacles, 2.0 * longest_step);
+        self.contacts.collect(skin, skin.len(), positions, obstacles, 2.0 * longest_step);
         self.evaluate(elastic, positions, obstacles);
         for _ in 0..NEWTON_STEPS {
             let forces = self.contacts.forces(skin, positions, obstacles);
@@ -227,7 +231,7 @@ impl Solver {
                 for ((trial, position), step) in trial.iter_mut().zip(&*positions).zip(&direction) {
                     *trial = position + length * step;
                 }
-                self.contacts.collect(skin, &trial, obstacles, 2.0 * longest_step);
+                self.contacts.collect(skin, skin.len(), &trial, obstacles, 2.0 * longest_step);
                 let smallest = self.evaluate(elastic, &trial, obstacles);
                 // Near enough to the minimum along the step, or still descending.
                 if smallest > 1.0 + 1e-9 && dot(&self.gradient, &direction) <= -0.5 * before {

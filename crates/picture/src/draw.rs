@@ -149,6 +149,10 @@ fn chain(frame: &Frame, contact: &GrainContact, largest: f32, look: &Look) -> Op
         Touched::Grain(other) => frame.image(&grain.centre, &frame.grains[other as usize].centre),
         Touched::Floor => Point::new(grain.centre.x, grain.centre.y, 0.0),
         Touched::Lid => Point::new(grain.centre.x, grain.centre.y, frame.cell.z),
+        Touched::Wall => {
+            let axis = Point::new(0.5 * frame.cell.x, 0.5 * frame.cell.y, grain.centre.z);
+            axis + (grain.centre - axis).normalize() * axis.x
+        }
         Touched::Bead(_) => return None,
     };
     let share = (contact.force / largest).min(1.0).sqrt();

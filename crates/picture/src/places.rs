@@ -64,6 +64,10 @@ fn to_contact(frame: &Frame, bead: &BeadView, place: &Point) -> Option<f32> {
             }
             Touched::Floor => Some(place.z),
             Touched::Lid => Some(frame.cell.z - place.z),
+            Touched::Wall => {
+                let axis = Point::new(0.5 * frame.cell.x, 0.5 * frame.cell.y, place.z);
+                Some(axis.x - (place - axis).norm())
+            }
             Touched::Bead(other) => {
                 let skin = frame.beads.get(other as usize)?.nodes.iter();
                 skin.map(|node| (frame.image(place, node) - place).norm()).min_by(f32::total_cmp)

@@ -17,7 +17,7 @@ pub use folder::{
     FolderError, ReadError, RunFolder, RunSummary, StateRecorder, prepare_run_folder, read_run_folder,
     remove_run_files, write_run_folder,
 };
-pub use outcome::{BeadOutcome, GrainRecord, PackOutcome, Quality, Step};
+pub use outcome::{BeadOutcome, ForceOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
     BeadAmount, Beads, Bed, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,

@@ -13,8 +13,21 @@ pub struct PackOutcome {
     pub fines_left_out: f64,
     /// Rise of the lid from dry to equilibrium (m).
     pub heave_m: f64,
+    /// Rise of the lid over the height of the mixed dry bed.
+    pub heave_strain: f64,
+    /// Water in the beads per volume of the bed at the end (L/m³).
+    pub water_l_per_m3: f64,
+    /// Pore fraction left open between grains and gel at the end.
+    pub porosity_left: f64,
+    /// Stress on the lid at the end (Pa): its load, or the bed's swelling pressure where
+    /// the lid is held.
+    pub lid_stress_pa: f64,
     /// Mean contacts per grain that carries load, at the end.
     pub contact_number: f64,
+    /// Forces between the grains before the beads swell.
+    pub forces_before: ForceOutcome,
+    /// Forces between the grains at the end.
+    pub forces_after: ForceOutcome,
     /// Each bead, in order.
     pub beads: Vec<BeadOutcome>,
     /// How well the end state is at rest.
@@ -31,6 +44,22 @@ impl PackOutcome {
     pub fn torn_beads(&self) -> (u64, u64) {
         (self.beads.iter().filter(|bead| bead.torn).count() as u64, self.beads.len() as u64)
     }
+}
+
+/// How forces go through the grains, with floor and lid.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
+pub struct ForceOutcome {
+    /// Mean normal force of a contact (N).
+    pub mean_force_n: f64,
+    /// 95 % quantile of the normal force over the mean.
+    pub force_q95: f64,
+    /// Share of the contacts that carry more than the mean.
+    pub share_above_mean: f64,
+    /// Chains: three grains or more joined by contacts that carry the mean force or more
+    /// within 45 degrees of the largest stress.
+    pub chains: usize,
+    /// Grains in chains.
+    pub chain_grains: usize,
 }
 
 /// Where a grain lay and where it came to lie.

@@ -48,10 +48,10 @@ pub enum Touched {
     Floor,
     /// The lid.
     Lid,
-    /// The pot's wall.
-    Wall,
     /// Another bead.
     Bead(u32),
+    /// The pot's wall.
+    Wall,
 }
 
 /// One bead. Nodes, voxels and bonds are numbered as in the [`bedswell_gel::Lattice`] with

@@ -1,8 +1,8 @@
 //! Studies: nothing lost, nothing done twice, and the same files however they were made.
 
 use bedswell_sim::{
-    BeadAmount, BeadOutcome, FolderError, PackOutcome, Quality, RESPONSES, RunError, Scene, Study,
-    StudyOptions, StudySummary, read_study, run_study,
+    BeadAmount, BeadOutcome, FolderError, ForceOutcome, PackOutcome, Quality, RESPONSES, RunError, Scene,
+    Study, StudyOptions, StudySummary, read_study, run_study,
 };
 use std::path::Path;
 use std::sync::atomic::{AtomicU64, Ordering};
@@ -37,7 +37,13 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         porosity: 0.4,
         fines_left_out: 0.0,
         heave_m: 1e-4,
+        heave_strain: 0.01,
+        water_l_per_m3: 30.0,
+        porosity_left: 0.3,
+        lid_stress_pa: 300.0,
         contact_number: 4.5,
+        forces_before: ForceOutcome::default(),
+        forces_after: ForceOutcome::default(),
         beads: vec![bead(), bead()],
         quality: Quality::default(),
         history: Vec::new(),

@@ -76,10 +76,11 @@ fn in_words(scene: &Scene, estimate: &SceneEstimate, sizes: &SizeNumbers, left_o
     part(
         "bed",
         &[format!(
-            "about {} wide; porosity {}; {} under the lid{}",
+            "about {} wide; porosity {}; {} under the lid{}{}",
             length(estimate.bed_edge_m),
             scene.bed.porosity.map_or("as prepared".into(), digits),
             stress(scene.bed.lid_stress),
+            if scene.bed.lid_held { ", which is then held" } else { "" },
             if scene.bed.fixed_grains { "; grains held in place" } else { "" }
         )],
     );
@@ -136,10 +137,7 @@ fn regime(scene: &Scene, estimate: &SceneEstimate) -> String {
         ..0.02 => "light: beads swell almost freely and lift the bed",
         0.02..0.06 => "moderate: grains move aside, uptake some nine tenths of free",
         0.06..0.2 => "heavy: uptake some three quarters of free, the gel bulges into the pores",
-        _ => {
-            "very heavy: the gel is squeezed between grains until it meets itself; such a pack may stop, as contact \
-             of a bead with itself is not in this version"
-        }
+        _ => "very heavy: grains hardly move, the gel fills the pores between them and presses on itself there",
     };
     format!("{ratio} of the gel's modulus, {meaning}")
 }

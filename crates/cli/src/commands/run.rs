@@ -5,7 +5,8 @@ use crate::progress::Progress;
 use anyhow::Context;
 use bedswell_sim::figures::{digits, force, length, probability, stress};
 use bedswell_sim::{
-    RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack, write_run_folder,
+    RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack,
+    write_run_folder,
 };
 use std::path::Path;
 
@@ -20,7 +21,13 @@ pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
         remove_run_files(&arguments.out);
         return Err(error.into());
     }
-    let outcome = ended.with_context(|| arguments.scene.display().to_string())?;
+    let kept = match &ended {
+        Err(RunError::March { increment, .. }) if *increment > 1 => {
+            format!(" (the states before that are kept in {})", arguments.out.display())
+        }
+        _ => String::new(),
+    };
+    let outcome = ended.with_context(|| format!("{}{kept}", arguments.scene.display()))?;
     drop(progress);
     let summary = write_run_folder(&arguments.out, &scene, &outcome, arguments.csv)?;
     if json {
@@ -33,12 +40,18 @@ pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
 
 fn in_words(run: &RunSummary, folder: &Path) -> String {
     let mut text = format!(
-        "{}, pack {}: {} grains at porosity {:.3}; the lid rose {}\n",
+        "{}, pack {}: {} grains at porosity {:.3}\n  the lid rose      {}\n  stress on it      {}\n  water in the bed  \
+         {} L/m³\n  pores left        {:.3}\n  stress chains     {} before, {} after\n",
         run.name,
         run.pack,
         run.grains,
         run.porosity,
-        length(run.heave_m)
+        length(run.heave_m),
+        stress(run.lid_stress_pa),
+        digits(run.water_l_per_m3),
+        run.porosity_left,
+        run.forces_before.chains,
+        run.forces_after.chains,
     );
     for (index, bead) in run.beads.iter().enumerate() {
         text += &format!(

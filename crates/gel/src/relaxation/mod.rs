@@ -125,7 +125,8 @@ impl Relaxation {
         let pressure = gel.confining_pressure(self.bead.volume() / self.bead.dry_volume());
         let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
-        self.contacts.collect(&lattice.skin, &self.bead.positions, obstacles, reach);
+        let points = lattice.skin.len_with_inner();
+        self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
         self.folds = Folds::find(&self.bead, self.fold_law(), reach);
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles);

@@ -49,7 +49,8 @@ impl DryBed {
             }
             _ => random_bed(scene, &mut random)?,
         };
-        let lid = if scene.bed.fixed_grains { Lid::Fixed } else { Lid::Stress(scene.bed.lid_stress) };
+        let still = scene.bed.fixed_grains || scene.bed.lid_held;
+        let lid = if still { Lid::Fixed } else { Lid::Stress(scene.bed.lid_stress) };
         let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction);
         let mut grains = Assembly::new(cell, &spheres, law, lid).map_err(packing)?;
         grains.held = scene.bed.fixed_grains;

@@ -44,6 +44,11 @@ pub(crate) fn march(
     let before = &bed.spheres;
     let mut march = March::new(scene, &bed, gel);
     let watch = Watch { scene, gel, number, lid_before: bed.lid };
+    let forces_before = {
+        let mut grains = bed.grains.clone();
+        grains.compute_contacts();
+        measure::forces(&grains)
+    };
     let free = gel.free_stretch();
     let start = bed.stretch.min(free);
     let count = scene.march.increments;
@@ -83,14 +88,19 @@ pub(crate) fn march(
             return Err(RunError::Stopped { increment });
         }
     }
-    let after = march.bodies.grains.centres.iter();
+    let grains = &march.bodies.grains;
+    let volume_of =
+        |volume: fn(&Bead) -> f64| march.bodies.beads.iter().map(|bead| volume(bead.bead())).sum();
+    let (gel_volume, dry_volume): (f64, f64) = (volume_of(Bead::volume), volume_of(Bead::dry_volume));
+    let bed_volume = grains.section() * grains.cell.size.z;
+    let after = grains.centres.iter();
     let positions = before
         .iter()
         .zip(after)
         .map(|(grain, after)| GrainRecord {
             diameter_m: 2.0 * grain.radius,
             before_m: grain.centre.into(),
-            after_m: (grain.centre + march.bodies.grains.cell.separation(&grain.centre, after)).into(),
+            after_m: (grain.centre + grains.cell.separation(&grain.centre, after)).into(),
         })
         .collect();
     Ok(PackOutcome {
@@ -98,8 +108,14 @@ pub(crate) fn march(
         grains: before.len(),
         porosity: bed.porosity,
         fines_left_out: bed.fines_left_out,
-        heave_m: march.bodies.grains.cell.size.z - watch.lid_before,
-        contact_number: march.bodies.grains.contact_number(),
+        heave_m: grains.cell.size.z - watch.lid_before,
+        heave_strain: grains.cell.size.z / watch.lid_before - 1.0,
+        water_l_per_m3: 1e3 * (gel_volume - dry_volume) / bed_volume,
+        porosity_left: 1.0 - (grains.solid_volume() + gel_volume) / bed_volume,
+        lid_stress_pa: grains.boundary().lid.z / grains.section(),
+        contact_number: grains.contact_number(),
+        forces_before,
+        forces_after: measure::forces(grains),
         beads: watch.beads(gel, &march.bodies.beads),
         quality: march.quality(gel),
         history,
@@ -185,15 +201,23 @@ impl March {
             return Ok(());
         }
         Err(format!(
-            "no joint equilibrium after {} steps: net force on a grain {:.1e} of the mean contact force (allowed {:.0e}), in the gel {:.1e} (allowed {:.0e}), on a bead {:.1e} (allowed {:.0e}); take more increments",
+            "no joint equilibrium after {} steps: net force on grain {} {:.1e} of the mean contact force (allowed {:.0e}), in the gel of bead {} {:.1e} (allowed {:.0e}), on a bead {:.1e} (allowed {:.0e}); take more increments",
             target.steps,
+            self.bodies.grains.rest().worst,
             quality.grain_residual,
             TOLERABLE.grains,
+            self.least_at_rest(gel),
             quality.gel_residual,
             TOLERABLE.gel,
             quality.bead_balance,
             TOLERABLE.balance
         ))
+    }
+
+    /// The bead whose gel is furthest from rest.
+    fn least_at_rest(&self, gel: &Gel) -> usize {
+        let residual = |bead: &usize| self.bodies.beads[*bead].residual(gel);
+        (0..self.bodies.beads.len()).max_by(|a, b| residual(a).total_cmp(&residual(b))).unwrap_or(0)
     }
 
     /// How well the state is at rest, after its forces are computed.

@@ -1,8 +1,8 @@
 use super::bodies::Bodies;
-use crate::{BeadOutcome, Quality, Scene, Step, tear_probability};
+use crate::{BeadOutcome, ForceOutcome, Quality, Scene, Step, tear_probability};
 use bedswell_gel::{Gel, Relaxation, StressField, asphericity, uptake_of_volume_ratio};
 use bedswell_geometry::stream;
-use bedswell_grains::Assembly;
+use bedswell_grains::{Assembly, FORCE_QUANTILES, ForceStatistics};
 use rand::RngExt;
 
 /// Share of the beads' volume inside grains above which a state is void.
@@ -90,6 +90,17 @@ impl Watch<'_> {
         let tensions: Vec<f64> = field.principal.iter().map(|p| p[0]).collect();
         tear_probability(&volumes, &tensions, &self.scene.strength)
     }
+}
+
+/// How forces go through the grains, as their contacts were last computed.
+pub(super) fn forces(grains: &Assembly) -> ForceOutcome {
+    ForceStatistics::of(grains).map_or(ForceOutcome::default(), |forces| ForceOutcome {
+        mean_force_n: forces.mean_force,
+        force_q95: forces.quantiles[FORCE_QUANTILES.len() - 1],
+        share_above_mean: forces.share_above_mean,
+        chains: forces.chains,
+        chain_grains: forces.chain_grains,
+    })
 }
 
 /// Stops a march whose state the model does not cover.

@@ -2,7 +2,7 @@ use super::atomic::write_text;
 use super::states::{STATES_FOLDER, read_state, state_path};
 use super::tables::{beads_table, grains_table, history_table};
 use super::{FolderError, fingerprint};
-use crate::{BeadOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
+use crate::{BeadOutcome, ForceOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
 use serde::{Deserialize, Serialize};
 use std::fs;
 use std::path::Path;
@@ -47,8 +47,20 @@ pub struct RunSummary {
     pub fines_left_out: f64,
     /// Rise of the lid (m).
     pub heave_m: f64,
+    /// Rise of the lid over the height of the mixed dry bed.
+    pub heave_strain: f64,
+    /// Water in the beads per volume of the bed at the end (L/m³).
+    pub water_l_per_m3: f64,
+    /// Pore fraction left open at the end.
+    pub porosity_left: f64,
+    /// Stress on the lid at the end (Pa).
+    pub lid_stress_pa: f64,
     /// Mean contacts per grain that carries load.
     pub contact_number: f64,
+    /// Forces between the grains before the beads swell.
+    pub forces_before: ForceOutcome,
+    /// Forces between the grains at the end.
+    pub forces_after: ForceOutcome,
     /// Each bead, in order.
     pub beads: Vec<BeadOutcome>,
     /// How well the end state is at rest.
@@ -69,7 +81,13 @@ impl RunSummary {
             porosity: outcome.porosity,
             fines_left_out: outcome.fines_left_out,
             heave_m: outcome.heave_m,
+            heave_strain: outcome.heave_strain,
+            water_l_per_m3: outcome.water_l_per_m3,
+            porosity_left: outcome.porosity_left,
+            lid_stress_pa: outcome.lid_stress_pa,
             contact_number: outcome.contact_number,
+            forces_before: outcome.forces_before,
+            forces_after: outcome.forces_after,
             beads: outcome.beads.clone(),
             quality: outcome.quality,
         }

@@ -8,8 +8,9 @@ use std::path::{Path, PathBuf};
 pub(super) const STATES_FOLDER: &str = "states";
 /// First bytes of every state.
 const MAGIC: &[u8; 8] = b"bedswell";
-/// The form of what follows; a reader refuses what it does not know.
-const FORMAT: u32 = 1;
+/// The form of what follows; a reader refuses what it does not know. (Form 1 is this one
+/// without walls.)
+const FORMAT: u32 = 2;
 /// Bytes before the body: magic, format (u32), checksum (u64), both little-endian.
 const HEAD: usize = 20;
 
@@ -41,7 +42,7 @@ pub(super) fn read_state(path: &Path) -> Result<State, ReadError> {
     }
     let (head, body) = bytes.split_at(HEAD);
     let format = u32::from_le_bytes([head[8], head[9], head[10], head[11]]);
-    if format != FORMAT {
+    if !(1..=FORMAT).contains(&format) {
         return Err(ReadError::Newer { path: path.to_owned(), format, known: FORMAT });
     }
     if head[12..] != checksum(body).to_le_bytes() {

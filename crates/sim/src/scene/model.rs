@@ -32,8 +32,11 @@ pub struct Bed {
     /// Pore fraction of the mixed dry bed; `None`: as the preparation leaves it
     /// under the lid's stress (or as the listed spheres lie).
     pub porosity: Option<f64>,
-    /// Vertical stress under the lid (Pa).
+    /// Vertical stress under the lid (Pa), when the dry bed is made and, unless the lid is
+    /// held, from then on.
     pub lid_stress: f64,
+    /// The lid stays where the dry bed is made: what presses on it then is a result.
+    pub lid_held: bool,
     /// Grains and lid stay where they are (bench arrays).
     pub fixed_grains: bool,
 }

@@ -66,7 +66,7 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
 }
 
 fn read_bed(document: &Node, listed: Option<usize>) -> Result<Bed, SceneError> {
-    let known = ["grains", "porosity", "lid_stress", "depth", "bulk_density", "fixed_grains"];
+    let known = ["grains", "porosity", "lid_stress", "depth", "bulk_density", "lid_held", "fixed_grains"];
     let section = Section::new(document, "bed", &known)?;
     let grains = match (section.get("grains"), listed) {
         (Some(grains), None) => grains.whole(1..=1_000_000)? as usize,
@@ -96,8 +96,9 @@ fn read_bed(document: &Node, listed: Option<usize>) -> Result<Bed, SceneError> {
             return Err(section.missing("lid_stress", mend.into()));
         }
     };
+    let lid_held = section.get("lid_held").map_or(Ok(false), |entry| entry.flag())?;
     let fixed_grains = section.get("fixed_grains").map_or(Ok(false), |entry| entry.flag())?;
-    Ok(Bed { grains, porosity, lid_stress, fixed_grains })
+    Ok(Bed { grains, porosity, lid_stress, lid_held, fixed_grains })
 }
 
 /// `corner` is where listed spheres had their lower corner; centres shift with them.

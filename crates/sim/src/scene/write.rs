@@ -25,6 +25,7 @@ impl Scene {
             text.line("porosity", number(porosity));
         }
         text.line("lid_stress", with_unit(self.bed.lid_stress, Kind::Stress));
+        text.line("lid_held", self.bed.lid_held);
         text.line("fixed_grains", self.bed.fixed_grains);
 
         text.table("soil");

@@ -135,7 +135,7 @@ fn finished(mut outcome: PackOutcome) -> PackEnd {
     outcome.positions.clear();
     // JSON has no number for what is not finite, and an outcome has no other nulls.
     match serde_json::to_value(&outcome) {
-        Ok(value) if !holds_null(&value) => PackEnd::Finished(outcome),
+        Ok(value) if !holds_null(&value) => PackEnd::Finished(Box::new(outcome)),
         _ => PackEnd::Failed("the outcome is not finite; please report the scene and its seed".into()),
     }
 }

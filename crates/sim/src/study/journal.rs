@@ -25,7 +25,7 @@ pub(crate) struct Row {
 /// How a pack ended.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub(crate) enum PackEnd {
-    Finished(PackOutcome),
+    Finished(Box<PackOutcome>),
     Failed(String),
 }
 

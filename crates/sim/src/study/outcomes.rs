@@ -36,7 +36,15 @@ pub(crate) fn outcomes_table(study: &Study, plan: &Plan) -> Table {
             pack_number("porosity", |pack| pack.porosity),
             pack_number("fines_left_out", |pack| pack.fines_left_out),
             pack_number("heave_m", |pack| pack.heave_m),
+            pack_number("heave_strain", |pack| pack.heave_strain),
+            pack_number("water_l_per_m3", |pack| pack.water_l_per_m3),
+            pack_number("porosity_left", |pack| pack.porosity_left),
+            pack_number("lid_stress_pa", |pack| pack.lid_stress_pa),
             pack_number("contact_number", |pack| pack.contact_number),
+            pack_number("mean_force_before_n", |pack| pack.forces_before.mean_force_n),
+            pack_number("mean_force_after_n", |pack| pack.forces_after.mean_force_n),
+            pack_count("chains_before", ended.clone().map(|(pack, _)| pack.forces_before.chains).collect()),
+            pack_count("chains_after", ended.clone().map(|(pack, _)| pack.forces_after.chains).collect()),
         ]
         .into_iter()
         .chain(quality_columns(ended.clone().map(|(pack, _)| &pack.quality)))

@@ -85,7 +85,7 @@ impl Plan {
     /// The packs that reached equilibrium at one level, in order.
     pub(crate) fn finished(&self, level: usize) -> impl Iterator<Item = &PackOutcome> + Clone {
         self.level_rows(level).filter_map(|(_, _, end)| match end {
-            PackEnd::Finished(outcome) => Some(outcome),
+            PackEnd::Finished(outcome) => Some(&**outcome),
             PackEnd::Failed(_) => None,
         })
     }

@@ -19,11 +19,14 @@ pub struct Response {
 pub const RESPONSES: &[Response] = &[
     response("uptake_g_per_g", "water uptake", "g/g", digits, |pack| mean(pack, |bead| bead.uptake_g_per_g)),
     response("volume_ratio", "volume over free", "", digits, |pack| mean(pack, |bead| bead.volume_ratio)),
+    response("water_l_per_m3", "water in the bed", "L/m³", digits, |pack| pack.water_l_per_m3),
     response("heave_m", "heave", "mm", milli, |pack| pack.heave_m),
     response("tear_probability", "tear probability", "", chance, |pack| {
         mean(pack, |bead| bead.tear_probability)
     }),
     response("torn_fraction", "torn beads", "", digits, |pack| mean(pack, |bead| f64::from(bead.torn))),
+    response("porosity_left", "pores left", "", digits, |pack| pack.porosity_left),
+    response("lid_stress_pa", "lid stress", "kPa", kilo, |pack| pack.lid_stress_pa),
     response("tension_q99_pa", "99 % tension", "kPa", kilo, |pack| mean(pack, |bead| bead.tension_q99_pa)),
 ];
 

@@ -121,7 +121,7 @@ fn summarise_packs<'a>(
     let packs: Vec<&PackOutcome> = rows
         .clone()
         .filter_map(|(_, _, end)| match end {
-            PackEnd::Finished(outcome) => Some(outcome),
+            PackEnd::Finished(outcome) => Some(&**outcome),
             PackEnd::Failed(_) => None,
         })
         .collect();
