@@ -73,7 +73,7 @@ const NEWTON_STEPS: usize = 60;
 /// Residual at which contact pressures are corrected. What a solve leaves undone goes into
 /// the pressures, and no later solve can take it out: a held bead then pushes its
 /// obstacles unevenly.
-const BEFORE_CORRECTIONS: f64 = 1e-2;
+const BEFORE_CORRECTIONS: f64 = 1e-5;
 
 /// Swells `bead` from the stretch it has to free swelling among `obstacles`, by
 /// stages from dry that grow its free stretch by at most a quarter.
