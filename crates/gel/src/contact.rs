@@ -218,3 +218,33 @@ pub(crate) fn skin_position(skin: &Skin, positions: &[f64], point: usize) -> Vec
     }
     place
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::bead::Bead;
+    use crate::lattice::Lattice;
+    use std::sync::Arc;
+
+    /// A grain smaller than the gaps between the points of stretched skin passes between
+    /// them unseen: below the skin it must meet inner points.
+    #[test]
+    fn a_grain_of_a_voxels_size_below_the_skin_feels_the_gel() {
+        let edge = 6.0;
+        let bead = Bead::new(Arc::new(Lattice::new(8)), 4.0, Vector::zeros(), edge);
+        let skin = &bead.lattice().skin;
+        for way in [Vector::new(1.0, 0.3, 0.2), Vector::new(0.5, -0.7, 0.6), Vector::new(-0.2, 0.1, 0.9)] {
+            for depth in [1.7, 2.6, 3.1] {
+                let centre = way.normalize() * (edge * (4.0 - depth));
+                let grain = [Obstacle::Sphere { centre, radius: 0.9 * edge }];
+                let pressing = |points: usize| {
+                    let mut contacts = Contacts { penalty: 1.0, area: 1.0, ..Contacts::default() };
+                    contacts.collect(skin, points, &bead.positions, &grain, 0.0);
+                    contacts.linearise(skin, &bead.positions, &grain, false).len()
+                };
+                assert_eq!(pressing(skin.len()), 0, "skin points {depth} voxels deep");
+                assert!(pressing(skin.len_with_inner()) > 0, "no inner point {depth} voxels deep");
+            }
+        }
+    }
+}

@@ -93,3 +93,83 @@ impl Folds {
 /// Bound on a pair's part in the stiffness of a node: both ends move, through nodes with
 /// weights of both signs.
 const MARGIN: f64 = 4.0;
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::lattice::Lattice;
+    use approx::assert_relative_eq;
+    use std::sync::Arc;
+
+    const LAW: FoldLaw = FoldLaw { stiffness: 3.0, area: 0.5, edge: 2.0 };
+
+    /// A bead flattened along x until its opposite skins lie closer than the thickness.
+    fn flattened() -> Bead {
+        let mut bead = Bead::new(Arc::new(Lattice::new(8)), 4.0, Vector::zeros(), 2.0);
+        let stride = bead.lattice().stride();
+        for node in 0..bead.lattice().node_count() {
+            let [x, y, z] = bead.lattice().node_offset(node);
+            bead.positions[node] = 0.1 * x + 0.02 * (y * z).sin();
+            bead.positions[stride + node] += 0.05 * x * z;
+        }
+        bead
+    }
+
+    fn forces(bead: &Bead, folds: &mut Folds) -> Vec<(u32, Vector)> {
+        let mut forces = Vec::new();
+        folds.press(bead, LAW, |a, b, force| forces.extend([(a, force), (b, -force)]));
+        forces
+    }
+
+    /// Half the stiffness of a pair times the square of what it lacks to the thickness (J).
+    fn energy(bead: &Bead, folds: &Folds) -> f64 {
+        let place = |point: u32| bead.skin_point(point as usize);
+        let lacking = |&(a, b): &(u32, u32)| THICKNESS * LAW.edge - (place(a) - place(b)).norm();
+        folds.pairs.iter().map(|pair| 0.5 * LAW.of_pair() * lacking(pair).max(0.0).powi(2)).sum()
+    }
+
+    #[test]
+    fn forces_are_the_slope_of_the_energy() {
+        let mut bead = flattened();
+        let mut folds = Folds::find(&bead, LAW, 0.1);
+        let mut pulls = vec![0.0; bead.positions.len()];
+        let stride = bead.lattice().stride();
+        for (point, force) in forces(&bead, &mut folds) {
+            for (node, weight) in bead.lattice().skin.terms(point as usize) {
+                (0..3).for_each(|axis| pulls[axis * stride + node] += weight * force[axis]);
+            }
+        }
+        let largest = pulls.iter().fold(0.0_f64, |most, pull| most.max(pull.abs()));
+        assert!(largest > 0.0);
+        for place in (0..pulls.len()).step_by(7) {
+            let mut at = |by: f64| {
+                bead.positions[place] += by;
+                let energy = energy(&bead, &folds);
+                bead.positions[place] -= by;
+                energy
+            };
+            let step = 1e-5;
+            let slope = (at(step) - at(-step)) / (2.0 * step);
+            assert_relative_eq!(-slope, pulls[place], epsilon = 1e-6 * largest);
+        }
+    }
+
+    #[test]
+    fn forces_balance_in_force_and_torque() {
+        let bead = flattened();
+        let forces = forces(&bead, &mut Folds::find(&bead, LAW, 0.1));
+        let size: f64 = forces.iter().map(|(_, force)| force.norm()).sum();
+        let net: Vector = forces.iter().map(|(_, force)| force).sum();
+        let torque: Vector =
+            forces.iter().map(|&(point, force)| bead.skin_point(point as usize).cross(&force)).sum();
+        assert!(size > 0.0);
+        assert!(net.norm() < 1e-12 * size && torque.norm() < 1e-12 * size * bead.extent());
+    }
+
+    #[test]
+    fn neighbours_on_one_skin_do_not_repel_each_other() {
+        let bead = Bead::new(Arc::new(Lattice::new(8)), 4.0, Vector::zeros(), 2.0);
+        let mut folds = Folds::find(&bead, LAW, 1.0);
+        assert!(forces(&bead, &mut folds).is_empty() && folds.pressing == 0);
+    }
+}

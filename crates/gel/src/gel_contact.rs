@@ -242,3 +242,119 @@ fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {
     let skin = &bead.lattice().skin;
     (0..skin.len()).map(|point| skin_position(skin, &bead.positions, point))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::lattice::Lattice;
+    use approx::assert_relative_eq;
+    use std::sync::Arc;
+
+    const LAW: Push = Push { stiffness: 3.0, area: 0.5, edge: 2.0 };
+
+    /// Two beads that overlap a little, both somewhat distorted.
+    fn overlapping() -> (Bead, Bead) {
+        let lattice = Arc::new(Lattice::new(8));
+        let place = |centre: Vector, bend: f64| {
+            let mut bead = Bead::new(Arc::clone(&lattice), 4.0, centre, 2.0);
+            let stride = lattice.stride();
+            for node in 0..lattice.node_count() {
+                let [x, y, z] = lattice.node_offset(node);
+                bead.positions[node] += bend * (0.6 * y + 0.3 * z).sin();
+                bead.positions[stride + node] += 0.3 * bend * (0.5 * x * z).cos();
+            }
+            bead
+        };
+        (place(Vector::zeros(), 0.15), place(Vector::new(13.0, 7.0, 4.0), -0.1))
+    }
+
+    fn look(probing: &Bead, faced: &Bead) -> (Facing, Vec<Press>) {
+        let mut facing = Facing::look(probing, faced, Vector::zeros(), 1.0);
+        let presses = facing.measure(probing, faced, Vector::zeros(), LAW, 0.0);
+        assert!(presses.len() > 3, "{} points press", presses.len());
+        (facing, presses)
+    }
+
+    fn place_of(bead: &Bead, at: &Embedded) -> Vector {
+        bead.lattice().embedded_terms(at).into_iter().map(|(node, weight)| bead.node(node) * weight).sum()
+    }
+
+    #[test]
+    fn a_point_and_the_gel_it_has_entered_push_at_the_same_place() {
+        let (probing, faced) = overlapping();
+        for Press { point, at, .. } in look(&probing, &faced).1 {
+            let point = probing.skin_point(point as usize);
+            assert_relative_eq!(place_of(&faced, &at), point, epsilon = 1e-9);
+            let weights: f64 = faced.lattice().embedded_terms(&at).iter().map(|(_, weight)| weight).sum();
+            assert_relative_eq!(weights, 1.0, epsilon = 1e-12);
+        }
+    }
+
+    /// The forces (N) of the first bead's skin in the second's gel on the nodes of both.
+    fn pulls(first: &Bead, second: &Bead) -> [Vec<Vector>; 2] {
+        let mut pulls = [first, second].map(|bead| vec![Vector::zeros(); bead.lattice().node_count()]);
+        for Press { point, at, force } in look(first, second).1 {
+            first.lattice().skin.terms(point as usize).for_each(|(node, w)| pulls[0][node] += force * w);
+            second.lattice().embedded_terms(&at).iter().for_each(|&(node, w)| pulls[1][node] -= force * w);
+        }
+        pulls
+    }
+
+    /// The integral of the push over the depth, for all points (J).
+    fn energy(facing: &Facing, first: &Bead, second: &Bead) -> f64 {
+        let of_point = |probe: &Probe| {
+            let depth = sound(second, &first.skin_point(probe.point as usize), probe.at)
+                .map_or(0.0, |(_, found)| if found.depth < TOO_DEEP { found.depth.max(0.0) } else { 0.0 });
+            let rising = depth.min(DEEPEST_PUSH);
+            LAW.stiffness * LAW.edge * LAW.edge * rising * (depth - 0.5 * rising)
+        };
+        facing.probes.iter().map(of_point).sum()
+    }
+
+    #[test]
+    fn overlapping_beads_balance_in_force_and_torque() {
+        let (first, second) = overlapping();
+        let pulls = pulls(&first, &second);
+        let (mut net, mut torque, mut size) = (Vector::zeros(), Vector::zeros(), 0.0);
+        for (bead, pulls) in [&first, &second].into_iter().zip(&pulls) {
+            for (node, pull) in pulls.iter().enumerate() {
+                net += pull;
+                torque += bead.node(node).cross(pull);
+                size += pull.norm();
+            }
+        }
+        assert!(net.norm() < 1e-12 * size, "{:e}", net.norm() / size);
+        assert!(torque.norm() < 1e-12 * size * first.extent(), "{:e}", torque.norm() / size);
+    }
+
+    #[test]
+    fn forces_are_the_slope_of_the_energy() {
+        let (first, second) = overlapping();
+        let pulls = pulls(&first, &second);
+        let (facing, _) = look(&first, &second);
+        let largest = pulls.iter().flatten().map(Vector::norm).fold(0.0, f64::max);
+        let mut beads = [first, second];
+        let mut compared = 0;
+        for side in 0..2 {
+            let stride = beads[side].lattice().stride();
+            for (node, pull) in pulls[side].iter().enumerate() {
+                if pull.norm() < 0.05 * largest {
+                    continue;
+                }
+                for axis in 0..3 {
+                    let mut at = |by: f64| {
+                        beads[side].positions[axis * stride + node] += by;
+                        let energy = energy(&facing, &beads[0], &beads[1]);
+                        beads[side].positions[axis * stride + node] -= by;
+                        energy
+                    };
+                    let step = 1e-6;
+                    let slope = (at(step) - at(-step)) / (2.0 * step);
+                    assert_relative_eq!(-slope, pull[axis], epsilon = 1e-5 * largest);
+                    compared += 1;
+                }
+            }
+        }
+        assert!(compared > 30, "{compared} forces compared");
+    }
+}
