@@ -15,7 +15,7 @@ pub struct Bead {
 }
 
 impl Bead {
-    /// A bead of `dry_radius` (m), uniformly swollen to the linear `stretch` about
+    /// A bead of `dry_radius` (m), or a block half that long along x when dry, uniformly swollen to the linear `stretch` about
     /// `centre` (m).
     pub fn new(lattice: Arc<Lattice>, dry_radius: f64, centre: Vector, stretch: f64) -> Self {
         let stride = lattice.stride();
@@ -35,7 +35,7 @@ impl Bead {
         &self.lattice
     }
 
-    /// Radius when dry (m).
+    /// Radius when dry, or half the length of a block along x (m).
     pub fn dry_radius(&self) -> f64 {
         self.dry_radius
     }

@@ -22,7 +22,7 @@ pub use datasheet::{
 };
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use gel_contact::BeadContact;
-pub use lattice::{Lattice, Locator, MaterialPoint};
+pub use lattice::{Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
 pub use relaxation::{Load, Relaxation};
 pub use stress::{Bond, StressField, asphericity};

@@ -14,13 +14,16 @@ pub(super) struct CutCell {
 const COLUMNS: usize = 24;
 
 impl CutCell {
+    /// A voxel full of gel.
+    pub(super) const FULL: Self = Self { volume: 1.0, first: [0.5; 3], mixed: [0.25; 3] };
+
     /// The part of the voxel with its low corner at `corner` that lies within
     /// `radius` of the origin (voxel edges). The voxel is integrated exactly along
     /// z and by midpoints across.
     pub(super) fn of_ball(corner: [f64; 3], radius: f64) -> Self {
         let farthest: f64 = corner.iter().map(|&c| c.abs().max((c + 1.0).abs()).powi(2)).sum();
         if farthest <= radius * radius {
-            return Self { volume: 1.0, first: [0.5; 3], mixed: [0.25; 3] };
+            return Self::FULL;
         }
         let mut cell = Self::default();
         let weight = 1.0 / (COLUMNS * COLUMNS) as f64;

@@ -71,20 +71,19 @@ impl Lattice {
     /// Where a skin point lies in the voxel that carries it.
     pub(crate) fn skin_point_in_voxel(&self, point: usize) -> Embedded {
         let voxel = self.skin.host[point];
-        let half = 0.5 * self.across as f64;
+        let half = self.shape.half();
         let low = self.voxels[voxel as usize];
         let place = self.skin.place[point];
-        Embedded { voxel, local: std::array::from_fn(|axis| place[axis] + half - f64::from(low[axis])) }
+        Embedded { voxel, local: std::array::from_fn(|axis| place[axis] + half[axis] - f64::from(low[axis])) }
     }
 
     /// How an embedded place lies to the surface of the gel.
     pub(crate) fn depth(&self, at: &Embedded, gradient: &Matrix) -> Option<Depth> {
         let low = self.place_of(at.voxel);
-        let half = 0.5 * self.across as f64;
-        let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half);
-        let radius = dry.norm().max(f64::MIN_POSITIVE);
-        let carry = gradient.try_inverse()?.transpose();
-        Some(Depth { depth: half - radius, inward: -dry / radius, carry })
+        let half = self.shape.half();
+        let dry = Vector::from_fn(|axis, _| f64::from(low[axis]) + at.local[axis] - half[axis]);
+        let (depth, inward) = self.shape.depth(&dry);
+        Some(Depth { depth, inward, carry: gradient.try_inverse()?.transpose() })
     }
 
     /// The nodes of an embedded place, with weights whose sum is 1.

@@ -4,7 +4,7 @@ use std::collections::HashMap;
 
 /// Finds places of the dry ball in its lattice.
 pub struct Locator {
-    half: f64,
+    half: [f64; 3],
     voxel_at: HashMap<[u16; 3], u32>,
     node_at: NodeIndex,
 }
@@ -25,7 +25,7 @@ impl Locator {
     /// A locator for a lattice.
     pub fn new(lattice: &Lattice) -> Self {
         Self {
-            half: 0.5 * lattice.across as f64,
+            half: lattice.shape.half(),
             voxel_at: lattice.voxels.iter().copied().zip(0..).collect(),
             node_at: number_nodes(&lattice.voxels).1,
         }
@@ -34,7 +34,7 @@ impl Locator {
     /// The material point at a place relative to the ball's centre (voxel edges), in the
     /// ball or just outside.
     pub fn find(&self, place: [f64; 3]) -> MaterialPoint {
-        let place = place.map(|c| c + self.half);
+        let place: [f64; 3] = std::array::from_fn(|axis| place[axis] + self.half[axis]);
         let around = place.map(|c| c as u16);
         let within = place.iter().all(|c| *c >= 0.0) && self.voxel_at.contains_key(&around);
         let voxel = if within { around } else { host(place, |voxel| self.voxel_at.contains_key(voxel)) };

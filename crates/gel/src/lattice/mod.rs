@@ -1,13 +1,16 @@
 mod cut_cell;
 mod embed;
 mod locate;
+mod shape;
 mod shell;
 mod skin;
 
 use crate::lanes::WIDTH;
+use bedswell_geometry::Vector;
 use cut_cell::CutCell;
 pub(crate) use embed::{Depth, Embedded};
 pub use locate::{Locator, MaterialPoint};
+pub use shape::Shape;
 use shell::Shell;
 pub(crate) use skin::Skin;
 use std::collections::HashMap;
@@ -15,15 +18,15 @@ use std::collections::HashMap;
 /// Voxels filled less than this are left out; their neighbours take their gel.
 const SLIVER: f64 = 0.25;
 
-/// The voxel lattice of a dry ball, in units of the voxel edge; beads with the
+/// The voxel lattice of a dry ball or block, in units of the voxel edge; beads with the
 /// same number of voxels across share one.
 ///
 /// Surface voxels are cut cells: they count with the volume inside the ball and
 /// with the mean of their shape functions over it.
 #[derive(Debug)]
 pub struct Lattice {
-    across: usize,
-    /// Place of each node on the grid, from the low corner of the ball's box.
+    shape: Shape,
+    /// Place of each node on the grid, from the low corner of the shape's box.
     nodes: Vec<[u16; 3]>,
     /// Rows of voxels that are neighbours along x.
     pub(crate) runs: Vec<Run>,
@@ -79,7 +82,24 @@ impl Lattice {
     #[track_caller]
     pub fn new(across: usize) -> Self {
         assert!((4..=512).contains(&across), "{across} voxels across; 4 to 512 are possible");
-        let cells = kept_cells(across);
+        Self::filling(Shape::Ball(across), &kept_cells(across))
+    }
+
+    /// The lattice of a rectangular block of full voxels along x, y and z.
+    ///
+    /// # Panics
+    /// With fewer than 1 or more than 512 voxels along an axis.
+    #[track_caller]
+    pub fn block(size: [usize; 3]) -> Self {
+        assert!(size.iter().all(|n| (1..=512).contains(n)), "{size:?} voxels; 1 to 512 are possible");
+        let mut cells = HashMap::new();
+        for_each_place(size, |place| {
+            cells.insert(place, CutCell::FULL);
+        });
+        Self::filling(Shape::Block(size), &cells)
+    }
+
+    fn filling(shape: Shape, cells: &HashMap<[u16; 3], CutCell>) -> Self {
         let mut voxels: Vec<[u16; 3]> = cells.keys().copied().collect();
         voxels.sort_unstable_by_key(|&[x, y, z]| (z, y, x));
         let (nodes, node_at) = number_nodes(&voxels);
@@ -95,14 +115,14 @@ impl Lattice {
             column
         };
         let voxel_at: HashMap<[u16; 3], u32> = voxels.iter().copied().zip(0..).collect();
-        let shell = Shell::new(&shell::slivers(across, &cells), &node_at);
+        let shell = Shell::new(&shell::slivers(shape, cells), &node_at);
         let covering: HashMap<[u16; 3], u32> = voxels.iter().chain(&shell.places).copied().zip(0..).collect();
         let neighbours =
             voxels.iter().chain(&shell.places).map(|voxel| neighbours_of(voxel, &covering)).collect();
-        let skin = Skin::new(across, &cells, &voxel_at, &node_at);
-        let node_shares = node_shares(&voxels, &cells, &node_at);
+        let skin = Skin::new(shape, cells, &voxel_at, &node_at);
+        let node_shares = node_shares(&voxels, cells, &node_at);
         Self {
-            across,
+            shape,
             runs,
             volume: column(|cell| cell.volume),
             first: [0, 1, 2].map(|axis| column(MEAN_FIRST[axis])),
@@ -117,9 +137,14 @@ impl Lattice {
         }
     }
 
-    /// Voxels over the diameter.
+    /// What the dry lattice fills.
+    pub fn shape(&self) -> Shape {
+        self.shape
+    }
+
+    /// Voxels over the diameter of a ball, or over the length of a block along x.
     pub fn across(&self) -> usize {
-        self.across
+        self.shape.size()[0]
     }
 
     /// Number of nodes.
@@ -153,20 +178,21 @@ impl Lattice {
         self.skin.area
     }
 
-    /// Place of a node relative to the ball's centre (voxel edges).
+    /// Place of a node relative to the shape's centre (voxel edges).
     pub fn node_offset(&self, node: usize) -> [f64; 3] {
-        self.nodes[node].map(|c| f64::from(c) - 0.5 * self.across as f64)
+        let half = self.shape.half();
+        std::array::from_fn(|axis| f64::from(self.nodes[node][axis]) - half[axis])
     }
 
-    /// Centre of a voxel relative to the ball's centre (voxel edges).
+    /// Centre of a voxel relative to the shape's centre (voxel edges).
     pub fn voxel_offset(&self, voxel: usize) -> [f64; 3] {
-        self.voxels[voxel].map(|c| f64::from(c) + 0.5 - 0.5 * self.across as f64)
+        let half = self.shape.half();
+        std::array::from_fn(|axis| f64::from(self.voxels[voxel][axis]) + 0.5 - half[axis])
     }
 
     /// Whether a voxel's centre lies at least three quarters of a voxel below the surface.
     pub fn is_inner(&self, voxel: usize) -> bool {
-        let radius = self.voxel_offset(voxel).iter().map(|c| c * c).sum::<f64>().sqrt();
-        radius < 0.5 * self.across as f64 - skin::INNER_DEPTH
+        self.shape.depth(&Vector::from(self.voxel_offset(voxel))).0 > skin::INNER_DEPTH
     }
 
     /// Pairs of voxels that share a face, with the axis of the face's normal:
@@ -202,14 +228,14 @@ fn kept_cells(across: usize) -> HashMap<[u16; 3], CutCell> {
     let half = 0.5 * across as f64;
     // Mirror symmetry: the upper octant is integrated, the rest is its image.
     let mut octant = HashMap::new();
-    for_each_place(across, |place| {
+    for_each_place([across; 3], |place| {
         if place.iter().all(|&c| 2 * usize::from(c) + 1 >= across) {
             octant.insert(place, CutCell::of_ball(place.map(|c| f64::from(c) - half), half));
         }
     });
     let mut kept = HashMap::new();
     let mut slivers = Vec::new();
-    for_each_place(across, |place| {
+    for_each_place([across; 3], |place| {
         let image = |c: u16| across as u16 - 1 - c;
         let low = place.map(|c| c < image(c));
         let folded = place.map(|c| c.max(image(c)));
@@ -232,11 +258,11 @@ fn kept_cells(across: usize) -> HashMap<[u16; 3], CutCell> {
     kept
 }
 
-fn for_each_place(across: usize, mut visit: impl FnMut([u16; 3])) {
-    let range = 0..across as u16;
-    for z in range.clone() {
-        for y in range.clone() {
-            for x in range.clone() {
+fn for_each_place(size: [usize; 3], mut visit: impl FnMut([u16; 3])) {
+    let [along_x, along_y, along_z] = size.map(|voxels| 0..voxels as u16);
+    for z in along_z {
+        for y in along_y.clone() {
+            for x in along_x.clone() {
                 visit([x, y, z]);
             }
         }

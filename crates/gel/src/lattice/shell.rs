@@ -1,7 +1,8 @@
 //! The voxels that were left out as slivers, as far as places in space are concerned:
 //! with them the lattice's map covers the whole ball, once.
 
-use super::{CutCell, NodeIndex, corner_places};
+use super::{CutCell, NodeIndex, Shape, corner_places};
+use bedswell_geometry::Vector;
 use std::collections::HashMap;
 
 /// Slivers and the corners of theirs that are not nodes.
@@ -56,16 +57,16 @@ fn extrapolated(corner: [u16; 3], node_at: &NodeIndex) -> Option<Vec<(u32, f64)>
     (!rows.is_empty()).then_some(terms)
 }
 
-/// The voxels of the ball that are not kept, in order.
-pub(super) fn slivers(across: usize, kept: &HashMap<[u16; 3], CutCell>) -> Vec<[u16; 3]> {
-    let half = 0.5 * across as f64;
+/// The voxels that reach into the shape and are not kept, in order.
+pub(super) fn slivers(shape: Shape, kept: &HashMap<[u16; 3], CutCell>) -> Vec<[u16; 3]> {
+    let half = shape.half();
     let mut slivers = Vec::new();
-    super::for_each_place(across, |place| {
-        let nearest: f64 = place
-            .iter()
-            .map(|&c| (f64::from(c) - half).abs().min((f64::from(c) + 1.0 - half).abs()).powi(2))
-            .sum();
-        if nearest < half * half && !kept.contains_key(&place) {
+    super::for_each_place(shape.size(), |place| {
+        let nearest = Vector::from_fn(|axis, _| {
+            let low = f64::from(place[axis]) - half[axis];
+            if low.abs() < (low + 1.0).abs() { low } else { low + 1.0 }
+        });
+        if !kept.contains_key(&place) && shape.depth(&nearest).0 > 0.0 {
             slivers.push(place);
         }
     });

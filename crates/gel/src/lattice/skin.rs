@@ -1,4 +1,4 @@
-use super::{CutCell, NodeIndex, corner_places};
+use super::{CutCell, NodeIndex, Shape, corner_places};
 use bedswell_geometry::Vector;
 use std::collections::HashMap;
 use std::f64::consts::{FRAC_PI_2, PI};
@@ -18,12 +18,12 @@ pub(super) const INNER_DEPTH: f64 = 0.75;
 /// the reference scenes (finite elements, see the tests) err both ways.
 const FLATTENING: f64 = 0.2;
 
-/// Contact points on the true surface of the dry ball, each a fixed combination of
+/// Contact points on the true surface of the dry shape, each a fixed combination of
 /// node positions. Points inside the gel follow them: where a grain that is small
 /// against the voxels pushes the skin's points aside, they keep it out.
 #[derive(Debug)]
 pub(crate) struct Skin {
-    /// Where each point is when dry, from the ball's centre (voxel edges).
+    /// Where each point is when dry, from the shape's centre (voxel edges).
     pub(crate) place: Vec<[f64; 3]>,
     /// Dry area of every point (voxel edges squared).
     pub(crate) area: f64,
@@ -37,23 +37,26 @@ pub(crate) struct Skin {
 
 impl Skin {
     pub(super) fn new(
-        across: usize,
+        shape: Shape,
         cells: &HashMap<[u16; 3], CutCell>,
         voxel_at: &HashMap<[u16; 3], u32>,
         node_at: &NodeIndex,
     ) -> Self {
-        let half = 0.5 * across as f64;
-        let directions = directions(across);
+        let half = shape.half();
+        let (places, area) = match shape {
+            Shape::Ball(across) => ball_points(across),
+            Shape::Block(size) => block_points(size),
+        };
         let mut skin = Self {
-            area: 4.0 * PI * half * half / directions.len() as f64,
-            host: Vec::with_capacity(directions.len()),
+            area,
+            host: Vec::with_capacity(places.len()),
             start: vec![0],
             node: Vec::new(),
             weight: Vec::new(),
-            place: directions.iter().map(|direction| direction.map(|c| half * c)).collect(),
+            place: places.clone(),
         };
-        for direction in directions {
-            let place = direction.map(|c| half * (1.0 + c));
+        for place in places {
+            let place = std::array::from_fn(|axis| place[axis] + half[axis]);
             let voxel = host(place, |voxel| cells.contains_key(voxel));
             skin.host.push(voxel_at[&voxel]);
             for (node, weight) in combination(place, voxel, node_at) {
@@ -62,15 +65,14 @@ impl Skin {
             }
             skin.start.push(skin.node.len() as u32);
         }
-        skin.add_inner_points(half, cells, node_at);
+        skin.add_inner_points(shape, cells, node_at);
         skin
     }
 
-    /// Adds the nodes and the voxel centres that lie deep enough in the ball.
-    fn add_inner_points(&mut self, half: f64, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) {
-        let inside = |place: [f64; 3]| {
-            place.iter().map(|c| (c - half).powi(2)).sum::<f64>().sqrt() < half - INNER_DEPTH
-        };
+    /// Adds the nodes and the voxel centres that lie deep enough below the surface.
+    fn add_inner_points(&mut self, shape: Shape, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) {
+        let half = Vector::from(shape.half());
+        let inside = |place: [f64; 3]| shape.depth(&(Vector::from(place) - half)).0 > INNER_DEPTH;
         let mut nodes: Vec<_> = node_at.iter().filter(|(place, _)| inside(place.map(f64::from))).collect();
         nodes.sort_unstable_by_key(|(_, node)| **node);
         for (_, &node) in nodes {
@@ -114,6 +116,36 @@ impl Skin {
             .zip(&self.weight[range])
             .map(|(&node, &weight)| (node as usize, weight))
     }
+}
+
+/// Points on a ball and the area that each stands for.
+fn ball_points(across: usize) -> (Vec<[f64; 3]>, f64) {
+    let half = 0.5 * across as f64;
+    let directions = directions(across);
+    let area = 4.0 * PI * half * half / directions.len() as f64;
+    (directions.iter().map(|direction| direction.map(|c| half * c)).collect(), area)
+}
+
+/// Points on a block, in the middles of the quarters of its voxels' faces, and the area
+/// that each stands for. A uniform pressure so falls on the nodes of faces, edges and
+/// corners in the shares of the voxels' own stresses.
+fn block_points(size: [usize; 3]) -> (Vec<[f64; 3]>, f64) {
+    let half = size.map(|voxels| 0.5 * voxels as f64);
+    let quarter = |index: usize| 0.5 * index as f64 + 0.25;
+    let mut points = Vec::new();
+    for axis in 0..3 {
+        let (next, last) = ((axis + 1) % 3, (axis + 2) % 3);
+        for side in [-1.0, 1.0] {
+            for i in 0..2 * size[next] {
+                for j in 0..2 * size[last] {
+                    let mut point = [side * half[axis]; 3];
+                    (point[next], point[last]) = (quarter(i) - half[next], quarter(j) - half[last]);
+                    points.push(point);
+                }
+            }
+        }
+    }
+    (points, 0.25)
 }
 
 /// Directions that share the sphere in equal areas, the same in every octant.
