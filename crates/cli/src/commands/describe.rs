@@ -137,7 +137,9 @@ fn regime(scene: &Scene, estimate: &SceneEstimate) -> String {
         ..0.02 => "light: beads swell almost freely and lift the bed",
         0.02..0.06 => "moderate: grains move aside, uptake some nine tenths of free",
         0.06..0.2 => "heavy: uptake some three quarters of free, the gel bulges into the pores",
-        _ => "very heavy: grains hardly move, the gel fills the pores between them and presses on itself there",
+        _ => {
+            "very heavy: grains hardly move, the gel fills the pores between them and presses on itself there"
+        }
     };
     format!("{ratio} of the gel's modulus, {meaning}")
 }
