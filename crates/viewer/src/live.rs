@@ -100,7 +100,7 @@ impl Drop for Live {
 }
 
 /// Runs the pack; returns its last news.
-fn conduct<W: Fn()>(scene: &Scene, pack: u64, folder: &Path, reporter: &mut Reporter<W>) -> News {
+fn conduct<W: Fn() + Send>(scene: &Scene, pack: u64, folder: &Path, reporter: &mut Reporter<W>) -> News {
     let mut recorder = StateRecorder::new(folder, reporter);
     let outcome = run_pack(scene, pack, &mut recorder);
     if let Err(error) = recorder.finish() {
@@ -127,7 +127,7 @@ impl<W: Fn()> Reporter<W> {
     }
 }
 
-impl<W: Fn()> Observer for Reporter<W> {
+impl<W: Fn() + Send> Observer for Reporter<W> {
     fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
         ControlFlow::Continue(())
     }
