@@ -63,15 +63,12 @@ impl Table {
         order
     }
 
-    /// The row a number of steps from the open one.
+    /// The row a number of steps from the open one, round and round.
     pub(crate) fn beside(&self, packs: &Packs, steps: isize) -> Option<usize> {
         let order = self.order(packs);
-        let last = order.len().checked_sub(1)?;
-        let at = match order.iter().position(|row| Some(*row) == self.open) {
-            Some(place) => place.saturating_add_signed(steps).min(last),
-            None => 0,
-        };
-        Some(order[at])
+        let open = order.iter().position(|row| Some(*row) == self.open);
+        let at = open.map_or(0, |place| (place as isize + steps).rem_euclid(order.len() as isize) as usize);
+        order.get(at).copied()
     }
 
     /// Sorts by the next outcome.
@@ -275,6 +272,6 @@ mod tests {
         assert_eq!(table.beside(&packs, 1), Some(2));
         table.open = Some(2);
         assert_eq!(table.beside(&packs, 1), Some(0));
-        assert_eq!(table.beside(&packs, -1), Some(2));
+        assert_eq!(table.beside(&packs, -1), Some(1));
     }
 }
