@@ -13,6 +13,8 @@ pub(crate) struct Pair {
     pub(crate) obstacle: u32,
     /// Pressure that acts without penetration (Pa).
     pub(crate) multiplier: f64,
+    /// What point and obstacle may come nearer by before they can touch (m).
+    clearance: f64,
 }
 
 /// All pairs of one bead, and what a pressure needs.
@@ -61,7 +63,7 @@ impl Contacts {
                     }
                 }
                 if multiplier > 0.0 || near {
-                    self.pairs.push(Pair { point: key.0, obstacle: key.1, multiplier });
+                    self.pairs.push(Pair { point: key.0, obstacle: key.1, multiplier, clearance: 0.0 });
                 }
             }
         }
@@ -75,28 +77,41 @@ impl Contacts {
         obstacles: &[Obstacle],
         out: &mut [f64],
     ) {
-        self.push(skin, positions, obstacles, out, |_, _| ());
+        self.for_each_pressing(skin, positions, obstacles, |pair, force, _| {
+            pull_nodes(out, skin.terms(pair.point as usize), force);
+        });
     }
 
     /// Adds the contact forces' share of the energy gradient (N), and visits the
-    /// points that press: obstacle, force (N) on the skin.
+    /// points that press: obstacle, force (N) on the skin. Since the last call, or since
+    /// pairs were collected, point and obstacle have come nearer by at most the
+    /// obstacle's entry in `moved` (m).
     pub(crate) fn push(
-        &self,
+        &mut self,
         skin: &Skin,
         positions: &[f64],
         obstacles: &[Obstacle],
+        moved: &[f64],
         out: &mut [f64],
         mut visit: impl FnMut(usize, Vector),
     ) {
-        let stride = positions.len() / 3;
-        self.for_each_pressing(skin, positions, obstacles, |pair, force, _| {
-            for (node, weight) in skin.terms(pair.point as usize) {
-                for axis in 0..3 {
-                    out[axis * stride + node] -= weight * force[axis];
-                }
+        for pair in &mut self.pairs {
+            let obstacle = pair.obstacle as usize;
+            pair.clearance -= moved[obstacle];
+            if pair.clearance > 0.0 {
+                continue;
             }
-            visit(pair.obstacle as usize, force);
-        });
+            let place = skin_position(skin, positions, pair.point as usize);
+            let gap = obstacles[obstacle].gap(&place);
+            let pressure = pair.multiplier - self.penalty * gap.distance;
+            // A pressure without penetration ends some way off the obstacle.
+            pair.clearance = -pressure / self.penalty;
+            if pressure > 0.0 {
+                let force = gap.normal * (pressure * self.area);
+                pull_nodes(out, skin.terms(pair.point as usize), force);
+                visit(obstacle, force);
+            }
+        }
     }
 
     /// The stiffness of all points that press. Without `curved`, the loss of
@@ -155,6 +170,17 @@ impl Contacts {
             if pressure > 0.0 {
                 visit(pair, gap.normal * (pressure * self.area), gap);
             }
+        }
+    }
+}
+
+/// Adds a force (N) on nodes to the energy's gradient.
+#[inline]
+pub(crate) fn pull_nodes(gradient: &mut [f64], terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
+    let stride = gradient.len() / 3;
+    for (node, weight) in terms {
+        for axis in 0..3 {
+            gradient[axis * stride + node] -= weight * force[axis];
         }
     }
 }

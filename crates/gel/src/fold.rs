@@ -5,11 +5,14 @@
 //! balance in force and torque. Skins that meet so keep about half a voxel apart.
 
 use crate::bead::Bead;
-use bedswell_geometry::{Matrix, Vector};
-use kiddo::{ImmutableKdTree, SquaredEuclidean};
+use crate::lattice::{Lattice, POINT_WAY};
+use bedswell_geometry::{Matrix, Vector, visit_close_points};
 
 /// Points nearer than this when dry (voxel edges) are neighbours on one skin.
 const NEIGHBOURS: f64 = 3.0;
+/// Pairs are listed whose points are nearer than this beyond that distance (free-swollen
+/// voxel edges).
+const REACH: f64 = 0.8;
 /// Distance at which points begin to repel each other (free-swollen voxel edges).
 const THICKNESS: f64 = 0.6;
 /// Points of the other skin that a point typically presses on at once.
@@ -20,11 +23,22 @@ const CRUSHED: f64 = 0.25;
 /// Pairs of skin points that may repel each other.
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Folds {
-    pairs: Vec<(u32, u32)>,
+    pairs: Vec<FoldPair>,
+    /// Nodes where they were when pairs were last looked for, and the free-swollen voxel
+    /// edge then (m).
+    listed: (Vec<f64>, f64),
     /// Volume that folded skins may have lost to each other (m³).
     pub(crate) overlap: f64,
     /// Pairs that repel each other.
     pub(crate) pressing: usize,
+}
+
+#[derive(Clone, Copy, Debug)]
+struct FoldPair {
+    a: u32,
+    b: u32,
+    /// What the points may come nearer by before they can repel each other (m).
+    clearance: f64,
 }
 
 /// How folds push.
@@ -45,37 +59,57 @@ impl FoldLaw {
 }
 
 impl Folds {
-    /// The pairs within `reach` (m) of repelling each other.
-    pub(crate) fn find(bead: &Bead, law: FoldLaw, reach: f64) -> Self {
-        let skin = &bead.lattice().skin;
-        let places: Vec<[f64; 3]> = (0..skin.len()).map(|point| bead.skin_point(point).into()).collect();
-        let Ok(tree) = ImmutableKdTree::<f64, 3>::new_from_slice(&places) else { return Self::default() };
-        let search = (THICKNESS * law.edge + reach).powi(2);
-        let mut pairs = Vec::new();
-        for (point, place) in places.iter().enumerate() {
-            let near = tree.query(place).within::<SquaredEuclidean<f64>>(search).unsorted().execute();
-            pairs.extend(
-                near.iter()
-                    .map(|near| near.item as usize)
-                    .filter(|&other| other > point && skin.apart_when_dry(point, other) > NEIGHBOURS)
-                    .map(|other| (point as u32, other as u32)),
-            );
+    /// Looks for pairs anew if any may be missing that are within `reach` (m) of repelling
+    /// each other.
+    pub(crate) fn renew(&mut self, bead: &Bead, law: FoldLaw, reach: f64) {
+        let (listed, edge) = &self.listed;
+        let complete = listed.len() == bead.positions.len() && {
+            // Pairs left out were further apart than this; growth has taken them further
+            // apart, distortion nearer at most.
+            let apart = (THICKNESS + REACH) * edge;
+            let Change { growth, distortion } = Change::between(listed, &bead.positions, bead.lattice());
+            growth * apart - 2.0 * distortion > THICKNESS * law.edge + reach
+        };
+        if !complete {
+            *self = Self::find(bead, law);
         }
-        pairs.sort_unstable();
-        Self { pairs, overlap: 0.0, pressing: 0 }
+    }
+
+    fn find(bead: &Bead, law: FoldLaw) -> Self {
+        let skin = &bead.lattice().skin;
+        let places: Vec<Vector> = (0..skin.len()).map(|point| bead.skin_point(point)).collect();
+        let mut pairs = Vec::new();
+        visit_close_points(&places, (THICKNESS + REACH) * law.edge, |a, b| {
+            if skin.apart_when_dry(a, b) > NEIGHBOURS {
+                let clearance = (places[a] - places[b]).norm() - THICKNESS * law.edge;
+                pairs.push(FoldPair { a: a as u32, b: b as u32, clearance });
+            }
+        });
+        Self { pairs, listed: (bead.positions.clone(), law.edge), overlap: 0.0, pressing: 0 }
     }
 
     /// Visits the pairs that repel each other, with the force (N) on the first point.
-    pub(crate) fn press(&mut self, bead: &Bead, law: FoldLaw, mut visit: impl FnMut(u32, u32, Vector)) {
+    /// Since the last visit no point has moved by more than `moved` (m).
+    pub(crate) fn press(
+        &mut self,
+        bead: &Bead,
+        law: FoldLaw,
+        moved: f64,
+        mut visit: impl FnMut(u32, u32, Vector),
+    ) {
         let thickness = THICKNESS * law.edge;
         let mut crushed = 0.0;
         self.pressing = 0;
-        for &(a, b) in &self.pairs {
-            let apart = bead.skin_point(a as usize) - bead.skin_point(b as usize);
-            let square = apart.norm_squared();
-            if square < thickness * thickness {
-                let distance = square.sqrt().max(f64::MIN_POSITIVE);
-                visit(a, b, apart * (law.of_pair() * (thickness - distance) / distance));
+        for pair in &mut self.pairs {
+            pair.clearance -= 2.0 * moved;
+            if pair.clearance > 0.0 {
+                continue;
+            }
+            let apart = bead.skin_point(pair.a as usize) - bead.skin_point(pair.b as usize);
+            let distance = apart.norm().max(f64::MIN_POSITIVE);
+            pair.clearance = distance - thickness;
+            if distance < thickness {
+                visit(pair.a, pair.b, apart * (law.of_pair() * (thickness - distance) / distance));
                 self.pressing += 1;
                 crushed += (CRUSHED * thickness - distance).max(0.0);
             }
@@ -83,10 +117,34 @@ impl Folds {
         self.overlap = crushed * law.area;
     }
 
-    /// Every point of a pair with a bound on the pair's stiffness (N/m).
-    pub(crate) fn possible(&self, law: FoldLaw) -> impl Iterator<Item = (u32, Matrix)> + '_ {
+    /// Every point of a pair within `reach` (m) of repelling, with a bound on the pair's
+    /// stiffness (N/m).
+    pub(crate) fn possible(&self, law: FoldLaw, reach: f64) -> impl Iterator<Item = (u32, Matrix)> + '_ {
         let stiffness = Matrix::from_diagonal_element(MARGIN * law.of_pair());
-        self.pairs.iter().flat_map(move |&(a, b)| [(a, stiffness), (b, stiffness)])
+        let near = self.pairs.iter().filter(move |pair| pair.clearance < reach);
+        near.flat_map(move |pair| [(pair.a, stiffness), (pair.b, stiffness)])
+    }
+}
+
+/// How a shape has changed: growth about its middle, and what is left (m) at most.
+struct Change {
+    growth: f64,
+    distortion: f64,
+}
+
+impl Change {
+    fn between(before: &[f64], now: &[f64], lattice: &Lattice) -> Self {
+        let (stride, nodes) = (before.len() / 3, lattice.node_count());
+        let place = |of: &[f64], node: usize| Vector::new(of[node], of[stride + node], of[2 * stride + node]);
+        let middle = |of: &[f64]| (0..nodes).map(|node| place(of, node)).sum::<Vector>() / nodes as f64;
+        let (from, to) = (middle(before), middle(now));
+        let size = |of: &[f64], middle: Vector| {
+            (0..nodes).map(|node| (place(of, node) - middle).norm_squared()).sum::<f64>().sqrt()
+        };
+        let growth = size(now, to) / size(before, from);
+        let moved = |node: usize| (place(now, node) - to) - (place(before, node) - from) * growth;
+        let distortion = (0..nodes).map(|node| moved(node).norm_squared()).fold(0.0, f64::max).sqrt();
+        Self { growth, distortion: POINT_WAY * distortion }
     }
 }
 
@@ -97,7 +155,6 @@ const MARGIN: f64 = 4.0;
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::lattice::Lattice;
     use approx::assert_relative_eq;
     use std::sync::Arc;
 
@@ -117,21 +174,21 @@ mod tests {
 
     fn forces(bead: &Bead, folds: &mut Folds) -> Vec<(u32, Vector)> {
         let mut forces = Vec::new();
-        folds.press(bead, LAW, |a, b, force| forces.extend([(a, force), (b, -force)]));
+        folds.press(bead, LAW, 0.0, |a, b, force| forces.extend([(a, force), (b, -force)]));
         forces
     }
 
     /// Half the stiffness of a pair times the square of what it lacks to the thickness (J).
     fn energy(bead: &Bead, folds: &Folds) -> f64 {
         let place = |point: u32| bead.skin_point(point as usize);
-        let lacking = |&(a, b): &(u32, u32)| THICKNESS * LAW.edge - (place(a) - place(b)).norm();
+        let lacking = |pair: &FoldPair| THICKNESS * LAW.edge - (place(pair.a) - place(pair.b)).norm();
         folds.pairs.iter().map(|pair| 0.5 * LAW.of_pair() * lacking(pair).max(0.0).powi(2)).sum()
     }
 
     #[test]
     fn forces_are_the_slope_of_the_energy() {
         let mut bead = flattened();
-        let mut folds = Folds::find(&bead, LAW, 0.1);
+        let mut folds = Folds::find(&bead, LAW);
         let mut pulls = vec![0.0; bead.positions.len()];
         let stride = bead.lattice().stride();
         for (point, force) in forces(&bead, &mut folds) {
@@ -157,7 +214,7 @@ mod tests {
     #[test]
     fn forces_balance_in_force_and_torque() {
         let bead = flattened();
-        let forces = forces(&bead, &mut Folds::find(&bead, LAW, 0.1));
+        let forces = forces(&bead, &mut Folds::find(&bead, LAW));
         let size: f64 = forces.iter().map(|(_, force)| force.norm()).sum();
         let net: Vector = forces.iter().map(|(_, force)| force).sum();
         let torque: Vector =
@@ -169,7 +226,7 @@ mod tests {
     #[test]
     fn neighbours_on_one_skin_do_not_repel_each_other() {
         let bead = Bead::new(Arc::new(Lattice::new(8)), 4.0, Vector::zeros(), 2.0);
-        let mut folds = Folds::find(&bead, LAW, 1.0);
+        let mut folds = Folds::find(&bead, LAW);
         assert!(forces(&bead, &mut folds).is_empty() && folds.pressing == 0);
     }
 }

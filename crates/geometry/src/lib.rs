@@ -7,7 +7,7 @@ mod random;
 mod sphere;
 
 pub use cell::Cell;
-pub use neighbours::{ClosePair, close_pairs, offset};
+pub use neighbours::{ClosePair, close_pairs, offset, visit_close_points};
 pub use random::{Stream, stream};
 pub use sphere::{Sphere, volume_of_radius};
 

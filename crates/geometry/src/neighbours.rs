@@ -58,6 +58,22 @@ pub fn close_pairs(cell: &Cell, centres: &[Vector], radii: &[f64], margin: f64) 
     pairs
 }
 
+/// Visits every pair of points that are less than `reach` (m) apart, the one of lower
+/// index first, in an order that depends on the points alone.
+pub fn visit_close_points(points: &[Vector], reach: f64, mut visit: impl FnMut(usize, usize)) {
+    let nowhere = Cell { size: Vector::zeros(), periodic: [false; 3] };
+    let members = (0..points.len() as u32).collect();
+    let Some(grid) = Grid::new(&nowhere, points, &vec![0.0; points.len()], members, reach) else { return };
+    for (a, point) in points.iter().enumerate() {
+        grid.visit(&nowhere, point, reach, |b, _| {
+            let b = b as usize;
+            if b > a && (points[b] - point).norm_squared() < reach * reach {
+                visit(a, b);
+            }
+        });
+    }
+}
+
 /// The displacement (m) of a periodic image.
 #[inline]
 pub fn offset(cell: &Cell, image: [i8; 3]) -> Vector {
@@ -222,6 +238,22 @@ mod tests {
                 assert_eq!(found, all_pairs(&cell, &centres, &radii, 0.01), "{cell:?}, {count} spheres");
                 assert!(!found.is_empty());
             }
+        }
+    }
+
+    #[test]
+    fn close_points_are_those_that_a_full_search_finds() {
+        let mut random = stream(7, &[9]);
+        let points: Vec<Vector> = (0..400)
+            .map(|_| Vector::from_fn(|axis, _| [1.0, 0.7, 0.02][axis] * random.random::<f64>()))
+            .collect();
+        for reach in [0.03, 0.2, 5.0] {
+            let mut found = Vec::new();
+            visit_close_points(&points, reach, |a, b| found.push((a, b)));
+            found.sort_unstable();
+            let pairs = (0..points.len()).flat_map(|a| (a + 1..points.len()).map(move |b| (a, b)));
+            let all: Vec<_> = pairs.filter(|&(a, b)| (points[a] - points[b]).norm() < reach).collect();
+            assert!(found == all && !all.is_empty(), "{} of {} pairs within {reach}", found.len(), all.len());
         }
     }
 

@@ -12,7 +12,7 @@ pub(crate) use embed::{Depth, Embedded};
 pub use locate::{Locator, MaterialPoint};
 pub use shape::Shape;
 use shell::Shell;
-pub(crate) use skin::Skin;
+pub(crate) use skin::{POINT_WAY, Skin};
 use std::collections::HashMap;
 
 /// Voxels filled less than this are left out; their neighbours take their gel.

@@ -18,6 +18,10 @@ pub(super) const INNER_DEPTH: f64 = 0.75;
 /// the reference scenes (finite elements, see the tests) err both ways.
 const FLATTENING: f64 = 0.2;
 
+/// A skin point's way over that of the nodes that carry it, at most: the sum of the
+/// magnitudes of its weights.
+pub(crate) const POINT_WAY: f64 = 1.8;
+
 /// Contact points on the true surface of the dry shape, each a fixed combination of
 /// node positions. Points inside the gel follow them: where a grain that is small
 /// against the voxels pushes the skin's points aside, they keep it out.

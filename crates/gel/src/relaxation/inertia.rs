@@ -30,8 +30,8 @@ pub(super) struct Inertia {
 }
 
 impl Inertia {
-    /// Masses for the gel's own stiffness and the contacts that are within reach.
-    pub(super) fn renew(&mut self, bead: &Relaxation, gel: &Gel, obstacles: &[Obstacle]) {
+    /// Masses for the gel's own stiffness and the contacts that are within `reach` (m).
+    pub(super) fn renew(&mut self, bead: &Relaxation, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
         let lattice = bead.bead.shared_lattice();
         let positions = &bead.bead.positions;
         let mut state = Linearisation::default();
@@ -46,7 +46,7 @@ impl Inertia {
         // All points within reach count, so that none turns out too light for the
         // contact it is about to make.
         contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
-        for (point, stiffness) in bead.folds.possible(bead.fold_law()) {
+        for (point, stiffness) in bead.folds.possible(bead.fold_law(), reach) {
             let terms = lattice.skin.terms(point as usize);
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
@@ -115,7 +115,7 @@ impl Relaxation {
             }
             fastest = fastest.max(way.norm_squared());
         }
-        self.last_way = fastest.sqrt() + std::mem::take(&mut self.grown);
+        self.under_way += fastest.sqrt();
     }
 
     /// The nodes' masses together would make the bead far heavier than what holds it is

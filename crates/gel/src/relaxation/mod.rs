@@ -3,12 +3,12 @@
 mod inertia;
 
 use crate::bead::Bead;
-use crate::contact::{Contacts, skin_position};
+use crate::contact::{Contacts, pull_nodes, skin_position};
 use crate::elastic::Elastic;
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
 use crate::fold::{FoldLaw, Folds};
 use crate::gel_contact::Push;
-use crate::lattice::Embedded;
+use crate::lattice::{Embedded, POINT_WAY};
 use crate::obstacle::Obstacle;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
@@ -29,9 +29,12 @@ pub struct Relaxation {
     loads: Vec<Load>,
     /// Where the bead comes near itself.
     folds: Folds,
-    /// Way of the fastest node in the last step, with the growth before it (m).
+    /// Way of the fastest node since forces were last computed (m).
+    under_way: f64,
+    /// The same between the last two times (m).
     last_way: f64,
-    grown: f64,
+    /// Obstacles where they were when forces were last computed.
+    last_obstacles: Vec<Obstacle>,
     /// Nodes and obstacles where they were when contacts were last looked for.
     listed: Listed,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
@@ -70,10 +73,6 @@ const PENALTY: f64 = 128.0;
 /// take: where that rises beyond the gel's stiffness, the contact stiffens with it.
 const DEPTH: f64 = 2.5e-5;
 
-/// A skin point's way over that of the nodes that carry it: the sum of the magnitudes of
-/// its weights.
-const POINT_WAY: f64 = 1.8;
-
 impl Relaxation {
     /// A bead at rest.
     pub fn new(bead: Bead) -> Self {
@@ -85,8 +84,9 @@ impl Relaxation {
             contacts: Contacts::default(),
             loads: Vec::new(),
             folds: Folds::default(),
+            under_way: 0.0,
             last_way: 0.0,
-            grown: 0.0,
+            last_obstacles: Vec::new(),
             listed: Listed::default(),
             drift: Vector::zeros(),
             weight: Vector::zeros(),
@@ -105,7 +105,7 @@ impl Relaxation {
 
     /// Grows the bead about its centre.
     pub fn grow(&mut self, by: f64) {
-        self.grown += (by - 1.0) * self.extent();
+        self.under_way += (by - 1.0) * self.extent();
         self.bead.scale(by);
     }
 
@@ -127,9 +127,10 @@ impl Relaxation {
         self.contacts.penalty = stiffness / size;
         let points = lattice.skin.len_with_inner();
         self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
-        self.folds = Folds::find(&self.bead, self.fold_law(), reach);
+        let law = self.fold_law();
+        self.folds.renew(&self.bead, law, reach);
         let mut inertia = std::mem::take(&mut self.inertia);
-        inertia.renew(self, gel, obstacles);
+        inertia.renew(self, gel, obstacles, reach);
         self.inertia = inertia;
         self.listed = Listed {
             positions: self.bead.positions.clone(),
@@ -163,7 +164,8 @@ impl Relaxation {
         if self.listed.extent > 0.0 { self.listed.extent } else { self.bead.extent() }
     }
 
-    /// A bound on how far a skin point has moved in the last step (m).
+    /// A bound on how far a skin point has moved between the last two times that forces
+    /// were computed (m).
     pub fn last_way(&self) -> f64 {
         POINT_WAY * self.last_way
     }
@@ -187,7 +189,9 @@ impl Relaxation {
                 }
             }
         }
+        self.last_way = std::mem::take(&mut self.under_way);
         let stiffness = self.point_stiffness();
+        let moved = self.moved(obstacles);
         self.loads.clear();
         self.loads.resize(obstacles.len(), Load::default());
         let loads = &mut self.loads;
@@ -195,11 +199,26 @@ impl Relaxation {
             loads[obstacle].force -= force;
             loads[obstacle].stiffness += stiffness;
         };
-        self.contacts.push(&lattice.skin, &self.bead.positions, obstacles, &mut self.gradient, visit);
+        let positions = &self.bead.positions;
+        self.contacts.push(&lattice.skin, positions, obstacles, &moved, &mut self.gradient, visit);
         self.pressing_stiffness = self.loads.iter().map(|load| load.stiffness).sum();
         self.largest_contact_force = self.loads.iter().map(|load| load.force.norm()).fold(0.0, f64::max);
         self.contact_sum = self.loads.iter().map(|load| load.force).sum();
         self.press_folds();
+    }
+
+    /// A bound on what a skin point and each obstacle have come nearer by since forces were
+    /// last computed (m).
+    fn moved(&mut self, obstacles: &[Obstacle]) -> Vec<f64> {
+        let own = self.last_way();
+        let moved = if self.last_obstacles.len() == obstacles.len() {
+            self.last_obstacles.iter().zip(obstacles).map(|(before, now)| own + before.way(now)).collect()
+        } else {
+            vec![f64::INFINITY; obstacles.len()]
+        };
+        self.last_obstacles.clear();
+        self.last_obstacles.extend_from_slice(obstacles);
+        moved
     }
 
     /// What the bead does to each obstacle, since the last `compute_forces`.
@@ -211,8 +230,9 @@ impl Relaxation {
     fn press_folds(&mut self) {
         let law = self.fold_law();
         let mut folds = std::mem::take(&mut self.folds);
+        let moved = self.last_way();
         let (bead, gradient) = (&self.bead, &mut self.gradient);
-        folds.press(bead, law, |a, b, force| {
+        folds.press(bead, law, moved, |a, b, force| {
             pull_nodes(gradient, bead.lattice().skin.terms(a as usize), force);
             pull_nodes(gradient, bead.lattice().skin.terms(b as usize), -force);
         });
@@ -274,7 +294,8 @@ impl Relaxation {
         let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
         self.bead = bead;
         self.contacts = solver.contacts;
-        self.folds = Folds::find(&self.bead, self.fold_law(), 0.0);
+        let law = self.fold_law();
+        self.folds.renew(&self.bead, law, 0.0);
         self.listed = Listed::default();
         self.compute_forces(gel, obstacles);
         Ok(equilibrium)
@@ -339,16 +360,6 @@ impl Relaxation {
     fn force_scale(&self, gel: &Gel) -> f64 {
         let rest = gel.moduli().shear * (gel.free_stretch() * self.bead.dry_radius()).powi(2);
         self.largest_contact_force.max(1e-3 * rest)
-    }
-}
-
-/// Adds a force (N) on nodes to the energy's gradient.
-fn pull_nodes(gradient: &mut [f64], terms: impl Iterator<Item = (usize, f64)>, force: Vector) {
-    let stride = gradient.len() / 3;
-    for (node, weight) in terms {
-        for axis in 0..3 {
-            gradient[axis * stride + node] -= weight * force[axis];
-        }
     }
 }
 

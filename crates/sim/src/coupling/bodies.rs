@@ -58,7 +58,6 @@ impl Bodies {
             || grains.advance(DAMPING),
             || beads.par_iter_mut().for_each(|bead| bead.advance(GEL_DAMPING)),
         );
-        self.pairs.iter_mut().for_each(|pair| pair.note_way(&self.beads));
     }
 
     pub(super) fn step(&mut self, gel: &Gel) {

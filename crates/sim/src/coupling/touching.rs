@@ -11,8 +11,6 @@ pub(super) struct Pair {
     /// Shift of the second to the image that the first sees (m).
     shift: Vector,
     pub(super) contact: BeadContact,
-    /// What the skins may have come nearer by since the last press (m).
-    way: f64,
     /// Force on the first (N).
     pub(super) force: Vector,
 }
@@ -20,12 +18,8 @@ pub(super) struct Pair {
 impl Pair {
     pub(super) fn press(&mut self, beads: &mut [Relaxation]) {
         let (first, second) = two(beads, self.first, self.second);
-        let way = std::mem::take(&mut self.way);
-        self.force = self.contact.press(first, second, self.shift, way);
-    }
-
-    pub(super) fn note_way(&mut self, beads: &[Relaxation]) {
-        self.way += beads[self.first].last_way() + beads[self.second].last_way();
+        let moved = first.last_way() + second.last_way();
+        self.force = self.contact.press(first, second, self.shift, moved);
     }
 }
 
@@ -54,7 +48,7 @@ pub(super) fn look(pairs: &mut Vec<Pair>, beads: &mut [Relaxation], cell: &Cell,
             if !contact.is_empty() {
                 concerned[first] = true;
                 concerned[second] = true;
-                pairs.push(Pair { first, second, shift, contact, way: 0.0, force: Vector::zeros() });
+                pairs.push(Pair { first, second, shift, contact, force: Vector::zeros() });
             }
         }
     }
