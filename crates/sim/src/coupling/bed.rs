@@ -51,7 +51,8 @@ impl DryBed {
         };
         let still = scene.bed.fixed_grains || scene.bed.lid_held;
         let lid = if still { Lid::Fixed } else { Lid::Stress(scene.bed.lid_stress) };
-        let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction);
+        let law = ContactLaw::for_stress(stress, OVERLAP, scene.soil.friction)
+            .with_rolling(scene.soil.rolling_friction);
         let mut grains = Assembly::new(cell, &spheres, law, lid).map_err(packing)?;
         grains.held = scene.bed.fixed_grains;
         let (beads, stretch) = if grains.held {
@@ -83,6 +84,7 @@ fn random_bed(scene: &Scene, random: &mut Stream) -> Result<Parts, RunError> {
         accept_loose: false,
         lid_stress: scene.bed.lid_stress,
         friction: scene.soil.friction,
+        rolling: scene.soil.rolling_friction,
         sides: Sides::FloorAndLid,
     };
     let packed = pack(&request, random).map_err(packing)?;

@@ -1,5 +1,6 @@
 mod error;
 mod estimate;
+mod friction;
 mod gel;
 mod grading;
 mod limits;

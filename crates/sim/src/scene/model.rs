@@ -50,6 +50,9 @@ pub struct Soil {
     pub density: f64,
     /// Coulomb friction coefficient between grains.
     pub friction: f64,
+    /// Rolling friction coefficient between grains, which stands for their shape: largest
+    /// rolling moment over the push and the reduced radius; 0 for spheres.
+    pub rolling_friction: f64,
 }
 
 /// Where the soil's spheres come from.

@@ -1,4 +1,5 @@
 use super::error::SceneError;
+use super::friction::read_friction;
 use super::raw::Node;
 use super::section::{Entry, Section};
 use super::spheres::read_spheres;
@@ -7,9 +8,11 @@ use super::{Soil, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Vector};
 use std::path::Path;
 
-const KNOWN: [&str; 10] = [
+const KNOWN: [&str; 12] = [
     "density",
     "friction",
+    "rolling_friction",
+    "angle_of_repose",
     "sieves",
     "median",
     "spread",
@@ -25,7 +28,7 @@ const KNOWN: [&str; 10] = [
 pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vector), SceneError> {
     let section = Section::new(document, "soil", &KNOWN)?;
     let density = section.need("density", "density = \"2650 kg/m3\"")?.positive(Kind::Density)?;
-    let friction = section.get("friction").map_or(Ok(0.5), |entry| entry.number(0.0..=2.0))?;
+    let (friction, rolling_friction) = read_friction(&section)?;
     let fines_cutoff = section.get("fines_cutoff").map(|entry| entry.positive(Kind::Length)).transpose()?;
 
     let mut corner = Vector::zeros();
@@ -53,7 +56,7 @@ pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vec
             );
         }
     };
-    let soil = Soil { grading, density, friction };
+    let soil = Soil { grading, density, friction, rolling_friction };
     // What the sieves and the spread alone can get wrong was refused above, with its own line.
     match (soil.grading(), section.get("fines_cutoff")) {
         (Err(error), Some(cutoff)) => Err(cutoff.refuse(error.to_string())),

@@ -31,6 +31,7 @@ impl Scene {
         text.table("soil");
         text.line("density", with_unit(self.soil.density, Kind::Density));
         text.line("friction", number(self.soil.friction));
+        text.line("rolling_friction", number(self.soil.rolling_friction));
         self.write_grading(&mut text);
 
         text.table("beads");
