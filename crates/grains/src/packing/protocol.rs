@@ -219,7 +219,8 @@ impl Recipe {
             Sides::Pot(pot) => {
                 let mean_diameter = 2.0 * self.radii.iter().sum::<f64>() / self.radii.len() as f64;
                 let uncovered = if pot.open { UNCOVERED * mean_diameter } else { 0.0 };
-                pot.size(volume / pot.section() + uncovered)
+                // Few beads in a wide pot lie in a single layer.
+                pot.size((volume / pot.section() + uncovered).max(self.largest()))
             }
         }
     }
@@ -245,7 +246,8 @@ impl Recipe {
             return Err(PackError::BeadLargerThanBed { diameter, side, height, needed: needed(diameter) });
         }
         let largest = self.largest();
-        if height < HEIGHTS * largest {
+        let heights = if request.grains.is_empty() { 1.0 } else { HEIGHTS };
+        if height < heights * largest {
             return Err(PackError::TooFewGrains { height, largest, needed: needed(largest) });
         }
         Ok(())

@@ -23,6 +23,20 @@ const KNOWN: [&str; 12] = [
     "periodic",
 ];
 
+/// Those that beads alone can have too.
+const FRICTION: [&str; 3] = ["friction", "rolling_friction", "angle_of_repose"];
+
+/// Reads `[soil]` where the bed has no grains: what is left of it is how dry beads rub.
+pub(super) fn read_no_soil(document: &Node) -> Result<Soil, SceneError> {
+    let section = Section::new(document, "soil", &KNOWN)?;
+    let of_grains = KNOWN.iter().filter(|key| !FRICTION.contains(key));
+    if let Some(entry) = of_grains.filter_map(|key| section.get(key)).next() {
+        return Err(entry.refuse("the bed has no grains; leave this key out, or give bed.grains"));
+    }
+    let (friction, rolling_friction) = read_friction(&section)?;
+    Ok(Soil { grading: SoilGrading::Absent, density: 0.0, friction, rolling_friction })
+}
+
 /// Reads `[soil]`; also where the lower corner of listed spheres was before they
 /// were shifted to the origin.
 pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vector), SceneError> {
