@@ -133,7 +133,7 @@ pub struct Quality {
 }
 
 /// The state after one increment.
-#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
 pub struct Step {
     /// Number of the increment, from 1.
     pub increment: usize,

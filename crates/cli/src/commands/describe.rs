@@ -173,6 +173,9 @@ fn regime(scene: &Scene, estimate: &SceneEstimate) -> String {
     if scene.bed.open {
         return "none but the weight of what lies above".into();
     }
+    if estimate.grains == 0 {
+        return format!("{ratio} of the gel's modulus, on beads alone");
+    }
     let meaning = match estimate.load_ratio {
         ..0.02 => "light: beads swell almost freely and lift the bed",
         0.02..0.06 => "moderate: grains move aside, uptake some nine tenths of free",

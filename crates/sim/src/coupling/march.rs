@@ -21,6 +21,10 @@ const LOOK: usize = 10;
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
+/// The same of an end state of beads alone. Without grains between them nothing but smooth
+/// skins holds them, and points of skin that barely touch come and go for ever.
+const AT_THE_END_ALONE: Target =
+    Target { grains: 1e-3, gel: 5e-3, balance: 5e-3, steps: 20_000, required: true };
 /// What an end state may be left with when a grain keeps creeping: to give such packs up
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
@@ -77,7 +81,11 @@ pub(crate) fn march(
         };
         stretch = next;
         if !settled {
-            let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
+            let target = match march.bodies.grains.radii.is_empty() {
+                _ if increment < count => ON_THE_WAY,
+                true => AT_THE_END_ALONE,
+                false => AT_THE_END,
+            };
             march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
         measure::guard(&march.bodies).map_err(|reason| RunError::March { increment, reason })?;

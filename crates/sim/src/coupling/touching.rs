@@ -2,7 +2,6 @@
 
 use bedswell_gel::{BeadContact, Relaxation};
 use bedswell_geometry::{Cell, Vector};
-use rayon::prelude::*;
 
 /// Two beads that may touch.
 #[derive(Clone, Debug)]
@@ -43,28 +42,21 @@ pub(super) fn look(pairs: &mut Vec<Pair>, beads: &mut [Relaxation], cell: &Cell,
         kept
     });
     let centres: Vec<Vector> = beads.iter().map(|bead| bead.bead().centre()).collect();
-    let candidates: Vec<(usize, usize)> = (1..beads.len())
-        .flat_map(|second| (0..second).map(move |first| (first, second)))
-        .filter(|&(first, second)| due[first] || due[second])
-        .collect();
-    let near: &[Relaxation] = beads;
-    let found: Vec<Pair> = (candidates.par_iter())
-        .filter_map(|&(first, second)| {
+    for second in 1..beads.len() {
+        for first in (0..second).filter(|&first| due[first] || due[second]) {
             let apart = cell.separation(&centres[first], &centres[second]);
             // Extents are those of each bead's last look; it has moved by less than reach since.
-            if apart.norm() > near[first].extent() + near[second].extent() + 3.0 * reach {
-                return None;
+            if apart.norm() > beads[first].extent() + beads[second].extent() + 3.0 * reach {
+                continue;
             }
             let shift = centres[first] + apart - centres[second];
-            let contact = BeadContact::find(&near[first], &near[second], shift, 2.0 * reach);
-            let pair = Pair { first, second, shift, contact, way: 0.0, force: Vector::zeros() };
-            (!pair.contact.is_empty()).then_some(pair)
-        })
-        .collect();
-    for pair in found {
-        concerned[pair.first] = true;
-        concerned[pair.second] = true;
-        pairs.push(pair);
+            let contact = BeadContact::find(&beads[first], &beads[second], shift, 2.0 * reach);
+            if !contact.is_empty() {
+                concerned[first] = true;
+                concerned[second] = true;
+                pairs.push(Pair { first, second, shift, contact, way: 0.0, force: Vector::zeros() });
+            }
+        }
     }
     pairs.sort_unstable_by_key(|pair| (pair.first, pair.second));
     for (bead, _) in beads.iter_mut().zip(&concerned).filter(|(_, concerned)| **concerned) {

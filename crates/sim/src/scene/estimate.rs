@@ -113,7 +113,10 @@ impl Scene {
             (SoilGrading::Spheres { size, .. }, _) => {
                 (size.iter().product(), size.iter().copied().fold(f64::INFINITY, f64::min), size[2])
             }
-            (_, Some(diameter)) => (mixed, diameter, mixed / (0.25 * PI * diameter * diameter)),
+            (_, Some(diameter)) => {
+                let height = mixed / (0.25 * PI * diameter * diameter);
+                (mixed, diameter, height.max(self.beads.dry_diameter))
+            }
             (_, None) => (mixed, mixed.cbrt(), mixed.cbrt()),
         };
         let pore_volume_m3 = bed_volume - soil_volume_m3;
