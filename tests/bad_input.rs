@@ -90,8 +90,12 @@ fn a_random_bed_without_load() {
 #[test]
 fn an_overburden_that_is_none_or_crushes_grains() {
     let load = "lid_stress = \"0.3 kPa\"";
-    let depth = |depth: &str| format!("bulk_density = \"1500 kg/m3\"\nflooded = true\ndepth = \"{depth}\"");
-    refused(load, &depth("90 m"), &["bed.depth = \"90 m\"", "8.2", "crush", "1e6 Pa", "smaller depth"]);
+    let depth = |depth: &str| format!("bulk_density = \"2000 kg/m3\"\nflooded = true\ndepth = \"{depth}\"");
+    refused(
+        load,
+        &depth("99 m"),
+        &["bed.depth = \"99 m\"", "1.211e6 Pa", "crush", "1e6 Pa", "smaller depth"],
+    );
     let peat = replace_once(&quick_scene(), "density = \"2650 kg/m3\"", "density = \"900 kg/m3\"");
     refused_scene(&peat, load, &depth("1 m"), &["bed.depth", "float", "997 kg/m3", "soil.density"]);
     refused(load, "lid_stress = \"0.3 kPa\"\nflooded = true", &["bed.flooded = true", "goes with depth"]);
@@ -117,17 +121,17 @@ fn potful() -> String {
 
 #[test]
 fn a_pot_that_holds_no_bed() {
-    let wide = "pot = \"24 mm\"";
+    let wide = "pot = \"20 mm\"";
     refused_scene(&potful(), wide, "pot = \"9 mm\"", &["bed.pot = \"9 mm\"", "largest grain", "wider pot"]);
     refused_scene(&potful(), wide, "pot = \"-1 mm\"", &["bed.pot", "above zero"]);
     refused_scene(
         &potful(),
-        "grains = 400",
-        "grains = 60",
-        &["bed.grains = 60", "less than 2 layers", "at least"],
+        "grains = 300",
+        "grains = 50",
+        &["bed.grains = 50", "less than 2 layers", "at least"],
     );
     refused_scene(
-        &potful(),
+        &replace_once(&potful(), "dose = \"0.25 g/kg\"", "count = 1"),
         "dry_diameter = \"1 mm\"",
         "dry_diameter = \"5 mm\"",
         &["beads.dry_diameter", "larger than the bed", "wider pot"],
@@ -163,7 +167,9 @@ fn beads_alone_that_are_no_bed() {
         "seed = 3\n[soil]\ndensity = \"2650 kg/m3\"",
         &["soil.density", "no grains"],
     );
-    refused("grains = 120", "grains = 0", &["bed.grains = 0", "need a pot"]);
+    let env = TestEnv::new();
+    env.write("scene.toml", &replace_once(&alone, "pot = \"8 mm\"\n", ""));
+    env.refuse(&["describe", "scene.toml"], 2, &["scene.toml, line 10", "bed.grains = 0", "need a pot"]);
 }
 
 #[test]
