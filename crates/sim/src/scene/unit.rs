@@ -188,7 +188,7 @@ mod tests {
     fn pounds_per_square_inch_are_as_tabulated() {
         // NIST Special Publication 811, appendix B.8, from memory: 6.894 757 E+03.
         let pascals = parse_quantity("1 psi", Kind::Stress).unwrap();
-        assert!((pascals - 6894.757_293_168).abs() < 1e-8, "{pascals}");
+        assert!((pascals - 6_894.757_293_168).abs() < 1e-8, "{pascals}");
     }
 
     #[test]
