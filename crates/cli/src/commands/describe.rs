@@ -39,7 +39,7 @@ pub(super) fn describe(path: &Path, json: bool) -> anyhow::Result<Exit> {
             "pot_m": scene.bed.pot,
             "open": scene.bed.open,
             "flooded": scene.bed.flooded,
-            "overburden_pa": scene.bed.lid_stress,
+            "lid_stress_pa": scene.bed.lid_stress,
             "across_asked": scene.beads.across,
             "voxel_budget": scene.beads.voxel_budget,
             "concerns": concerns,
