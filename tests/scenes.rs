@@ -50,12 +50,13 @@ fn every_scene_runs() {
 }
 
 fn hasten(scene: &str) -> String {
+    let number = |text: &str| text.split(' ').next().unwrap().parse::<usize>().unwrap();
     let quick = |line: &str| match line.split_once(" = ") {
         Some(("grains", grains)) => {
-            let grains: usize = grains.split(' ').next().unwrap().parse().unwrap();
-            format!("grains = {}", grains / 2)
+            format!("grains = {}", number(grains) / 2)
         }
-        Some(("increments", _)) => "increments = 15".to_owned(),
+        Some(("increments", increments)) => format!("increments = {}", number(increments).min(15)),
+        Some(("count", count)) => format!("count = {}", number(count).div_ceil(2)),
         // The dose that keeps as many beads among half the grains.
         Some(("dose", _)) => "dose = \"1.2 g/kg\"".to_owned(),
         Some(("values", values)) => format!("values = {}]", values.split([',', ']']).next().unwrap()),

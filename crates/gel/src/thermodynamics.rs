@@ -8,7 +8,8 @@ const GAS_CONSTANT_OVER_MOLAR_VOLUME: f64 = 8.314_462_618 / 18.0e-6;
 /// Molar volume of water (L/mol), which turns mol/L into a number per solvent molecule.
 pub(crate) const MOLAR_VOLUME_LITRES: f64 = 0.018;
 
-/// Density of water (kg/m³), common practice at room temperature.
+/// Density of water (kg/m³) at 25 °C; 0.2 % more at 15 °C (IAPWS formulation of 1995, from
+/// memory).
 pub const WATER_DENSITY: f64 = 997.0;
 
 /// What a gel is made of, per solvent-molecule volume Ω of dry polymer.

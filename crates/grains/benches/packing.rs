@@ -16,6 +16,7 @@ fn bed(count: usize) -> PackRequest {
         accept_loose: false,
         lid_stress: 2.0e3,
         friction: 0.5,
+        rolling: 0.0,
         sides: Sides::FloorAndLid,
     }
 }

@@ -91,6 +91,8 @@ struct LidState {
     velocity: f64,
     force: f64,
     stiffness: f64,
+    /// The one that set its mass in the last step (N/m).
+    last_stiffness: f64,
 }
 
 impl Assembly {

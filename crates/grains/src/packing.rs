@@ -37,6 +37,9 @@ pub struct PackRequest {
     /// Friction coefficient during preparation. With none the pack is compressed to
     /// random close packing; the more there is, the looser it can be.
     pub friction: f64,
+    /// Rolling friction coefficient, from the preparation on; without friction it has no
+    /// effect.
+    pub rolling: f64,
     /// What closes the cell.
     pub sides: Sides,
 }

@@ -63,6 +63,7 @@ fn an_isotropic_pack_has_the_force_of_rumpf_and_the_pressure_of_its_lid() {
         accept_loose: false,
         lid_stress: 5.9e3,
         friction: 0.0,
+        rolling: 0.0,
         sides: Sides::Periodic,
     };
     let pack = pack(&request, &mut stream(1, &[])).unwrap();
@@ -88,6 +89,7 @@ fn the_stress_of_a_bed_is_that_of_its_lid() {
         accept_loose: false,
         lid_stress: 2.0e3,
         friction: 0.5,
+        rolling: 0.0,
         sides: Sides::FloorAndLid,
     };
     let pack = pack(&request, &mut stream(1, &[])).unwrap();

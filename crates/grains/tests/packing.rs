@@ -17,6 +17,7 @@ fn bed() -> PackRequest {
         accept_loose: false,
         lid_stress: 2.0e3,
         friction: 0.5,
+        rolling: 0.0,
         sides: Sides::FloorAndLid,
     }
 }
@@ -257,4 +258,13 @@ fn bad_requests_are_refused_with_the_value() {
         PackError::TooFewGrains { .. }
     ));
     assert!(matches!(refused(&PackRequest { friction: f64::NAN, ..bed() }), PackError::Assembly(_)));
+}
+
+#[test]
+fn grains_that_resist_rolling_pack_looser() {
+    let poured = |rolling: f64| {
+        packed(&PackRequest { porosity: None, friction: 0.5, rolling, ..bed() }, 1).report.porosity
+    };
+    let (round, angular) = (poured(0.0), poured(0.3));
+    assert!(angular > round + 0.005, "round {round}, angular {angular}");
 }

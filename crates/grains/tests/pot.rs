@@ -30,6 +30,7 @@ fn potful(open: bool) -> PackRequest {
         accept_loose: false,
         lid_stress: if open { 20.0 } else { 2.0e3 },
         friction: 0.5,
+        rolling: 0.0,
         sides: Sides::Pot(pot(open)),
     }
 }

@@ -24,6 +24,7 @@ fn potful(count: usize, widths: f64, friction: f64, porosity: Option<f64>, lid_s
         accept_loose: true,
         lid_stress,
         friction,
+        rolling: 0.0,
         sides: Sides::Pot(pot),
     };
     pack(&request, &mut stream(3, &[])).unwrap()

@@ -14,6 +14,7 @@ fn bed(lid_stress: f64) -> Assembly {
         accept_loose: false,
         lid_stress,
         friction: 0.5,
+        rolling: 0.0,
         sides: Sides::FloorAndLid,
     };
     pack(&request, &mut stream(7, &[])).unwrap().assembly

@@ -1,9 +1,10 @@
 use crate::crosses::crosses;
+use crate::enclosure::enclosure;
 use crate::frame::{BeadView, Frame};
 use crate::look::{Cut, GrainLook, GrainShade, Look};
 use crate::section::section;
 use crate::{Field, Run, Scale};
-use bedswell_painter::{Ball, Colour, Drawing, Light, Mesh, Plane, Point, Rod};
+use bedswell_painter::{Ball, Drawing, Light, Mesh, Plane, Point, Rod};
 use bedswell_sim::{GrainContact, Touched};
 
 /// Opacity of a ghosted grain that a bead presses on, and of any other.
@@ -18,7 +19,7 @@ pub fn draw(run: &Run, frame: &Frame, look: &Look) -> Drawing {
     let mut drawing = Drawing { cut: plane, background: look.theme.background(), ..Drawing::default() };
     let scales = Scales::new(run, look);
     if look.frame {
-        draw_cell(frame, look, &mut drawing);
+        drawing.rods.extend(enclosure(frame, look.theme.faint()));
     }
     if look.grains != GrainLook::Hidden {
         let pressed = frame.pressed();
@@ -158,23 +159,4 @@ fn chain(frame: &Frame, contact: &GrainContact, largest: f32, look: &Look) -> Op
     let share = (contact.force / largest).min(1.0).sqrt();
     let colour = look.theme.ink();
     Some(Rod { ends: [grain.centre, other], radius: 0.25 * share * grain.radius, colours: [colour; 2] })
-}
-
-/// The edges of the cell: the floor's, the lid's, and those between.
-fn draw_cell(frame: &Frame, look: &Look, drawing: &mut Drawing) {
-    let colour: Colour = look.theme.faint();
-    let at = |corner: usize| {
-        frame.corner + Point::from_fn(|axis, _| if corner >> axis & 1 == 1 { frame.cell[axis] } else { 0.0 })
-    };
-    for corner in 0..8 {
-        for axis in 0..3 {
-            if corner >> axis & 1 == 0 {
-                drawing.rods.push(Rod {
-                    ends: [at(corner), at(corner | 1 << axis)],
-                    radius: 0.0,
-                    colours: [colour; 2],
-                });
-            }
-        }
-    }
 }

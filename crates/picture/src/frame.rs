@@ -24,6 +24,10 @@ pub struct Frame {
     pub contacts: Vec<GrainContact>,
     /// Every bead.
     pub beads: Vec<BeadView>,
+    /// Inner radius of the pot round the middle of the cell (m), if the bed is in one.
+    pub wall: Option<f32>,
+    /// The pot has no lid.
+    pub open: bool,
     periodic: [bool; 3],
 }
 
@@ -77,6 +81,8 @@ impl Frame {
             grains: Vec::new(),
             contacts: nearest.contacts.clone(),
             beads: Vec::new(),
+            wall: before.wall,
+            open: before.open,
             periodic: before.periodic,
         };
         frame.beads = (before.beads.iter().zip(&after.beads).zip(&nearest.beads))

@@ -4,6 +4,7 @@
 mod annotate;
 mod crosses;
 mod draw;
+mod enclosure;
 mod field;
 mod frame;
 mod legend;

@@ -20,7 +20,7 @@ pub use folder::{
 pub use outcome::{BeadOutcome, ForceOutcome, GrainRecord, PackOutcome, Quality, Step};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
-    BeadAmount, Beads, Bed, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
+    BeadAmount, Beads, Bed, Concern, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
     SoilGrading, Strength, Water, nearest_word, read_scene,
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};

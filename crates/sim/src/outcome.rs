@@ -5,20 +5,27 @@ use serde::{Deserialize, Serialize};
 pub struct PackOutcome {
     /// Number of the pack within its study (0 for a single run).
     pub pack: u64,
-    /// Grains in the cell.
+    /// Grains in the bed.
     pub grains: usize,
     /// Pore fraction of the mixed dry bed.
     pub porosity: f64,
     /// Mass fraction of the grading left out as fines.
     pub fines_left_out: f64,
-    /// Rise of the lid from dry to equilibrium (m).
+    /// Rise of the lid, or of the grains' mean surface under an open top, from dry to
+    /// equilibrium (m).
     pub heave_m: f64,
-    /// Rise of the lid over the height of the mixed dry bed.
+    /// That rise over the height of the mixed dry bed.
     pub heave_strain: f64,
-    /// Water in the beads per volume of the bed at the end (L/m³).
+    /// Beads squeezed out of an open pot: their centre lies above the mean height of the
+    /// grains' surface, as seen from above, at the end. None under a lid.
+    pub beads_out: usize,
+    /// Water in the beads that are not squeezed out, per volume of the bed at the end (L/m³).
     pub water_l_per_m3: f64,
     /// Pore fraction left open between grains and gel at the end.
     pub porosity_left: f64,
+    /// Effective overburden (Pa) under which the dry bed was made: the lid's stress, less
+    /// what water carries of it; 0 under an open top.
+    pub overburden_pa: f64,
     /// Stress on the lid at the end (Pa): its load, or the bed's swelling pressure where
     /// the lid is held.
     pub lid_stress_pa: f64,
@@ -28,6 +35,14 @@ pub struct PackOutcome {
     pub forces_before: ForceOutcome,
     /// Forces between the grains at the end.
     pub forces_after: ForceOutcome,
+    /// Voxels across each dry bead.
+    pub across: usize,
+    /// Voxels across that the scene asks for; more than `across` where its budget of voxels
+    /// did not allow them.
+    pub across_asked: usize,
+    /// Overlap over the diameter that grains were softened for: that of a typical contact
+    /// under the bed's stress. What it came to at most is in `quality`.
+    pub chosen_overlap: f64,
     /// Each bead, in order.
     pub beads: Vec<BeadOutcome>,
     /// How well the end state is at rest.
@@ -118,7 +133,7 @@ pub struct Quality {
 }
 
 /// The state after one increment.
-#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Serialize, Deserialize)]
 pub struct Step {
     /// Number of the increment, from 1.
     pub increment: usize,

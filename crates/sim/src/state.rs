@@ -14,7 +14,8 @@ pub struct State {
     pub increments: usize,
     /// The figures of this increment; number 0 is the mixed dry bed, before any swelling.
     pub step: Step,
-    /// Edges of the cell; the last is the height of the lid above the floor.
+    /// Edges of the cell, or of the box round a pot; the last is the height of the lid above
+    /// the floor, or that of the grains' mean surface under an open top.
     pub cell: [f32; 3],
     /// Which directions repeat.
     pub periodic: [bool; 3],
@@ -26,6 +27,10 @@ pub struct State {
     pub contacts: Vec<GrainContact>,
     /// Every bead.
     pub beads: Vec<BeadState>,
+    /// Inner radius of the pot round the middle of the box, if the bed is in one.
+    pub wall: Option<f32>,
+    /// The pot has no lid.
+    pub open: bool,
 }
 
 /// A contact that carries force.
@@ -94,6 +99,7 @@ impl State {
             Touched::Floor | Touched::Lid | Touched::Wall => true,
         };
         self.radii.len() == grains
+            && self.wall.is_none_or(|radius| radius.is_finite() && radius > 0.0)
             && self.cell.iter().all(|edge| edge.is_finite() && *edge > 0.0)
             && self.centres.as_flattened().iter().chain(&self.radii).all(|x| x.is_finite())
             && self.contacts.iter().all(|contact| (contact.grain as usize) < grains && known(contact.on))

@@ -13,7 +13,15 @@ fn example(name: &str) -> Scene {
 
 #[test]
 fn a_resolved_scene_reads_back_bit_for_bit() {
-    for name in ["tree-pit", "coarse-grit", "planting-sand", "bench-array", "dosed-mix"] {
+    for name in [
+        "tree-pit",
+        "coarse-grit",
+        "planting-sand",
+        "bench-array",
+        "dosed-mix",
+        "open-pot",
+        "absorbency-under-load",
+    ] {
         let scene = example(&format!("{name}.toml"));
         let folder = tempfile::tempdir().unwrap();
         let path = folder.path().join("scene.toml");

@@ -76,5 +76,7 @@ fn state(grains: usize, across: usize, increment: usize) -> State {
             bonds: (0..lattice.bonds().len()).map(|_| pull(1e3)).collect(),
             touches: Vec::new(),
         }],
+        wall: None,
+        open: false,
     }
 }

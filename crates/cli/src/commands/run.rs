@@ -40,7 +40,7 @@ pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
 
 fn in_words(run: &RunSummary, folder: &Path) -> String {
     let mut text = format!(
-        "{}, pack {}: {} grains at porosity {:.3}\n  the lid rose      {}\n  stress on it      {}\n  water in the bed  \
+        "{}, pack {}: {} grains at porosity {:.3}\n  the top rose      {}\n  stress on it      {}\n  water in the bed  \
          {} L/m³\n  pores left        {:.3}\n  stress chains     {} before, {} after\n",
         run.name,
         run.pack,
@@ -53,6 +53,12 @@ fn in_words(run: &RunSummary, folder: &Path) -> String {
         run.forces_before.chains,
         run.forces_after.chains,
     );
+    if run.beads_out > 0 {
+        text += &format!("  beads squeezed out {} of {}\n", run.beads_out, run.beads.len());
+    }
+    for concern in &run.concerns {
+        text += &format!("  mind              {concern}\n");
+    }
     for (index, bead) in run.beads.iter().enumerate() {
         text += &format!(
             "\nbead {index}\n  water taken up    {} g/g, {:.3} of the free volume\n  contacts          {}, the \

@@ -3,10 +3,13 @@ mod figure_table;
 
 use crate::args::Study;
 use crate::exit::Exit;
-use crate::output::{say, say_json};
+use crate::output::{note, say, say_json};
 use crate::progress::Progress;
 use bedswell_sim::figures::{digits, estimate, probability};
-use bedswell_sim::{LevelSummary, RESPONSES, StudyOptions, StudySummary, read_study, run_pack, run_study};
+use bedswell_sim::{
+    LevelSummary, RESPONSES, StudyOptions, StudySummary, combination_in_words, read_study, run_pack,
+    run_study,
+};
 use factors_in_words::factors_in_words;
 use std::path::Path;
 
@@ -18,6 +21,7 @@ pub(super) fn study(arguments: &Study, json: bool) -> anyhow::Result<Exit> {
         Some(threads) => threads.into(),
         None => std::thread::available_parallelism().map_or(1, usize::from),
     };
+    note_concerns(&study)?;
     let options = StudyOptions { threads, csv: arguments.csv };
     let mut progress = Progress::new("packs");
     let runner = |scene: &_, pack| run_pack(scene, pack, &mut ());
@@ -29,6 +33,23 @@ pub(super) fn study(arguments: &Study, json: bool) -> anyhow::Result<Exit> {
         say(&in_words(&summary, &arguments.out))?;
     }
     Ok(if summary.overall.packs == 0 { Exit::Failed } else { Exit::Done })
+}
+
+/// Says what to know about the scenes of a study before believing its results.
+fn note_concerns(study: &bedswell_sim::Study) -> anyhow::Result<()> {
+    /// Lines that are read.
+    const SHOWN: usize = 12;
+    let mut lines = Vec::new();
+    for level in &study.levels {
+        let values = combination_in_words(&study.factors, &level.values);
+        let place = if values.is_empty() { "mind".to_owned() } else { format!("mind, with {values}") };
+        lines.extend(level.scene.concerns()?.iter().map(|concern| format!("{place}: {concern}")));
+    }
+    lines.iter().take(SHOWN).for_each(|line| note(line));
+    if lines.len() > SHOWN {
+        note(&format!("and {} more of the kind", lines.len() - SHOWN));
+    }
+    Ok(())
 }
 
 fn in_words(study: &StudySummary, folder: &Path) -> String {

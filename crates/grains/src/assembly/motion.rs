@@ -63,11 +63,18 @@ impl Assembly {
             // A contact then answers three motions, and the box is the heaviest.
             (typical * 4.0 * radius * radius * count, LID_SPEED, 4.0)
         } else {
-            let layer = self.section() / (4.0 * radius * radius);
-            (typical * layer.max(1.0), LID_SPEED * self.cell.size.z, MASS_PER_STIFFNESS)
+            let fastest = LID_SPEED * self.cell.size.z;
+            let floor = if self.radii.is_empty() {
+                // Over gel alone, about as heavy as when it last touched.
+                (FORGETTING * self.lid_state.last_stiffness).max(self.lid_load().abs() / fastest)
+            } else {
+                typical * (self.section() / (4.0 * radius * radius)).max(1.0)
+            };
+            (floor, fastest, MASS_PER_STIFFNESS)
         };
         let state = &mut self.lid_state;
-        let mass = per_stiffness * state.stiffness.max(floor);
+        state.last_stiffness = state.stiffness.max(floor);
+        let mass = per_stiffness * state.last_stiffness;
         let forced = damped(state.force, state.velocity, damping);
         state.velocity = (state.velocity + forced / mass).clamp(-fastest, fastest);
         if self.cell.periodic[2] {
@@ -91,6 +98,9 @@ const FREE_FLIGHT: f64 = 0.9;
 /// Fastest motion of the lid, in strain of the bed per step: it only bites while
 /// the lid closes an open gap, where it keeps the blow small.
 const LID_SPEED: f64 = 1.0e-3;
+
+/// What a lid over gel alone keeps per step of the stiffness that touched it.
+const FORGETTING: f64 = 0.99;
 
 #[inline]
 fn push(velocity: &mut Vector, force: &Vector, mass: f64, damping: f64) {

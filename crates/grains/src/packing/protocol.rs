@@ -10,6 +10,7 @@ pub(super) struct Recipe {
     radii: Vec<f64>,
     volume: f64,
     pub(super) friction: f64,
+    rolling: f64,
     lid_stress: f64,
     /// What the lowest grains bear at most (Pa).
     stress: f64,
@@ -62,12 +63,13 @@ impl Recipe {
             Sides::FloorAndLid | Sides::Periodic => 0.0,
         };
         let stress = request.lid_stress + own;
-        let law = ContactLaw::for_stress(stress, STIFF, request.friction);
+        let law = ContactLaw::for_stress(stress, STIFF, request.friction).with_rolling(request.rolling);
         law.check().map_err(AssemblyError::from)?;
         let recipe = Self {
             volume: radii.iter().map(|&radius| volume_of_radius(radius)).sum(),
             radii,
             friction: request.friction,
+            rolling: request.rolling,
             lid_stress: request.lid_stress,
             stress,
             weights,
@@ -116,7 +118,7 @@ impl Recipe {
         let steps: usize = STAGES
             .iter()
             .map(|&overlap| {
-                grains.law = ContactLaw::for_stress(self.stress, overlap, friction);
+                grains.law = self.law(overlap, friction);
                 march(grains, LIVELY, tolerance, if overlap > STIFF { 4_000 } else { 8_000 })
             })
             .sum();
@@ -124,6 +126,11 @@ impl Recipe {
             + self.stiffen(grains, LIVELY, tolerance)
             + self.uncover(grains, LIVELY, tolerance)
             + wait(grains)
+    }
+
+    /// A law that lets a typical contact overlap by that part of the diameter.
+    fn law(&self, overlap: f64, friction: f64) -> ContactLaw {
+        ContactLaw::for_stress(self.stress, overlap, friction).with_rolling(self.rolling)
     }
 
     /// Weights on and lid down.
@@ -153,7 +160,7 @@ impl Recipe {
                 break;
             }
             overlap *= 0.6 * DEEPEST_OVERLAP / deepest;
-            grains.law = ContactLaw::for_stress(self.stress, overlap, grains.law.friction);
+            grains.law = self.law(overlap, grains.law.friction);
             steps += march(grains, damping, tolerance, 4_000);
         }
         steps
@@ -162,7 +169,7 @@ impl Recipe {
     /// Friction on, lid down, and hold the grains where they are.
     pub(super) fn lock(&self, grains: &mut Assembly) -> usize {
         self.load(grains);
-        grains.law = ContactLaw::for_stress(self.stress, STIFF, self.friction);
+        grains.law = self.law(STIFF, self.friction);
         march(grains, SLUGGISH, 1.0e-4, 3_000)
             + self.stiffen(grains, SLUGGISH, 1.0e-4)
             + self.uncover(grains, SLUGGISH, 1.0e-4)
@@ -191,7 +198,7 @@ impl Recipe {
                 Sphere { centre, radius }
             })
             .collect();
-        let law = ContactLaw::for_stress(self.stress, STAGES[0], 0.0);
+        let law = self.law(STAGES[0], 0.0);
         let grains = Assembly::new(cell, &spheres, law, Lid::Fixed)?;
         Ok(match self.sides {
             Sides::Pot(pot) => grains.with_wall(0.5 * pot.diameter)?,
@@ -212,7 +219,8 @@ impl Recipe {
             Sides::Pot(pot) => {
                 let mean_diameter = 2.0 * self.radii.iter().sum::<f64>() / self.radii.len() as f64;
                 let uncovered = if pot.open { UNCOVERED * mean_diameter } else { 0.0 };
-                pot.size(volume / pot.section() + uncovered)
+                // Few beads in a wide pot lie in a single layer.
+                pot.size((volume / pot.section() + uncovered).max(self.largest()))
             }
         }
     }
@@ -238,7 +246,8 @@ impl Recipe {
             return Err(PackError::BeadLargerThanBed { diameter, side, height, needed: needed(diameter) });
         }
         let largest = self.largest();
-        if height < HEIGHTS * largest {
+        let heights = if request.grains.is_empty() { 1.0 } else { HEIGHTS };
+        if height < heights * largest {
             return Err(PackError::TooFewGrains { height, largest, needed: needed(largest) });
         }
         Ok(())

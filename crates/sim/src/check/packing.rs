@@ -49,6 +49,7 @@ fn smooth_pack(spread: f64) -> Option<PackReport> {
         accept_loose: false,
         lid_stress: 1e3,
         friction: 0.0,
+        rolling: 0.0,
         sides: Sides::Periodic,
     };
     Some(pack(&request, &mut stream(1, &[])).ok()?.report)

@@ -1,6 +1,8 @@
-use super::bed::DryBed;
+use super::bed::{CHOSEN_OVERLAP, DryBed};
 use super::bodies::Bodies;
+use super::contents::Contents;
 use super::measure::{self, Watch};
+use super::pot::Pot;
 use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene};
 use bedswell_gel::{Bead, Gel, Lattice, Relaxation, Tolerance};
 use bedswell_geometry::Vector;
@@ -11,12 +13,18 @@ use std::sync::Arc;
 pub(super) const FIRST_STRETCH: f64 = 1.25;
 /// Steps over which the free stretch rises by one increment.
 const RAMP_STEPS: usize = 60;
+/// Fastest growth per step of a bed that is nothing but gel: the lid must follow it.
+const GROWTH_OF_BED: f64 = 4e-4;
 /// Steps between looks at the residuals.
 const LOOK: usize = 10;
 /// Largest residual (grains, gel) of a recorded state on the way.
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
+/// The same of an end state of beads alone. Without grains between them nothing but smooth
+/// skins holds them, and points of skin that barely touch come and go for ever.
+const AT_THE_END_ALONE: Target =
+    Target { grains: 1e-3, gel: 5e-3, balance: 5e-3, steps: 20_000, required: true };
 /// What an end state may be left with when a grain keeps creeping: to give such packs up
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
@@ -43,7 +51,7 @@ pub(crate) fn march(
 ) -> Result<PackOutcome, RunError> {
     let before = &bed.spheres;
     let mut march = March::new(scene, &bed, gel);
-    let watch = Watch { scene, gel, number, lid_before: bed.lid };
+    let watch = Watch { scene, gel, number, height_before: bed.height };
     let forces_before = {
         let mut grains = bed.grains.clone();
         grains.compute_contacts();
@@ -73,7 +81,11 @@ pub(crate) fn march(
         };
         stretch = next;
         if !settled {
-            let target = if increment == count { AT_THE_END } else { ON_THE_WAY };
+            let target = match march.bodies.grains.radii.is_empty() {
+                _ if increment < count => ON_THE_WAY,
+                true => AT_THE_END_ALONE,
+                false => AT_THE_END,
+            };
             march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
         measure::guard(&march.bodies).map_err(|reason| RunError::March { increment, reason })?;
@@ -89,10 +101,7 @@ pub(crate) fn march(
         }
     }
     let grains = &march.bodies.grains;
-    let volume_of =
-        |volume: fn(&Bead) -> f64| march.bodies.beads.iter().map(|bead| volume(bead.bead())).sum();
-    let (gel_volume, dry_volume): (f64, f64) = (volume_of(Bead::volume), volume_of(Bead::dry_volume));
-    let bed_volume = grains.section() * grains.cell.size.z;
+    let contents = Contents::of(&march.bodies);
     let after = grains.centres.iter();
     let positions = before
         .iter()
@@ -108,14 +117,19 @@ pub(crate) fn march(
         grains: before.len(),
         porosity: bed.porosity,
         fines_left_out: bed.fines_left_out,
-        heave_m: grains.cell.size.z - watch.lid_before,
-        heave_strain: grains.cell.size.z / watch.lid_before - 1.0,
-        water_l_per_m3: 1e3 * (gel_volume - dry_volume) / bed_volume,
-        porosity_left: 1.0 - (grains.solid_volume() + gel_volume) / bed_volume,
+        heave_m: contents.height - watch.height_before,
+        heave_strain: contents.height / watch.height_before - 1.0,
+        beads_out: contents.beads_out,
+        water_l_per_m3: contents.water_l_per_m3(),
+        porosity_left: contents.porosity_left(),
+        overburden_pa: scene.bed.lid_stress,
         lid_stress_pa: grains.boundary().lid.z / grains.section(),
         contact_number: grains.contact_number(),
         forces_before,
         forces_after: measure::forces(grains),
+        across: march.bodies.beads.first().map_or(0, |bead| bead.bead().lattice().across()),
+        across_asked: scene.beads.across,
+        chosen_overlap: CHOSEN_OVERLAP,
         beads: watch.beads(gel, &march.bodies.beads),
         quality: march.quality(gel),
         history,
@@ -128,17 +142,27 @@ pub(super) struct March {
     pub(super) bodies: Bodies,
     /// The beads' centres are held.
     hold_beads: bool,
+    pot: Option<Pot>,
 }
 
 impl March {
     fn new(scene: &Scene, bed: &DryBed, gel: &Gel) -> Self {
-        let lattice = Arc::new(Lattice::new(scene.beads.across));
+        let lattice = Arc::new(Lattice::new(scene.beads.across_for(bed.beads.len())));
         let radius = 0.5 * scene.beads.dry_diameter;
         let stretch = bed.stretch.min(gel.free_stretch());
         let bead =
             |centre: &Vector| Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, stretch));
         let beads = bed.beads.iter().map(bead).collect();
-        Self { bodies: Bodies::new(bed.grains.clone(), beads), hold_beads: scene.beads.held }
+        let bodies = Bodies::new(bed.grains.clone(), beads);
+        let mut march = Self { bodies, hold_beads: scene.beads.held, pot: Pot::of(scene) };
+        march.weigh();
+        march
+    }
+
+    /// Gives every bead in a pot the weight that goes with what it holds now.
+    fn weigh(&mut self) {
+        let Some(pot) = self.pot else { return };
+        self.bodies.beads.iter_mut().for_each(|bead| bead.set_weight(pot.bead_weight(bead.bead())));
     }
 
     /// A single bead among grains that stay where they are needs no march: Newton
@@ -168,9 +192,13 @@ impl March {
 
     /// Raises the free stretch from one value to the next.
     fn swell(&mut self, gel: &Gel, from: f64, to: f64) {
-        let growth = (to / from).powf(1.0 / RAMP_STEPS as f64);
+        let mut steps = RAMP_STEPS;
+        if self.bodies.grains.radii.is_empty() {
+            steps = steps.max(((to / from).ln() / GROWTH_OF_BED).ceil() as usize);
+        }
+        let growth = (to / from).powf(1.0 / steps as f64);
         let mut stretch = from;
-        for _ in 0..RAMP_STEPS {
+        for _ in 0..steps {
             stretch *= growth;
             let stage = gel.limited_to(stretch);
             self.bodies.beads.iter_mut().for_each(|bead| bead.grow(growth));
@@ -180,6 +208,7 @@ impl March {
 
     /// Steps until grains, lid and beads are at rest.
     fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
+        self.weigh();
         for step in 0..target.steps {
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
@@ -225,9 +254,9 @@ impl March {
         let rest = self.bodies.grains.rest();
         let worst =
             |value: &dyn Fn(&Relaxation) -> f64| self.bodies.beads.iter().map(value).fold(0.0, f64::max);
-        let moving = !self.bodies.grains.held && rest.largest_net_force > 0.0;
+        let held = self.bodies.grains.held;
         Quality {
-            grain_residual: if moving { rest.residual().max(rest.lid_unbalance) } else { 0.0 },
+            grain_residual: if held { 0.0 } else { rest.residual().max(rest.lid_unbalance) },
             gel_residual: worst(&|bead| bead.residual(gel)),
             bead_balance: worst(&|bead| bead.balance(gel)),
             swallowed: 0.0,

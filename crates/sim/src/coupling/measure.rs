@@ -15,8 +15,8 @@ pub(super) struct Watch<'a> {
     pub(super) scene: &'a Scene,
     pub(super) gel: &'a Gel,
     pub(super) number: u64,
-    /// Height of the lid over the dry bed (m).
-    pub(super) lid_before: f64,
+    /// Height of the dry bed (m).
+    pub(super) height_before: f64,
 }
 
 impl Watch<'_> {
@@ -34,7 +34,7 @@ impl Watch<'_> {
             increment,
             free_stretch: stage.free_stretch(),
             uptake_g_per_g: 0.0,
-            heave_m: grains.cell.size.z - self.lid_before,
+            heave_m: grains.filled_height() - self.height_before,
             tension_q99_pa: 0.0,
             tear_probability: 0.0,
             quality,

@@ -3,9 +3,11 @@
 
 mod bed;
 mod bodies;
+mod contents;
 mod march;
 mod measure;
 mod neighbourhood;
+mod pot;
 mod snapshot;
 mod touching;
 

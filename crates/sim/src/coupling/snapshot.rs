@@ -4,12 +4,14 @@ use crate::state::{BeadContact, BeadState, GrainContact, State, Touched};
 use crate::{Scene, Step};
 use bedswell_gel::{Gel, Relaxation, StressField};
 use bedswell_geometry::{Matrix, Vector};
-use bedswell_grains::Partner;
+use bedswell_grains::{Lid, Partner};
 
 impl March {
     /// What there is to see of this march at `step`.
     pub(super) fn snapshot(&self, scene: &Scene, pack: u64, stage: &Gel, step: Step) -> State {
-        let cell = self.bodies.grains.cell;
+        let grains = &self.bodies.grains;
+        let mut cell = grains.cell;
+        cell.size.z = grains.filled_height();
         let contacts = self.bodies.grains.contacts().map(|contact| {
             let on = match contact.partner {
                 Partner::Grain(grain) => Touched::Grain(grain as u32),
@@ -30,6 +32,8 @@ impl March {
             radii: self.bodies.grains.radii.iter().map(|&radius| radius as f32).collect(),
             contacts: contacts.collect(),
             beads: (0..self.bodies.beads.len()).map(|bead| self.bead_state(bead, stage)).collect(),
+            wall: grains.wall.map(|radius| radius as f32),
+            open: grains.lid == Lid::Open,
         }
     }
 

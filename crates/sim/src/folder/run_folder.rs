@@ -39,20 +39,24 @@ pub struct RunSummary {
     pub seed: u64,
     /// Number of the pack.
     pub pack: u64,
-    /// Grains in the cell.
+    /// Grains in the bed.
     pub grains: usize,
     /// Pore fraction of the mixed dry bed.
     pub porosity: f64,
     /// Mass fraction of the grading left out as fines.
     pub fines_left_out: f64,
-    /// Rise of the lid (m).
+    /// Rise of the lid, or of the surface under an open top (m).
     pub heave_m: f64,
-    /// Rise of the lid over the height of the mixed dry bed.
+    /// That rise over the height of the mixed dry bed.
     pub heave_strain: f64,
+    /// Beads squeezed out of an open pot.
+    pub beads_out: usize,
     /// Water in the beads per volume of the bed at the end (L/m³).
     pub water_l_per_m3: f64,
     /// Pore fraction left open at the end.
     pub porosity_left: f64,
+    /// Effective overburden under which the dry bed was made (Pa).
+    pub overburden_pa: f64,
     /// Stress on the lid at the end (Pa).
     pub lid_stress_pa: f64,
     /// Mean contacts per grain that carries load.
@@ -61,6 +65,16 @@ pub struct RunSummary {
     pub forces_before: ForceOutcome,
     /// Forces between the grains at the end.
     pub forces_after: ForceOutcome,
+    /// Voxels across each dry bead.
+    pub across: usize,
+    /// Voxels across that the scene asks for.
+    pub across_asked: usize,
+    /// Voxels that all beads together may have.
+    pub voxel_budget: usize,
+    /// Overlap over the diameter that grains were softened for.
+    pub chosen_overlap: f64,
+    /// What to know about the scene before believing this.
+    pub concerns: Vec<String>,
     /// Each bead, in order.
     pub beads: Vec<BeadOutcome>,
     /// How well the end state is at rest.
@@ -82,12 +96,19 @@ impl RunSummary {
             fines_left_out: outcome.fines_left_out,
             heave_m: outcome.heave_m,
             heave_strain: outcome.heave_strain,
+            beads_out: outcome.beads_out,
             water_l_per_m3: outcome.water_l_per_m3,
             porosity_left: outcome.porosity_left,
+            overburden_pa: outcome.overburden_pa,
             lid_stress_pa: outcome.lid_stress_pa,
             contact_number: outcome.contact_number,
             forces_before: outcome.forces_before,
             forces_after: outcome.forces_after,
+            across: outcome.across,
+            across_asked: outcome.across_asked,
+            voxel_budget: scene.beads.voxel_budget,
+            chosen_overlap: outcome.chosen_overlap,
+            concerns: scene.concerns().unwrap_or_default().iter().map(ToString::to_string).collect(),
             beads: outcome.beads.clone(),
             quality: outcome.quality,
         }

@@ -1,4 +1,5 @@
-use super::{BeadAmount, Scene, SoilGrading};
+use super::budget::voxels;
+use super::{BeadAmount, Scene, SoilGrading, Water};
 use bedswell_gel::{Gel, GelNumbers, Surroundings, uptake_of_volume_ratio};
 use bedswell_geometry::volume_of_radius;
 use bedswell_grains::{PackError, beads_for_dose};
@@ -27,10 +28,27 @@ pub struct SceneEstimate {
     pub grains: usize,
     /// Beads in the cell.
     pub beads: usize,
+    /// Voxels across each bead: as many as asked for, or as the budget allows.
+    pub across: usize,
     /// Voxels of all beads.
     pub voxels: f64,
-    /// Edge (m) of a cube with the volume of the mixed dry bed, or the shortest edge of a given cell.
+    /// Inner diameter of the pot (m), the edge of a cube with the volume of the mixed dry bed,
+    /// or the shortest edge of a given cell.
     pub bed_edge_m: f64,
+    /// Height of the mixed dry bed (m), about.
+    pub bed_height_m: f64,
+    /// Diameter (m) of the largest grain; 0 without grains.
+    pub largest_grain_m: f64,
+    /// Mean diameter (m) of the grains by number; 0 without grains.
+    pub mean_grain_m: f64,
+    /// Volume (m³) of the grains.
+    pub soil_volume_m3: f64,
+    /// Volume (m³) between the grains of the mixed dry bed, dry beads included.
+    pub pore_volume_m3: f64,
+    /// Volume (m³) of the dry beads.
+    pub dry_gel_volume_m3: f64,
+    /// Volume of the free-swollen beads over that of the pores.
+    pub pores_filled: f64,
     /// Linear stretch of the gel from dry to free-swollen.
     pub free_stretch: f64,
     /// Diameter (m) of a free-swollen bead.
@@ -74,23 +92,36 @@ impl Scene {
         }
     }
 
+    /// The gel in the scene's water, under this pressure (Pa) besides.
+    pub(crate) fn gel_under(&self, pressure: f64) -> Gel {
+        let potential = self.water.potential - pressure;
+        Self { water: Water { potential, ..self.water }, ..self.clone() }.swelling_gel()
+    }
+
     /// What the scene comes to, before anything of its size is allocated.
     ///
     /// # Errors
     /// When the dose leaves no bead or no grains.
     pub fn estimate(&self) -> Result<SceneEstimate, PackError> {
         let diameters = self.soil.grain_diameters(self.bed.grains).map_err(|_| PackError::NoGrains)?;
-        let soil_volume: f64 = diameters.iter().map(|diameter| volume_of_radius(0.5 * diameter)).sum();
+        let soil_volume_m3: f64 = diameters.iter().map(|diameter| volume_of_radius(0.5 * diameter)).sum();
         let beads = self.bead_count()?;
-        let bead_volume = beads as f64 * volume_of_radius(0.5 * self.beads.dry_diameter);
-        let bed_edge_m = match &self.soil.grading {
-            SoilGrading::Spheres { size, .. } => size.iter().copied().fold(f64::INFINITY, f64::min),
-            _ => {
-                let porosity = self.bed.porosity.unwrap_or(USUAL_POROSITY);
-                ((soil_volume + bead_volume) / (1.0 - porosity)).cbrt()
+        let dry_gel_volume_m3 = beads as f64 * volume_of_radius(0.5 * self.beads.dry_diameter);
+        let porosity = self.bed.porosity.unwrap_or(USUAL_POROSITY);
+        let mixed = (soil_volume_m3 + dry_gel_volume_m3) / (1.0 - porosity);
+        let (bed_volume, bed_edge_m, bed_height_m) = match (&self.soil.grading, self.bed.pot) {
+            (SoilGrading::Spheres { size, .. }, _) => {
+                (size.iter().product(), size.iter().copied().fold(f64::INFINITY, f64::min), size[2])
             }
+            (_, Some(diameter)) => {
+                let height = mixed / (0.25 * PI * diameter * diameter);
+                (mixed, diameter, height.max(self.beads.dry_diameter))
+            }
+            (_, None) => (mixed, mixed.cbrt(), mixed.cbrt()),
         };
-        let voxels = beads as f64 * PI / 6.0 * (self.beads.across as f64).powi(3);
+        let pore_volume_m3 = bed_volume - soil_volume_m3;
+        let across = self.beads.across_for(beads);
+        let voxels = voxels(beads, across);
         let seconds_per_increment = if self.bed.fixed_grains {
             SECONDS_PER_VOXEL_ALONE * voxels
         } else {
@@ -102,8 +133,16 @@ impl Scene {
         Ok(SceneEstimate {
             grains: diameters.len(),
             beads,
+            across,
             voxels,
             bed_edge_m,
+            bed_height_m,
+            largest_grain_m: diameters.iter().copied().fold(0.0, f64::max),
+            mean_grain_m: diameters.iter().sum::<f64>() / diameters.len().max(1) as f64,
+            soil_volume_m3,
+            pore_volume_m3,
+            dry_gel_volume_m3,
+            pores_filled: dry_gel_volume_m3 * gel.free_volume_ratio() / pore_volume_m3,
             free_stretch,
             swollen_diameter_m: free_stretch * self.beads.dry_diameter,
             free_uptake_g_per_g: uptake_of_volume_ratio(gel.free_volume_ratio(), self.gel.dry_density),

@@ -1,40 +1,56 @@
 //! What cannot be seen from one key alone.
 
+use super::budget::MOST_VOXELS;
 use super::error::SceneError;
 use super::raw::Node;
+use super::room::{check_pot, check_room};
 use super::section::Entry;
 use super::{BeadAmount, Scene, SceneEstimate, SoilGrading};
 use bedswell_geometry::{Cell, Vector};
 use bedswell_grains::MassCurve;
 
-/// Voxels a scene may have over all its beads.
-pub(crate) const VOXEL_BUDGET: f64 = 1e7;
 /// Smallest part of a bead's dry diameter by which a given bead may overlap a sphere.
 const OVERLAP_TOLERANCE: f64 = 1e-3;
 
 /// Refuses a scene whose parts do not fit together.
 pub(crate) fn check_limits(document: &Node, scene: &Scene) -> Result<(), SceneError> {
     let listed = matches!(scene.soil.grading, SoilGrading::Spheres { .. });
-    if !listed && scene.bed.lid_stress <= 0.0 {
+    if !listed && !scene.bed.open && scene.bed.lid_stress <= 0.0 {
         let key = if document.find("bed.depth").is_some() { "bed.depth" } else { "bed.lid_stress" };
         return Err(entry(document, key)
             .refuse("a random bed is made by pressing on it, so the load must be above zero"));
     }
     check_porosity(document, scene)?;
+    check_beads_alone(document, scene)?;
     let estimate =
         scene.estimate().map_err(|error| entry(document, amount_key(scene)).refuse(error.to_string()))?;
-    if estimate.voxels >= VOXEL_BUDGET {
-        let one_is_too_much = estimate.voxels / estimate.beads as f64 >= VOXEL_BUDGET;
-        let key = if one_is_too_much { "beads.across" } else { amount_key(scene) };
-        return Err(entry(document, key).refuse(format!(
-            "the beads would have {:.3e} voxels and need some {:.0} GiB; fewer than {VOXEL_BUDGET:.0e} voxels are \
-             allowed: lower beads.across or the number of beads",
+    if estimate.voxels > scene.beads.voxel_budget as f64 {
+        return Err(entry(document, amount_key(scene)).refuse(format!(
+            "at {} voxels across the beads would have {:.3e} voxels and need some {:.1} GiB; beads.voxel_budget \
+             allows {}: use fewer beads, a larger budget (up to {MOST_VOXELS}), or beads.across below {}",
+            estimate.across,
             estimate.voxels,
             estimate.memory_bytes / f64::from(1 << 30),
+            scene.beads.voxel_budget,
+            estimate.across,
         )));
     }
     check_bead_size(document, scene, &estimate)?;
+    check_pot(document, scene, &estimate)?;
+    check_room(document, scene, &estimate)?;
     check_given_centres(document, scene)
+}
+
+fn check_beads_alone(document: &Node, scene: &Scene) -> Result<(), SceneError> {
+    match scene.beads.amount {
+        _ if scene.soil.grading != SoilGrading::Absent => Ok(()),
+        BeadAmount::Count(2..) => Ok(()),
+        BeadAmount::Count(_) => {
+            Err(entry(document, "beads.count").refuse("a bed without grains takes at least two beads"))
+        }
+        _ => Err(entry(document, amount_key(scene))
+            .refuse("a bed without grains has no soil to dose; give beads.count instead")),
+    }
 }
 
 fn check_bead_size(document: &Node, scene: &Scene, estimate: &SceneEstimate) -> Result<(), SceneError> {
@@ -51,6 +67,8 @@ fn check_bead_size(document: &Node, scene: &Scene, estimate: &SceneEstimate) -> 
     let largest = scene.beads.dry_diameter * edge / diameter;
     let mend = if listed {
         "use a smaller bead or a larger soil.cell".to_owned()
+    } else if scene.bed.pot.is_some() {
+        "use a smaller bead or a wider pot".to_owned()
     } else {
         let needed = scene.bed.grains as f64 * (diameter / edge).powi(3);
         format!("use a smaller bead or at least {needed:.0} grains")
@@ -147,7 +165,7 @@ fn check_given_centres(document: &Node, scene: &Scene) -> Result<(), SceneError>
     Ok(())
 }
 
-fn amount_key(scene: &Scene) -> &'static str {
+pub(super) fn amount_key(scene: &Scene) -> &'static str {
     match scene.beads.amount {
         BeadAmount::Count(_) => "beads.count",
         BeadAmount::Dose(_) => "beads.dose",
@@ -156,7 +174,7 @@ fn amount_key(scene: &Scene) -> &'static str {
 }
 
 /// The value under a key; the whole document where a default was taken.
-fn entry<'a>(document: &'a Node, key: &str) -> Entry<'a> {
+pub(super) fn entry<'a>(document: &'a Node, key: &str) -> Entry<'a> {
     Entry { key: key.to_owned(), node: document.find(key).unwrap_or(document) }
 }
 

@@ -1,17 +1,24 @@
+mod bed;
+mod budget;
+mod concern;
 mod error;
 mod estimate;
+mod friction;
 mod gel;
 mod grading;
 mod limits;
 mod model;
+mod overburden;
 mod raw;
 mod read;
+mod room;
 mod section;
 mod soil;
 mod spheres;
 mod unit;
 mod write;
 
+pub use concern::Concern;
 pub use error::{Place, SceneError};
 pub use estimate::SceneEstimate;
 pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};

@@ -27,13 +27,20 @@ pub struct Scene {
 /// The bed and its load.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Bed {
-    /// Number of grains in the cell (ignored when the soil lists its spheres).
+    /// Number of grains (ignored when the soil lists its spheres); 0: beads alone in a pot.
     pub grains: usize,
     /// Pore fraction of the mixed dry bed; `None`: as the preparation leaves it
     /// under the lid's stress (or as the listed spheres lie).
     pub porosity: Option<f64>,
-    /// Vertical stress under the lid (Pa), when the dry bed is made and, unless the lid is
-    /// held, from then on.
+    /// Inner diameter of the round pot (m), in which grains and beads have weight; `None`: a
+    /// cell that repeats sideways, an element of a wide bed.
+    pub pot: Option<f64>,
+    /// The pot has no lid; its bed is levelled before the beads swell.
+    pub open: bool,
+    /// The pot stands in water, so that its grains and beads are buoyant.
+    pub flooded: bool,
+    /// Effective vertical stress under the lid (Pa), when the dry bed is made and, unless the
+    /// lid is held, from then on; 0 where the top is open.
     pub lid_stress: f64,
     /// The lid stays where the dry bed is made: what presses on it then is a result.
     pub lid_held: bool,
@@ -46,10 +53,13 @@ pub struct Bed {
 pub struct Soil {
     /// Grain sizes or listed spheres.
     pub grading: SoilGrading,
-    /// Grain density (kg/m³), for doses by mass.
+    /// Grain density (kg/m³), for doses by mass and weights; 0 without grains.
     pub density: f64,
     /// Coulomb friction coefficient between grains.
     pub friction: f64,
+    /// Rolling friction coefficient between grains, which stands for their shape: largest
+    /// rolling moment over the push and the reduced radius; 0 for spheres.
+    pub rolling_friction: f64,
 }
 
 /// Where the soil's spheres come from.
@@ -74,6 +84,8 @@ pub enum SoilGrading {
         /// Grains finer than this (m) are left out, and their mass share is reported.
         fines_cutoff: Option<f64>,
     },
+    /// No grains at all.
+    Absent,
     /// Spheres measured or built by somebody else: centre and radius (m), inside
     /// a cell of the given size (m).
     Spheres {
@@ -93,8 +105,10 @@ pub struct Beads {
     pub amount: BeadAmount,
     /// Dry diameter (m).
     pub dry_diameter: f64,
-    /// Voxels across the dry diameter.
+    /// Voxels across the dry diameter, unless that exceeds the budget.
     pub across: usize,
+    /// Voxels that all beads together may have.
+    pub voxel_budget: usize,
     /// Centre and orientation of each bead are held: for fixed grains that would let
     /// a bead slip out sideways.
     pub held: bool,

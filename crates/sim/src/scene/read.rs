@@ -1,16 +1,16 @@
+use super::bed::{is_without_grains, read_bed};
+use super::budget::{MOST_VOXELS, USUAL_VOXELS};
 use super::error::SceneError;
 use super::gel::read_gel;
 use super::limits::check_limits;
 use super::raw::{Node, Value, read_document};
 use super::section::{Entry, Section, refuse_unknown};
-use super::soil::{read_soil, to_vector};
+use super::soil::{read_no_soil, read_soil, to_vector};
 use super::unit::Kind;
-use super::{BeadAmount, Beads, Bed, March, Scene, SoilGrading, Strength, Water};
+use super::{BeadAmount, Beads, March, Scene, SoilGrading, Strength, Water};
 use bedswell_geometry::Vector;
 use std::path::Path;
 
-/// Standard gravity (m/s²), by definition.
-const GRAVITY: f64 = 9.80665;
 /// The tables of a scene file.
 const TABLES: [&str; 8] = ["scene", "bed", "soil", "beads", "gel", "water", "strength", "march"];
 /// Any number at all; what is allowed is checked afterwards.
@@ -44,7 +44,11 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
     };
     let seed = section.need("seed", "seed = 1")?.whole(0..=i64::MAX as u64)?;
 
-    let (soil, corner) = read_soil(document, path)?;
+    let (soil, corner) = if is_without_grains(document) {
+        (read_no_soil(document)?, Vector::zeros())
+    } else {
+        read_soil(document, path)?
+    };
     let listed = match &soil.grading {
         SoilGrading::Spheres { spheres, .. } => Some(spheres.len()),
         _ => None,
@@ -53,7 +57,7 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
     let scene = Scene {
         name,
         seed,
-        bed: read_bed(document, listed)?,
+        bed: read_bed(document, &soil, listed)?,
         soil,
         beads: read_beads(document, listed.is_some().then_some(corner))?,
         gel: read_gel(document)?,
@@ -65,46 +69,10 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
     Ok(scene)
 }
 
-fn read_bed(document: &Node, listed: Option<usize>) -> Result<Bed, SceneError> {
-    let known = ["grains", "porosity", "lid_stress", "depth", "bulk_density", "lid_held", "fixed_grains"];
-    let section = Section::new(document, "bed", &known)?;
-    let grains = match (section.get("grains"), listed) {
-        (Some(grains), None) => grains.whole(1..=1_000_000)? as usize,
-        (Some(grains), Some(_)) => {
-            return Err(
-                grains.refuse("the soil lists its spheres, so their number is known; leave this key out")
-            );
-        }
-        (None, Some(listed)) => listed,
-        (None, None) => return Err(section.missing("grains", "write grains = 600 under [bed]".into())),
-    };
-    let porosity = section.get("porosity").map(|entry| entry.number(0.05..=0.9)).transpose()?;
-    let lid_stress = match (section.get("lid_stress"), section.get("depth")) {
-        (Some(stress), None) => stress.quantity(Kind::Stress, 0.0..=1e7)?,
-        (None, Some(depth)) => {
-            let density = section.need("bulk_density", "bulk_density = \"1500 kg/m3\"")?;
-            depth.quantity(Kind::Length, 0.0..=100.0)? * density.positive(Kind::Density)? * GRAVITY
-        }
-        (Some(_), Some(depth)) => {
-            return Err(
-                depth.refuse("the load is given twice; keep either lid_stress or depth with bulk_density")
-            );
-        }
-        (None, None) => {
-            let mend =
-                "write lid_stress = \"0.2 kPa\", or depth = \"30 cm\" with bulk_density = \"1500 kg/m3\"";
-            return Err(section.missing("lid_stress", mend.into()));
-        }
-    };
-    let lid_held = section.get("lid_held").map_or(Ok(false), |entry| entry.flag())?;
-    let fixed_grains = section.get("fixed_grains").map_or(Ok(false), |entry| entry.flag())?;
-    Ok(Bed { grains, porosity, lid_stress, lid_held, fixed_grains })
-}
-
 /// `corner` is where listed spheres had their lower corner; centres shift with them.
 fn read_beads(document: &Node, corner: Option<Vector>) -> Result<Beads, SceneError> {
-    let section =
-        Section::new(document, "beads", &["count", "dose", "centres", "dry_diameter", "across", "held"])?;
+    let known = ["count", "dose", "centres", "dry_diameter", "across", "voxel_budget", "held"];
+    let section = Section::new(document, "beads", &known)?;
     let amount = match (section.get("count"), section.get("dose"), section.get("centres")) {
         (Some(count), None, None) => BeadAmount::Count(count.whole(1..=1_000_000)? as usize),
         (None, Some(dose), None) => {
@@ -150,8 +118,11 @@ fn read_beads(document: &Node, corner: Option<Vector>) -> Result<Beads, SceneErr
     };
     let dry_diameter = section.need("dry_diameter", "dry_diameter = \"1 mm\"")?.positive(Kind::Length)?;
     let across = section.get("across").map_or(Ok(12), |entry| entry.whole(4..=1000))? as usize;
+    let voxel_budget = section.get("voxel_budget").map_or(Ok(USUAL_VOXELS), |entry| {
+        entry.whole(1..=MOST_VOXELS as u64).map(|voxels| voxels as usize)
+    })?;
     let held = section.get("held").map_or(Ok(false), |entry| entry.flag())?;
-    Ok(Beads { amount, dry_diameter, across, held })
+    Ok(Beads { amount, dry_diameter, across, voxel_budget, held })
 }
 
 fn read_water(document: &Node) -> Result<Water, SceneError> {

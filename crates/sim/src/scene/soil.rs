@@ -1,4 +1,5 @@
 use super::error::SceneError;
+use super::friction::read_friction;
 use super::raw::Node;
 use super::section::{Entry, Section};
 use super::spheres::read_spheres;
@@ -7,9 +8,11 @@ use super::{Soil, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Vector};
 use std::path::Path;
 
-const KNOWN: [&str; 10] = [
+const KNOWN: [&str; 12] = [
     "density",
     "friction",
+    "rolling_friction",
+    "angle_of_repose",
     "sieves",
     "median",
     "spread",
@@ -20,12 +23,26 @@ const KNOWN: [&str; 10] = [
     "periodic",
 ];
 
+/// Those that beads alone can have too.
+const FRICTION: [&str; 3] = ["friction", "rolling_friction", "angle_of_repose"];
+
+/// Reads `[soil]` where the bed has no grains: what is left of it is how dry beads rub.
+pub(super) fn read_no_soil(document: &Node) -> Result<Soil, SceneError> {
+    let section = Section::new(document, "soil", &KNOWN)?;
+    let of_grains = KNOWN.iter().filter(|key| !FRICTION.contains(key));
+    if let Some(entry) = of_grains.filter_map(|key| section.get(key)).next() {
+        return Err(entry.refuse("the bed has no grains; leave this key out, or give bed.grains"));
+    }
+    let (friction, rolling_friction) = read_friction(&section)?;
+    Ok(Soil { grading: SoilGrading::Absent, density: 0.0, friction, rolling_friction })
+}
+
 /// Reads `[soil]`; also where the lower corner of listed spheres was before they
 /// were shifted to the origin.
 pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vector), SceneError> {
     let section = Section::new(document, "soil", &KNOWN)?;
     let density = section.need("density", "density = \"2650 kg/m3\"")?.positive(Kind::Density)?;
-    let friction = section.get("friction").map_or(Ok(0.5), |entry| entry.number(0.0..=2.0))?;
+    let (friction, rolling_friction) = read_friction(&section)?;
     let fines_cutoff = section.get("fines_cutoff").map(|entry| entry.positive(Kind::Length)).transpose()?;
 
     let mut corner = Vector::zeros();
@@ -53,7 +70,7 @@ pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vec
             );
         }
     };
-    let soil = Soil { grading, density, friction };
+    let soil = Soil { grading, density, friction, rolling_friction };
     // What the sieves and the spread alone can get wrong was refused above, with its own line.
     match (soil.grading(), section.get("fines_cutoff")) {
         (Err(error), Some(cutoff)) => Err(cutoff.refuse(error.to_string())),

@@ -12,20 +12,37 @@ pub(crate) enum Kind {
     MassRatio,
     Concentration,
     Temperature,
+    Angle,
 }
 
-/// A unit: its spelling, its kind, and its size (as a power of ten) and zero in the
-/// base unit of its kind.
+/// A unit: its spelling, its kind, and its size (a power of ten times a factor) and zero
+/// in the base unit of its kind.
 struct Unit {
     name: &'static str,
     kind: Kind,
     power: i32,
+    factor: f64,
     zero: f64,
 }
 
 const fn unit(name: &'static str, kind: Kind, power: i32) -> Unit {
-    Unit { name, kind, power, zero: 0.0 }
+    Unit { name, kind, power, factor: 1.0, zero: 0.0 }
 }
+
+const fn odd_unit(name: &'static str, kind: Kind, factor: f64) -> Unit {
+    Unit { name, kind, power: 0, factor, zero: 0.0 }
+}
+
+const fn celsius(name: &'static str) -> Unit {
+    Unit { name, kind: Kind::Temperature, power: 0, factor: 1.0, zero: 273.15 }
+}
+
+/// Pa in a pound-force per square inch, by the definitions of the pound (0.45359237 kg),
+/// standard gravity (9.80665 m/s²) and the inch (0.0254 m).
+const POUND_PER_SQUARE_INCH: f64 = 0.453_592_37 * 9.806_65 / (0.0254 * 0.0254);
+
+/// Radians in a degree.
+const DEGREE: f64 = std::f64::consts::PI / 180.0;
 
 /// The first unit of each kind is the one resolved scenes are written in.
 const UNITS: &[Unit] = &[
@@ -43,6 +60,7 @@ const UNITS: &[Unit] = &[
     unit("kPa", Kind::Stress, 3),
     unit("MPa", Kind::Stress, 6),
     unit("bar", Kind::Stress, 5),
+    odd_unit("psi", Kind::Stress, POUND_PER_SQUARE_INCH),
     unit("kg/m3", Kind::Density, 0),
     unit("g/cm3", Kind::Density, 3),
     unit("t/m3", Kind::Density, 3),
@@ -52,8 +70,11 @@ const UNITS: &[Unit] = &[
     unit("mol/L", Kind::Concentration, 0),
     unit("mmol/L", Kind::Concentration, -3),
     unit("K", Kind::Temperature, 0),
-    Unit { name: "degC", kind: Kind::Temperature, power: 0, zero: 273.15 },
-    Unit { name: "°C", kind: Kind::Temperature, power: 0, zero: 273.15 },
+    celsius("degC"),
+    celsius("°C"),
+    unit("rad", Kind::Angle, 0),
+    odd_unit("deg", Kind::Angle, DEGREE),
+    odd_unit("°", Kind::Angle, DEGREE),
 ];
 
 impl Kind {
@@ -66,6 +87,7 @@ impl Kind {
             Kind::MassRatio => "a mass ratio",
             Kind::Concentration => "a concentration",
             Kind::Temperature => "a temperature",
+            Kind::Angle => "an angle",
         }
     }
 
@@ -111,7 +133,7 @@ pub(crate) fn parse_quantity(text: &str, kind: Kind) -> Result<f64, String> {
         return Err("must be a finite number".to_owned());
     }
     // Only an exponent beyond 32 bits has no shifted form, and it makes any finite value zero.
-    Ok(times_power_of_ten(number, unit.power).unwrap_or(value) + unit.zero)
+    Ok(times_power_of_ten(number, unit.power).unwrap_or(value) * unit.factor + unit.zero)
 }
 
 /// The decimal number with its point moved, so that "3.6 mm" is 0.0036 m to the last bit.
@@ -156,9 +178,17 @@ mod tests {
             ("25 degC", Kind::Temperature, 298.15),
             ("3 g/kg", Kind::MassRatio, 3e-3),
             ("1 mm3", Kind::Volume, 1e-9),
+            ("34 deg", Kind::Angle, 34.0 * std::f64::consts::PI / 180.0),
         ] {
             assert_eq!(parse_quantity(text, kind), Ok(value), "{text}");
         }
+    }
+
+    #[test]
+    fn pounds_per_square_inch_are_as_tabulated() {
+        // NIST Special Publication 811, appendix B.8, from memory: 6.894 757 E+03.
+        let pascals = parse_quantity("1 psi", Kind::Stress).unwrap();
+        assert!((pascals - 6_894.757_293_168).abs() < 1e-8, "{pascals}");
     }
 
     #[test]

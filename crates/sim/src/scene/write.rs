@@ -24,13 +24,23 @@ impl Scene {
         if let Some(porosity) = self.bed.porosity {
             text.line("porosity", number(porosity));
         }
-        text.line("lid_stress", with_unit(self.bed.lid_stress, Kind::Stress));
-        text.line("lid_held", self.bed.lid_held);
+        if let Some(diameter) = self.bed.pot {
+            text.line("pot", with_unit(diameter, Kind::Length));
+            text.line("top", if self.bed.open { "\"open\"" } else { "\"lid\"" });
+            text.line("flooded", self.bed.flooded);
+        }
+        if !self.bed.open {
+            text.line("lid_stress", with_unit(self.bed.lid_stress, Kind::Stress));
+            text.line("lid_held", self.bed.lid_held);
+        }
         text.line("fixed_grains", self.bed.fixed_grains);
 
         text.table("soil");
-        text.line("density", with_unit(self.soil.density, Kind::Density));
+        if self.soil.grading != SoilGrading::Absent {
+            text.line("density", with_unit(self.soil.density, Kind::Density));
+        }
         text.line("friction", number(self.soil.friction));
+        text.line("rolling_friction", number(self.soil.rolling_friction));
         self.write_grading(&mut text);
 
         text.table("beads");
@@ -43,6 +53,7 @@ impl Scene {
         }
         text.line("dry_diameter", with_unit(self.beads.dry_diameter, Kind::Length));
         text.line("across", self.beads.across);
+        text.line("voxel_budget", self.beads.voxel_budget);
         text.line("held", self.beads.held);
 
         text.table("gel");
@@ -87,6 +98,7 @@ impl Scene {
                 text.line("periodic", periodic);
                 None
             }
+            SoilGrading::Absent => None,
         };
         if let Some(cutoff) = cutoff {
             text.line("fines_cutoff", with_unit(cutoff, Kind::Length));

@@ -2,9 +2,11 @@
 
 use crate::scene::{Node, Value};
 
-const CHOICES: [&[&str]; 3] = [
+const CHOICES: [&[&str]; 5] = [
     &["bed.lid_stress", "bed.depth"],
     &["beads.count", "beads.dose", "beads.centres"],
+    &["soil.friction", "soil.angle_of_repose"],
+    &["soil.rolling_friction", "soil.angle_of_repose"],
     &["soil.sieves", "soil.median", "soil.spheres"],
 ];
 
@@ -31,9 +33,9 @@ pub(super) fn clash(first: &str, second: &str) -> Option<String> {
     }
 }
 
-fn alternatives(key: &str) -> impl Iterator<Item = &'static str> {
-    let choice = CHOICES.into_iter().find(|choice| choice.contains(&key)).unwrap_or_default();
-    choice.iter().copied().filter(move |other| *other != key)
+fn alternatives(key: &str) -> impl Iterator<Item = &'static str> + '_ {
+    let choices = CHOICES.into_iter().filter(move |choice| choice.contains(&key));
+    choices.flatten().copied().filter(move |other| *other != key)
 }
 
 fn remove(node: &mut Node, key: &str) {
