@@ -51,26 +51,69 @@ fn cloud(count: usize, cell: Cell, law: ContactLaw, lid: Lid) -> Assembly {
     Assembly::new(cell, &spheres, law, lid).unwrap()
 }
 
-#[test]
-fn an_oblique_contact_sticks_as_mindlin_and_slips_as_coulomb() {
-    let law = rough_spheres();
+/// Slides two pressed grains on each other in short steps, up to 1.2 times the way at
+/// which they slip, and visits the way (m), the tangential force and the push (N).
+fn slide(law: ContactLaw, way_to_slip: f64, mut visit: impl FnMut(f64, f64, f64)) {
     let direction = Vector::new(1.0, 2.0, -0.5).normalize();
     let sideways = direction.cross(&Vector::z()).normalize();
-    let overlap = 2.0e-7;
-    let mut grains = two_grains(overlap, direction, law);
-    let (push, stiffness) = law.normal.push(overlap, 0.5e-3);
-    // Steps short enough that the contact plane does not turn.
-    let step = 1.0e-3 * FRICTION * push / (stiffness * mindlin_ratio(0.25));
-    let mut slid = 0.0;
-    for _ in 0..2000 {
+    let mut grains = two_grains(OVERLAP, direction, law);
+    let step = 1.0e-3 * way_to_slip;
+    for count in 1..=1200 {
         carry(&mut grains, [Vector::zeros(), sideways * step], [Vector::zeros(); 2]);
         grains.compute_contacts();
-        slid += step;
-        let expected = (mindlin_ratio(0.25) * stiffness * slid).min(FRICTION * push);
-        assert_relative_eq!(grains.forces[0].dot(&sideways), expected, max_relative = 2.0e-3);
-        assert_relative_eq!(grains.forces[1].dot(&direction), push, max_relative = 2.0e-3);
         assert_relative_eq!(grains.torques[0], grains.torques[1], max_relative = 1.0e-9);
+        let forces = grains.forces[0].dot(&sideways);
+        visit(f64::from(count) * step, forces, grains.forces[1].dot(&direction));
     }
+}
+
+/// Overlap (m) of the sliding grains: so little that the contact plane does not turn.
+const OVERLAP: f64 = 2.0e-7;
+
+/// Mindlin 1949 (from memory): spheres of Poisson ratio ν and shear modulus G, pressed by P
+/// on a patch of radius a, move sideways by 3(2-ν)μP/(8Ga) [1 - (1 - Q/μP)^(2/3)].
+#[test]
+fn an_oblique_contact_sticks_as_mindlin_and_slips_as_coulomb() {
+    let poisson = 0.25;
+    let (shear, radius) = (1.0e6 * (1.0 - poisson), 1.0e-3);
+    let patch = (0.5 * radius * OVERLAP).sqrt();
+    // P = 8 G a³/(3 (1-ν) R) between equal spheres of radius R (Hertz 1882).
+    let push = 8.0 * shear * patch.powi(3) / (3.0 * (1.0 - poisson) * radius);
+    let to_slip = 3.0 * (2.0 - poisson) * FRICTION * push / (8.0 * shear * patch);
+    // Q/μP and the way it takes, of the way to slip.
+    let mut curve = [
+        (0.1, 0.067830),
+        (0.25, 0.174518),
+        (0.5, 0.370039),
+        (0.75, 0.603150),
+        (0.9, 0.784557),
+        (1.0, 1.0),
+        (1.0, 1.19),
+    ]
+    .into_iter()
+    .peekable();
+    let mut last = (0.0, 0.0);
+    slide(rough_spheres(), to_slip, |way, drag, pressed| {
+        assert_relative_eq!(pressed, push, max_relative = 2.0e-3);
+        while let Some((ratio, part)) = curve.next_if(|(_, part)| part * to_slip <= way) {
+            let between = (part * to_slip - last.0) / (way - last.0);
+            let drag = last.1 + between * (drag - last.1);
+            assert_relative_eq!(drag, ratio * FRICTION * push, max_relative = 5.0e-3);
+        }
+        last = (way, drag);
+    });
+    assert!(curve.peek().is_none());
+}
+
+#[test]
+fn a_linear_contact_stretches_a_spring_and_slips_as_coulomb() {
+    let law = ContactLaw::for_stress(1.0e3, 1.0e-3, FRICTION);
+    let (push, stiffness) = law.normal.push(OVERLAP, 0.5e-3);
+    let tangential = mindlin_ratio(0.25) * stiffness;
+    slide(law, FRICTION * push / tangential, |way, drag, pressed| {
+        assert_relative_eq!(pressed, push, max_relative = 2.0e-3);
+        assert_relative_eq!(drag, (tangential * way).min(FRICTION * push), max_relative = 2.0e-3);
+    });
 }
 
 #[test]

@@ -6,6 +6,7 @@
 #![allow(clippy::print_stdout, reason = "a program that prints a table")]
 
 use bedswell_sim::{read_scene, run_pack};
+use rayon::prelude::*;
 use std::path::Path;
 use std::time::Instant;
 
@@ -35,8 +36,10 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
             let started = Instant::now();
             let mut sums = [0.0; 7];
             let (mut done, mut uptakes) = (0, Vec::new());
-            for pack in 0..packs {
-                match run_pack(&scene, pack, &mut ()) {
+            let outcomes: Vec<_> =
+                (0..packs).into_par_iter().map(|pack| run_pack(&scene, pack, &mut ())).collect();
+            for (pack, outcome) in outcomes.into_iter().enumerate() {
+                match outcome {
                     Ok(outcome) => {
                         let uptake = outcome.beads.iter().map(|bead| bead.volume_ratio).sum::<f64>()
                             / outcome.beads.len() as f64;

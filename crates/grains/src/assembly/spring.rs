@@ -1,4 +1,4 @@
-use crate::contact_law::ContactLaw;
+use crate::contact_law::{ContactLaw, Normal};
 use bedswell_geometry::Vector;
 
 /// The memory of a contact.
@@ -11,9 +11,14 @@ pub(super) struct ContactState {
 }
 
 impl ContactState {
-    /// Takes up the relative motion `moved` (m) of the second surface and returns
-    /// the tangential force (N) with which it drags the first one along: a spring
-    /// that slips at Coulomb's limit (Cundall & Strack 1979, from memory).
+    /// Takes up the relative motion `moved` (m) of the second surface and returns the
+    /// tangential force (N) with which it drags the first one along, up to Coulomb's limit.
+    ///
+    /// Linear contacts have a linear spring that slips at the limit (Cundall & Strack 1979,
+    /// from memory). Hertz contacts follow the curve of spheres loaded by a growing
+    /// tangential force, Q/(μP) = 1 - (1 - s/s₀)^(3/2), whose initial stiffness is that of
+    /// the spring and which slips at s₀ = (3/2) μP/k (Mindlin 1949, from memory). Force that
+    /// shrinks again runs back along it: the hysteresis of micro-slip is left out.
     #[inline]
     pub(super) fn rub(
         &mut self,
@@ -24,8 +29,19 @@ impl ContactState {
         stiffness: f64,
     ) -> Vector {
         let tangential = law.tangential_ratio * stiffness;
-        stretch(&mut self.slide, normal, moved, law.friction * push / tangential);
-        self.slide * tangential
+        let limit = law.friction * push;
+        if let Normal::Linear { .. } = law.normal {
+            stretch(&mut self.slide, normal, moved, limit / tangential);
+            return self.slide * tangential;
+        }
+        let furthest = 1.5 * limit / tangential;
+        stretch(&mut self.slide, normal, moved, furthest);
+        let slid = self.slide.norm();
+        if slid == 0.0 {
+            return Vector::zeros();
+        }
+        let sticking = (1.0 - slid / furthest).max(0.0);
+        self.slide * (limit * (1.0 - sticking * sticking.sqrt()) / slid)
     }
 }
 
