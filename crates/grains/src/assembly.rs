@@ -6,6 +6,7 @@ mod contact_list;
 mod contacts;
 mod error;
 mod motion;
+mod pairs;
 mod rest;
 mod spring;
 mod surface;

@@ -1,5 +1,6 @@
 use super::Assembly;
 use super::boundary::outward;
+use super::pairs::Sums;
 use super::spring::ContactState;
 use bedswell_geometry::{Cell, Vector, close_pairs};
 
@@ -11,6 +12,8 @@ pub(super) struct ContactList {
     /// resist rolling, so that they cost nothing where they do not.
     pub(super) bends: Vec<Vector>,
     pub(super) plates: Vec<PlatePair>,
+    /// Room for the sums of the pairs' shares.
+    pub(super) sums: Vec<Sums>,
     /// Sum of the normal forces (N), number of contacts, and deepest overlap over
     /// the smaller grain's radius, at the last `compute_contacts`.
     pub(super) force_sum: f64,
@@ -33,6 +36,7 @@ impl ContactList {
             pairs: Vec::new(),
             bends: Vec::new(),
             plates: Vec::new(),
+            sums: Vec::new(),
             force_sum: 0.0,
             touching: 0,
             deepest: 0.0,

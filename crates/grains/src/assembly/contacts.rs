@@ -1,7 +1,7 @@
 use super::contact_list::Plate;
 use super::spring::{ContactState, roll, rolling_stiffness};
 use super::{Assembly, Boundary, Lid};
-use bedswell_geometry::{Vector, offset};
+use bedswell_geometry::Vector;
 
 impl Assembly {
     /// Clears all loads but the weights and computes the contact forces of grains with
@@ -22,13 +22,7 @@ impl Assembly {
             ledger.clear_loads();
         }
         self.lid_state.stiffness = 0.0;
-        let mut virial = 0.0;
-        // Without an account there is nothing to book, and nothing to ask in the loop.
-        if self.ledger.is_some() {
-            self.push_pairs::<true>(&mut virial);
-        } else {
-            self.push_pairs::<false>(&mut virial);
-        }
+        let virial = self.push_pairs();
         if !self.cell.periodic[2] {
             self.push_plates();
         }
@@ -44,96 +38,6 @@ impl Assembly {
             Lid::Fixed | Lid::Open => 0.0,
             Lid::Stress(stress) if self.cell.periodic[2] => 3.0 * stress * self.cell.volume(),
             Lid::Stress(stress) => stress * self.section(),
-        }
-    }
-
-    /// Contact forces between grains. In a fully periodic cell they resist its
-    /// shrinking: `virial` gathers their work per strain (J).
-    fn push_pairs<const BOOKED: bool>(&mut self, virial: &mut f64) {
-        let Self {
-            cell, centres, radii, velocities, spins, forces, torques, stiffnesses, law, ledger, ..
-        } = self;
-        let mut ledger = ledger.as_mut().filter(|_| BOOKED);
-        let list = &mut self.contacts;
-        let (periodic, rough, rolls) = (cell.periodic[2], law.friction > 0.0, law.resists_rolling());
-        if rolls {
-            list.bends.resize(list.pairs.len(), Vector::zeros());
-        }
-        for (index, pair) in list.pairs.iter_mut().enumerate() {
-            let (a, b) = (pair.a as usize, pair.b as usize);
-            let mut apart = centres[b] - centres[a];
-            if pair.image != [0; 3] {
-                apart += offset(cell, pair.image);
-            }
-            let reach = radii[a] + radii[b];
-            let square = apart.norm_squared();
-            if square >= reach * reach {
-                if pair.contact.force > 0.0 {
-                    let bend = if rolls { std::mem::take(&mut list.bends[index]) } else { Vector::zeros() };
-                    if let Some(ledger) = &mut ledger {
-                        let turns = spins[a] * radii[a] + spins[b] * radii[b];
-                        let moved = velocities[b] - velocities[a] - turns.cross(&apart.normalize());
-                        let motion = [moved, spins[b] - spins[a]];
-                        ledger.part(law, [pair.contact.slide, bend], motion, radii[a] * radii[b] / reach);
-                        ledger.open(pair.contact.force, square.sqrt() - reach);
-                    }
-                    pair.contact = ContactState::default();
-                }
-                continue;
-            }
-            let distance = square.sqrt().max(f64::MIN_POSITIVE);
-            let normal = apart / distance;
-            let overlap = reach - distance;
-            let reduced = radii[a] * radii[b] / reach;
-            let (push, stiffness) = law.normal.push(overlap, reduced);
-            if pair.contact.force == 0.0
-                && list.slip
-                && let Some(ledger) = &mut ledger
-            {
-                ledger.close(push, (velocities[a] - velocities[b]).dot(&normal) - overlap);
-            }
-            let mut on_b = normal * push;
-            if rough {
-                // Both arms end in one point, so that angular momentum is kept.
-                let (arm_a, arm_b) = (radii[a] * distance / reach, radii[b] * distance / reach);
-                let moved = if list.slip {
-                    velocities[b] - velocities[a] - (spins[a] * arm_a + spins[b] * arm_b).cross(&normal)
-                } else {
-                    Vector::zeros()
-                };
-                let before = pair.contact.slide;
-                let drag = pair.contact.rub(law, &normal, moved, push, stiffness);
-                on_b -= drag;
-                let twist = normal.cross(&drag);
-                torques[a] += twist * arm_a;
-                torques[b] += twist * arm_b;
-                if let Some(ledger) = &mut ledger {
-                    ledger.slip(law.tangential_ratio * stiffness, before, moved, pair.contact.slide);
-                }
-                if rolls {
-                    let turned = if list.slip { spins[b] - spins[a] } else { Vector::zeros() };
-                    let bend = &mut list.bends[index];
-                    let before = *bend;
-                    let moment = roll(bend, law, &normal, turned, push, stiffness, reduced);
-                    torques[a] += moment;
-                    torques[b] -= moment;
-                    if let Some(ledger) = &mut ledger {
-                        ledger.slip(rolling_stiffness(law, stiffness, reduced), before, turned, *bend);
-                    }
-                }
-            }
-            pair.contact.force = push;
-            forces[a] -= on_b;
-            forces[b] += on_b;
-            stiffnesses[a] += stiffness;
-            stiffnesses[b] += stiffness;
-            list.force_sum += push;
-            list.touching += 1;
-            list.deepest = list.deepest.max(overlap / radii[a].min(radii[b]));
-            if periodic {
-                *virial += push * distance;
-                self.lid_state.stiffness += stiffness * square;
-            }
         }
     }
 

@@ -19,7 +19,7 @@ impl ContactState {
     /// tangential force, Q/(μP) = 1 - (1 - s/s₀)^(3/2), whose initial stiffness is that of
     /// the spring and which slips at s₀ = (3/2) μP/k (Mindlin 1949, from memory). Force that
     /// shrinks again runs back along it: the hysteresis of micro-slip is left out.
-    #[inline]
+    #[inline(always)]
     pub(super) fn rub(
         &mut self,
         law: &ContactLaw,
@@ -34,15 +34,20 @@ impl ContactState {
             stretch(&mut self.slide, normal, moved, limit / tangential);
             return self.slide * tangential;
         }
-        let furthest = 1.5 * limit / tangential;
-        stretch(&mut self.slide, normal, moved, furthest);
-        let slid = self.slide.norm();
-        if slid == 0.0 {
-            return Vector::zeros();
-        }
-        let sticking = (1.0 - slid / furthest).max(0.0);
-        self.slide * (limit * (1.0 - sticking * sticking.sqrt()) / slid)
+        rub_spheres(&mut self.slide, normal, moved, limit, tangential)
     }
+}
+
+/// Mindlin's curve, of a slide that is stretched by `moved` (m).
+fn rub_spheres(slide: &mut Vector, normal: &Vector, moved: Vector, limit: f64, tangential: f64) -> Vector {
+    let furthest = 1.5 * limit / tangential;
+    stretch(slide, normal, moved, furthest);
+    let slid = slide.norm();
+    if slid == 0.0 {
+        return Vector::zeros();
+    }
+    let sticking = (1.0 - slid / furthest).max(0.0);
+    *slide * (limit * (1.0 - sticking * sticking.sqrt()) / slid)
 }
 
 /// Takes up the relative turn `turned` (rad) of the second body and returns the moment

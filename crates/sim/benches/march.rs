@@ -1,0 +1,58 @@
+//! Whole packs from dry to joint equilibrium on all cores: time, and the most memory held.
+//!
+//! `cargo bench -p bedswell-sim --bench march [-- NAME…]`, on a machine that does nothing else.
+
+#![allow(clippy::print_stdout, reason = "a program that prints a table")]
+
+use bedswell_sim::{BeadAmount, Scene, read_scene, run_pack};
+use std::path::Path;
+use std::time::Instant;
+
+/// Name, grains, beads, voxels across.
+const CASES: [(&str, usize, usize, usize); 4] = [
+    ("one-bead", 5_000, 1, 20),
+    ("twice-the-grains", 10_000, 1, 20),
+    ("twenty-beads", 1_000, 20, 12),
+    ("two-hundred-beads", 10_000, 200, 12),
+];
+
+fn main() {
+    let chosen: Vec<String> = std::env::args().skip(1).filter(|name| !name.starts_with("--")).collect();
+    println!("{:<20} {:>7} {:>6} {:>7} {:>8} {:>8}  end", "case", "grains", "beads", "across", "s", "MiB");
+    for (name, grains, beads, across) in CASES {
+        if !chosen.is_empty() && !chosen.iter().any(|chosen| chosen == name) {
+            continue;
+        }
+        let scene = scene(grains, beads, across);
+        let started = Instant::now();
+        let end = match run_pack(&scene, 0, &mut ()) {
+            Ok(outcome) => format!(
+                "uptake {:.1} g/g, grains {:.1e}, gel {:.1e}, swallowed {:.1e}",
+                outcome.beads.iter().map(|bead| bead.uptake_g_per_g).sum::<f64>() / beads as f64,
+                outcome.quality.grain_residual,
+                outcome.quality.gel_residual,
+                outcome.quality.swallowed
+            ),
+            Err(error) => error.to_string(),
+        };
+        let seconds = started.elapsed().as_secs_f64();
+        let memory = most_memory().map_or("-".to_owned(), |mebibytes| format!("{mebibytes:.0}"));
+        println!("{name:<20} {grains:>7} {beads:>6} {across:>7} {seconds:>8.1} {memory:>8}  {end}");
+    }
+}
+
+fn scene(grains: usize, beads: usize, across: usize) -> Scene {
+    let file = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes/tree-pit.toml");
+    let mut scene = read_scene(&file).expect("the scene that comes with the program");
+    scene.bed.grains = grains;
+    scene.beads.amount = BeadAmount::Count(beads);
+    scene.beads.across = across;
+    scene
+}
+
+/// The most memory that this process has held (MiB), where the system tells.
+fn most_memory() -> Option<f64> {
+    let status = std::fs::read_to_string("/proc/self/status").ok()?;
+    let line = status.lines().find(|line| line.starts_with("VmHWM:"))?;
+    Some(line.split_whitespace().nth(1)?.parse::<f64>().ok()? / 1024.0)
+}
