@@ -8,6 +8,10 @@ use rayon::prelude::*;
 /// Share of each force component on grains and lid that is turned against the motion.
 /// Little of it lets slow rearrangements come to their end soonest.
 pub(super) const DAMPING: f64 = 0.2;
+/// The same once nothing rearranges any more: grains that only chatter come to rest sooner.
+const SETTLING: f64 = 0.6;
+/// Largest net force on a grain, over the mean contact force, of grains that only chatter.
+const CHATTER: f64 = 2e-3;
 /// The same on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
@@ -23,12 +27,13 @@ pub(super) struct Bodies {
     pub(super) pairs: Vec<Pair>,
     /// Where the grains were when the beads' neighbours were last looked for.
     listed: Vec<Vector>,
+    damping: f64,
 }
 
 impl Bodies {
     pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>) -> Self {
         let around = vec![Neighbourhood::default(); beads.len()];
-        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new() }
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), damping: DAMPING }
     }
 
     /// Forces on everything, at the places where everything is.
@@ -53,11 +58,17 @@ impl Bodies {
 
     /// Moves everything by one step.
     pub(super) fn advance(&mut self) {
+        let damping = self.damping;
         let (grains, beads) = (&mut self.grains, &mut self.beads);
         rayon::join(
-            || grains.advance(DAMPING),
+            || grains.advance(damping),
             || beads.par_iter_mut().for_each(|bead| bead.advance(GEL_DAMPING)),
         );
+    }
+
+    /// Damps as befits the largest net force on a grain, over the mean contact force.
+    pub(super) fn damp(&mut self, residual: f64) {
+        self.damping = if residual < CHATTER { SETTLING } else { DAMPING };
     }
 
     pub(super) fn step(&mut self, gel: &Gel) {

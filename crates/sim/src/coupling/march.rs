@@ -198,6 +198,7 @@ impl March {
         }
         let growth = (to / from).powf(1.0 / steps as f64);
         let mut stretch = from;
+        self.bodies.damp(f64::INFINITY);
         for _ in 0..steps {
             stretch *= growth;
             let stage = gel.limited_to(stretch);
@@ -219,6 +220,7 @@ impl March {
                 {
                     return Ok(());
                 }
+                self.bodies.damp(quality.grain_residual);
             }
             self.bodies.advance();
         }
