@@ -6,6 +6,8 @@
 //! the voxel's four edges along d: chain-bundle springs along the edges with share β,
 //! the mean gradient with the rest. For any affine deformation this is (n/2)(I1 - 3).
 
+mod mixed;
+
 use crate::lanes::{self, Lanes, Vector, WIDTH};
 use crate::lattice::{Lattice, Run};
 use crate::thermodynamics::Gel;

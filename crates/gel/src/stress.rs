@@ -32,15 +32,22 @@ impl StressField {
     /// The stress in a bead. Per voxel, from the mean deformation gradient over its
     /// gel: σ = (kT/Ω) [(n/J) F Fᵀ + φ'(J) 1].
     pub fn of(bead: &Bead, gel: &Gel) -> Self {
+        Self::with_slopes(bead, gel, |_, j| gel.mixing_slope(j))
+    }
+
+    /// The stress where something else takes the place of φ'(J): a function of the voxel
+    /// and of J, over kT/Ω.
+    pub(crate) fn with_slopes(bead: &Bead, gel: &Gel, slope: impl Fn(usize, f64) -> f64) -> Self {
         let gradients = bead.gradients();
         let voxel = bead.voxel_edge().powi(3);
         let free = gel.free_volume_ratio();
         let n = gel.numbers().crosslinks;
         let stress: Vec<Matrix> = gradients
             .iter()
-            .map(|f| {
+            .enumerate()
+            .map(|(voxel, f)| {
                 let j = f.determinant();
-                (f * f.transpose() * (n / j) + Matrix::identity() * gel.mixing_slope(j))
+                (f * f.transpose() * (n / j) + Matrix::identity() * slope(voxel, j))
                     * gel.energy_density()
             })
             .collect();
