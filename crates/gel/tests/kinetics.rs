@@ -121,12 +121,12 @@ fn a_dry_ball_swells() {
     let across = std::env::var("ACROSS").map_or(12, |a| a.parse().unwrap());
     let bead = Bead::new(Arc::new(Lattice::new(across)), 1e-3 / gel.free_stretch(), Vector::zeros(), 1.05);
     let permeability = Permeability::new(&gel, DIFFUSION, 1.5).unwrap();
-    let mut kinetics = Kinetics::new(bead, SIXFOLD, permeability, Settings { residual: 1e-6, ..Settings::default() }).unwrap();
+    let mut kinetics = Kinetics::new(bead, SIXFOLD, permeability, Settings { residual: 1e-6, step_error: std::env::var("ERR").map_or(2e-3, |u| u.parse().unwrap()), retardation: 1e4 * std::env::var("LAG").map_or(0.0, |u| u.parse().unwrap()),  ..Settings::default() }).unwrap();
     let start = kinetics.water();
     let clock = std::time::Instant::now();
     let mut its = 0;
     kinetics
-        .advance(&always(at(0.0)), &[], 1e4 * 2.0, |kinetics, step| {
+        .advance(&always(at(0.0)), &[], 1e4 * std::env::var("UNTIL").map_or(2.0, |u| u.parse().unwrap()), |kinetics, step| {
             let stress = kinetics.stress();
             its += step.iterations;
             let lattice = kinetics.bead().lattice();

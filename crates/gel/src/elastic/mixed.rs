@@ -5,6 +5,7 @@
 use super::{Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient};
 use crate::lanes::{self, Lanes, WIDTH};
 use nalgebra::Matrix3;
+use pulp::{Arch, Simd, WithSimd};
 
 impl Elastic<'_> {
     /// kT/Ω times the volume of a dry voxel (J).
@@ -22,7 +23,7 @@ impl Elastic<'_> {
         out: &mut [f64],
         ratios: &mut [f64],
     ) {
-        pulp::Arch::new().dispatch(|| self.mixed_gradient_kernel(positions, slopes, out, ratios));
+        Arch::new().dispatch(Gradient { elastic: self, positions, slopes, out, ratios });
     }
 
     /// Records what `add_mixed_stiffness_times` needs about a state.
@@ -55,8 +56,7 @@ impl Elastic<'_> {
         (direction, slopes): (&[f64], &[f64]),
         (out, volumes): (&mut [f64], &mut [f64]),
     ) {
-        pulp::Arch::new()
-            .dispatch(|| self.mixed_stiffness_kernel(state, (direction, slopes), (out, volumes)));
+        Arch::new().dispatch(Stiffness { elastic: self, state, direction, slopes, out, volumes });
     }
 
     #[inline(always)]
@@ -110,6 +110,40 @@ impl Elastic<'_> {
                 self.scatter(&tensions, &edges, &shape, run, along, out);
             }
         }
+    }
+}
+
+struct Gradient<'a> {
+    elastic: &'a Elastic<'a>,
+    positions: &'a [f64],
+    slopes: &'a [f64],
+    out: &'a mut [f64],
+    ratios: &'a mut [f64],
+}
+
+struct Stiffness<'a> {
+    elastic: &'a Elastic<'a>,
+    state: &'a Linearisation,
+    direction: &'a [f64],
+    slopes: &'a [f64],
+    out: &'a mut [f64],
+    volumes: &'a mut [f64],
+}
+
+impl WithSimd for Gradient<'_> {
+    type Output = ();
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) {
+        self.elastic.mixed_gradient_kernel(self.positions, self.slopes, self.out, self.ratios);
+    }
+}
+
+impl WithSimd for Stiffness<'_> {
+    type Output = ();
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) {
+        let (from, to) = ((self.direction, self.slopes), (self.out, self.volumes));
+        self.elastic.mixed_stiffness_kernel(self.state, from, to);
     }
 }
 

@@ -17,9 +17,9 @@ const NEWTON_STEPS: usize = 14;
 /// steps converge fast: what it then misses is of higher order than the increment's error.
 const FOLLOWING: usize = 2;
 /// Share of a Newton step's right-hand side that its linear solve may leave.
-const FORCING: f64 = 1e-2;
+const FORCING: f64 = 3e-2;
 const ITERATIONS: usize = 1500;
-/// Share of its water that a voxel keeps in one Newton step at least.
+/// Share of its water that a voxel keeps in one Newton step or guess at least.
 const KEPT: f64 = 0.1;
 
 /// What a bead is at one time.
@@ -27,11 +27,19 @@ const KEPT: f64 = 0.1;
 pub(super) struct State {
     /// All x, all y, all z (m).
     pub(super) positions: Vec<f64>,
+    /// How fast they move (m/s).
+    pub(super) velocities: Vec<f64>,
     /// Volume ratio to dry that each voxel's water gives it, by slot.
     pub(super) water: Vec<f64>,
     /// What takes the place of φ' in the forces, by slot: φ' less the water's potential.
     pub(super) slopes: Vec<f64>,
     pub(super) contacts: Contacts,
+}
+
+/// Where an increment starts.
+pub(super) struct Reference {
+    pub(super) positions: Vec<f64>,
+    pub(super) water: Vec<f64>,
 }
 
 /// What does not change over an increment.
@@ -43,6 +51,8 @@ pub(super) struct Problem<'a> {
     /// Most water that the skin takes in (voxel volumes per second).
     pub(super) supply: Option<f64>,
     pub(super) held: Held,
+    /// Time by which the chains lag behind (s).
+    pub(super) retardation: f64,
     /// Correction that remains, over the bead's own stretch.
     pub(super) tolerance: f64,
 }
@@ -94,23 +104,25 @@ impl Problem<'_> {
     }
 
     /// Finds the state in which the solid is in equilibrium and water has flowed for
-    /// `duration` (s) from the `reference` water at the rates of that state, starting with
-    /// `at`: the minimum of
+    /// `duration` (s) from the `reference` water at the rates of that state, looked for from
+    /// `at` on: the minimum of
     /// `N(x) + c Σ V φ(w) + ½ c (w - ref) V (τL)⁻¹ V (w - ref)` where J(x) = w, with N the
     /// chains' energy. `None` where Newton's method does not converge.
     pub(super) fn solve(
         &self,
         at: &mut State,
-        reference: &[f64],
+        reference: &Reference,
         duration: f64,
         scratch: &mut Scratch,
     ) -> Option<Solved> {
         let Self { elastic, obstacles, cells, .. } = self;
         let lattice = elastic.lattice;
         let (nodes, slots) = (at.positions.len(), at.water.len());
-        let duration = self.rate() * duration;
+        let (seconds, stiffening) = (duration, 1.0 + self.retardation / duration);
+        let duration = self.rate() * seconds;
         let stretch = (weighed_mean(&lattice.volume, &at.water)).cbrt();
         let longest = longest_step(stretch * elastic.edge, obstacles);
+        self.guess(at, reference, seconds, &mut scratch.ratios);
         let size = elastic.voxel_energy() * elastic.gel.numbers().crosslinks * stretch * stretch;
         let target = self.tolerance * (size * lattice.volume.iter().sum::<f64>()).sqrt();
         potentials_of(elastic, at, &mut scratch.potentials);
@@ -121,7 +133,8 @@ impl Problem<'_> {
         let mut limited = false;
         let mut solved = Solved::default();
         for step in 0..NEWTON_STEPS {
-            elastic.linearise_mixed(&at.positions, &at.slopes, &mut scratch.state);
+            let slopes: Vec<f64> = at.slopes.iter().map(|slope| slope / stiffening).collect();
+            elastic.linearise_mixed(&at.positions, &slopes, &mut scratch.state);
             if step < FOLLOWING {
                 let parts = (*cells, &lattice.slots[..]);
                 scratch.conductance.renew(parts, &scratch.state, &at.water, self.permeability);
@@ -130,13 +143,13 @@ impl Problem<'_> {
             limited = scratch.conductance.limit(limit, limited, &scratch.potentials);
             at.contacts.collect(&lattice.skin, lattice.skin.len(), &at.positions, obstacles, 2.0 * longest);
             let pressing = at.contacts.linearise(&lattice.skin, &at.positions, obstacles, true);
-            self.right_hand_side(at, reference, duration, scratch);
+            self.right_hand_side(at, reference, (duration, stiffening), scratch);
             let modes = RigidModes::new(lattice.node_count(), &at.positions, self.held, |motion| {
-                Saddle::stiffness_times(elastic, &scratch.state, &pressing, motion)
+                Saddle::stiffness_times(elastic, (&scratch.state, stiffening), &pressing, motion)
             });
             modes.project(&mut scratch.right[..nodes]);
             let flow = (&scratch.conductance, duration);
-            scratch.guess.renew(elastic, &scratch.state, &pressing, flow, &scratch.compliance);
+            scratch.guess.renew(elastic, &scratch.state, &pressing, flow, (&scratch.compliance, stiffening));
             let saddle = Saddle {
                 elastic,
                 state: &scratch.state,
@@ -145,6 +158,7 @@ impl Problem<'_> {
                 conductance: &scratch.conductance,
                 duration,
                 compliance: &scratch.compliance,
+                stiffening,
                 guess: &scratch.guess,
                 modes: &modes,
             };
@@ -156,6 +170,7 @@ impl Problem<'_> {
             }
             if solution.size <= target && step >= FOLLOWING.min(1) {
                 solved.intake = self.rate() * scratch.conductance.intake(&scratch.potentials);
+                self.close(at, reference, seconds, scratch);
                 return Some(solved);
             }
             solved.steps += 1;
@@ -164,8 +179,40 @@ impl Problem<'_> {
         None
     }
 
+    /// Moves the nodes on as fast as they were, where no voxel would lose much of its water.
+    fn guess(&self, at: &mut State, reference: &Reference, seconds: f64, ratios: &mut Vec<f64>) {
+        let ahead = reference.positions.iter().zip(&at.velocities).map(|(x, v)| x + seconds * v);
+        let positions: Vec<f64> = ahead.collect();
+        ratios.clear();
+        ratios.resize(at.water.len(), 1.0);
+        let mut forces = vec![0.0; positions.len()];
+        self.elastic.add_mixed_gradient(&positions, &at.slopes, &mut forces, ratios);
+        let keeps = |&slot: &u32| {
+            let slot = slot as usize;
+            ratios[slot] - 1.0 > KEPT * (at.water[slot] - 1.0)
+        };
+        if self.elastic.lattice.slots.iter().all(keeps) {
+            at.positions = positions;
+            self.elastic.lattice.slots.iter().for_each(|&slot| at.water[slot as usize] = ratios[slot as usize]);
+        }
+    }
+
+    /// Takes the water from the flows themselves, so that none is lost to what Newton's
+    /// method leaves, and notes how fast the nodes moved.
+    fn close(&self, at: &mut State, reference: &Reference, seconds: f64, scratch: &mut Scratch) {
+        let lattice = self.elastic.lattice;
+        scratch.conductance.outflow(self.cells, &lattice.slots, &scratch.potentials, &mut scratch.ratios);
+        for &slot in &lattice.slots {
+            let slot = slot as usize;
+            let left = self.rate() * seconds * scratch.ratios[slot] / lattice.volume[slot];
+            at.water[slot] = reference.water[slot] - left;
+        }
+        let ways = at.positions.iter().zip(&reference.positions);
+        at.velocities = ways.map(|(x, from)| (x - from) / seconds).collect();
+    }
+
     /// What each equation lacks; see `Saddle`.
-    fn right_hand_side(&self, at: &State, reference: &[f64], duration: f64, scratch: &mut Scratch) {
+    fn right_hand_side(&self, at: &State, reference: &Reference, (duration, stiffening): (f64, f64), scratch: &mut Scratch) {
         let Self { elastic, obstacles, cells, .. } = self;
         let lattice = elastic.lattice;
         let (nodes, slots) = (at.positions.len(), at.water.len());
@@ -174,6 +221,12 @@ impl Problem<'_> {
         let (forces, rest) = scratch.right.split_at_mut(nodes);
         let (volumes, flows) = rest.split_at_mut(slots);
         elastic.add_mixed_gradient(&at.positions, &at.slopes, forces, &mut scratch.ratios);
+        if stiffening > 1.0 {
+            let way: Vec<f64> = at.positions.iter().zip(&reference.positions).map(|(x, from)| x - from).collect();
+            let mut lag = vec![0.0; nodes];
+            elastic.add_mixed_gradient(&way, &vec![0.0; slots], &mut lag, &mut vec![0.0; slots]);
+            forces.iter_mut().zip(&lag).for_each(|(force, lag)| *force += (stiffening - 1.0) * lag);
+        }
         at.contacts.add_gradient(&lattice.skin, &at.positions, obstacles, forces);
         forces.iter_mut().for_each(|force| *force = -*force);
         scratch.conductance.outflow(cells, &lattice.slots, &scratch.potentials, flows);
@@ -186,7 +239,7 @@ impl Problem<'_> {
             scratch.compliance[slot] = volume / curvature;
             let lack = scratch.compliance[slot] * self.lack_of_potential(at, slot, &scratch.potentials);
             volumes[slot] = volume * (water - scratch.ratios[slot]) + lack;
-            flows[slot] = volume * (water - reference[slot]) + unit * duration * flows[slot] + lack;
+            flows[slot] = volume * (water - reference.water[slot]) + unit * duration * flows[slot] + lack;
         }
     }
 

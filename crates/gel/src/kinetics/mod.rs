@@ -27,7 +27,7 @@ use crate::stress::StressField;
 use crate::thermodynamics::{Gel, GelNumbers};
 use bedswell_geometry::Vector;
 pub use history::{Change, History, HistoryError, Outside};
-use increment::{Problem, Scratch, Solved, State, weighed_mean};
+use increment::{Problem, Reference, Scratch, Solved, State, weighed_mean};
 pub use permeability::{Permeability, PermeabilityError};
 pub use snapshot::Snapshot;
 use stencil::{Cell, cells};
@@ -69,6 +69,8 @@ pub struct Settings {
     pub residual: f64,
     /// Times per step that contact pressures are corrected for the penetration they took.
     pub corrections: usize,
+    /// Time by which the chains lag behind their force (s).
+    pub retardation: f64,
     /// Pressed skin passes no water.
     pub contact_seals: bool,
     /// The bead's centre and orientation are held, for obstacles that would let it slip out
@@ -78,7 +80,7 @@ pub struct Settings {
 
 impl Default for Settings {
     fn default() -> Self {
-        Self { step_error: 2e-3, residual: 1e-8, corrections: 1, contact_seals: true, held: false }
+        Self { step_error: 2e-3, residual: 1e-8, corrections: 1, retardation: 0.0, contact_seals: true, held: false }
     }
 }
 
@@ -151,6 +153,7 @@ impl Kinetics {
         let lattice = bead.shared_lattice();
         let mut state = State {
             positions: bead.positions.clone(),
+            velocities: vec![0.0; bead.positions.len()],
             water: vec![1.0; lattice.volume.len()],
             slopes: vec![0.0; lattice.volume.len()],
             ..State::default()
@@ -188,6 +191,7 @@ impl Kinetics {
         let state = &mut self.state;
         for (field, own) in [
             (&snapshot.positions, &mut state.positions),
+            (&snapshot.velocities, &mut state.velocities),
             (&snapshot.water, &mut state.water),
             (&snapshot.slopes, &mut state.slopes),
         ] {
@@ -211,6 +215,7 @@ impl Kinetics {
         Snapshot {
             time: self.time,
             positions: self.state.positions.clone(),
+            velocities: self.state.velocities.clone(),
             water: self.state.water.clone(),
             slopes: self.state.slopes.clone(),
             pressures: pressing.map(|pair| (pair.point, pair.obstacle, pair.multiplier)).collect(),
@@ -304,9 +309,11 @@ impl Kinetics {
             supply: outside.supply.map(|supply| supply / voxel),
             held: if self.settings.held || obstacles.is_empty() { Held::Everything } else { Held::Rotation },
             tolerance: self.settings.residual,
+            retardation: self.settings.retardation,
         };
         let left = until - self.time;
         if self.outside != Some(*outside) || self.next == 0.0 {
+            self.state.velocities.fill(0.0);
             self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch);
         }
         let mut duration = self.next;
@@ -408,11 +415,17 @@ impl Problem<'_> {
     ) -> Option<Stages> {
         let share = STAGE * duration;
         let mut state = from.clone();
-        let first = self.solve(&mut state, &from.water, share, scratch)?;
+        let start = Reference { positions: from.positions.clone(), water: from.water.clone() };
+        let first = self.solve(&mut state, &start, share, scratch)?;
         let middle = state.water.clone();
-        let ahead = (1.0 - STAGE) / STAGE;
-        let reference: Vec<f64> =
-            from.water.iter().zip(&middle).map(|(start, middle)| start + ahead * (middle - start)).collect();
+        let ahead = |start: &[f64], middle: &[f64]| -> Vec<f64> {
+            let further = (1.0 - STAGE) / STAGE;
+            start.iter().zip(middle).map(|(start, middle)| start + further * (middle - start)).collect()
+        };
+        let reference = Reference {
+            positions: ahead(&from.positions, &state.positions),
+            water: ahead(&from.water, &middle),
+        };
         let mut solved = self.solve(&mut state, &reference, share, scratch)?;
         for _ in 0..if self.obstacles.is_empty() { 0 } else { corrections } {
             let skin = &self.elastic.lattice.skin;
@@ -427,7 +440,7 @@ impl Problem<'_> {
         // The difference to the first-order step that goes on at the first stage's rate.
         let errors: Vec<f64> = (0..middle.len())
             .map(|slot| {
-                let (first, second) = (middle[slot] - from.water[slot], state.water[slot] - reference[slot]);
+                let (first, second) = (middle[slot] - from.water[slot], state.water[slot] - reference.water[slot]);
                 ((second - first) / state.water[slot]).powi(2)
             })
             .collect();

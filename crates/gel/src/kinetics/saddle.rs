@@ -29,6 +29,9 @@ pub(super) struct Saddle<'a> {
     pub(super) duration: f64,
     /// c V/φ'' by slot.
     pub(super) compliance: &'a [f64],
+    /// How much stiffer the chains are against motion than at rest; the slopes in `state`
+    /// are over it.
+    pub(super) stiffening: f64,
     pub(super) guess: &'a Guess,
     pub(super) modes: &'a RigidModes,
 }
@@ -49,12 +52,13 @@ impl Guess {
         state: &Linearisation,
         pressing: &[Pressing],
         (conductance, duration): (&Conductance, f64),
-        compliance: &[f64],
+        (compliance, stiffening): (&[f64], f64),
     ) {
         let lattice = elastic.lattice;
         self.nodes.clear();
         self.nodes.resize(lattice.stride(), Matrix::zeros());
         elastic.add_diagonal_blocks(state, &mut self.nodes);
+        self.nodes.iter_mut().for_each(|block| *block *= stiffening);
         contact::add_diagonal_blocks(pressing, &lattice.skin, &mut self.nodes);
         for block in &mut self.nodes {
             *block = block.try_inverse().unwrap_or_else(Matrix::zeros);
@@ -67,7 +71,7 @@ impl Guess {
             let f = state.gradient_of(slot);
             let cofactors = f.try_inverse().map_or(0.0, |inverse| inverse.norm_squared()) * f.determinant().powi(2);
             let volume = unit * lattice.volume[slot];
-            let chains = volume * cofactors / (3.0 * elastic.gel.numbers().crosslinks);
+            let chains = volume * cofactors / (3.0 * stiffening * elastic.gel.numbers().crosslinks);
             let own = compliance[slot];
             let flow = unit * duration * conductance.diagonal[slot];
             let block = Matrix2::new(chains + own, own, own, own + flow);
@@ -80,7 +84,7 @@ impl Saddle<'_> {
     /// K times a motion of the nodes.
     pub(super) fn stiffness_times(
         elastic: &Elastic,
-        state: &Linearisation,
+        (state, stiffening): (&Linearisation, f64),
         pressing: &[Pressing],
         motion: &[f64],
     ) -> Vec<f64> {
@@ -88,6 +92,7 @@ impl Saddle<'_> {
         let mut product = vec![0.0; motion.len()];
         let still = vec![0.0; slots];
         elastic.add_mixed_stiffness_times(state, (motion, &still), (&mut product, &mut vec![0.0; slots]));
+        product.iter_mut().for_each(|force| *force *= stiffening);
         contact::add_stiffness_times(pressing, &elastic.lattice.skin, motion, &mut product);
         product
     }
@@ -102,7 +107,9 @@ impl System for Saddle<'_> {
         let (volumes, flows) = rest.split_at_mut(slopes.len());
         forces.fill(0.0);
         volumes.fill(0.0);
-        self.elastic.add_mixed_stiffness_times(self.state, (motion, slopes), (forces, volumes));
+        let scaled: Vec<f64> = slopes.iter().map(|slope| slope / self.stiffening).collect();
+        self.elastic.add_mixed_stiffness_times(self.state, (motion, &scaled), (forces, volumes));
+        forces.iter_mut().for_each(|force| *force *= self.stiffening);
         contact::add_stiffness_times(self.pressing, &lattice.skin, motion, forces);
         self.modes.project(forces);
         self.conductance.outflow_change(self.cells, &lattice.slots, potentials, flows);

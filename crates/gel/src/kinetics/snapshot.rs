@@ -8,6 +8,8 @@ pub struct Snapshot {
     pub time: f64,
     /// Where the nodes are (m): all x, all y, all z, each padded.
     pub positions: Vec<f64>,
+    /// How fast they move (m/s).
+    pub velocities: Vec<f64>,
     /// Volume ratio to dry that each voxel's water gives it, padded.
     pub water: Vec<f64>,
     /// Stress that the chains do not bear, as a tension over kT/Ω, padded.
