@@ -19,7 +19,7 @@ mod stencil;
 
 use crate::bead::Bead;
 use crate::contact::{Pair, skin_position};
-use crate::elastic::Elastic;
+use crate::elastic::{self, Elastic};
 use crate::equilibrium::PENALTY;
 use crate::obstacle::Obstacle;
 use crate::rigid::Held;
@@ -80,7 +80,14 @@ pub struct Settings {
 
 impl Default for Settings {
     fn default() -> Self {
-        Self { step_error: 2e-3, residual: 1e-8, corrections: 1, retardation: 0.0, contact_seals: true, held: false }
+        Self {
+            step_error: 5e-3,
+            residual: 1e-6,
+            corrections: 1,
+            retardation: 3e-4,
+            contact_seals: true,
+            held: false,
+        }
     }
 }
 
@@ -256,12 +263,19 @@ impl Kinetics {
         slots.map(|slot| potential(slot) * gel.energy_density()).collect()
     }
 
-    /// The stress in the bead.
+    /// The stress in the bead, with that of chains which lag behind.
     pub fn stress(&self) -> StressField {
-        let slots = &self.bead.lattice().slots;
-        StressField::with_slopes(&self.bead, &self.gel(), |voxel, _| {
-            self.state.slopes[slots[voxel] as usize]
+        let lattice = self.bead.lattice();
+        let rates = elastic::gradients(lattice, self.bead.voxel_edge(), &self.state.velocities);
+        let lag = self.retardation();
+        StressField::with(&self.bead, &self.gel(), |voxel, f| {
+            (f + rates[voxel] * lag, self.state.slopes[lattice.slots[voxel] as usize])
         })
+    }
+
+    /// Time by which the chains lag behind (s).
+    fn retardation(&self) -> f64 {
+        self.settings.retardation * self.permeability.bead_time(self.bead.dry_radius())
     }
 
     /// Follows a history to `until` (s) among obstacles that stay where they are; `visit`
@@ -309,7 +323,7 @@ impl Kinetics {
             supply: outside.supply.map(|supply| supply / voxel),
             held: if self.settings.held || obstacles.is_empty() { Held::Everything } else { Held::Rotation },
             tolerance: self.settings.residual,
-            retardation: self.settings.retardation,
+            retardation: self.retardation(),
         };
         let left = until - self.time;
         if self.outside != Some(*outside) || self.next == 0.0 {

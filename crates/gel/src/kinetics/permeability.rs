@@ -15,6 +15,8 @@ use thiserror::Error;
 pub struct Permeability {
     /// In the reference state, over the viscosity (m²/(Pa s)).
     reference: f64,
+    /// Cooperative diffusion coefficient D in the reference state (m²/s).
+    diffusion: f64,
     /// Water per polymer in the reference state, J_ref - 1.
     water: f64,
     exponent: f64,
@@ -47,7 +49,19 @@ impl Permeability {
         }
         let moduli = gel.moduli();
         let longitudinal = moduli.lame + 2.0 * moduli.shear;
-        Ok(Self { reference: diffusion / longitudinal, water: gel.free_volume_ratio() - 1.0, exponent })
+        let water = gel.free_volume_ratio() - 1.0;
+        Ok(Self { reference: diffusion / longitudinal, diffusion, water, exponent })
+    }
+
+    /// R²/D (s) of a bead of `dry_radius` (m) in the reference state, the time that water
+    /// takes through it.
+    pub fn bead_time(&self, dry_radius: f64) -> f64 {
+        (dry_radius * (self.water + 1.0).cbrt()).powi(2) / self.diffusion
+    }
+
+    /// At a volume ratio to dry, over the viscosity (m²/(Pa s)).
+    pub fn at(&self, j: f64) -> f64 {
+        self.reference * self.relative(j)
     }
 
     /// In the reference state, over the viscosity (m²/(Pa s)).
