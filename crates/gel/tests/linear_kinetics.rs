@@ -155,7 +155,7 @@ fn a_film_consolidates_as_terzaghi_says() {
     let unit = permeability.at(ratio) * modulus / drainage.powi(2);
 
     // First the walls' pressures are found, then the potential falls.
-    let settings = Settings { corrections: 10, ..settings() };
+    let settings = Settings { corrections: 5, ..settings() };
     let mut kinetics = Kinetics::new(film, numbers, permeability, settings).unwrap();
     let fall = from(2.0 / unit, -STRAIN * modulus);
     let history = History::new(vec![from(0.0, 0.0), fall]).unwrap();

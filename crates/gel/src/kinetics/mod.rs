@@ -21,6 +21,7 @@ use crate::bead::Bead;
 use crate::contact::{Pair, skin_position};
 use crate::elastic::{self, Elastic};
 use crate::equilibrium::PENALTY;
+use crate::lattice::Shape;
 use crate::obstacle::Obstacle;
 use crate::rigid::Held;
 use crate::stress::StressField;
@@ -321,7 +322,7 @@ impl Kinetics {
             cells: &self.cells,
             permeability: &self.permeability,
             supply: outside.supply.map(|supply| supply / voxel),
-            held: if self.settings.held || obstacles.is_empty() { Held::Everything } else { Held::Rotation },
+            held: self.held(obstacles),
             tolerance: self.settings.residual,
             retardation: self.retardation(),
         };
@@ -373,6 +374,16 @@ impl Kinetics {
         }
         self.scratch = scratch;
         outcome.map(|step| Step { water: self.water(), penetration: self.penetration(obstacles), ..step })
+    }
+
+    /// What must not move: all where nothing touches, the orientation of a ball, which
+    /// frictionless obstacles do not tell, and nothing of a block.
+    fn held(&self, obstacles: &[Obstacle]) -> Held {
+        match self.bead.lattice().shape() {
+            _ if self.settings.held || obstacles.is_empty() => Held::Everything,
+            Shape::Ball(_) => Held::Rotation,
+            Shape::Block(_) => Held::Nothing,
+        }
     }
 
     /// Fits contact stiffness and the sealed skin to the state.
