@@ -265,8 +265,7 @@ impl Elastic<'_> {
         for axis in 0..3 {
             let column = &mut out[axis * stride..(axis + 1) * stride];
             for (row, &start) in run.rows.iter().enumerate() {
-                forces[2 * row][axis].add_to(column, start + along);
-                forces[2 * row + 1][axis].add_to(column, start + along + 1);
+                lanes::add_pairs(column, start + along, forces[2 * row][axis], forces[2 * row + 1][axis]);
             }
         }
     }

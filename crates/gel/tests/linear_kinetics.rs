@@ -24,7 +24,7 @@ fn from(time: f64, potential: f64) -> Change {
 
 /// Chains that do not lag behind, and steps that follow small strains closely.
 fn settings() -> Settings {
-    Settings { step_error: 3e-3 * STRAIN, residual: 1e-4 * STRAIN, retardation: 0.0, ..Settings::default() }
+    Settings { step_error: 1e-2 * STRAIN, residual: 1e-3 * STRAIN, retardation: 0.0, ..Settings::default() }
 }
 
 /// A neutral gel of n = 1e-3 whose drained Poisson ratio is the wanted one.
@@ -141,7 +141,10 @@ fn a_film_consolidates_as_terzaghi_says() {
     let (size, edge, sideways) = ([2, 2, 16], 1e-5, 3.0);
     let walls: Vec<Obstacle> = (0..2)
         .flat_map(|axis| [1.0, -1.0].map(|side| (Vector::ith(axis, -side), size[axis])))
-        .map(|(normal, across)| Obstacle::Plane { point: normal * (-0.5 * edge * sideways * across as f64), normal })
+        .map(|(normal, across)| Obstacle::Plane {
+            point: normal * (-0.5 * edge * sideways * across as f64),
+            normal,
+        })
         .collect();
     let lattice = Arc::new(Lattice::block(size));
     let mut film = Bead::new(lattice, 0.5 * edge * size[0] as f64, Vector::zeros(), sideways);
@@ -163,7 +166,9 @@ fn a_film_consolidates_as_terzaghi_says() {
     let start = kinetics.water();
     let mut water = vec![(0.0, start)];
     kinetics
-        .advance(&history, &walls, 8.0 / unit, |_, step| water.push((unit * (step.time - fall.time), step.water)))
+        .advance(&history, &walls, 8.0 / unit, |_, step| {
+            water.push((unit * (step.time - fall.time), step.water))
+        })
         .unwrap();
     let end = kinetics.water();
     println!("J {ratio:.4}, then {:.4}, then {:.4} times that", start, end / start);
@@ -187,8 +192,13 @@ fn a_dent_relaxes_by_what_the_poisson_ratio_says() {
     });
     let bead = Bead::new(Arc::new(Lattice::new(24)), 1e-3 / stretch, Vector::zeros(), stretch);
     let permeability = Permeability::new(&gel, DIFFUSION, 1.5).unwrap();
-    let settings =
-        Settings { step_error: 2e-3, residual: 1e-6, retardation: 0.0, corrections: 4, ..Settings::default() };
+    let settings = Settings {
+        step_error: 2e-3,
+        residual: 1e-6,
+        retardation: 0.0,
+        corrections: 4,
+        ..Settings::default()
+    };
     let mut kinetics = Kinetics::new(bead, numbers, permeability, settings).unwrap();
     let history = History::new(vec![from(0.0, 0.0)]).unwrap();
     let mut force_at = |time: f64| {

@@ -62,7 +62,8 @@ impl Conductance {
     pub(super) fn limit(&mut self, limit: Option<f64>, limited: bool, potentials: &[f64]) -> bool {
         self.limit = limit.filter(|_| limited);
         let Some(most) = limit else { return false };
-        let is_limited = if limited { self.skin_potential(potentials) <= 0.0 } else { self.intake(potentials) > most };
+        let is_limited =
+            if limited { self.skin_potential(potentials) <= 0.0 } else { self.intake(potentials) > most };
         self.limit = limit.filter(|_| is_limited);
         is_limited
     }
@@ -108,7 +109,8 @@ impl Conductance {
             }
             let mut left = 0.0;
             for (row, &other) in links.iter().zip(&cell.others[..cell.count]) {
-                let flow: f64 = row.iter().zip(&differences).map(|(link, difference)| link * difference).sum();
+                let flow: f64 =
+                    row.iter().zip(&differences).map(|(link, difference)| link * difference).sum();
                 left += flow;
                 if other != SKIN {
                     out[other as usize] += flow;

@@ -98,7 +98,6 @@ impl History {
     }
 }
 
-
 impl TryFrom<Vec<Change>> for History {
     type Error = HistoryError;
 
@@ -143,10 +142,7 @@ mod tests {
         let history = History::new(vec![at(0.0, 0.0), at(10.0, -1e4), at(20.0, -1e5)]).unwrap();
         let potential = |time| history.at(time).surroundings.potential;
         assert_eq!([-1.0, 0.0, 9.9, 10.0, 25.0].map(potential), [0.0, 0.0, 0.0, -1e4, -1e5]);
-        assert_eq!(
-            [0.0, 10.0, 20.0].map(|time| history.next_change(time)),
-            [Some(10.0), Some(20.0), None]
-        );
+        assert_eq!([0.0, 10.0, 20.0].map(|time| history.next_change(time)), [Some(10.0), Some(20.0), None]);
     }
 
     #[test]
@@ -154,10 +150,7 @@ mod tests {
         assert_eq!(History::new(vec![]), Err(HistoryError::Empty));
         let repeated = History::new(vec![at(0.0, 0.0), at(0.0, -1.0)]);
         assert_eq!(repeated, Err(HistoryError::Time { index: 1, time: 0.0 }));
-        assert!(matches!(
-            History::new(vec![at(f64::NAN, 0.0)]),
-            Err(HistoryError::Time { index: 0, .. })
-        ));
+        assert!(matches!(History::new(vec![at(f64::NAN, 0.0)]), Err(HistoryError::Time { index: 0, .. })));
         for potential in [-2e9, 1.0, f64::NAN] {
             let error = History::new(vec![at(0.0, potential)]).unwrap_err();
             assert!(error.to_string().contains("water potential"), "{error}");

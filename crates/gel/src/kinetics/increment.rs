@@ -193,7 +193,11 @@ impl Problem<'_> {
         };
         if self.elastic.lattice.slots.iter().all(keeps) {
             at.positions = positions;
-            self.elastic.lattice.slots.iter().for_each(|&slot| at.water[slot as usize] = ratios[slot as usize]);
+            self.elastic
+                .lattice
+                .slots
+                .iter()
+                .for_each(|&slot| at.water[slot as usize] = ratios[slot as usize]);
         }
     }
 
@@ -212,7 +216,13 @@ impl Problem<'_> {
     }
 
     /// What each equation lacks; see `Saddle`.
-    fn right_hand_side(&self, at: &State, reference: &Reference, (duration, stiffening): (f64, f64), scratch: &mut Scratch) {
+    fn right_hand_side(
+        &self,
+        at: &State,
+        reference: &Reference,
+        (duration, stiffening): (f64, f64),
+        scratch: &mut Scratch,
+    ) {
         let Self { elastic, obstacles, cells, .. } = self;
         let lattice = elastic.lattice;
         let (nodes, slots) = (at.positions.len(), at.water.len());
@@ -222,7 +232,8 @@ impl Problem<'_> {
         let (volumes, flows) = rest.split_at_mut(slots);
         elastic.add_mixed_gradient(&at.positions, &at.slopes, forces, &mut scratch.ratios);
         if stiffening > 1.0 {
-            let way: Vec<f64> = at.positions.iter().zip(&reference.positions).map(|(x, from)| x - from).collect();
+            let way: Vec<f64> =
+                at.positions.iter().zip(&reference.positions).map(|(x, from)| x - from).collect();
             let mut lag = vec![0.0; nodes];
             elastic.add_mixed_gradient(&way, &vec![0.0; slots], &mut lag, &mut vec![0.0; slots]);
             forces.iter_mut().zip(&lag).for_each(|(force, lag)| *force += (stiffening - 1.0) * lag);
@@ -255,9 +266,7 @@ impl Problem<'_> {
         let (motion, rest) = change.split_at(at.positions.len());
         let (slopes, potentials) = rest.split_at(at.water.len());
         let stride = lattice.stride();
-        let way = |node: usize| {
-            (0..3).map(|axis| motion[axis * stride + node].powi(2)).sum::<f64>().sqrt()
-        };
+        let way = |node: usize| (0..3).map(|axis| motion[axis * stride + node].powi(2)).sum::<f64>().sqrt();
         let furthest = (0..lattice.node_count()).map(way).fold(0.0, f64::max);
         let mut length = if furthest > longest { longest / furthest } else { 1.0 };
         // The column is needed no more: it takes the change of water.

@@ -22,7 +22,13 @@ pub(super) struct Solution {
 
 /// Solves for `right` until the residual's norm, as the preconditioner measures it, has
 /// fallen to the share `forcing` or below `target`.
-pub(super) fn solve(system: &impl System, right: &[f64], forcing: f64, target: f64, limit: usize) -> Solution {
+pub(super) fn solve(
+    system: &impl System,
+    right: &[f64],
+    forcing: f64,
+    target: f64,
+    limit: usize,
+) -> Solution {
     let length = right.len();
     let mut vector = vec![0.0; length];
     let (mut before, mut now) = (vec![0.0; length], right.to_vec());

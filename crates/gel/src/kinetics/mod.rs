@@ -82,8 +82,8 @@ pub struct Settings {
 impl Default for Settings {
     fn default() -> Self {
         Self {
-            step_error: 5e-3,
-            residual: 1e-6,
+            step_error: 1e-2,
+            residual: 1e-5,
             corrections: 1,
             retardation: 3e-4,
             contact_seals: true,
@@ -137,7 +137,9 @@ pub enum KineticsError {
         expected: usize,
     },
     /// No step is short enough.
-    #[error("no state follows {time} s, not even after {duration:.1e} s; look for obstacles deep in the bead")]
+    #[error(
+        "no state follows {time} s, not even after {duration:.1e} s; look for obstacles deep in the bead"
+    )]
     Stalled {
         /// Where time stopped (s).
         time: f64,
@@ -465,13 +467,19 @@ impl Problem<'_> {
         // The difference to the first-order step that goes on at the first stage's rate.
         let errors: Vec<f64> = (0..middle.len())
             .map(|slot| {
-                let (first, second) = (middle[slot] - from.water[slot], state.water[slot] - reference.water[slot]);
+                let (first, second) =
+                    (middle[slot] - from.water[slot], state.water[slot] - reference.water[slot]);
                 ((second - first) / state.water[slot]).powi(2)
             })
             .collect();
         let came_in = duration * ((1.0 - STAGE) * first.intake + STAGE * solved.intake);
         solved.steps += first.steps;
         solved.iterations += first.iterations;
-        Some(Stages { state, came_in, error: weighed_mean(&self.elastic.lattice.volume, &errors).sqrt(), solved })
+        Some(Stages {
+            state,
+            came_in,
+            error: weighed_mean(&self.elastic.lattice.volume, &errors).sqrt(),
+            solved,
+        })
     }
 }

@@ -69,7 +69,8 @@ impl Guess {
         for &slot in &lattice.slots {
             let slot = slot as usize;
             let f = state.gradient_of(slot);
-            let cofactors = f.try_inverse().map_or(0.0, |inverse| inverse.norm_squared()) * f.determinant().powi(2);
+            let cofactors =
+                f.try_inverse().map_or(0.0, |inverse| inverse.norm_squared()) * f.determinant().powi(2);
             let volume = unit * lattice.volume[slot];
             let chains = volume * cofactors / (3.0 * stiffening * elastic.gel.numbers().crosslinks);
             let own = compliance[slot];

@@ -114,12 +114,7 @@ fn middle(lattice: &Lattice, voxel: usize) -> Vector {
 }
 
 /// Gives every voxel with open skin points one face through them.
-fn add_skin(
-    lattice: &Lattice,
-    middles: &[Vector],
-    open: impl Fn(usize) -> bool,
-    faces: &mut [Vec<Face>],
-) {
+fn add_skin(lattice: &Lattice, middles: &[Vector], open: impl Fn(usize) -> bool, faces: &mut [Vec<Face>]) {
     let mut sums = vec![(0.0, Vector::zeros(), Vector::zeros()); middles.len()];
     for point in (0..lattice.skin.len()).filter(|&point| open(point)) {
         let place = Vector::from(lattice.skin.place[point]);
