@@ -11,6 +11,7 @@ mod mixed;
 use crate::lanes::{self, Lanes, Vector, WIDTH};
 use crate::lattice::{Lattice, Run};
 use crate::thermodynamics::Gel;
+pub(crate) use mixed::chain_links;
 use nalgebra::{Matrix3, Vector3};
 use pulp::{Arch, Simd, WithSimd};
 

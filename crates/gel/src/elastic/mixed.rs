@@ -2,8 +2,9 @@
 //! its own that holds it at its volume. Slopes of φ, negative pressures over kT/Ω, take
 //! the place of φ' in the forces; volume ratios come out beside them.
 
-use super::{Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient};
+use super::{EDGES, Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient};
 use crate::lanes::{self, Lanes, WIDTH};
+use crate::lattice::Lattice;
 use nalgebra::Matrix3;
 use pulp::{Arch, Simd, WithSimd};
 
@@ -108,6 +109,23 @@ impl Elastic<'_> {
                     tensions[d] = lanes::add(lanes::scale(df[d], mean), pressed);
                 }
                 self.scatter(&tensions, &edges, &shape, run, along, out);
+            }
+        }
+    }
+}
+
+/// Visits every spring along a voxel's edge: its two nodes and its share of the voxels' gel.
+pub(crate) fn chain_links(lattice: &Lattice, mut visit: impl FnMut(usize, usize, f64)) {
+    for run in &lattice.runs {
+        for along in 0..run.len {
+            let (group, lane) = (run.slot + along - along % WIDTH, along % WIDTH);
+            let weights = edge_weights(lattice, group);
+            let corners = Lattice::corners(run, along);
+            for d in 0..3 {
+                for (edge, &near) in EDGES[d].iter().enumerate() {
+                    let strength = weights[d][edge].0[lane] * lattice.volume[run.slot + along];
+                    visit(corners[near], corners[near + (1 << d)], strength);
+                }
             }
         }
     }

@@ -1,5 +1,6 @@
 //! One implicit increment of time: where water and solid are at its end.
 
+use super::coarse::Coarse;
 use super::conductance::Conductance;
 use super::minres;
 use super::permeability::Permeability;
@@ -47,6 +48,7 @@ pub(super) struct Problem<'a> {
     pub(super) elastic: Elastic<'a>,
     pub(super) obstacles: &'a [Obstacle],
     pub(super) cells: &'a [Cell],
+    pub(super) coarse: &'a Coarse,
     pub(super) permeability: &'a Permeability,
     /// Most water that the skin takes in (voxel volumes per second).
     pub(super) supply: Option<f64>,
@@ -160,6 +162,7 @@ impl Problem<'_> {
                 compliance: &scratch.compliance,
                 stiffening,
                 guess: &scratch.guess,
+                coarse: self.coarse,
                 modes: &modes,
             };
             let solution = minres::solve(&saddle, &scratch.right, FORCING, 0.3 * target, ITERATIONS);

@@ -8,6 +8,7 @@
 //! whose stages are such increments.
 
 mod aperture;
+mod coarse;
 mod conductance;
 mod history;
 mod increment;
@@ -27,6 +28,7 @@ use crate::rigid::Held;
 use crate::stress::StressField;
 use crate::thermodynamics::{Gel, GelNumbers};
 use bedswell_geometry::Vector;
+use coarse::Coarse;
 pub use history::{Change, History, HistoryError, Outside};
 use increment::{Problem, Reference, Scratch, Solved, State, weighed_mean};
 pub use permeability::{Permeability, PermeabilityError};
@@ -57,6 +59,7 @@ pub struct Kinetics {
     /// Skin points that contact seals, and the cells without them.
     sealed: Vec<u32>,
     cells: Vec<Cell>,
+    coarse: Coarse,
     scratch: Scratch,
 }
 
@@ -179,6 +182,7 @@ impl Kinetics {
         }
         Ok(Self {
             cells: cells(&lattice, |_| true),
+            coarse: Coarse::new(&lattice),
             bead,
             numbers,
             permeability,
@@ -322,6 +326,7 @@ impl Kinetics {
             elastic,
             obstacles,
             cells: &self.cells,
+            coarse: &self.coarse,
             permeability: &self.permeability,
             supply: outside.supply.map(|supply| supply / voxel),
             held: self.held(obstacles),

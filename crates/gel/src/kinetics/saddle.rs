@@ -1,5 +1,6 @@
 //! The linear system of one Newton step: nodes move, pressures and potentials change.
 
+use super::coarse::Coarse;
 use super::conductance::Conductance;
 use super::minres::System;
 use super::stencil::Cell;
@@ -33,6 +34,7 @@ pub(super) struct Saddle<'a> {
     /// are over it.
     pub(super) stiffening: f64,
     pub(super) guess: &'a Guess,
+    pub(super) coarse: &'a Coarse,
     pub(super) modes: &'a RigidModes,
 }
 
@@ -132,6 +134,8 @@ impl System for Saddle<'_> {
             let way = block * Vector::new(forces[node], forces[stride + node], forces[2 * stride + node]);
             (0..3).for_each(|axis| motion[axis * stride + node] = way[axis]);
         }
+        let chains = self.elastic.gel.dry_shear_modulus() * self.elastic.edge;
+        self.coarse.add_answer(forces, chains * self.stiffening, motion);
         self.modes.add_coarse(forces, motion);
         self.modes.project(motion);
         for (slot, block) in self.guess.voxels.iter().enumerate() {
