@@ -152,3 +152,76 @@ fn mobility(f: &Matrix, permeability: f64) -> Matrix {
     ]);
     cofactors.transpose() * cofactors * (permeability / f.determinant())
 }
+
+#[cfg(test)]
+mod tests {
+    use super::super::stencil::cells;
+    use super::*;
+    use crate::bead::Bead;
+    use crate::elastic::Elastic;
+    use crate::lattice::Lattice;
+    use crate::thermodynamics::{Gel, GelNumbers, Surroundings};
+    use bedswell_geometry::Vector;
+    use std::sync::Arc;
+
+    /// A ball of 8 across, stretched and sheared alike everywhere: its cells, and their
+    /// conductance.
+    fn sheared(lattice: &Arc<Lattice>) -> (Vec<Cell>, Conductance) {
+        let gel = Gel::new(GelNumbers { crosslinks: 1e-3, chi: 0.2, charges: 0.0 }, Surroundings::default());
+        let mut bead = Bead::new(Arc::clone(lattice), 4.0, Vector::zeros(), 3.0);
+        let stride = lattice.stride();
+        for node in 0..lattice.node_count() {
+            bead.positions[node] +=
+                1.5 * bead.positions[stride + node] - 0.4 * bead.positions[2 * stride + node];
+        }
+        let (elastic, positions) = bead.elastic_and_positions(&gel);
+        let mut state = Linearisation::default();
+        elastic.linearise_mixed(positions, &vec![0.0; lattice.volume.len()], &mut state);
+        let (cells, ratios) = (cells(lattice, |_| true), vec![27.0; lattice.volume.len()]);
+        let mut conductance = Conductance::default();
+        let permeability = Permeability::new(&gel, 1e-10, 1.5).unwrap();
+        let Elastic { lattice, .. } = elastic;
+        conductance.renew((&cells, &lattice.slots), &state, &ratios, &permeability);
+        (cells, conductance)
+    }
+
+    #[test]
+    fn a_uniform_gradient_flows_through_sheared_gel_and_leaves_nothing_inside() {
+        let lattice = Arc::new(Lattice::new(8));
+        let (cells, conductance) = sheared(&lattice);
+        let gradient = Vector::new(1.0, -2.0, 0.5);
+        let mut potentials = vec![0.0; lattice.volume.len()];
+        for voxel in 0..lattice.voxel_count() {
+            let (centre, slot) = (lattice.voxel_offset(voxel), lattice.slots[voxel] as usize);
+            let middle = Vector::from_fn(|axis, _| centre[axis] - 0.5 + lattice.first[axis][slot]);
+            potentials[slot] = gradient.dot(&middle);
+        }
+        let mut out = vec![0.0; potentials.len()];
+        conductance.outflow(&cells, &lattice.slots, &potentials, &mut out);
+        let deep: Vec<usize> = (0..lattice.voxel_count())
+            .filter(|&voxel| lattice.voxel_offset(voxel).iter().all(|x| x.abs() < 1.0))
+            .collect();
+        assert_eq!(deep.len(), 8);
+        let through = conductance.diagonal[lattice.slots[deep[0]] as usize];
+        for voxel in deep {
+            let left = out[lattice.slots[voxel] as usize];
+            assert!(left.abs() < 1e-10 * through, "voxel {voxel}: {left} of {through}");
+        }
+    }
+
+    #[test]
+    fn what_the_skin_takes_in_is_what_the_voxels_gain_limited_or_not() {
+        let lattice = Arc::new(Lattice::new(8));
+        let (cells, mut conductance) = sheared(&lattice);
+        let mut potentials = vec![0.0; lattice.volume.len()];
+        lattice.slots.iter().for_each(|&slot| potentials[slot as usize] = -1.0 - f64::from(slot % 7));
+        let mut out = vec![0.0; potentials.len()];
+        conductance.outflow(&cells, &lattice.slots, &potentials, &mut out);
+        let free = conductance.intake(&potentials);
+        assert!((out.iter().sum::<f64>() / -free - 1.0).abs() < 1e-12);
+        assert!(conductance.limit(Some(0.25 * free), false, &potentials));
+        conductance.outflow(&cells, &lattice.slots, &potentials, &mut out);
+        assert!((out.iter().sum::<f64>() / (-0.25 * free) - 1.0).abs() < 1e-12);
+        assert!(!conductance.limit(Some(2.0 * free), false, &potentials));
+    }
+}

@@ -88,6 +88,11 @@ impl Problem<'_> {
         self.permeability.reference() * self.elastic.gel.energy_density() / self.elastic.edge.powi(2)
     }
 
+    /// Most water that the skin takes in, in units of L.
+    fn limit(&self) -> Option<f64> {
+        self.supply.map(|supply| supply / self.rate())
+    }
+
     /// Time (s) in which the gel's volume would change by as much as itself at the present
     /// rate (root of the voxels' mean square).
     pub(super) fn pace(&self, at: &State, scratch: &mut Scratch) -> f64 {
@@ -96,6 +101,7 @@ impl Problem<'_> {
         potentials_of(&self.elastic, at, &mut scratch.potentials);
         let parts = (self.cells, &lattice.slots[..]);
         scratch.conductance.renew(parts, &scratch.state, &at.water, self.permeability);
+        scratch.conductance.limit(self.limit(), false, &scratch.potentials);
         let mut flows = vec![0.0; at.water.len()];
         scratch.conductance.outflow(self.cells, &lattice.slots, &scratch.potentials, &mut flows);
         for &slot in &lattice.slots {
@@ -106,10 +112,9 @@ impl Problem<'_> {
     }
 
     /// Finds the state in which the solid is in equilibrium and water has flowed for
-    /// `duration` (s) from the `reference` water at the rates of that state, looked for from
-    /// `at` on: the minimum of
-    /// `N(x) + c Σ V φ(w) + ½ c (w - ref) V (τL)⁻¹ V (w - ref)` where J(x) = w, with N the
-    /// chains' energy. `None` where Newton's method does not converge.
+    /// `duration` (s) from the `reference` at the rates of that state, looked for from `at`
+    /// on. Chains that lag behind add N(x - x₀) times their retardation over `duration`.
+    /// `None` where Newton's method does not converge.
     pub(super) fn solve(
         &self,
         at: &mut State,
@@ -141,8 +146,7 @@ impl Problem<'_> {
                 let parts = (*cells, &lattice.slots[..]);
                 scratch.conductance.renew(parts, &scratch.state, &at.water, self.permeability);
             }
-            let limit = self.supply.map(|supply| supply / self.rate());
-            limited = scratch.conductance.limit(limit, limited, &scratch.potentials);
+            limited = scratch.conductance.limit(self.limit(), limited, &scratch.potentials);
             at.contacts.collect(&lattice.skin, lattice.skin.len(), &at.positions, obstacles, 2.0 * longest);
             let pressing = at.contacts.linearise(&lattice.skin, &at.positions, obstacles, true);
             self.right_hand_side(at, reference, (duration, stiffening), scratch);

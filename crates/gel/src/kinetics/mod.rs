@@ -1,11 +1,16 @@
 //! Water on its way through a bead.
 //!
-//! Water flows down its potential (Darcy's law in the network's frame, `conductance.rs`) and
-//! the solid is in equilibrium at every instant. Each implicit increment minimises energy
-//! and dissipation together (`increment.rs`): given the water, the chains' pressures hold
-//! each voxel at its volume. Time advances by the two-stage, second-order, L-stable
-//! diagonally implicit scheme of Alexander 1977, SIAM J. Numer. Anal. 14:1006 (from memory),
-//! whose stages are such increments.
+//! Water flows down its potential by Darcy's law in the network's frame (`conductance.rs`),
+//! and the solid is in equilibrium at every instant. An implicit increment of time minimises
+//! energy and dissipation together (`increment.rs`): the chains' energy N over the nodes'
+//! places x, the mixing energy φ over the water w of every voxel, and what the flow costs,
+//!
+//! `N(x) + c Σ V φ(w) + ½ c (w - w₀) V (τ L)⁻¹ V (w - w₀)`, with J(x) = w,
+//!
+//! so that water is conserved to rounding and no step is too long to be stable. The
+//! pressures that hold J(x) = w stay unknowns of their own, and so do the potentials
+//! (`saddle.rs`): dry, nearly incompressible gel and short, undrained steps cost no more than
+//! swollen gel. Steps (`stages.rs`) are two such increments.
 
 mod aperture;
 mod coarse;
@@ -15,8 +20,11 @@ mod increment;
 mod minres;
 mod permeability;
 mod saddle;
+mod settings;
 mod snapshot;
+mod stages;
 mod stencil;
+mod step;
 
 use crate::bead::Bead;
 use crate::contact::{Pair, skin_position};
@@ -27,22 +35,14 @@ use crate::obstacle::Obstacle;
 use crate::rigid::Held;
 use crate::stress::StressField;
 use crate::thermodynamics::{Gel, GelNumbers};
-use bedswell_geometry::Vector;
 use coarse::Coarse;
 pub use history::{Change, History, HistoryError, Outside};
-use increment::{Problem, Reference, Scratch, Solved, State, weighed_mean};
+use increment::{Problem, Scratch, State, weighed_mean};
 pub use permeability::{Permeability, PermeabilityError};
+pub use settings::Settings;
 pub use snapshot::Snapshot;
 use stencil::{Cell, cells};
-use thiserror::Error;
-
-/// γ = 1 - 1/√2, the share of a step that each stage takes.
-const STAGE: f64 = 1.0 - std::f64::consts::FRAC_1_SQRT_2;
-/// Bounds on how much longer or shorter the next step gets.
-const CHANGE: std::ops::RangeInclusive<f64> = 0.2..=2.5;
-/// Where Newton's method fails, the step is tried again at this share of its length.
-const RETRY: f64 = 0.25;
-const TRIES: usize = 25;
+pub use step::{KineticsError, Step};
 
 /// A bead in time.
 #[derive(Clone, Debug)]
@@ -61,94 +61,6 @@ pub struct Kinetics {
     cells: Vec<Cell>,
     coarse: Coarse,
     scratch: Scratch,
-}
-
-/// How closely time is followed, and what contact does to the skin.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Settings {
-    /// Error of the voxels' volumes that one step may make, over themselves (root of the
-    /// mean square).
-    pub step_error: f64,
-    /// Correction that Newton's method may leave, over the bead's own stretch.
-    pub residual: f64,
-    /// Times per step that contact pressures are corrected for the penetration they took.
-    pub corrections: usize,
-    /// Time by which the chains lag behind their force (s).
-    pub retardation: f64,
-    /// Pressed skin passes no water.
-    pub contact_seals: bool,
-    /// The bead's centre and orientation are held, for obstacles that would let it slip out
-    /// sideways.
-    pub held: bool,
-}
-
-impl Default for Settings {
-    fn default() -> Self {
-        Self {
-            step_error: 1e-2,
-            residual: 1e-5,
-            corrections: 1,
-            retardation: 3e-4,
-            contact_seals: true,
-            held: false,
-        }
-    }
-}
-
-/// What a step did.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Step {
-    /// Time at its end (s).
-    pub time: f64,
-    /// Its length (s).
-    pub duration: f64,
-    /// Water in the bead at its end (m³).
-    pub water: f64,
-    /// Water that has come in through the skin since the start (m³).
-    pub came_in: f64,
-    /// The bead's force on each obstacle (N).
-    pub forces: Vec<Vector>,
-    /// Deepest penetration of a skin point (m).
-    pub penetration: f64,
-    /// Correction that Newton's method left, over the bead's own stretch.
-    pub residual: f64,
-    /// Error of the voxels' volumes that the step made, over themselves.
-    pub error: f64,
-    /// Newton steps taken, with those of tries that failed.
-    pub newton_steps: usize,
-    /// Iterations of linear solves taken.
-    pub iterations: usize,
-}
-
-/// Why a bead cannot go on in time.
-#[derive(Clone, Debug, PartialEq, Error)]
-pub enum KineticsError {
-    /// A voxel holds no water.
-    #[error("voxel {voxel} holds no water (volume ratio {ratio}); start from a stretch above 1, as 1.05")]
-    Dry {
-        /// The voxel.
-        voxel: usize,
-        /// Its volume ratio to dry.
-        ratio: f64,
-    },
-    /// A snapshot of another lattice.
-    #[error("the snapshot has {found} values per field where this lattice has {expected}")]
-    OtherLattice {
-        /// Values found.
-        found: usize,
-        /// Values expected.
-        expected: usize,
-    },
-    /// No step is short enough.
-    #[error(
-        "no state follows {time} s, not even after {duration:.1e} s; look for obstacles deep in the bead"
-    )]
-    Stalled {
-        /// Where time stopped (s).
-        time: f64,
-        /// The shortest step that was tried (s).
-        duration: f64,
-    },
 }
 
 impl Kinetics {
@@ -310,12 +222,17 @@ impl Kinetics {
     ///
     /// # Errors
     /// When no step is short enough.
+    ///
+    /// # Panics
+    /// When `until` is not after the present.
+    #[track_caller]
     pub fn step(
         &mut self,
         outside: &Outside,
         obstacles: &[Obstacle],
         until: f64,
     ) -> Result<Step, KineticsError> {
+        assert!(until > self.time, "a step from {} s until {until} s", self.time);
         let gel = Gel::new(self.numbers, outside.surroundings);
         let lattice = self.bead.shared_lattice();
         let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
@@ -338,49 +255,29 @@ impl Kinetics {
             self.state.velocities.fill(0.0);
             self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch);
         }
-        let mut duration = self.next;
-        let mut effort = Solved::default();
-        let mut outcome = Err(KineticsError::Stalled { time: self.time, duration });
-        for _ in 0..TRIES {
-            // The last step takes all that is left; none leaves less than itself.
-            let last = duration >= left;
-            duration = if last { left } else { duration.min(0.5 * left) };
-            let tried = problem.two_stages(&self.state, duration, self.settings.corrections, &mut scratch);
-            let Some(stages) = tried else {
-                duration *= RETRY;
-                outcome = Err(KineticsError::Stalled { time: self.time, duration });
-                continue;
-            };
-            effort.steps += stages.solved.steps;
-            effort.iterations += stages.solved.iterations;
-            let ratio = 0.9 * (self.settings.step_error / stages.error.max(f64::MIN_POSITIVE)).sqrt();
-            let next = duration * ratio.clamp(*CHANGE.start(), *CHANGE.end());
-            if stages.error > self.settings.step_error {
-                duration = next;
-                continue;
-            }
-            self.came_in += stages.came_in * voxel;
-            self.time = if last { until } else { self.time + duration };
-            self.next = next.max(if last { self.next } else { 0.0 });
-            self.outside = Some(*outside);
-            self.bead.positions.copy_from_slice(&stages.state.positions);
-            self.state = stages.state;
-            outcome = Ok(Step {
-                time: self.time,
-                duration,
-                water: 0.0,
-                came_in: self.came_in,
-                forces: self.state.contacts.forces(&lattice.skin, &self.state.positions, obstacles),
-                penetration: 0.0,
-                residual: stages.solved.residual,
-                error: stages.error,
-                newton_steps: effort.steps,
-                iterations: effort.iterations,
-            });
-            break;
-        }
+        let outcome = problem.adapted_step(&self.state, self.next, left, &self.settings, &mut scratch);
         self.scratch = scratch;
-        outcome.map(|step| Step { water: self.water(), penetration: self.penetration(obstacles), ..step })
+        let stages = outcome.map_err(|duration| KineticsError::Stalled { time: self.time, duration })?;
+        let last = stages.duration >= left;
+        self.time = if last { until } else { self.time + stages.duration };
+        // A step cut short by the end says little about how long the next may be.
+        self.next = if last { stages.next.max(self.next) } else { stages.next };
+        self.came_in += stages.came_in * voxel;
+        self.outside = Some(*outside);
+        self.bead.positions.copy_from_slice(&stages.state.positions);
+        self.state = stages.state;
+        Ok(Step {
+            time: self.time,
+            duration: stages.duration,
+            water: self.water(),
+            came_in: self.came_in,
+            forces: self.state.contacts.forces(&lattice.skin, &self.state.positions, obstacles),
+            penetration: self.penetration(obstacles),
+            residual: stages.solved.residual,
+            error: stages.error,
+            newton_steps: stages.solved.steps,
+            iterations: stages.solved.iterations,
+        })
     }
 
     /// What must not move: all where nothing touches, the orientation of a ball, which
@@ -424,67 +321,5 @@ impl Kinetics {
             -obstacles[pair.obstacle as usize].gap(&place).distance
         };
         self.state.contacts.pairs.iter().map(depth).fold(0.0, f64::max)
-    }
-}
-
-/// A step's outcome.
-struct Stages {
-    state: State,
-    /// Water that came in (voxel volumes).
-    came_in: f64,
-    error: f64,
-    solved: Solved,
-}
-
-impl Problem<'_> {
-    /// Both stages of a step of `duration` (s). `None` where one is not found.
-    fn two_stages(
-        &self,
-        from: &State,
-        duration: f64,
-        corrections: usize,
-        scratch: &mut Scratch,
-    ) -> Option<Stages> {
-        let share = STAGE * duration;
-        let mut state = from.clone();
-        let start = Reference { positions: from.positions.clone(), water: from.water.clone() };
-        let first = self.solve(&mut state, &start, share, scratch)?;
-        let middle = state.water.clone();
-        let ahead = |start: &[f64], middle: &[f64]| -> Vec<f64> {
-            let further = (1.0 - STAGE) / STAGE;
-            start.iter().zip(middle).map(|(start, middle)| start + further * (middle - start)).collect()
-        };
-        let reference = Reference {
-            positions: ahead(&from.positions, &state.positions),
-            water: ahead(&from.water, &middle),
-        };
-        let mut solved = self.solve(&mut state, &reference, share, scratch)?;
-        for _ in 0..if self.obstacles.is_empty() { 0 } else { corrections } {
-            let skin = &self.elastic.lattice.skin;
-            state.contacts.update_multipliers(skin, &state.positions, self.obstacles);
-            let again = self.solve(&mut state, &reference, share, scratch)?;
-            solved = Solved {
-                steps: solved.steps + again.steps,
-                iterations: solved.iterations + again.iterations,
-                ..again
-            };
-        }
-        // The difference to the first-order step that goes on at the first stage's rate.
-        let errors: Vec<f64> = (0..middle.len())
-            .map(|slot| {
-                let (first, second) =
-                    (middle[slot] - from.water[slot], state.water[slot] - reference.water[slot]);
-                ((second - first) / state.water[slot]).powi(2)
-            })
-            .collect();
-        let came_in = duration * ((1.0 - STAGE) * first.intake + STAGE * solved.intake);
-        solved.steps += first.steps;
-        solved.iterations += first.iterations;
-        Some(Stages {
-            state,
-            came_in,
-            error: weighed_mean(&self.elastic.lattice.volume, &errors).sqrt(),
-            solved,
-        })
     }
 }
