@@ -253,7 +253,8 @@ impl Kinetics {
         let left = until - self.time;
         if self.outside != Some(*outside) || self.next == 0.0 {
             self.state.velocities.fill(0.0);
-            self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch);
+            let whole = self.permeability.bead_time(self.bead.dry_radius());
+            self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch).min(whole);
         }
         let outcome = problem.adapted_step(&self.state, self.next, left, &self.settings, &mut scratch);
         self.scratch = scratch;
