@@ -6,10 +6,14 @@
 //! the voxel's four edges along d: chain-bundle springs along the edges with share β,
 //! the mean gradient with the rest. For any affine deformation this is (n/2)(I1 - 3).
 
+mod mixed;
+
 use crate::lanes::{self, Lanes, Vector, WIDTH};
 use crate::lattice::{Lattice, Run};
 use crate::thermodynamics::Gel;
+pub(crate) use mixed::chain_links;
 use nalgebra::{Matrix3, Vector3};
+use pulp::{Arch, Simd, WithSimd};
 
 /// Share of the chains' energy carried by the edge springs. The mean gradient alone
 /// hourglasses; springs alone double the error of contact forces.
@@ -36,6 +40,52 @@ pub(crate) struct Linearisation {
     curvature: Vec<f64>,
 }
 
+/// The calls of the kernels, so that they are compiled for the vectors of the processor at
+/// hand: a closure would be left outside, compiled for any.
+struct Gradient<'a> {
+    elastic: &'a Elastic<'a>,
+    positions: &'a [f64],
+    out: &'a mut [f64],
+}
+
+struct Linearise<'a> {
+    elastic: &'a Elastic<'a>,
+    positions: &'a [f64],
+    convex: bool,
+    into: &'a mut Linearisation,
+}
+
+struct Stiffness<'a> {
+    elastic: &'a Elastic<'a>,
+    state: &'a Linearisation,
+    direction: &'a [f64],
+    out: &'a mut [f64],
+}
+
+impl WithSimd for Gradient<'_> {
+    type Output = f64;
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) -> f64 {
+        self.elastic.gradient_kernel(self.positions, self.out)
+    }
+}
+
+impl WithSimd for Linearise<'_> {
+    type Output = ();
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) {
+        self.elastic.linearisation_kernel(self.positions, self.convex, self.into);
+    }
+}
+
+impl WithSimd for Stiffness<'_> {
+    type Output = ();
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) {
+        self.elastic.stiffness_kernel(self.state, self.direction, self.out);
+    }
+}
+
 /// Corner offsets of the four edges along each direction in a voxel, x fastest.
 const EDGES: [[usize; 4]; 3] = [[0, 2, 4, 6], [0, 1, 4, 5], [0, 1, 2, 3]];
 /// Which of the other two directions run over an edge's number: its low and high bit.
@@ -46,7 +96,7 @@ impl Elastic<'_> {
     /// with the opposite sign), to `out`. Positions and `out` hold all x, all y, all z.
     /// Returns the smallest J; at or below 1 the result means nothing.
     pub(crate) fn add_gradient(&self, positions: &[f64], out: &mut [f64]) -> f64 {
-        pulp::Arch::new().dispatch(|| self.gradient_kernel(positions, out))
+        Arch::new().dispatch(Gradient { elastic: self, positions, out })
     }
 
     /// Records what `add_stiffness_times` needs about a state. With `convex` the
@@ -55,12 +105,12 @@ impl Elastic<'_> {
         for column in into.gradient.iter_mut().chain([&mut into.slope, &mut into.curvature]) {
             column.resize(self.lattice.volume.len(), 0.0);
         }
-        pulp::Arch::new().dispatch(|| self.linearisation_kernel(positions, convex, into));
+        Arch::new().dispatch(Linearise { elastic: self, positions, convex, into });
     }
 
     /// Adds the stiffness at a linearised state times `direction` to `out`.
     pub(crate) fn add_stiffness_times(&self, state: &Linearisation, direction: &[f64], out: &mut [f64]) {
-        pulp::Arch::new().dispatch(|| self.stiffness_kernel(state, direction, out));
+        Arch::new().dispatch(Stiffness { elastic: self, state, direction, out });
     }
 
     #[inline(always)]
@@ -216,8 +266,7 @@ impl Elastic<'_> {
         for axis in 0..3 {
             let column = &mut out[axis * stride..(axis + 1) * stride];
             for (row, &start) in run.rows.iter().enumerate() {
-                forces[2 * row][axis].add_to(column, start + along);
-                forces[2 * row + 1][axis].add_to(column, start + along + 1);
+                lanes::add_pairs(column, start + along, forces[2 * row][axis], forces[2 * row + 1][axis]);
             }
         }
     }

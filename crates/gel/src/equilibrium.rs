@@ -64,7 +64,7 @@ pub enum EquilibriumError {
 }
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge.
-const PENALTY: f64 = 8.0;
+pub(crate) const PENALTY: f64 = 8.0;
 /// Largest growth of the free stretch in one stage.
 const STAGE_GROWTH: f64 = 1.25;
 /// Stretch at which the way from dry starts: the mixing energy ends at J = 1.
@@ -428,7 +428,7 @@ fn precondition(blocks: &[Matrix], modes: &RigidModes, residual: &[f64], out: &m
 }
 
 /// The longest move of a node in one step (m): no point may jump through an obstacle.
-fn longest_step(voxel: f64, obstacles: &[Obstacle]) -> f64 {
+pub(crate) fn longest_step(voxel: f64, obstacles: &[Obstacle]) -> f64 {
     obstacles.iter().fold(2.0 * voxel, |least, obstacle| match obstacle {
         Obstacle::Sphere { radius, .. } => least.min(0.25 * radius),
         Obstacle::Cavity { .. } | Obstacle::Tube { .. } | Obstacle::Plane { .. } => least,

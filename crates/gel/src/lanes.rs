@@ -37,6 +37,23 @@ impl Lanes {
     }
 }
 
+/// Adds `near` to a slice from `at` on, and `far` from one further on: what neighbouring
+/// voxels do to the nodes between them, in one pass over the slice.
+#[inline(always)]
+pub(crate) fn add_pairs(slice: &mut [f64], at: usize, near: Lanes, far: Lanes) {
+    let slice = &mut slice[at..=at + WIDTH];
+    let mut sum = [0.0; WIDTH];
+    sum.copy_from_slice(&slice[..WIDTH]);
+    for lane in 0..WIDTH {
+        sum[lane] += near.0[lane];
+    }
+    for lane in 1..WIDTH {
+        sum[lane] += far.0[lane - 1];
+    }
+    slice[..WIDTH].copy_from_slice(&sum);
+    slice[WIDTH] += far.0[WIDTH - 1];
+}
+
 macro_rules! elementwise {
     ($trait:ident, $method:ident, $operator:tt) => {
         impl $trait for Lanes {

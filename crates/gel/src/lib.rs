@@ -7,6 +7,7 @@ mod elastic;
 mod equilibrium;
 mod fold;
 mod gel_contact;
+mod kinetics;
 mod lanes;
 mod lattice;
 mod obstacle;
@@ -22,6 +23,10 @@ pub use datasheet::{
 };
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use gel_contact::BeadContact;
+pub use kinetics::{
+    Change, History, HistoryError, Kinetics, KineticsError, Outside, Permeability, PermeabilityError,
+    Settings, Snapshot, Step,
+};
 pub use lattice::{Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
 pub use relaxation::{Load, Relaxation};

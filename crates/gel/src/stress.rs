@@ -32,15 +32,24 @@ impl StressField {
     /// The stress in a bead. Per voxel, from the mean deformation gradient over its
     /// gel: σ = (kT/Ω) [(n/J) F Fᵀ + φ'(J) 1].
     pub fn of(bead: &Bead, gel: &Gel) -> Self {
+        Self::with(bead, gel, |_, f| (*f, gel.mixing_slope(f.determinant())))
+    }
+
+    /// The stress where chains are stretched, and something takes the place of φ'(J) over
+    /// kT/Ω, as a function of the voxel and of F tells: σ = (kT/Ω) [(n/J) F' Fᵀ + φ' 1], of
+    /// which the symmetric part counts.
+    pub(crate) fn with(bead: &Bead, gel: &Gel, parts: impl Fn(usize, &Matrix) -> (Matrix, f64)) -> Self {
         let gradients = bead.gradients();
         let voxel = bead.voxel_edge().powi(3);
         let free = gel.free_volume_ratio();
         let n = gel.numbers().crosslinks;
         let stress: Vec<Matrix> = gradients
             .iter()
-            .map(|f| {
-                let j = f.determinant();
-                (f * f.transpose() * (n / j) + Matrix::identity() * gel.mixing_slope(j))
+            .enumerate()
+            .map(|(voxel, f)| {
+                let (stretched, slope) = parts(voxel, f);
+                let chains = stretched * f.transpose();
+                ((chains + chains.transpose()) * (0.5 * n / f.determinant()) + Matrix::identity() * slope)
                     * gel.energy_density()
             })
             .collect();

@@ -1,0 +1,326 @@
+//! Water on its way through a bead.
+//!
+//! Water flows down its potential by Darcy's law in the network's frame (`conductance.rs`),
+//! and the solid is in equilibrium at every instant. An implicit increment of time minimises
+//! energy and dissipation together (`increment.rs`): the chains' energy N over the nodes'
+//! places x, the mixing energy φ over the water w of every voxel, and what the flow costs,
+//!
+//! `N(x) + c Σ V φ(w) + ½ c (w - w₀) V (τ L)⁻¹ V (w - w₀)`, with J(x) = w,
+//!
+//! so that water is conserved to rounding and no step is too long to be stable. The
+//! pressures that hold J(x) = w stay unknowns of their own, and so do the potentials
+//! (`saddle.rs`): dry, nearly incompressible gel and short, undrained steps cost no more than
+//! swollen gel. Steps (`stages.rs`) are two such increments.
+
+mod aperture;
+mod coarse;
+mod conductance;
+mod history;
+mod increment;
+mod minres;
+mod permeability;
+mod saddle;
+mod settings;
+mod snapshot;
+mod stages;
+mod stencil;
+mod step;
+
+use crate::bead::Bead;
+use crate::contact::{Pair, skin_position};
+use crate::elastic::{self, Elastic};
+use crate::equilibrium::PENALTY;
+use crate::lattice::Shape;
+use crate::obstacle::Obstacle;
+use crate::rigid::Held;
+use crate::stress::StressField;
+use crate::thermodynamics::{Gel, GelNumbers};
+use coarse::Coarse;
+pub use history::{Change, History, HistoryError, Outside};
+use increment::{Problem, Scratch, State, weighed_mean};
+pub use permeability::{Permeability, PermeabilityError};
+pub use settings::Settings;
+pub use snapshot::Snapshot;
+use stencil::{Cell, cells};
+pub use step::{KineticsError, Step};
+
+/// A bead in time.
+#[derive(Clone, Debug)]
+pub struct Kinetics {
+    bead: Bead,
+    numbers: GelNumbers,
+    permeability: Permeability,
+    settings: Settings,
+    state: State,
+    time: f64,
+    came_in: f64,
+    next: f64,
+    outside: Option<Outside>,
+    /// Skin points that contact seals, and the cells without them.
+    sealed: Vec<u32>,
+    cells: Vec<Cell>,
+    coarse: Coarse,
+    scratch: Scratch,
+}
+
+impl Kinetics {
+    /// The bead as it is, at time 0. The water's pressure is guessed from the chains alone
+    /// and found in the first step.
+    ///
+    /// # Errors
+    /// When a voxel holds no water.
+    pub fn new(
+        bead: Bead,
+        numbers: GelNumbers,
+        permeability: Permeability,
+        settings: Settings,
+    ) -> Result<Self, KineticsError> {
+        let lattice = bead.shared_lattice();
+        let mut state = State {
+            positions: bead.positions.clone(),
+            velocities: vec![0.0; bead.positions.len()],
+            water: vec![1.0; lattice.volume.len()],
+            slopes: vec![0.0; lattice.volume.len()],
+            ..State::default()
+        };
+        for (voxel, f) in bead.gradients().iter().enumerate() {
+            let ratio = f.determinant();
+            if ratio.is_nan() || ratio <= 1.0 {
+                return Err(KineticsError::Dry { voxel, ratio });
+            }
+            let slot = lattice.slots[voxel] as usize;
+            state.water[slot] = ratio;
+            state.slopes[slot] = -numbers.crosslinks * f.norm_squared() / (3.0 * ratio);
+        }
+        Ok(Self {
+            cells: cells(&lattice, |_| true),
+            coarse: Coarse::new(&lattice),
+            bead,
+            numbers,
+            permeability,
+            settings,
+            state,
+            time: 0.0,
+            came_in: 0.0,
+            next: 0.0,
+            outside: None,
+            sealed: Vec::new(),
+            scratch: Scratch::default(),
+        })
+    }
+
+    /// Goes on from a snapshot of a bead with the same lattice, size, gel and settings.
+    ///
+    /// # Errors
+    /// When the snapshot is of another lattice.
+    pub fn resume(mut self, snapshot: &Snapshot) -> Result<Self, KineticsError> {
+        let state = &mut self.state;
+        for (field, own) in [
+            (&snapshot.positions, &mut state.positions),
+            (&snapshot.velocities, &mut state.velocities),
+            (&snapshot.water, &mut state.water),
+            (&snapshot.slopes, &mut state.slopes),
+        ] {
+            if field.len() != own.len() {
+                return Err(KineticsError::OtherLattice { found: field.len(), expected: own.len() });
+            }
+            own.copy_from_slice(field);
+        }
+        let pair = |&(point, obstacle, multiplier): &(u32, u32, f64)| Pair { point, obstacle, multiplier };
+        state.contacts.pairs = snapshot.pressures.iter().map(pair).collect();
+        state.contacts.area = snapshot.point_area;
+        self.bead.positions.copy_from_slice(&snapshot.positions);
+        (self.time, self.came_in, self.next) = (snapshot.time, snapshot.came_in, snapshot.next);
+        self.outside = snapshot.outside;
+        Ok(self)
+    }
+
+    /// All that is needed to go on from here.
+    pub fn snapshot(&self) -> Snapshot {
+        let pressing = self.state.contacts.pairs.iter().filter(|pair| pair.multiplier > 0.0);
+        Snapshot {
+            time: self.time,
+            positions: self.state.positions.clone(),
+            velocities: self.state.velocities.clone(),
+            water: self.state.water.clone(),
+            slopes: self.state.slopes.clone(),
+            pressures: pressing.map(|pair| (pair.point, pair.obstacle, pair.multiplier)).collect(),
+            point_area: self.state.contacts.area,
+            came_in: self.came_in,
+            next: self.next,
+            outside: self.outside,
+        }
+    }
+
+    /// The bead.
+    pub fn bead(&self) -> &Bead {
+        &self.bead
+    }
+
+    /// Time (s).
+    pub fn time(&self) -> f64 {
+        self.time
+    }
+
+    /// Water in the bead (m³).
+    pub fn water(&self) -> f64 {
+        let mean = weighed_mean(&self.bead.lattice().volume, &self.state.water);
+        (mean - 1.0) * self.bead.dry_volume()
+    }
+
+    /// The gel outside which is what the last step found there.
+    pub fn gel(&self) -> Gel {
+        Gel::new(self.numbers, self.outside.unwrap_or_default().surroundings)
+    }
+
+    /// Potential of each voxel's water against that outside (Pa): below 0 where more will
+    /// come.
+    pub fn potentials(&self) -> Vec<f64> {
+        let gel = self.gel();
+        let slots = self.bead.lattice().slots.iter().map(|&slot| slot as usize);
+        let potential = |slot: usize| gel.mixing_slope(self.state.water[slot]) - self.state.slopes[slot];
+        slots.map(|slot| potential(slot) * gel.energy_density()).collect()
+    }
+
+    /// The stress in the bead, with that of chains which lag behind.
+    pub fn stress(&self) -> StressField {
+        let lattice = self.bead.lattice();
+        let rates = elastic::gradients(lattice, self.bead.voxel_edge(), &self.state.velocities);
+        let lag = self.retardation();
+        StressField::with(&self.bead, &self.gel(), |voxel, f| {
+            (f + rates[voxel] * lag, self.state.slopes[lattice.slots[voxel] as usize])
+        })
+    }
+
+    /// Time by which the chains lag behind (s).
+    fn retardation(&self) -> f64 {
+        self.settings.retardation * self.permeability.bead_time(self.bead.dry_radius())
+    }
+
+    /// Follows a history to `until` (s) among obstacles that stay where they are; `visit`
+    /// sees every step.
+    ///
+    /// # Errors
+    /// When no step is short enough.
+    pub fn advance(
+        &mut self,
+        history: &History,
+        obstacles: &[Obstacle],
+        until: f64,
+        mut visit: impl FnMut(&Self, &Step),
+    ) -> Result<(), KineticsError> {
+        while self.time < until {
+            let change = history.next_change(self.time).unwrap_or(f64::INFINITY);
+            let step = self.step(&history.at(self.time), obstacles, change.min(until))?;
+            visit(self, &step);
+        }
+        Ok(())
+    }
+
+    /// One step, as long as its error allows and not beyond `until` (s). Obstacles may have
+    /// moved since the last.
+    ///
+    /// # Errors
+    /// When no step is short enough.
+    ///
+    /// # Panics
+    /// When `until` is not after the present.
+    #[track_caller]
+    pub fn step(
+        &mut self,
+        outside: &Outside,
+        obstacles: &[Obstacle],
+        until: f64,
+    ) -> Result<Step, KineticsError> {
+        assert!(until > self.time, "a step from {} s until {until} s", self.time);
+        let gel = Gel::new(self.numbers, outside.surroundings);
+        let lattice = self.bead.shared_lattice();
+        let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
+        self.prepare_contacts(&elastic, obstacles);
+        let mut scratch = std::mem::take(&mut self.scratch);
+        let voxel = self.bead.voxel_edge().powi(3);
+        let problem = Problem {
+            elastic,
+            obstacles,
+            cells: &self.cells,
+            coarse: &self.coarse,
+            permeability: &self.permeability,
+            supply: outside.supply.map(|supply| supply / voxel),
+            held: self.held(obstacles),
+            tolerance: self.settings.residual,
+            retardation: self.retardation(),
+        };
+        let left = until - self.time;
+        if self.outside != Some(*outside) || self.next == 0.0 {
+            self.state.velocities.fill(0.0);
+            let whole = self.permeability.bead_time(self.bead.dry_radius());
+            self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch).min(whole);
+        }
+        let outcome = problem.adapted_step(&self.state, self.next, left, &self.settings, &mut scratch);
+        self.scratch = scratch;
+        let stages = outcome.map_err(|duration| KineticsError::Stalled { time: self.time, duration })?;
+        let last = stages.duration >= left;
+        self.time = if last { until } else { self.time + stages.duration };
+        // A step cut short by the end says little about how long the next may be.
+        self.next = if last { stages.next.max(self.next) } else { stages.next };
+        self.came_in += stages.came_in * voxel;
+        self.outside = Some(*outside);
+        self.bead.positions.copy_from_slice(&stages.state.positions);
+        self.state = stages.state;
+        Ok(Step {
+            time: self.time,
+            duration: stages.duration,
+            water: self.water(),
+            came_in: self.came_in,
+            forces: self.state.contacts.forces(&lattice.skin, &self.state.positions, obstacles),
+            penetration: self.penetration(obstacles),
+            residual: stages.solved.residual,
+            error: stages.error,
+            newton_steps: stages.solved.steps,
+            iterations: stages.solved.iterations,
+        })
+    }
+
+    /// What must not move: all where nothing touches, the orientation of a ball, which
+    /// frictionless obstacles do not tell, and nothing of a block.
+    fn held(&self, obstacles: &[Obstacle]) -> Held {
+        match self.bead.lattice().shape() {
+            _ if self.settings.held || obstacles.is_empty() => Held::Everything,
+            Shape::Ball(_) => Held::Rotation,
+            Shape::Block(_) => Held::Nothing,
+        }
+    }
+
+    /// Fits contact stiffness and the sealed skin to the state.
+    fn prepare_contacts(&mut self, elastic: &Elastic, obstacles: &[Obstacle]) {
+        let skin = &elastic.lattice.skin;
+        let size = elastic.edge * weighed_mean(&elastic.lattice.volume, &self.state.water).cbrt();
+        let contacts = &mut self.state.contacts;
+        let area = skin.area * size * size;
+        // Pressures outlive a change of their points' area as forces.
+        let rescale = if contacts.area > 0.0 { contacts.area / area } else { 1.0 };
+        contacts.pairs.iter_mut().for_each(|pair| pair.multiplier *= rescale);
+        contacts.area = area;
+        contacts.penalty = PENALTY * elastic.gel.moduli().plane_strain() / size;
+        if !self.settings.contact_seals {
+            return;
+        }
+        contacts.collect(skin, skin.len(), &self.state.positions, obstacles, 0.0);
+        let pressing = contacts.linearise(skin, &self.state.positions, obstacles, false);
+        let mut sealed: Vec<u32> = pressing.iter().map(|pressing| pressing.point).collect();
+        sealed.dedup();
+        if sealed != self.sealed {
+            self.cells = cells(elastic.lattice, |point| sealed.binary_search(&(point as u32)).is_err());
+            self.sealed = sealed;
+        }
+    }
+
+    fn penetration(&self, obstacles: &[Obstacle]) -> f64 {
+        let skin = &self.bead.lattice().skin;
+        let depth = |pair: &Pair| {
+            let place = skin_position(skin, &self.state.positions, pair.point as usize);
+            -obstacles[pair.obstacle as usize].gap(&place).distance
+        };
+        self.state.contacts.pairs.iter().map(depth).fold(0.0, f64::max)
+    }
+}

@@ -1,0 +1,39 @@
+/// How closely time is followed, and what contact does to the skin.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Settings {
+    /// Error of the voxels' volumes that one step may make, over themselves (root of the
+    /// mean square; default 0.02). It is that of a first-order method and so an upper bound:
+    /// the bead's uptake is followed to about a tenth of it.
+    pub step_error: f64,
+    /// Correction that Newton's method may leave, over the bead's own stretch (default
+    /// 1e-5).
+    pub residual: f64,
+    /// Times per step that contact pressures are corrected for the penetration they took
+    /// (default 1). They are corrected further with every step.
+    pub corrections: usize,
+    /// Time by which the chains lag behind their force, over R²/D of the reference state
+    /// (default 3e-4): a viscosity that slows what is faster. A dry bead's skin swells so
+    /// much more than its core that it would crease, finer than any lattice. This keeps the
+    /// skin smooth, at the price of a third more tension in the core before that time; a
+    /// third of it lets a lattice of 20 across crease, in steps so short that a run hardly
+    /// ends. Swollen beads need none.
+    pub retardation: f64,
+    /// Pressed skin passes no water (default).
+    pub contact_seals: bool,
+    /// The bead's centre and orientation are held, for obstacles that would let it slip out
+    /// sideways.
+    pub held: bool,
+}
+
+impl Default for Settings {
+    fn default() -> Self {
+        Self {
+            step_error: 2e-2,
+            residual: 1e-5,
+            corrections: 1,
+            retardation: 3e-4,
+            contact_seals: true,
+            held: false,
+        }
+    }
+}

@@ -1,0 +1,27 @@
+use super::history::Outside;
+use serde::{Deserialize, Serialize};
+
+/// All that a bead's kinetics remember: resumed from it, a run goes on to the same bits.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct Snapshot {
+    /// Time (s).
+    pub time: f64,
+    /// Where the nodes are (m): all x, all y, all z, each padded.
+    pub positions: Vec<f64>,
+    /// How fast they move (m/s).
+    pub velocities: Vec<f64>,
+    /// Volume ratio to dry that each voxel's water gives it, padded.
+    pub water: Vec<f64>,
+    /// Stress that the chains do not bear, as a tension over kT/Ω, padded.
+    pub slopes: Vec<f64>,
+    /// Skin point, obstacle and pressure (Pa) of what presses.
+    pub pressures: Vec<(u32, u32, f64)>,
+    /// Area that each skin point had when they last pressed (m²).
+    pub point_area: f64,
+    /// Water that has come in since the start (m³).
+    pub came_in: f64,
+    /// Length of the next step, if nothing hinders it (s).
+    pub next: f64,
+    /// What was outside in the last step.
+    pub outside: Option<Outside>,
+}
