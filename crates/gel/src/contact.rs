@@ -17,6 +17,12 @@ pub(crate) struct Pair {
     clearance: f64,
 }
 
+impl Pair {
+    pub(crate) fn new(point: u32, obstacle: u32, multiplier: f64) -> Self {
+        Self { point, obstacle, multiplier, clearance: 0.0 }
+    }
+}
+
 /// All pairs of one bead, and what a pressure needs.
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Contacts {
@@ -63,7 +69,7 @@ impl Contacts {
                     }
                 }
                 if multiplier > 0.0 || near {
-                    self.pairs.push(Pair { point: key.0, obstacle: key.1, multiplier, clearance: 0.0 });
+                    self.pairs.push(Pair::new(key.0, key.1, multiplier));
                 }
             }
         }

@@ -126,7 +126,7 @@ impl Kinetics {
             }
             own.copy_from_slice(field);
         }
-        let pair = |&(point, obstacle, multiplier): &(u32, u32, f64)| Pair { point, obstacle, multiplier };
+        let pair = |&(point, obstacle, multiplier): &(u32, u32, f64)| Pair::new(point, obstacle, multiplier);
         state.contacts.pairs = snapshot.pressures.iter().map(pair).collect();
         state.contacts.area = snapshot.point_area;
         self.bead.positions.copy_from_slice(&snapshot.positions);
