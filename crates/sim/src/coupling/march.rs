@@ -270,3 +270,39 @@ impl March {
         Quality { swallowed: measure::swallowed(&self.bodies), ..self.rest_quality(gel) }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The work that swelling gel does on grains and lid lifts the lid's load, is stored in
+    /// contacts, or is lost by friction and by the march's damping; each is measured by itself.
+    #[test]
+    fn the_work_of_swelling_is_accounted_for() {
+        let scenes = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes");
+        let mut scene = crate::read_scene(&scenes.join("tree-pit.toml")).unwrap();
+        scene.bed.grains = 150;
+        scene.beads.across = 8;
+        let gel = scene.swelling_gel();
+        let shear = gel.moduli().shear;
+        for ratio in [0.05, 0.5] {
+            scene.bed.lid_stress = ratio * shear;
+            let bed = DryBed::build(&scene, 0, scene.bed.lid_stress.max(0.05 * shear)).unwrap();
+            let mut march = March::new(&scene, &bed, &gel);
+            march.bodies.grains.compute_contacts();
+            march.bodies.grains.start_account();
+            let (mut stretch, free, count) = (bed.stretch, gel.free_stretch(), 12);
+            for increment in 1..=count {
+                let next = bed.stretch * (free / bed.stretch).powf(f64::from(increment) / f64::from(count));
+                march.swell(&gel, stretch, next);
+                stretch = next;
+                march.rest(&gel.limited_to(next), ON_THE_WAY).unwrap();
+            }
+            march.rest(&gel, Target { steps: 2_000, required: false, ..AT_THE_END }).unwrap();
+            let account = march.bodies.grains.account().unwrap();
+            assert!(account.loads > 0.0 && account.lifted > 0.1 * account.loads, "{account:?}");
+            assert!(account.friction > 0.0, "{account:?}");
+            assert!(account.gap().abs() < 1e-3 * account.loads, "{ratio}: {account:?}");
+        }
+    }
+}
