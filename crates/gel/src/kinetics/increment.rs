@@ -19,7 +19,13 @@ const NEWTON_STEPS: usize = 14;
 const FOLLOWING: usize = 2;
 /// Share of a Newton step's right-hand side that its linear solve may leave.
 const FORCING: f64 = 3e-2;
-const ITERATIONS: usize = 1500;
+/// Iterations of a linear solve; one that needs more is of a state that is about to snap
+/// through, where shorter increments help.
+const ITERATIONS: usize = 600;
+/// Newton steps that may fail to bring the state nearer.
+const STRAYING: usize = 3;
+/// Share of a step's right-hand side that the next must fall below to count as nearer.
+const NEARER: f64 = 0.7;
 /// Share of its water that a voxel keeps in one Newton step or guess at least.
 const KEPT: f64 = 0.1;
 
@@ -138,6 +144,7 @@ impl Problem<'_> {
             column.resize(slots, 0.0);
         }
         let mut limited = false;
+        let (mut before, mut strayed) = (f64::INFINITY, 0);
         let mut solved = Solved::default();
         for step in 0..NEWTON_STEPS {
             let slopes: Vec<f64> = at.slopes.iter().map(|slope| slope / stiffening).collect();
@@ -172,7 +179,9 @@ impl Problem<'_> {
             let solution = minres::solve(&saddle, &scratch.right, FORCING, 0.3 * target, ITERATIONS);
             solved.residual = self.tolerance * solution.size / target;
             solved.iterations += solution.iterations;
-            if !solution.size.is_finite() {
+            strayed += usize::from(solution.size.is_nan() || solution.size > NEARER * before);
+            before = solution.size;
+            if strayed > STRAYING || solution.iterations == ITERATIONS {
                 return None;
             }
             if solution.size <= target && step >= FOLLOWING.min(1) {

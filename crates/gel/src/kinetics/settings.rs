@@ -14,9 +14,9 @@ pub struct Settings {
     /// Time by which the chains lag behind their force, over R²/D of the reference state
     /// (default 3e-4): a viscosity that slows what is faster. A dry bead's skin swells so
     /// much more than its core that it would crease, finer than any lattice. This keeps the
-    /// skin smooth, at the price of a third more tension in the core before that time; a
-    /// third of it lets a lattice of 20 across crease, in steps so short that a run hardly
-    /// ends. Swollen beads need none.
+    /// skin smooth up to 20 across, at the price of a third more tension in the core before
+    /// that time; a third of it lets such a bead crease and unfold, in three times as many
+    /// steps. Swollen beads need none.
     pub retardation: f64,
     /// Pressed skin passes no water (default).
     pub contact_seals: bool,
