@@ -226,9 +226,11 @@ fn a_state_in_a_newer_form_is_refused() {
     let env = TestEnv::new();
     copied_run(&env);
     let mut state = env.read("copy/states/0000.state");
-    state[8] = 3;
+    let known = state[8];
+    state[8] += 1;
     std::fs::write(env.path("copy/states/0000.state"), state).unwrap();
-    env.refuse(&["still", "copy", "--out", "p.png"], 2, &["0000.state", "format 3", "knows 2"]);
+    let (newer, known) = (format!("format {}", known + 1), format!("knows {known}"));
+    env.refuse(&["still", "copy", "--out", "p.png"], 2, &["0000.state", &newer, &known]);
 }
 
 #[test]
