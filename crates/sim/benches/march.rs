@@ -45,6 +45,7 @@ fn scene(grains: usize, beads: usize, across: usize) -> Scene {
     let file = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes/tree-pit.toml");
     let mut scene = read_scene(&file).expect("the scene that comes with the program");
     scene.bed.grains = grains;
+    scene.bed.porosity = None;
     scene.beads.amount = BeadAmount::Count(beads);
     scene.beads.across = across;
     scene

@@ -83,10 +83,10 @@ impl Desk {
     /// Starts display and viewer, and waits for the window. A machine that is short of
     /// processors may lose a display that is just coming up: there is a second try.
     pub(crate) fn open(arguments: &[&OsStr]) -> Self {
-        Self::try_open(arguments).or_else(|| Self::try_open(arguments)).expect("no window came up, twice")
+        Self::try_open(arguments).or_else(|_| Self::try_open(arguments)).unwrap()
     }
 
-    fn try_open(arguments: &[&OsStr]) -> Option<Self> {
+    fn try_open(arguments: &[&OsStr]) -> Result<Self, String> {
         let turn = TURN.lock().unwrap_or_else(PoisonError::into_inner);
         let mut server = Command::new("Xvfb")
             .args(["-displayfd", "1", "-screen", "0", "1280x720x24", "-nolisten", "tcp"])
@@ -108,8 +108,7 @@ impl Desk {
         while desk.window == 0 {
             if start.elapsed() > PATIENCE {
                 let ended = desk.viewer.try_wait();
-                eprintln!("no window on display {}; the viewer: {ended:?}", desk.display);
-                return None;
+                return Err(format!("no window on display {}; the viewer: {ended:?}", desk.display));
             }
             std::thread::sleep(Duration::from_millis(100));
             let found = desk.tool(&["search", "--onlyvisible", "--class", "bedswell"]);
@@ -117,7 +116,7 @@ impl Desk {
         }
         // There is no window manager to give it the keyboard.
         desk.must(&["windowfocus", &desk.window.to_string()]);
-        Some(desk)
+        Ok(desk)
     }
 
     /// Presses a key, such as `k` or `shift+period`.
