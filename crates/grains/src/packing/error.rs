@@ -51,7 +51,7 @@ pub enum PackError {
     LidStress(f64),
     /// A bed that is no wider or higher than its largest grains.
     #[error(
-        "the cell would be {height} m high, less than two of its largest grains of {largest} m: \
+        "the cell would be {height:.3e} m high, less than two of its largest grains of {largest:.3e} m: \
          ask for at least {needed} grains or leave out the coarsest"
     )]
     TooFewGrains {
@@ -64,7 +64,7 @@ pub enum PackError {
     },
     /// A bead that does not fit into the bed.
     #[error(
-        "a bead of {diameter} m is larger than the bed, {side} m wide and {height} m high: \
+        "a bead of {diameter:.3e} m is larger than the bed, {side:.3e} m wide and {height:.3e} m high: \
          ask for at least {needed} grains or for smaller beads"
     )]
     BeadLargerThanBed {
