@@ -30,12 +30,16 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
                 match option.split_once('=') {
                     Some(("grains", value)) => scene.bed.grains = value.parse()?,
                     Some(("increments", value)) => scene.march.increments = value.parse()?,
-                    _ => return Err(format!("{option}: grains=N or increments=N").into()),
+                    Some(("overlap", value)) => scene.march.overlap = value.parse()?,
+                    Some(("damping", value)) => scene.march.damping = value.parse()?,
+                    _ => {
+                        return Err(format!("{option}: grains=, increments=, overlap= or damping=").into());
+                    }
                 }
             }
             let started = Instant::now();
             let mut sums = [0.0; 7];
-            let (mut done, mut uptakes) = (0, Vec::new());
+            let (mut done, mut uptakes, mut heaves) = (0, Vec::new(), Vec::new());
             let outcomes: Vec<_> =
                 (0..packs).into_par_iter().map(|pack| run_pack(&scene, pack, &mut ())).collect();
             for (pack, outcome) in outcomes.into_iter().enumerate() {
@@ -47,6 +51,7 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
                         uptakes.push(uptake);
                         sums[0] += uptake;
                         sums[1] += 1e3 * outcome.heave_m;
+                        heaves.push(1e3 * outcome.heave_m);
                         sums[2] = f64::max(sums[2], quality.swallowed);
                         sums[3] = f64::max(sums[3], quality.grain_residual);
                         sums[4] = f64::max(sums[4], quality.gel_residual);
@@ -59,10 +64,11 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
             }
             let count = f64::from(done.max(1));
             let mean = sums[0] / count;
-            let spread = (uptakes.iter().map(|u| (u - mean).powi(2)).sum::<f64>()).sqrt() / count;
+            let spread = error_of_mean(&uptakes);
             println!(
-                "{across:>6}  {ratio:<5}  {done:>5}  {mean:.4}±{spread:.4}  {:>8.4}   {:.1e}    {:.1e}  {:.1e}  {:.1e}  {:.1e}  {:.1}",
+                "{across:>6}  {ratio:<5}  {done:>5}  {mean:.4}±{spread:.4}  {:>8.4}±{:.4}   {:.1e}    {:.1e}  {:.1e}  {:.1e}  {:.1e}  {:.1}",
                 sums[1] / count,
+                error_of_mean(&heaves),
                 sums[2],
                 sums[3],
                 sums[4],
@@ -73,4 +79,11 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
         }
     }
     Ok(())
+}
+
+/// Standard error of a mean.
+fn error_of_mean(values: &[f64]) -> f64 {
+    let count = values.len().max(1) as f64;
+    let mean = values.iter().sum::<f64>() / count;
+    values.iter().map(|value| (value - mean).powi(2)).sum::<f64>().sqrt() / count
 }

@@ -1,4 +1,3 @@
-use super::bodies::DAMPING;
 use super::march::FIRST_STRETCH;
 use super::pot::Pot;
 use crate::{BeadAmount, Bed, RunError, Scene, SoilGrading};
@@ -6,14 +5,13 @@ use bedswell_geometry::{Cell, Sphere, Stream, Vector, stream, volume_of_radius};
 use bedswell_grains::{Assembly, ContactLaw, Lid, PackRequest, Sides, pack};
 use rand::RngExt;
 
-/// Overlap of a typical contact over the grain diameter under the stress at hand: grains
-/// are softened until it is that much.
-pub(super) const CHOSEN_OVERLAP: f64 = 3e-4;
 /// Stretch from dry at which a bead starts among grains that stay where they are.
 const HELD_STRETCH: f64 = 1.05;
 /// Growths of the hard beads, and the steps after each.
 const HARD_GROWTHS: usize = 5;
 const HARD_STEPS: usize = 400;
+/// Damping of grains among growing hard beads.
+const HARD_DAMPING: f64 = 0.2;
 /// Purposes of a pack's random streams.
 const PACKING: u64 = 0;
 
@@ -58,7 +56,7 @@ impl DryBed {
         };
         let solid: f64 = spheres.iter().map(Sphere::volume).sum();
         let stress = stress.max(scene.bed.lid_stress + pot.map_or(0.0, |pot| pot.own_stress(solid)));
-        let law = ContactLaw::for_stress(stress, CHOSEN_OVERLAP, scene.soil.friction)
+        let law = ContactLaw::for_stress(stress, scene.march.overlap, scene.soil.friction)
             .with_rolling(scene.soil.rolling_friction);
         let frame = Frame { pot, law, lid, beads: scene.beads.dry_diameter };
         let mut grains = frame.assemble(cell, &spheres, spheres.len())?;
@@ -141,7 +139,7 @@ impl Frame {
             let mut together = self.assemble(cell, &mixed, count)?;
             for _ in 0..HARD_STEPS {
                 together.compute_contacts();
-                together.advance(DAMPING);
+                together.advance(HARD_DAMPING);
             }
             mixed = together.spheres();
             cell = together.cell;

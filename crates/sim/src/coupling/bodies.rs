@@ -5,14 +5,12 @@ use bedswell_geometry::Vector;
 use bedswell_grains::Assembly;
 use rayon::prelude::*;
 
-/// Share of each force component on grains and lid that is turned against the motion.
-/// Little of it lets slow rearrangements come to their end soonest.
-pub(super) const DAMPING: f64 = 0.2;
-/// The same once nothing rearranges any more: grains that only chatter come to rest sooner.
-const SETTLING: f64 = 0.6;
+/// Damping of grains that only chatter, where the usual one is this: they come to rest
+/// sooner, as nothing rearranges any more.
+const SETTLING: (f64, f64) = (0.6, 0.2);
 /// Largest net force on a grain, over the mean contact force, of grains that only chatter.
 const CHATTER: f64 = 2e-3;
-/// The same on the gel's nodes.
+/// Share of each force component that is turned against the motion, on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
 const REACH: f64 = 0.3;
@@ -27,13 +25,16 @@ pub(super) struct Bodies {
     pub(super) pairs: Vec<Pair>,
     /// Where the grains were when the beads' neighbours were last looked for.
     listed: Vec<Vector>,
+    /// Share of each force component on grains and lid that is turned against the motion.
+    /// Little of it lets slow rearrangements come to their end soonest.
+    usual_damping: f64,
     damping: f64,
 }
 
 impl Bodies {
-    pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>) -> Self {
+    pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>, damping: f64) -> Self {
         let around = vec![Neighbourhood::default(); beads.len()];
-        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), damping: DAMPING }
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), usual_damping: damping, damping }
     }
 
     /// Forces on everything, at the places where everything is.
@@ -68,7 +69,8 @@ impl Bodies {
 
     /// Damps as befits the largest net force on a grain, over the mean contact force.
     pub(super) fn damp(&mut self, residual: f64) {
-        self.damping = if residual < CHATTER { SETTLING } else { DAMPING };
+        let settling = SETTLING.0 * (self.usual_damping / SETTLING.1);
+        self.damping = if residual < CHATTER { settling } else { self.usual_damping };
     }
 
     pub(super) fn step(&mut self, gel: &Gel) {

@@ -1,4 +1,4 @@
-use super::bed::{CHOSEN_OVERLAP, DryBed};
+use super::bed::DryBed;
 use super::bodies::Bodies;
 use super::contents::Contents;
 use super::measure::{self, Watch};
@@ -129,7 +129,7 @@ pub(crate) fn march(
         forces_after: measure::forces(grains),
         across: march.bodies.beads.first().map_or(0, |bead| bead.bead().lattice().across()),
         across_asked: scene.beads.across,
-        chosen_overlap: CHOSEN_OVERLAP,
+        chosen_overlap: scene.march.overlap,
         beads: watch.beads(gel, &march.bodies.beads),
         quality: march.quality(gel),
         history,
@@ -153,7 +153,7 @@ impl March {
         let bead =
             |centre: &Vector| Relaxation::new(Bead::new(Arc::clone(&lattice), radius, *centre, stretch));
         let beads = bed.beads.iter().map(bead).collect();
-        let bodies = Bodies::new(bed.grains.clone(), beads);
+        let bodies = Bodies::new(bed.grains.clone(), beads, scene.march.damping);
         let mut march = Self { bodies, hold_beads: scene.beads.held, pot: Pot::of(scene) };
         march.weigh();
         march

@@ -165,4 +165,16 @@ pub struct Strength {
 pub struct March {
     /// Swelling increments from dry to the free stretch.
     pub increments: usize,
+    /// Overlap of a typical contact of grains over their diameter, which softens the
+    /// grains: results must not depend on it, steps do.
+    pub overlap: f64,
+    /// Share of each force on grains and lid that is turned against their motion: results
+    /// must not depend on it.
+    pub damping: f64,
+}
+
+impl Default for March {
+    fn default() -> Self {
+        Self { increments: 30, overlap: 3e-4, damping: 0.2 }
+    }
 }

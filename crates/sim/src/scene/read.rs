@@ -146,7 +146,12 @@ fn read_strength(document: &Node) -> Result<Strength, SceneError> {
 }
 
 fn read_march(document: &Node) -> Result<March, SceneError> {
-    let section = Section::new(document, "march", &["increments"])?;
-    let increments = section.get("increments").map_or(Ok(30), |entry| entry.whole(1..=10_000))? as usize;
-    Ok(March { increments })
+    let section = Section::new(document, "march", &["increments", "overlap", "damping"])?;
+    let usual = March::default();
+    let increments = section
+        .get("increments")
+        .map_or(Ok(usual.increments), |entry| entry.whole(1..=10_000).map(|count| count as usize))?;
+    let overlap = section.get("overlap").map_or(Ok(usual.overlap), |entry| entry.number(1e-5..=3e-3))?;
+    let damping = section.get("damping").map_or(Ok(usual.damping), |entry| entry.number(0.05..=0.3))?;
+    Ok(March { increments, overlap, damping })
 }

@@ -74,6 +74,8 @@ impl Scene {
 
         text.table("march");
         text.line("increments", self.march.increments);
+        text.line("overlap", number(self.march.overlap));
+        text.line("damping", number(self.march.damping));
         text.text
     }
 
