@@ -11,7 +11,8 @@ import numpy as np
 import statsmodels.api as sm
 from scipy.optimize import brentq
 from scipy.special import gamma
-from scipy.stats import beta, norm, rankdata, spearmanr
+from scipy.stats import beta, chi2, norm, rankdata, spearmanr
+from statsmodels.duration.survfunc import SurvfuncRight, survdiff
 
 KT_OVER_OMEGA = 8.314462618 * 298.15 / 18.0e-6  # Pa
 
@@ -117,3 +118,39 @@ a, b = rankdata(columns[1][chosen[:200_000]], axis=-1), rankdata(response[chosen
 a, b = a - a.mean(axis=-1, keepdims=True), b - b.mean(axis=-1, keepdims=True)
 print(f"  of the second  {quantiles((a * b).sum(-1) / np.sqrt((a * a).sum(-1) * (b * b).sum(-1)))}")
 print(f"  with ties {spearmanr([1, 2, 2, 3, 5], [2, 1, 3, 3, 4])[0]:.9f}")
+
+print("survival: events and ends of watching of each group")
+
+
+def lifetimes(events, censored=()):
+    return np.array([*events, *censored], float), np.array([1] * len(events) + [0] * len(censored))
+
+
+def compare(*groups):
+    times, ended = (np.concatenate(part) for part in zip(*groups))
+    statistic, tail = survdiff(times, ended, np.repeat(range(len(groups)), [len(group[0]) for group in groups]))
+    return f"{statistic:.9f}  p {tail:.9g}"
+
+
+treated = lifetimes([6, 6, 6, 7, 10, 13, 16, 22, 23], [6, 9, 10, 11, 17, 19, 20, 25, 32, 32, 34, 35])
+untreated = lifetimes([1, 1, 2, 2, 3, 4, 4, 5, 5, 8, 8, 8, 8, 11, 11, 12, 12, 15, 17, 22, 23])
+for name, group in [("treated", treated), ("untreated", untreated)]:
+    curve = SurvfuncRight(*group)
+    with np.errstate(all="ignore"):
+        limits = curve.quantile_ci(0.5, method="cloglog")
+    print(f"  {name}: median {curve.quantile(0.5)}  limits {limits[0]} {limits[1]}")
+    for time, share, error in zip(curve.surv_times, curve.surv_prob, curve.surv_prob_se):
+        spread = np.exp(z * error / (share * abs(log(share)))) if share > 0 else np.nan
+        print(f"    {time:g}  {share:.6f}  {error:.6f}  {share**spread:.6f} {share ** (1 / spread):.6f}")
+print(f"  log-rank {compare(treated, untreated)}")
+three = lifetimes([3, 5, 5, 8, 12], [5, 14]), lifetimes([5, 8, 8, 9], [8, 15, 16, 20]), lifetimes([2, 2, 3, 4, 8, 9], [10])
+print(f"  of three groups {compare(*three)}")
+
+print("twelve predictions in three bins")
+pairs = np.array(sorted([
+    (0.62, 1), (0.05, 0), (0.31, 1), (0.90, 1), (0.12, 0), (0.47, 0),
+    (0.08, 1), (0.71, 1), (0.55, 1), (0.24, 0), (0.83, 0), (0.38, 0),
+])).reshape(3, 4, 2)
+predicted, happened = pairs[..., 0].mean(axis=1), pairs[..., 1].sum(axis=1)
+statistic = ((happened - 4 * predicted) ** 2 / (4 * predicted * (1 - predicted))).sum()
+print(f"  {statistic:.9f}  p {chi2.sf(statistic, 3):.9f}")

@@ -25,8 +25,10 @@ pub use scene::{
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
-    Clustered, Estimate, Interval, Measure, bootstrap_mean, clopper_pearson, clustered_fraction,
-    mean_strength, strength_ratio, tear_probability, wilson,
+    Agreement, AgreementBin, AgreementError, Clustered, Estimate, GroupCount, Interval, Lifetime, Lifetimes,
+    LogRank, Measure, SurvivalCurve, SurvivalError, SurvivalMedian, SurvivalStep, agreement, bootstrap_mean,
+    clopper_pearson, clustered_fraction, kaplan_meier, log_rank, mean_strength, strength_ratio,
+    tear_probability, wilson,
 };
 pub use study::{
     Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,
