@@ -9,7 +9,7 @@ from math import expm1, log, log1p, sqrt
 
 import numpy as np
 import statsmodels.api as sm
-from scipy.optimize import brentq
+from scipy.optimize import brentq, minimize, minimize_scalar
 from scipy.special import gamma
 from scipy.stats import beta, chi2, norm, rankdata, spearmanr
 from statsmodels.duration.survfunc import SurvfuncRight, survdiff
@@ -154,3 +154,37 @@ pairs = np.array(sorted([
 predicted, happened = pairs[..., 0].mean(axis=1), pairs[..., 1].sum(axis=1)
 statistic = ((happened - 4 * predicted) ** 2 / (4 * predicted * (1 - predicted))).sum()
 print(f"  {statistic:.9f}  p {chi2.sf(statistic, 3):.9f}")
+
+print("strength from bench outcomes under four uniform tensions, V = V0: value and profile limits of scale and modulus")
+tensions, beads, torn = np.array([300.0, 400.0, 500.0, 600.0]), 20, np.array([1, 4, 11, 18])
+drop = chi2.ppf(0.95, 1) / 2
+
+
+def lack(ln_scale, ln_modulus):
+    risk = np.exp(np.exp(ln_modulus) * (np.log(tensions) - ln_scale))
+    return (beads - torn) @ risk - torn @ np.log(-np.expm1(-risk))
+
+
+def least(function, bounds):
+    return minimize_scalar(function, bounds=bounds, method="bounded", options={"xatol": 1e-12}).fun
+
+
+options = {"xatol": 1e-11, "fatol": 1e-13, "maxiter": 9999}
+best = minimize(lambda at: lack(*at), [np.log(480), np.log(5)], method="Nelder-Mead", options=options)
+profiles = [
+    lambda ln_scale: least(lambda ln_modulus: lack(ln_scale, ln_modulus), (0, log(100))) - best.fun - drop,
+    lambda ln_modulus: least(lambda ln_scale: lack(ln_scale, ln_modulus), (5.5, 7)) - best.fun - drop,
+]
+for value, profile in zip(best.x, profiles):
+    limits = np.exp([brentq(profile, value - 1, value), brentq(profile, value, value + 1)])
+    print(f"  {np.exp(value):.6f}  {limits[0]:.6f} {limits[1]:.6f}")
+p = -np.expm1(-((tensions / np.exp(best.x[0])) ** np.exp(best.x[1])))
+statistic = ((torn - beads * p) ** 2 / (beads * p * (1 - p))).sum()
+print(f"  chi-squared {statistic:.6f}  p {chi2.sf(statistic, 2):.6f}")
+
+
+def ratio(p):
+    return 5 * log(p / 0.25) + 15 * log((1 - p) / 0.75) + drop
+
+
+print(f"  one load, 5 of 20: {brentq(ratio, 1e-6, 0.25):.9f} {brentq(ratio, 0.25, 1 - 1e-6):.9f}")

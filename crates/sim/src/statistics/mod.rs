@@ -10,6 +10,7 @@ mod linear_effects;
 mod main_effects;
 mod rank_correlation;
 mod survival;
+mod tension_field;
 mod weakest_link;
 
 pub use agreement::{Agreement, AgreementBin, AgreementError, agreement};
@@ -20,6 +21,7 @@ pub use survival::{
     GroupCount, Lifetime, Lifetimes, LogRank, SurvivalCurve, SurvivalError, SurvivalMedian, SurvivalStep,
     kaplan_meier, log_rank,
 };
+pub use tension_field::TensionField;
 pub use weakest_link::{mean_strength, strength_ratio, tear_probability};
 
 pub(crate) use factorial::Combination;
