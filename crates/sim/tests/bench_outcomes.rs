@@ -20,6 +20,10 @@ fn read(text: &str) -> Result<BenchOutcomes, SceneError> {
     let soft = std::fs::read_to_string(scenes().join("bench-array.toml")).unwrap();
     let soft = soft.replace("crosslinks = 2.2e-4", "crosslinks = 1.1e-4");
     std::fs::write(folder.path().join("other-gel.toml"), &soft).unwrap();
+    let fine = std::fs::read_to_string(scenes().join("bench-array.toml"))
+        .unwrap()
+        .replace("across = 16", "across = 20");
+    std::fs::write(folder.path().join("fine.toml"), fine).unwrap();
     let path = folder.path().join("outcomes.csv");
     std::fs::write(&path, text).unwrap();
     read_bench_outcomes(&path)
@@ -94,6 +98,11 @@ fn a_scene_that_is_no_array_of_the_bench() {
 fn one_grade_of_two_gels() {
     let text = "geometry,grade,torn\nbench-array.toml,soft,yes\nother-gel.toml,soft,no\n";
     refused(text, 3, &["grade = \"soft\"", "bench-array.toml and other-gel.toml differ in [gel]"]);
+    refused(
+        &text.replace("other-gel", "fine"),
+        3,
+        &["bench-array.toml and fine.toml differ in beads.across"],
+    );
     assert_eq!(read(&text.replace("gel.toml,soft", "gel.toml,softer")).unwrap().grades.len(), 2);
 }
 
@@ -198,7 +207,7 @@ fn the_fitted_tables_take_the_place_of_those_of_a_scene() {
     approx::assert_relative_eq!(read_back.strength.scale, fitted.scale, max_relative = 1e-5);
     approx::assert_relative_eq!(read_back.strength.modulus, fitted.modulus, max_relative = 1e-5);
     assert!(
-        table.starts_with("# Grade two\u{b7}ply: strength from outcomes.csv, 1 of 1 beads torn."),
+        table.starts_with("# Grade two\u{b7}ply: strength from outcomes.csv, 1 of 1 beads torn, by"),
         "{table}"
     );
 

@@ -108,7 +108,7 @@ fn as_json(Fitted { grade, cases, fit }: &Fitted<'_>) -> serde_json::Value {
         })
     };
     let arrays: Vec<_> = cases.iter().map(array).collect();
-    serde_json::json!({ "grade": grade.name, "volume_m3": grade.strength.volume, "arrays": arrays, "fit": fit })
+    serde_json::json!({ "grade": grade.name, "volume_m3": grade.strength.volume, "across": grade.across, "arrays": arrays, "fit": fit })
 }
 
 fn write(path: &Path, Fitted { grade, fit, .. }: &Fitted<'_>, source: &Path) -> anyhow::Result<()> {
@@ -161,6 +161,8 @@ fn in_words(Fitted { grade, cases, fit }: &Fitted<'_>) -> String {
     let (StrengthFit::Both { agreement, .. } | StrengthFit::Scale { agreement, .. }) = fit else {
         return text;
     };
+    text +=
+        &format!("  tension           at {} voxels across; strength holds for beads as fine\n", grade.across);
     if let Some(law) = fit.strength(grade.strength.volume) {
         text += &in_arrays(cases, &law);
     }

@@ -37,6 +37,9 @@ pub struct BenchGrade {
     /// The strength that its scenes share: its volume is the reference volume of a fit, its
     /// modulus is assumed where the outcomes do not tell it.
     pub strength: Strength,
+    /// Voxels across a bead that its scenes share: the highest tensions depend on them, and a
+    /// fitted strength with them.
+    pub across: usize,
     /// Beads in each array where it was tested.
     pub counts: Vec<BenchCount>,
 }
@@ -81,7 +84,8 @@ impl BenchGrade {
 /// `geometry`, a scene file relative to the table; `grade`, what the gel is called; `torn`,
 /// `yes` or `no`. It has one row per bead. Other columns are left alone, as are lines that
 /// start with `#`. A scene must hold one bead at a given place among listed spheres with
-/// `fixed_grains = true`; the scenes of one grade must have the same gel and strength.
+/// `fixed_grains = true`; the scenes of one grade must agree in gel, strength and voxels
+/// across a bead.
 ///
 /// # Errors
 /// When a file cannot be read or says something that cannot be used; the error names the line
@@ -241,23 +245,25 @@ impl Sheet {
         row: &Row,
     ) -> Result<&'a mut BenchGrade, SceneError> {
         let BenchOutcomes { arrays, grades } = outcomes;
-        let Scene { gel, strength, .. } = &arrays[array].scene;
+        let Scene { gel, strength, beads, .. } = &arrays[array].scene;
         let Some(index) = grades.iter().position(|grade| grade.name == row.grade) else {
-            let (gel, strength) = (*gel, *strength);
-            grades.push(BenchGrade { name: row.grade.clone(), gel, strength, counts: Vec::new() });
+            let (gel, strength, across) = (*gel, *strength, beads.across);
+            grades.push(BenchGrade { name: row.grade.clone(), gel, strength, across, counts: Vec::new() });
             return Ok(grades.last_mut().unwrap_or_else(|| unreachable!("pushed above")));
         };
         let grade = &mut grades[index];
-        if grade.gel == *gel && grade.strength == *strength {
-            return Ok(grade);
-        }
-        let table = if grade.gel == *gel { "strength" } else { "gel" };
+        let alike = [
+            ("[gel]", grade.gel == *gel),
+            ("[strength]", grade.strength == *strength),
+            ("beads.across", grade.across == beads.across),
+        ];
+        let Some((what, _)) = alike.iter().find(|part| !part.1) else { return Ok(grade) };
         let first = grade.counts.first().map_or("", |count| &arrays[count.array].name);
         Err(self.wrong(
             row.line,
             format!(
-                "grade = {:?}: {first} and {} differ in [{table}]; one grade is one gel: give both scenes the same \
-                 table, or tell two grades apart by their names",
+                "grade = {:?}: {first} and {} differ in {what}; one grade is one gel, computed alike: make both \
+                 scenes agree, or tell two grades apart by their names",
                 row.grade, row.geometry
             ),
         ))

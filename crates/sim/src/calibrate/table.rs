@@ -10,10 +10,11 @@ use crate::statistics::Measure;
 pub fn gel_table(grade: &BenchGrade, fit: &StrengthFit, source: &str) -> Option<String> {
     let strength = fit.strength(grade.strength.volume)?;
     let mut comment = format!(
-        "Grade {}: strength from {source}, {} of {} beads torn.",
+        "Grade {}: strength from {source}, {} of {} beads torn, by their tension at {} voxels across.",
         grade.name,
         grade.torn(),
         grade.beads(),
+        grade.across,
     );
     comment += &match fit {
         StrengthFit::Both { scale, modulus, .. } => {
