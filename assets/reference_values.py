@@ -9,9 +9,10 @@ from math import expm1, log, log1p, sqrt
 
 import numpy as np
 import statsmodels.api as sm
-from scipy.optimize import brentq
+from scipy.optimize import brentq, minimize, minimize_scalar
 from scipy.special import gamma
-from scipy.stats import beta, norm, rankdata, spearmanr
+from scipy.stats import beta, chi2, norm, rankdata, spearmanr
+from statsmodels.duration.survfunc import SurvfuncRight, survdiff
 
 KT_OVER_OMEGA = 8.314462618 * 298.15 / 18.0e-6  # Pa
 
@@ -117,3 +118,73 @@ a, b = rankdata(columns[1][chosen[:200_000]], axis=-1), rankdata(response[chosen
 a, b = a - a.mean(axis=-1, keepdims=True), b - b.mean(axis=-1, keepdims=True)
 print(f"  of the second  {quantiles((a * b).sum(-1) / np.sqrt((a * a).sum(-1) * (b * b).sum(-1)))}")
 print(f"  with ties {spearmanr([1, 2, 2, 3, 5], [2, 1, 3, 3, 4])[0]:.9f}")
+
+print("survival: events and ends of watching of each group")
+
+
+def lifetimes(events, censored=()):
+    return np.array([*events, *censored], float), np.array([1] * len(events) + [0] * len(censored))
+
+
+def compare(*groups):
+    times, ended = (np.concatenate(part) for part in zip(*groups))
+    statistic, tail = survdiff(times, ended, np.repeat(range(len(groups)), [len(group[0]) for group in groups]))
+    return f"{statistic:.9f}  p {tail:.9g}"
+
+
+treated = lifetimes([6, 6, 6, 7, 10, 13, 16, 22, 23], [6, 9, 10, 11, 17, 19, 20, 25, 32, 32, 34, 35])
+untreated = lifetimes([1, 1, 2, 2, 3, 4, 4, 5, 5, 8, 8, 8, 8, 11, 11, 12, 12, 15, 17, 22, 23])
+for name, group in [("treated", treated), ("untreated", untreated)]:
+    curve = SurvfuncRight(*group)
+    with np.errstate(all="ignore"):
+        limits = curve.quantile_ci(0.5, method="cloglog")
+    print(f"  {name}: median {curve.quantile(0.5)}  limits {limits[0]} {limits[1]}")
+    for time, share, error in zip(curve.surv_times, curve.surv_prob, curve.surv_prob_se):
+        spread = np.exp(z * error / (share * abs(log(share)))) if share > 0 else np.nan
+        print(f"    {time:g}  {share:.6f}  {error:.6f}  {share**spread:.6f} {share ** (1 / spread):.6f}")
+print(f"  log-rank {compare(treated, untreated)}")
+three = lifetimes([3, 5, 5, 8, 12], [5, 14]), lifetimes([5, 8, 8, 9], [8, 15, 16, 20]), lifetimes([2, 2, 3, 4, 8, 9], [10])
+print(f"  of three groups {compare(*three)}")
+
+print("twelve predictions in three bins")
+pairs = np.array(sorted([
+    (0.62, 1), (0.05, 0), (0.31, 1), (0.90, 1), (0.12, 0), (0.47, 0),
+    (0.08, 1), (0.71, 1), (0.55, 1), (0.24, 0), (0.83, 0), (0.38, 0),
+])).reshape(3, 4, 2)
+predicted, happened = pairs[..., 0].mean(axis=1), pairs[..., 1].sum(axis=1)
+statistic = ((happened - 4 * predicted) ** 2 / (4 * predicted * (1 - predicted))).sum()
+print(f"  {statistic:.9f}  p {chi2.sf(statistic, 3):.9f}")
+
+print("strength from bench outcomes under four uniform tensions, V = V0: value and profile limits of scale and modulus")
+tensions, beads, torn = np.array([300.0, 400.0, 500.0, 600.0]), 20, np.array([1, 4, 11, 18])
+drop = chi2.ppf(0.95, 1) / 2
+
+
+def lack(ln_scale, ln_modulus):
+    risk = np.exp(np.exp(ln_modulus) * (np.log(tensions) - ln_scale))
+    return (beads - torn) @ risk - torn @ np.log(-np.expm1(-risk))
+
+
+def least(function, bounds):
+    return minimize_scalar(function, bounds=bounds, method="bounded", options={"xatol": 1e-12}).fun
+
+
+options = {"xatol": 1e-11, "fatol": 1e-13, "maxiter": 9999}
+best = minimize(lambda at: lack(*at), [np.log(480), np.log(5)], method="Nelder-Mead", options=options)
+profiles = [
+    lambda ln_scale: least(lambda ln_modulus: lack(ln_scale, ln_modulus), (0, log(100))) - best.fun - drop,
+    lambda ln_modulus: least(lambda ln_scale: lack(ln_scale, ln_modulus), (5.5, 7)) - best.fun - drop,
+]
+for value, profile in zip(best.x, profiles):
+    limits = np.exp([brentq(profile, value - 1, value), brentq(profile, value, value + 1)])
+    print(f"  {np.exp(value):.6f}  {limits[0]:.6f} {limits[1]:.6f}")
+p = -np.expm1(-((tensions / np.exp(best.x[0])) ** np.exp(best.x[1])))
+statistic = ((torn - beads * p) ** 2 / (beads * p * (1 - p))).sum()
+print(f"  chi-squared {statistic:.6f}  p {chi2.sf(statistic, 2):.6f}")
+
+
+def ratio(p):
+    return 5 * log(p / 0.25) + 15 * log((1 - p) / 0.75) + drop
+
+
+print(f"  one load, 5 of 20: {brentq(ratio, 1e-6, 0.25):.9f} {brentq(ratio, 0.25, 1 - 1e-6):.9f}")

@@ -1,6 +1,7 @@
 //! What a user is promised, on the real command.
 
 mod bad_input; // every refusal names key, value, allowed range and line, and writes nothing
+mod calibrations; // `calibrate`: strength from the bench
 mod checks; // `check` and what it spans
 mod command_line; // verbs, exit codes, JSON, completions
 mod interruptions; // killed, full disk, two writers

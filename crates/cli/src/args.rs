@@ -39,6 +39,8 @@ pub(crate) enum Verb {
     Run(Run),
     /// Run many packs and count torn beads; carries on where it was stopped
     Study(Study),
+    /// Fit the strength of a gel to beads that tore or stayed whole on the bench
+    Calibrate(Calibrate),
     /// Look at a run, a study, or a scene that runs while you look
     View(View),
     /// Film a run: a clip for a slide, without a window or graphics hardware
@@ -87,4 +89,17 @@ pub(crate) struct Study {
     /// Write the table as CSV too
     #[arg(long)]
     pub(crate) csv: bool,
+}
+
+/// Arguments of `calibrate`.
+#[derive(Debug, Args)]
+pub(crate) struct Calibrate {
+    /// Table with a row per bead: geometry (its array, a scene file), grade (a name), torn (yes or no)
+    pub(crate) outcomes: PathBuf,
+    /// Grade to fit; all of them if left out
+    #[arg(long, value_name = "NAME")]
+    pub(crate) grade: Option<String>,
+    /// File for the tables of gel and strength, to take over into scenes; it must not exist yet
+    #[arg(long, value_name = "FILE")]
+    pub(crate) out: Option<PathBuf>,
 }

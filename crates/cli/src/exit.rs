@@ -1,5 +1,5 @@
 use bedswell_film::{ClipError, FilmError, GltfError, ShotError};
-use bedswell_sim::{FolderError, ReadError, RunError, SceneError};
+use bedswell_sim::{FitError, FolderError, ReadError, RunError, SceneError};
 use std::process::ExitCode;
 use thiserror::Error;
 
@@ -21,6 +21,7 @@ impl Exit {
     pub(crate) fn of(error: &anyhow::Error) -> Self {
         let input = error.is::<SceneError>()
             || error.is::<ReadError>()
+            || error.is::<FitError>()
             || error.is::<ShotError>()
             || error.is::<Usage>();
         if input {

@@ -1,5 +1,6 @@
 //! Scenes, coupled swelling marches, studies and run folders.
 
+mod calibrate;
 mod check;
 mod coupling;
 pub mod figures;
@@ -12,6 +13,10 @@ mod statistics;
 mod study;
 
 pub use bedswell_grains::{Grading, SizeNumbers};
+pub use calibrate::{
+    BenchArray, BenchCount, BenchGrade, BenchOutcomes, FitError, LoadCase, StrengthFit, fit_strength,
+    gel_table, read_bench_outcomes,
+};
 pub use check::{CheckLine, checks};
 pub use folder::{
     FolderError, ReadError, RunFolder, RunSummary, StateRecorder, prepare_run_folder, read_run_folder,
@@ -25,8 +30,10 @@ pub use scene::{
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
-    Clustered, Estimate, Interval, Measure, bootstrap_mean, clopper_pearson, clustered_fraction,
-    mean_strength, strength_ratio, tear_probability, wilson,
+    Agreement, AgreementBin, AgreementError, Clustered, Estimate, GroupCount, Interval, Lifetime, Lifetimes,
+    LogRank, Measure, SurvivalCurve, SurvivalError, SurvivalMedian, SurvivalStep, TensionField, agreement,
+    bootstrap_mean, clopper_pearson, clustered_fraction, kaplan_meier, log_rank, mean_strength,
+    strength_ratio, tear_probability, wilson,
 };
 pub use study::{
     Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,

@@ -1,3 +1,4 @@
+use crate::TensionField;
 use serde::{Deserialize, Serialize};
 
 /// What became of one pack: the bed, each bead, and how it got there.
@@ -52,6 +53,9 @@ pub struct PackOutcome {
     /// Each grain before and after; kept by a single run, left out of a study's journal.
     #[serde(skip)]
     pub positions: Vec<GrainRecord>,
+    /// The tension in each bead at the end; kept by a single run, left out of a study's journal.
+    #[serde(skip)]
+    pub tensions: Vec<TensionField>,
 }
 
 impl PackOutcome {

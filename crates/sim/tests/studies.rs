@@ -53,6 +53,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         quality: Quality::default(),
         history: Vec::new(),
         positions: Vec::new(),
+        tensions: Vec::new(),
     })
 }
 

@@ -1,3 +1,4 @@
+mod calibrate;
 mod check;
 mod completions;
 mod describe;
@@ -19,6 +20,7 @@ pub(crate) fn perform(arguments: &Arguments) -> anyhow::Result<Exit> {
         Verb::Describe { scene } => describe::describe(scene, json),
         Verb::Run(run) => run::run(run, json),
         Verb::Study(study) => study::study(study, json),
+        Verb::Calibrate(calibrate) => calibrate::calibrate(calibrate, json),
         Verb::View(view) => view::view(view),
         Verb::Film(film) => film::film(film, json),
         Verb::Still(still) => still::still(still, json),

@@ -1,10 +1,15 @@
 use super::CheckLine;
 use super::line::Subject;
-use crate::{Strength, clopper_pearson, mean_strength, strength_ratio, tear_probability, wilson};
+use crate::statistics::{treated, untreated};
+use crate::{
+    Strength, clopper_pearson, kaplan_meier, log_rank, mean_strength, strength_ratio, tear_probability,
+    wilson,
+};
 
 const NEWCOMBE: &str = "Newcombe 1998 Table I (from memory) to 4 digits; scipy, statsmodels";
 const SCIPY: &str = "scipy and statsmodels";
 const WEIBULL: &str = "Weibull 1951 (from memory), worked with scipy";
+const REMISSION: &str = "data of Freireich et al. 1963, worked with statsmodels";
 
 const SUBJECT: Subject = Subject("statistics");
 
@@ -67,6 +72,19 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
             WEIBULL,
             1e-6,
         )
+    },
+    || {
+        let share = kaplan_meier(&treated()).at(23.0).unwrap_or(f64::NAN);
+        SUBJECT.line("Kaplan-Meier share of treated children at week 23", share, 0.448_179, REMISSION, 2e-6)
+    },
+    || {
+        let error = kaplan_meier(&treated()).steps.last().map_or(f64::NAN, |step| step.standard_error);
+        SUBJECT.line("its standard error by Greenwood", error, 0.134_591, REMISSION, 4e-6)
+    },
+    || {
+        let compared = log_rank(&[treated(), untreated()]);
+        let statistic = compared.map_or(f64::NAN, |compared| compared.chi_squared);
+        SUBJECT.line("log-rank statistic, treated or not", statistic, 16.792_941, REMISSION, 1e-7)
     },
 ];
 

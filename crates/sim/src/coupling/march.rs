@@ -131,6 +131,7 @@ pub(crate) fn march(
         across_asked: scene.beads.across,
         chosen_overlap: scene.march.overlap,
         beads: watch.beads(gel, &march.bodies.beads),
+        tensions: watch.tensions(gel, &march.bodies.beads),
         quality: march.quality(gel),
         history,
         positions,

@@ -1,5 +1,5 @@
 use super::bodies::Bodies;
-use crate::{BeadOutcome, ForceOutcome, Quality, Scene, Step, tear_probability};
+use crate::{BeadOutcome, ForceOutcome, Quality, Scene, Step, TensionField};
 use bedswell_gel::{Gel, Relaxation, StressField, asphericity, uptake_of_volume_ratio};
 use bedswell_geometry::stream;
 use bedswell_grains::{Assembly, FORCE_QUANTILES, ForceStatistics};
@@ -83,12 +83,22 @@ impl Watch<'_> {
         uptake_of_volume_ratio(field.volume.iter().sum::<f64>() / dry, self.scene.gel.dry_density)
     }
 
+    /// The tension in each bead.
+    pub(super) fn tensions(&self, gel: &Gel, beads: &[Relaxation]) -> Vec<TensionField> {
+        beads.iter().map(|bead| self.tension(&StressField::of(bead.bead(), gel))).collect()
+    }
+
     fn tear_probability(&self, field: &StressField) -> f64 {
+        self.tension(field).tear_probability(&self.scene.strength)
+    }
+
+    fn tension(&self, field: &StressField) -> TensionField {
         // Volumes are those of the free-swollen gel in the scene's water, also on the way.
         let scale = self.gel.free_volume_ratio() / field.reference_volume_ratio;
-        let volumes: Vec<f64> = field.free_volume.iter().map(|v| v * scale).collect();
-        let tensions: Vec<f64> = field.principal.iter().map(|p| p[0]).collect();
-        tear_probability(&volumes, &tensions, &self.scene.strength)
+        TensionField {
+            volumes: field.free_volume.iter().map(|v| v * scale).collect(),
+            tensions: field.principal.iter().map(|p| p[0]).collect(),
+        }
     }
 }
 

@@ -29,3 +29,4 @@ pub(crate) use raw::{Node, Value, read_document};
 pub(crate) use read::scene_from;
 pub use section::nearest_word;
 pub(crate) use section::{Entry, Section, refuse_unknown};
+pub(crate) use write::gel_and_strength;

@@ -1,7 +1,7 @@
 //! A checked scene as text that reads back to the same scene, bit for bit.
 
 use super::unit::Kind;
-use super::{BeadAmount, Scene, SoilGrading};
+use super::{BeadAmount, Gel, Scene, SoilGrading, Strength};
 use std::fmt::Write;
 
 /// File that [`Scene::to_toml`] refers to when the soil lists its spheres.
@@ -56,21 +56,14 @@ impl Scene {
         text.line("voxel_budget", self.beads.voxel_budget);
         text.line("held", self.beads.held);
 
-        text.table("gel");
-        text.line("crosslinks", number(self.gel.crosslinks));
-        text.line("chi", number(self.gel.chi));
-        text.line("charges", number(self.gel.charges));
-        text.line("dry_density", with_unit(self.gel.dry_density, Kind::Density));
+        text.gel(&self.gel);
 
         text.table("water");
         text.line("salt", with_unit(self.water.salt, Kind::Concentration));
         text.line("potential", with_unit(self.water.potential, Kind::Stress));
         text.line("temperature", with_unit(self.water.temperature, Kind::Temperature));
 
-        text.table("strength");
-        text.line("scale", with_unit(self.strength.scale, Kind::Stress));
-        text.line("modulus", number(self.strength.modulus));
-        text.line("volume", with_unit(self.strength.volume, Kind::Volume));
+        text.strength(&self.strength);
 
         text.table("march");
         text.line("increments", self.march.increments);
@@ -119,11 +112,34 @@ impl Scene {
     }
 }
 
+/// The tables `[gel]` and `[strength]` of a scene.
+pub(crate) fn gel_and_strength(gel: &Gel, strength: &Strength) -> String {
+    let mut text = Writer { text: String::new() };
+    text.gel(gel);
+    text.strength(strength);
+    text.text
+}
+
 struct Writer {
     text: String,
 }
 
 impl Writer {
+    fn gel(&mut self, gel: &Gel) {
+        self.table("gel");
+        self.line("crosslinks", number(gel.crosslinks));
+        self.line("chi", number(gel.chi));
+        self.line("charges", number(gel.charges));
+        self.line("dry_density", with_unit(gel.dry_density, Kind::Density));
+    }
+
+    fn strength(&mut self, strength: &Strength) {
+        self.table("strength");
+        self.line("scale", with_unit(strength.scale, Kind::Stress));
+        self.line("modulus", number(strength.modulus));
+        self.line("volume", with_unit(strength.volume, Kind::Volume));
+    }
+
     fn table(&mut self, name: &str) {
         let gap = if self.text.is_empty() { "" } else { "\n" };
         let _ = writeln!(self.text, "{gap}[{name}]");

@@ -2,7 +2,7 @@ use serde::{Deserialize, Serialize};
 use statrs::distribution::{Beta, ContinuousCDF};
 
 /// The standard normal quantile at 97.5 %, for two-sided 95 % intervals.
-const NORMAL_QUANTILE: f64 = 1.959_963_984_540_054;
+pub(super) const NORMAL_QUANTILE: f64 = 1.959_963_984_540_054;
 /// Half of what a 95 % interval leaves out.
 const TAIL: f64 = 0.025;
 

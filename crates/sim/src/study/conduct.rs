@@ -133,6 +133,7 @@ fn work(study: &Study, plan: &Mutex<Plan>, runner: &PackRunner<'_>, sender: &Sen
 fn finished(mut outcome: PackOutcome) -> PackEnd {
     outcome.history.clear();
     outcome.positions.clear();
+    outcome.tensions.clear();
     // JSON has no number for what is not finite, and an outcome has no other nulls.
     match serde_json::to_value(&outcome) {
         Ok(value) if !holds_null(&value) => PackEnd::Finished(Box::new(outcome)),
