@@ -2,9 +2,14 @@
 //! that is corrected by a multiplier (augmented Lagrangian; Hestenes 1969, Powell
 //! 1969, from memory), so that the pressure does not need the penetration.
 
+mod closing;
+mod tie;
+
 use crate::lattice::Skin;
 use crate::obstacle::{Gap, Obstacle};
 use bedswell_geometry::{Matrix, Vector};
+use closing::Closing;
+pub(crate) use tie::Tie;
 
 /// A skin point near an obstacle.
 #[derive(Clone, Copy, Debug)]
@@ -31,6 +36,10 @@ pub(crate) struct Contacts {
     pub(crate) penalty: f64,
     /// Area that each point stands for (m²).
     pub(crate) area: f64,
+    /// Where the faces of cracks may meet.
+    pub(crate) closings: Vec<Closing>,
+    /// Nodes that are held or slowed.
+    pub(crate) ties: Vec<Tie>,
 }
 
 /// A pair that presses, at a linearised state.
@@ -86,6 +95,18 @@ impl Contacts {
         self.for_each_pressing(skin, positions, obstacles, |pair, force, _| {
             pull_nodes(out, skin.terms(pair.point as usize), force);
         });
+        self.pull_cracks_and_ties(skin, positions, out);
+    }
+
+    /// Adds the forces of closed cracks and of ties to the energy's gradient (N).
+    fn pull_cracks_and_ties(&self, skin: &Skin, positions: &[f64], out: &mut [f64]) {
+        self.for_each_closed(skin, positions, |point, force, _| {
+            pull_nodes(out, skin.terms(point), force);
+        });
+        for tie in &self.ties {
+            let point = skin.node_point(tie.node as usize);
+            pull_nodes(out, skin.terms(point), tie.force(&skin_position(skin, positions, point)));
+        }
     }
 
     /// Adds the contact forces' share of the energy gradient (N), and visits the
@@ -118,6 +139,7 @@ impl Contacts {
                 visit(obstacle, force);
             }
         }
+        self.pull_cracks_and_ties(skin, positions, out);
     }
 
     /// The stiffness of all points that press. Without `curved`, the loss of
@@ -139,6 +161,14 @@ impl Contacts {
             }
             pressing.push(Pressing { point: pair.point, stiffness });
         });
+        self.for_each_closed(skin, positions, |point, _, stiffness| {
+            pressing.push(Pressing { point: point as u32, stiffness });
+        });
+        let held = |tie: &Tie| Pressing {
+            point: skin.node_point(tie.node as usize) as u32,
+            stiffness: Matrix::from_diagonal(&tie.stiffness),
+        };
+        pressing.extend(self.ties.iter().map(held));
         pressing
     }
 
@@ -149,6 +179,7 @@ impl Contacts {
             let distance = obstacles[pair.obstacle as usize].gap(&place).distance;
             pair.multiplier = (pair.multiplier - self.penalty * distance).max(0.0);
         }
+        self.correct_closings(skin, positions);
     }
 
     /// The force (N) on each obstacle.

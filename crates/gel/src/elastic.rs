@@ -9,7 +9,7 @@
 mod mixed;
 
 use crate::lanes::{self, Lanes, Vector, WIDTH};
-use crate::lattice::{Lattice, Run};
+use crate::lattice::{Group, Lattice};
 use crate::thermodynamics::Gel;
 pub(crate) use mixed::chain_links;
 use nalgebra::{Matrix3, Vector3};
@@ -117,53 +117,50 @@ impl Elastic<'_> {
     fn gradient_kernel(&self, positions: &[f64], out: &mut [f64]) -> f64 {
         let n = self.gel.numbers().crosslinks;
         let mut smallest = f64::INFINITY;
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let shape = self.shape(run.slot + along);
-                let edges = edges_of(self.edge, positions, run, along);
-                let f = mean_gradient(&edges, &shape.weights);
-                let cof = cofactors(&f);
-                let j = lanes::dot(f[0], cof[0]);
-                let mut slope = Lanes::splat(0.0);
-                for lane in 0..WIDTH.min(run.len - along) {
+        for group in &self.lattice.groups {
+            let shape = self.shape(group.slot);
+            let edges = edges_of(self.lattice, self.edge, positions, group);
+            let f = mean_gradient(&edges, &shape.weights);
+            let cof = cofactors(&f);
+            let j = lanes::dot(f[0], cof[0]);
+            let mut slope = Lanes::splat(0.0);
+            for lane in 0..group.len {
+                // The slots that loose voxels have left hold no gel.
+                if shape.scale.0[lane] > 0.0 {
                     smallest = smallest.min(j.0[lane]);
-                    slope.0[lane] = self.gel.mixing_slope(j.0[lane].max(LEAST_VOLUME_RATIO));
                 }
-                let mean = Lanes::splat(n * (1.0 - SPRING_SHARE));
-                let mut tensions = f;
-                for d in 0..3 {
-                    tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
-                }
-                self.scatter(&tensions, &edges, &shape, run, along, out);
+                slope.0[lane] = self.gel.mixing_slope(j.0[lane].max(LEAST_VOLUME_RATIO));
             }
+            let mean = Lanes::splat(n * (1.0 - SPRING_SHARE));
+            let mut tensions = f;
+            for d in 0..3 {
+                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
+            }
+            self.scatter(&tensions, &edges, &shape, group, out);
         }
         smallest
     }
 
     #[inline(always)]
     fn linearisation_kernel(&self, positions: &[f64], convex: bool, into: &mut Linearisation) {
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let slot = run.slot + along;
-                let f = mean_gradient(
-                    &edges_of(self.edge, positions, run, along),
-                    &edge_weights(self.lattice, slot),
-                );
-                let j = lanes::dot(f[0], cofactors(&f)[0]);
-                for d in 0..3 {
-                    for axis in 0..3 {
-                        f[d][axis].store(&mut into.gradient[3 * d + axis], slot);
-                    }
+        for group in &self.lattice.groups {
+            let slot = group.slot;
+            let edges = edges_of(self.lattice, self.edge, positions, group);
+            let f = mean_gradient(&edges, &edge_weights(self.lattice, slot));
+            let j = lanes::dot(f[0], cofactors(&f)[0]);
+            for d in 0..3 {
+                for axis in 0..3 {
+                    f[d][axis].store(&mut into.gradient[3 * d + axis], slot);
                 }
-                for lane in 0..WIDTH.min(run.len - along) {
-                    let j = j.0[lane].max(LEAST_VOLUME_RATIO);
-                    let mut slope = self.gel.mixing_slope(j);
-                    if convex {
-                        slope = slope.max(-self.gel.numbers().crosslinks / largest_stretch(&f, lane));
-                    }
-                    into.slope[slot + lane] = slope;
-                    into.curvature[slot + lane] = self.gel.mixing_curvature(j).max(0.0);
+            }
+            for lane in 0..group.len {
+                let j = j.0[lane].max(LEAST_VOLUME_RATIO);
+                let mut slope = self.gel.mixing_slope(j);
+                if convex {
+                    slope = slope.max(-self.gel.numbers().crosslinks / largest_stretch(&f, lane));
                 }
+                into.slope[slot + lane] = slope;
+                into.curvature[slot + lane] = self.gel.mixing_curvature(j).max(0.0);
             }
         }
     }
@@ -171,37 +168,34 @@ impl Elastic<'_> {
     #[inline(always)]
     fn stiffness_kernel(&self, state: &Linearisation, direction: &[f64], out: &mut [f64]) {
         let mean = Lanes::splat(self.gel.numbers().crosslinks * (1.0 - SPRING_SHARE));
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let slot = run.slot + along;
-                let shape = self.shape(slot);
-                let edges = edges_of(self.edge, direction, run, along);
-                let df = mean_gradient(&edges, &shape.weights);
-                let f = state.gradient_at(slot);
-                let cof = cofactors(&f);
-                let slope = Lanes::load(&state.slope, slot);
-                let dj = lanes::dot(cof[0], df[0]) + lanes::dot(cof[1], df[1]) + lanes::dot(cof[2], df[2]);
-                let pressure = Lanes::load(&state.curvature, slot) * dj;
-                let mut tensions = df;
-                for d in 0..3 {
-                    let (next, last) = ((d + 1) % 3, (d + 2) % 3);
-                    let dcof = lanes::add(lanes::cross(df[next], f[last]), lanes::cross(f[next], df[last]));
-                    let mixing = lanes::add(lanes::scale(cof[d], pressure), lanes::scale(dcof, slope));
-                    tensions[d] = lanes::add(lanes::scale(df[d], mean), mixing);
-                }
-                self.scatter(&tensions, &edges, &shape, run, along, out);
+        for group in &self.lattice.groups {
+            let slot = group.slot;
+            let shape = self.shape(slot);
+            let edges = edges_of(self.lattice, self.edge, direction, group);
+            let df = mean_gradient(&edges, &shape.weights);
+            let f = state.gradient_at(slot);
+            let cof = cofactors(&f);
+            let slope = Lanes::load(&state.slope, slot);
+            let dj = lanes::dot(cof[0], df[0]) + lanes::dot(cof[1], df[1]) + lanes::dot(cof[2], df[2]);
+            let pressure = Lanes::load(&state.curvature, slot) * dj;
+            let mut tensions = df;
+            for d in 0..3 {
+                let (next, last) = ((d + 1) % 3, (d + 2) % 3);
+                let dcof = lanes::add(lanes::cross(df[next], f[last]), lanes::cross(f[next], df[last]));
+                let mixing = lanes::add(lanes::scale(cof[d], pressure), lanes::scale(dcof, slope));
+                tensions[d] = lanes::add(lanes::scale(df[d], mean), mixing);
             }
+            self.scatter(&tensions, &edges, &shape, group, out);
         }
     }
 
     /// Adds each node's own 3 x 3 block of the stiffness.
     pub(crate) fn add_diagonal_blocks(&self, state: &Linearisation, out: &mut [Matrix3<f64>]) {
         let n = self.gel.numbers().crosslinks;
-        for run in &self.lattice.runs {
-            for along in 0..run.len {
-                let (group, lane) = (run.slot + along - along % WIDTH, along % WIDTH);
-                let shape = self.shape(group);
-                let cof = cofactors(&state.gradient_at(group));
+        for group in &self.lattice.groups {
+            let shape = self.shape(group.slot);
+            let cof = cofactors(&state.gradient_at(group.slot));
+            for lane in (0..group.len).filter(|&lane| shape.scale.0[lane] > 0.0) {
                 let mut slopes = [[0.0; 3]; 8];
                 let mut springs = [0.0; 8];
                 for d in 0..3 {
@@ -214,9 +208,10 @@ impl Elastic<'_> {
                     }
                 }
                 let cof = Matrix3::from_fn(|axis, d| cof[d][axis].0[lane]);
-                let curvature = state.curvature[group + lane];
+                let curvature = state.curvature[group.slot + lane];
                 let scale = shape.scale.0[lane] / self.edge;
-                for (corner, node) in Lattice::corners(run, along).into_iter().enumerate() {
+                let corners = self.lattice.corners_in(group, lane);
+                for (corner, node) in corners.into_iter().enumerate() {
                     let c = Vector3::from(slopes[corner]);
                     let q = cof * c;
                     let isotropic =
@@ -245,12 +240,11 @@ impl Elastic<'_> {
         tensions: &[Vector; 3],
         edges: &[[Vector; 4]; 3],
         shape: &Shape,
-        run: &Run,
-        along: usize,
+        group: &Group,
         out: &mut [f64],
     ) {
         let spring = Lanes::splat(self.gel.numbers().crosslinks * SPRING_SHARE);
-        let mut forces = [[Lanes::splat(0.0); 3]; 8];
+        let mut forces = [[Lanes::splat(0.0); 8]; 3];
         for d in 0..3 {
             for edge in 0..4 {
                 let near = EDGES[d][edge];
@@ -258,16 +252,15 @@ impl Elastic<'_> {
                 let weight = shape.weights[d][edge] * shape.scale;
                 let pull =
                     lanes::scale(lanes::add(tensions[d], lanes::scale(edges[d][edge], spring)), weight);
-                forces[near] = lanes::sub(forces[near], pull);
-                forces[far] = lanes::add(forces[far], pull);
+                for axis in 0..3 {
+                    forces[axis][near] = forces[axis][near] - pull[axis];
+                    forces[axis][far] = forces[axis][far] + pull[axis];
+                }
             }
         }
         let stride = out.len() / 3;
         for axis in 0..3 {
-            let column = &mut out[axis * stride..(axis + 1) * stride];
-            for (row, &start) in run.rows.iter().enumerate() {
-                lanes::add_pairs(column, start + along, forces[2 * row][axis], forces[2 * row + 1][axis]);
-            }
+            self.lattice.scatter(group, &forces[axis], &mut out[axis * stride..(axis + 1) * stride]);
         }
     }
 }
@@ -293,14 +286,13 @@ struct Shape {
 
 /// Mean deformation gradient of every voxel of a lattice with dry edge `edge` (m).
 pub(crate) fn gradients(lattice: &Lattice, edge: f64, positions: &[f64]) -> Vec<Matrix3<f64>> {
-    let mut all = Vec::with_capacity(lattice.voxel_count());
-    for run in &lattice.runs {
-        for along in (0..run.len).step_by(WIDTH) {
-            let weights = edge_weights(lattice, run.slot + along);
-            let f = mean_gradient(&edges_of(edge, positions, run, along), &weights);
-            for lane in 0..WIDTH.min(run.len - along) {
-                all.push(Matrix3::from_fn(|axis, d| f[d][axis].0[lane]));
-            }
+    let mut all = vec![Matrix3::zeros(); lattice.voxel_count()];
+    for group in &lattice.groups {
+        let weights = edge_weights(lattice, group.slot);
+        let f = mean_gradient(&edges_of(lattice, edge, positions, group), &weights);
+        for lane in 0..group.len {
+            // Loose voxels come last and are written over what their runs say.
+            all[lattice.voxel_of(group, lane)] = Matrix3::from_fn(|axis, d| f[d][axis].0[lane]);
         }
     }
     all
@@ -324,22 +316,17 @@ fn edge_weights(lattice: &Lattice, slot: usize) -> [[Lanes; 4]; 3] {
 
 /// The twelve edges of a group of voxels, by direction, over the dry edge.
 #[inline(always)]
-fn edges_of(edge: f64, values: &[f64], run: &Run, along: usize) -> [[Vector; 4]; 3] {
+fn edges_of(lattice: &Lattice, edge: f64, values: &[f64], group: &Group) -> [[Vector; 4]; 3] {
     let inverse = Lanes::splat(1.0 / edge);
     let stride = values.len() / 3;
-    let mut corners = [[inverse; 3]; 8];
+    let mut edges = [[[inverse; 3]; 4]; 3];
     for axis in 0..3 {
-        let column = &values[axis * stride..(axis + 1) * stride];
-        for (row, &start) in run.rows.iter().enumerate() {
-            corners[2 * row][axis] = Lanes::load(column, start + along) * inverse;
-            corners[2 * row + 1][axis] = Lanes::load(column, start + along + 1) * inverse;
-        }
-    }
-    let mut edges = [[corners[0]; 4]; 3];
-    for d in 0..3 {
-        for edge in 0..4 {
-            let near = EDGES[d][edge];
-            edges[d][edge] = lanes::sub(corners[near + (1 << d)], corners[near]);
+        let corners = lattice.gather(group, &values[axis * stride..(axis + 1) * stride]);
+        for d in 0..3 {
+            for edge in 0..4 {
+                let near = EDGES[d][edge];
+                edges[d][edge][axis] = corners[near + (1 << d)] * inverse - corners[near] * inverse;
+            }
         }
     }
     edges
@@ -372,6 +359,7 @@ fn largest_stretch(f: &[Vector; 3], lane: usize) -> f64 {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::lattice::Face;
     use crate::thermodynamics::{GelNumbers, Surroundings};
     use approx::assert_relative_eq;
 
@@ -393,35 +381,50 @@ mod tests {
         let n = elastic.gel.numbers().crosslinks;
         let place = |node: usize| Vector3::from_fn(|axis, _| positions[axis * lattice.stride() + node]);
         let mut total = 0.0;
-        for run in &lattice.runs {
-            for along in 0..run.len {
-                let slot = run.slot + along;
-                let corners = Lattice::corners(run, along);
-                let mut f = Matrix3::zeros();
-                let mut springs = 0.0;
-                for d in 0..3 {
-                    let (a, b) = (lattice.first[OTHERS[d][0]][slot], lattice.first[OTHERS[d][1]][slot]);
-                    let ab = lattice.mixed[d][slot];
-                    for (near, weight) in EDGES[d].into_iter().zip([1.0 - a - b + ab, a - ab, b - ab, ab]) {
-                        let edge = (place(corners[near + (1 << d)]) - place(corners[near])) / elastic.edge;
-                        f.set_column(d, &(f.column(d) + edge * weight));
-                        springs += weight * edge.norm_squared();
-                    }
+        for voxel in 0..lattice.voxel_count() {
+            let slot = lattice.slots[voxel] as usize;
+            let corners = lattice.corners_of(voxel);
+            let mut f = Matrix3::zeros();
+            let mut springs = 0.0;
+            for d in 0..3 {
+                let (a, b) = (lattice.first[OTHERS[d][0]][slot], lattice.first[OTHERS[d][1]][slot]);
+                let ab = lattice.mixed[d][slot];
+                for (near, weight) in EDGES[d].into_iter().zip([1.0 - a - b + ab, a - ab, b - ab, ab]) {
+                    let edge = (place(corners[near + (1 << d)]) - place(corners[near])) / elastic.edge;
+                    f.set_column(d, &(f.column(d) + edge * weight));
+                    springs += weight * edge.norm_squared();
                 }
-                let chains = (1.0 - SPRING_SHARE) * f.norm_squared() + SPRING_SHARE * springs;
-                let density = 0.5 * n * (chains - 3.0) + elastic.gel.mixing(f.determinant());
-                total += lattice.volume[slot] * density;
             }
+            let chains = (1.0 - SPRING_SHARE) * f.norm_squared() + SPRING_SHARE * springs;
+            let density = 0.5 * n * (chains - 3.0) + elastic.gel.mixing(f.determinant());
+            total += lattice.volume[slot] * density;
         }
         total * elastic.gel.energy_density() * elastic.edge.powi(3)
     }
 
     #[test]
     fn forces_and_stiffness_are_derivatives_of_the_energy() {
-        let lattice = Lattice::new(6);
+        check_derivatives(&Lattice::new(6));
+    }
+
+    #[test]
+    fn so_they_are_beside_cracks() {
+        let (whole, mut cracks) = (Lattice::new(6), vec![]);
+        for (low, _, axis) in whole.bonds() {
+            let [x, y, z] = whole.voxel_offset(low);
+            if (axis == 2 && x < 0.0 && z == -0.5) || (axis == 1 && y == 0.5 && x > z) {
+                cracks.push(Face { low: low as u32, axis: axis as u8 });
+            }
+        }
+        let torn = whole.split(&cracks);
+        assert!(torn.node_count() > whole.node_count() + 10);
+        check_derivatives(&torn);
+    }
+
+    fn check_derivatives(lattice: &Lattice) {
         let gel = Gel::new(GelNumbers { crosslinks: 1e-4, chi: 0.4, charges: 0.01 }, Surroundings::default());
-        let elastic = Elastic { lattice: &lattice, gel: &gel, edge: 1e-4 };
-        let positions = distorted(&lattice, elastic.edge);
+        let elastic = Elastic { lattice, gel: &gel, edge: 1e-4 };
+        let positions = distorted(lattice, elastic.edge);
         let gradient_at = |positions: &[f64]| {
             let mut gradient = vec![0.0; positions.len()];
             elastic.add_gradient(positions, &mut gradient);

@@ -163,7 +163,11 @@ impl Solver {
         self.contacts.pairs.iter_mut().for_each(|pair| pair.multiplier *= rescale);
         (self.contacts.area, self.contacts.penalty) = (skin_area, penalty);
 
-        let held = if tolerance.held { Held::Everything } else { Held::Rotation };
+        let held = match tolerance.held {
+            _ if self.contacts.is_gripped() => Held::Nothing,
+            true => Held::Everything,
+            false => Held::Rotation,
+        };
         for correction in 0..=tolerance.corrections {
             let last = correction == tolerance.corrections;
             let target = if last { tolerance.residual } else { tolerance.residual.max(BEFORE_CORRECTIONS) };
@@ -173,7 +177,7 @@ impl Solver {
             }
         }
         let mut balance = self.balance(&elastic, positions, obstacles, rest_force);
-        if !tolerance.held && balance.torque > tolerance.residual {
+        if held == Held::Rotation && balance.torque > tolerance.residual {
             self.turn(&elastic, positions, obstacles, (longest_step, rest_force), tolerance.residual);
             balance = self.balance(&elastic, positions, obstacles, rest_force);
         }
@@ -205,11 +209,14 @@ impl Solver {
         let mut trial = positions.clone();
         let mut residual = f64::INFINITY;
         let mut convex = false;
+        self.contacts.face_cracks(skin, positions);
+        self.contacts.follow(positions);
         self.contacts.collect(skin, skin.len(), positions, obstacles, 2.0 * longest_step);
         self.evaluate(elastic, positions, obstacles);
         for _ in 0..NEWTON_STEPS {
             let forces = self.contacts.forces(skin, positions, obstacles);
-            let scale = forces.iter().map(Vector::norm).fold(1e-3 * rest_force, f64::max);
+            let least = (1e-3 * rest_force).max(self.contacts.grip_force(positions));
+            let scale = forces.iter().map(Vector::norm).fold(least, f64::max);
             hold(elastic, positions, held, &mut self.gradient);
             residual = norm(&self.gradient) / scale;
             if residual <= target {
@@ -276,7 +283,8 @@ impl Solver {
     ) -> Balance {
         self.evaluate(elastic, positions, obstacles);
         let forces = self.contacts.forces(&elastic.lattice.skin, positions, obstacles);
-        let scale = forces.iter().map(Vector::norm).fold(1e-3 * rest_force, f64::max);
+        let least = (1e-3 * rest_force).max(self.contacts.grip_force(positions));
+        let scale = forces.iter().map(Vector::norm).fold(least, f64::max);
         let stride = positions.len() / 3;
         let at = |values: &[f64], node: usize| {
             Vector::new(values[node], values[stride + node], values[2 * stride + node])
@@ -286,7 +294,9 @@ impl Solver {
         let torque: Vector =
             (0..nodes).map(|node| (at(positions, node) - centre).cross(&at(&self.gradient, node))).sum();
         let radius = 0.5 * elastic.edge * elastic.lattice.across() as f64 * elastic.gel.free_stretch();
-        hold(elastic, positions, Held::Rotation, &mut self.gradient);
+        if !self.contacts.is_gripped() {
+            hold(elastic, positions, Held::Rotation, &mut self.gradient);
+        }
         Balance { residual: norm(&self.gradient) / scale, torque: torque.norm() / (scale * radius) }
     }
 

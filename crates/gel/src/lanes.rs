@@ -93,11 +93,6 @@ impl AddAssign for Lanes {
 pub(crate) type Vector = [Lanes; 3];
 
 #[inline(always)]
-pub(crate) fn sub(a: Vector, b: Vector) -> Vector {
-    [a[0] - b[0], a[1] - b[1], a[2] - b[2]]
-}
-
-#[inline(always)]
 pub(crate) fn add(a: Vector, b: Vector) -> Vector {
     [a[0] + b[0], a[1] + b[1], a[2] + b[2]]
 }

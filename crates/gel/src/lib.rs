@@ -27,7 +27,7 @@ pub use kinetics::{
     Change, History, HistoryError, Kinetics, KineticsError, Outside, Permeability, PermeabilityError,
     Settings, Snapshot, Step,
 };
-pub use lattice::{Lattice, Locator, MaterialPoint, Shape};
+pub use lattice::{Face, Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
 pub use relaxation::{Load, Relaxation};
 pub use stress::{Bond, StressField, asphericity};

@@ -3,7 +3,7 @@
 //! the place of φ' in the forces; volume ratios come out beside them.
 
 use super::{EDGES, Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient};
-use crate::lanes::{self, Lanes, WIDTH};
+use crate::lanes::{self, Lanes};
 use crate::lattice::Lattice;
 use nalgebra::Matrix3;
 use pulp::{Arch, Simd, WithSimd};
@@ -34,15 +34,12 @@ impl Elastic<'_> {
         }
         into.slope.copy_from_slice(slopes);
         into.curvature.fill(0.0);
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let slot = run.slot + along;
-                let edges = edges_of(self.edge, positions, run, along);
-                let f = mean_gradient(&edges, &edge_weights(self.lattice, slot));
-                for d in 0..3 {
-                    for axis in 0..3 {
-                        f[d][axis].store(&mut into.gradient[3 * d + axis], slot);
-                    }
+        for group in &self.lattice.groups {
+            let edges = edges_of(self.lattice, self.edge, positions, group);
+            let f = mean_gradient(&edges, &edge_weights(self.lattice, group.slot));
+            for d in 0..3 {
+                for axis in 0..3 {
+                    f[d][axis].store(&mut into.gradient[3 * d + axis], group.slot);
                 }
             }
         }
@@ -63,21 +60,19 @@ impl Elastic<'_> {
     #[inline(always)]
     fn mixed_gradient_kernel(&self, positions: &[f64], slopes: &[f64], out: &mut [f64], ratios: &mut [f64]) {
         let mean = Lanes::splat(self.gel.numbers().crosslinks * (1.0 - SPRING_SHARE));
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let slot = run.slot + along;
-                let shape = self.shape(slot);
-                let edges = edges_of(self.edge, positions, run, along);
-                let f = mean_gradient(&edges, &shape.weights);
-                let cof = cofactors(&f);
-                lanes::dot(f[0], cof[0]).store(ratios, slot);
-                let slope = Lanes::load(slopes, slot);
-                let mut tensions = f;
-                for d in 0..3 {
-                    tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
-                }
-                self.scatter(&tensions, &edges, &shape, run, along, out);
+        for group in &self.lattice.groups {
+            let slot = group.slot;
+            let shape = self.shape(slot);
+            let edges = edges_of(self.lattice, self.edge, positions, group);
+            let f = mean_gradient(&edges, &shape.weights);
+            let cof = cofactors(&f);
+            lanes::dot(f[0], cof[0]).store(ratios, slot);
+            let slope = Lanes::load(slopes, slot);
+            let mut tensions = f;
+            for d in 0..3 {
+                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
             }
+            self.scatter(&tensions, &edges, &shape, group, out);
         }
     }
 
@@ -90,40 +85,37 @@ impl Elastic<'_> {
     ) {
         let mean = Lanes::splat(self.gel.numbers().crosslinks * (1.0 - SPRING_SHARE));
         let edge = Lanes::splat(self.edge);
-        for run in &self.lattice.runs {
-            for along in (0..run.len).step_by(WIDTH) {
-                let slot = run.slot + along;
-                let shape = self.shape(slot);
-                let edges = edges_of(self.edge, direction, run, along);
-                let df = mean_gradient(&edges, &shape.weights);
-                let f = state.gradient_at(slot);
-                let cof = cofactors(&f);
-                let dj = lanes::dot(cof[0], df[0]) + lanes::dot(cof[1], df[1]) + lanes::dot(cof[2], df[2]);
-                (dj * shape.scale * edge).add_to(volumes, slot);
-                let (slope, change) = (Lanes::load(&state.slope, slot), Lanes::load(slopes, slot));
-                let mut tensions = df;
-                for d in 0..3 {
-                    let (next, last) = ((d + 1) % 3, (d + 2) % 3);
-                    let dcof = lanes::add(lanes::cross(df[next], f[last]), lanes::cross(f[next], df[last]));
-                    let pressed = lanes::add(lanes::scale(cof[d], change), lanes::scale(dcof, slope));
-                    tensions[d] = lanes::add(lanes::scale(df[d], mean), pressed);
-                }
-                self.scatter(&tensions, &edges, &shape, run, along, out);
+        for group in &self.lattice.groups {
+            let slot = group.slot;
+            let shape = self.shape(slot);
+            let edges = edges_of(self.lattice, self.edge, direction, group);
+            let df = mean_gradient(&edges, &shape.weights);
+            let f = state.gradient_at(slot);
+            let cof = cofactors(&f);
+            let dj = lanes::dot(cof[0], df[0]) + lanes::dot(cof[1], df[1]) + lanes::dot(cof[2], df[2]);
+            (dj * shape.scale * edge).add_to(volumes, slot);
+            let (slope, change) = (Lanes::load(&state.slope, slot), Lanes::load(slopes, slot));
+            let mut tensions = df;
+            for d in 0..3 {
+                let (next, last) = ((d + 1) % 3, (d + 2) % 3);
+                let dcof = lanes::add(lanes::cross(df[next], f[last]), lanes::cross(f[next], df[last]));
+                let pressed = lanes::add(lanes::scale(cof[d], change), lanes::scale(dcof, slope));
+                tensions[d] = lanes::add(lanes::scale(df[d], mean), pressed);
             }
+            self.scatter(&tensions, &edges, &shape, group, out);
         }
     }
 }
 
 /// Visits every spring along a voxel's edge: its two nodes and its share of the voxels' gel.
 pub(crate) fn chain_links(lattice: &Lattice, mut visit: impl FnMut(usize, usize, f64)) {
-    for run in &lattice.runs {
-        for along in 0..run.len {
-            let (group, lane) = (run.slot + along - along % WIDTH, along % WIDTH);
-            let weights = edge_weights(lattice, group);
-            let corners = Lattice::corners(run, along);
+    for group in &lattice.groups {
+        let weights = edge_weights(lattice, group.slot);
+        for lane in 0..group.len {
+            let corners = lattice.corners_in(group, lane);
             for d in 0..3 {
                 for (edge, &near) in EDGES[d].iter().enumerate() {
-                    let strength = weights[d][edge].0[lane] * lattice.volume[run.slot + along];
+                    let strength = weights[d][edge].0[lane] * lattice.volume[group.slot + lane];
                     visit(corners[near], corners[near + (1 << d)], strength);
                 }
             }

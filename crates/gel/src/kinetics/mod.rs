@@ -12,7 +12,6 @@
 //! (`saddle.rs`): dry, nearly incompressible gel and short, undrained steps cost no more than
 //! swollen gel. Steps (`stages.rs`) are two such increments.
 
-mod aperture;
 mod coarse;
 mod conductance;
 mod history;

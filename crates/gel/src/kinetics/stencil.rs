@@ -1,7 +1,6 @@
 //! Where water may pass: the faces of every voxel when dry, and how the potential's
 //! gradient in a voxel follows from the differences over its faces.
 
-use super::aperture;
 use crate::lattice::Lattice;
 use bedswell_geometry::{Matrix, Vector};
 
@@ -57,7 +56,7 @@ pub(super) fn cells(lattice: &Lattice, open: impl Fn(usize) -> bool) -> Vec<Cell
         let plane = lattice.voxel_offset(low)[axis] + 0.5;
         let way = middles[high] - middles[low];
         let share = ((plane - middles[low][axis]) / way[axis]).clamp(LEAST_DISTANCE, 1.0 - LEAST_DISTANCE);
-        let area = aperture::of_face(lattice, low, axis);
+        let area = lattice.face_area(low, axis);
         let normal = Vector::ith(axis, 1.0);
         let mut add = |from: usize, to: usize, share: f64, side: f64| {
             faces[from].push(Face {

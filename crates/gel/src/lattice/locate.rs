@@ -1,4 +1,4 @@
-use super::skin::{combination, host};
+use super::skin::{combination, combination_of, host};
 use super::{Lattice, NodeIndex, number_nodes};
 use std::collections::HashMap;
 
@@ -7,6 +7,8 @@ pub struct Locator {
     half: [f64; 3],
     voxel_at: HashMap<[u16; 3], u32>,
     node_at: NodeIndex,
+    /// Corners of the voxels beside cracks.
+    beside_cracks: HashMap<u32, [usize; 8]>,
 }
 
 /// A place in a bead's gel, which moves with it.
@@ -28,6 +30,7 @@ impl Locator {
             half: lattice.shape.half(),
             voxel_at: lattice.voxels.iter().copied().zip(0..).collect(),
             node_at: number_nodes(&lattice.voxels).1,
+            beside_cracks: lattice.corners_beside_cracks(),
         }
     }
 
@@ -38,9 +41,16 @@ impl Locator {
         let around = place.map(|c| c as u16);
         let within = place.iter().all(|c| *c >= 0.0) && self.voxel_at.contains_key(&around);
         let voxel = if within { around } else { host(place, |voxel| self.voxel_at.contains_key(voxel)) };
-        let nodes = combination(place, voxel, &self.node_at);
+        let number = self.voxel_at[&voxel];
+        let nodes = match self.beside_cracks.get(&number) {
+            None => combination(place, voxel, &self.node_at),
+            Some(&corners) => {
+                let local = std::array::from_fn(|axis| place[axis] - f64::from(voxel[axis]));
+                combination_of(local, corners, |_, _, _| None)
+            }
+        };
         MaterialPoint {
-            voxel: self.voxel_at[&voxel],
+            voxel: number,
             nodes: nodes.into_iter().map(|(node, weight)| (node as u32, weight as f32)).collect(),
             values: self.values(place, voxel),
         }

@@ -1,18 +1,27 @@
+mod aperture;
+mod crack;
+mod crack_skin;
 mod cut_cell;
 mod embed;
+mod group;
 mod locate;
 mod shape;
 mod shell;
 mod skin;
+mod split;
 
 use crate::lanes::WIDTH;
 use bedswell_geometry::Vector;
+pub(crate) use crack::Crack;
+pub use crack::Face;
 use cut_cell::CutCell;
 pub(crate) use embed::{Depth, Embedded};
+pub(crate) use group::Group;
+use group::{Loose, corners_of_rows, groups};
 pub use locate::{Locator, MaterialPoint};
 pub use shape::Shape;
 use shell::Shell;
-pub(crate) use skin::{POINT_WAY, Skin};
+pub(crate) use skin::{OPENINGS, POINT_WAY, Skin};
 use std::collections::HashMap;
 
 /// Voxels filled less than this are left out; their neighbours take their gel.
@@ -23,13 +32,19 @@ const SLIVER: f64 = 0.25;
 ///
 /// Surface voxels are cut cells: they count with the volume inside the ball and
 /// with the mean of their shape functions over it.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub struct Lattice {
     shape: Shape,
     /// Place of each node on the grid, from the low corner of the shape's box.
     nodes: Vec<[u16; 3]>,
+    /// Node that each node beyond the first of its place was split from.
+    origins: Vec<u32>,
     /// Rows of voxels that are neighbours along x.
-    pub(crate) runs: Vec<Run>,
+    runs: Vec<Run>,
+    loose: Loose,
+    pub(crate) groups: Vec<Group>,
+    /// Ruptured bonds, in the order in which they broke.
+    cracks: Vec<Crack>,
     /// Place of each voxel on the grid.
     voxels: Vec<[u16; 3]>,
     /// Neighbours of each voxel, and of each sliver of the shell after them, at the low
@@ -52,15 +67,15 @@ pub struct Lattice {
 
 /// A row of voxels along x; its four rows of nodes are contiguous too.
 #[derive(Clone, Copy, Debug)]
-pub(crate) struct Run {
+struct Run {
     /// First voxel.
-    pub(crate) voxel: usize,
+    voxel: usize,
     /// Slot of the first voxel in the padded columns.
-    pub(crate) slot: usize,
+    slot: usize,
     /// Voxels in the run.
-    pub(crate) len: usize,
+    len: usize,
     /// First node of the rows at (low y, low z), (high, low), (low, high), (high, high).
-    pub(crate) rows: [usize; 4],
+    rows: [usize; 4],
 }
 
 const MEAN_FIRST: [fn(&CutCell) -> f64; 3] = [
@@ -123,6 +138,10 @@ impl Lattice {
         let node_shares = node_shares(&voxels, cells, &node_at);
         Self {
             shape,
+            origins: Vec::new(),
+            groups: groups(&runs, 0, slot_count),
+            loose: Loose::default(),
+            cracks: Vec::new(),
             runs,
             volume: column(|cell| cell.volume),
             first: [0, 1, 2].map(|axis| column(MEAN_FIRST[axis])),
@@ -196,14 +215,13 @@ impl Lattice {
     }
 
     /// Pairs of voxels that share a face, with the axis of the face's normal:
-    /// the bonds. The first voxel is on the low side.
+    /// the intact bonds. The first voxel is on the low side.
     pub fn bonds(&self) -> Vec<(usize, usize, usize)> {
         let mut bonds = Vec::with_capacity(3 * self.voxels.len());
-        for (voxel, neighbours) in self.neighbours[..self.voxels.len()].iter().enumerate() {
+        for voxel in 0..self.voxels.len() {
             for axis in 0..3 {
-                let next = neighbours[2 * axis + 1];
-                if (next as usize) < self.voxels.len() {
-                    bonds.push((voxel, next as usize, axis));
+                if let Some(next) = self.neighbour(voxel, 2 * axis + 1) {
+                    bonds.push((voxel, next, axis));
                 }
             }
         }
@@ -212,14 +230,22 @@ impl Lattice {
 
     /// The eight nodes of a voxel, x fastest.
     pub fn corners_of(&self, voxel: usize) -> [usize; 8] {
-        let run = self.runs.partition_point(|run| run.voxel <= voxel) - 1;
-        Self::corners(&self.runs[run], voxel - self.runs[run].voxel)
+        self.loose.get(voxel).unwrap_or_else(|| {
+            let run = &self.runs[self.runs.partition_point(|run| run.voxel <= voxel) - 1];
+            corners_of_rows(run.rows, voxel - run.voxel)
+        })
     }
 
-    /// The eight nodes of the voxel that lies `along` a run, x fastest.
-    pub(crate) fn corners(run: &Run, along: usize) -> [usize; 8] {
-        let [a, b, c, d] = run.rows.map(|row| row + along);
-        [a, a + 1, b, b + 1, c, c + 1, d, d + 1]
+    /// The voxel at a place on the grid.
+    fn voxel_at(&self, place: [u16; 3]) -> Option<usize> {
+        let [x, y, z] = place;
+        self.voxels.binary_search_by_key(&(z, y, x), |&[x, y, z]| (z, y, x)).ok()
+    }
+
+    /// The voxel beyond a face, through an intact bond; faces are low and high along x, y, z.
+    pub(crate) fn neighbour(&self, voxel: usize, face: usize) -> Option<usize> {
+        let next = self.neighbours[voxel][face] as usize;
+        (next < self.voxels.len()).then_some(next)
     }
 }
 
@@ -374,11 +400,9 @@ mod tests {
     #[test]
     fn nodes_of_a_run_lie_in_rows() {
         let lattice = Lattice::new(12);
-        for run in &lattice.runs {
-            for along in 0..run.len {
-                let places = corner_places(&lattice.voxels[run.voxel + along]);
-                assert_eq!(Lattice::corners(run, along).map(|node| lattice.nodes[node]), places);
-            }
+        for voxel in 0..lattice.voxel_count() {
+            let places = corner_places(&lattice.voxels[voxel]);
+            assert_eq!(lattice.corners_of(voxel).map(|node| lattice.nodes[node]), places);
         }
     }
 }

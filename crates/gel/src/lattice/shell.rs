@@ -6,7 +6,7 @@ use bedswell_geometry::Vector;
 use std::collections::HashMap;
 
 /// Slivers and the corners of theirs that are not nodes.
-#[derive(Debug, Default)]
+#[derive(Clone, Debug, Default)]
 pub(super) struct Shell {
     /// Corners of each sliver, x fastest: a node, or beyond those a corner of the shell.
     pub(super) slivers: Vec<[u32; 8]>,

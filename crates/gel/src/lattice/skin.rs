@@ -6,6 +6,9 @@ use std::f64::consts::{FRAC_PI_2, PI};
 /// Distance of neighbouring skin points (voxel edges).
 const SPACING: f64 = 0.4;
 
+/// Places on the face of a ruptured bond where its two sides may meet.
+pub(crate) const OPENINGS: usize = 4;
+
 /// Inner points lie at least this deep below the dry surface (voxel edges).
 pub(super) const INNER_DEPTH: f64 = 0.75;
 
@@ -25,7 +28,7 @@ pub(crate) const POINT_WAY: f64 = 1.8;
 /// Contact points on the true surface of the dry shape, each a fixed combination of
 /// node positions. Points inside the gel follow them: where a grain that is small
 /// against the voxels pushes the skin's points aside, they keep it out.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(crate) struct Skin {
     /// Where each point is when dry, from the shape's centre (voxel edges).
     pub(crate) place: Vec<[f64; 3]>,
@@ -33,7 +36,14 @@ pub(crate) struct Skin {
     pub(crate) area: f64,
     /// The voxel that carries each point.
     pub(crate) host: Vec<u32>,
-    /// Where the terms of each point, and of each inner point after them, begin.
+    /// Points on the dry shape's own surface; those on the faces of cracks come after them.
+    pub(crate) outer: usize,
+    /// Points on the skin and inside; then come the openings of cracks, then the nodes.
+    with_inner: usize,
+    /// The eight nodes of each crack's faces, those of the low voxel first, each turned
+    /// about the axis.
+    pub(crate) facing: Vec<[u32; 8]>,
+    /// Where the terms of each point begin.
     start: Vec<u32>,
     node: Vec<u32>,
     weight: Vec<f64>,
@@ -51,49 +61,54 @@ impl Skin {
             Shape::Ball(across) => ball_points(across),
             Shape::Block(size) => block_points(size),
         };
-        let mut skin = Self {
-            area,
-            host: Vec::with_capacity(places.len()),
-            start: vec![0],
-            node: Vec::new(),
-            weight: Vec::new(),
-            place: places.clone(),
-        };
+        let mut skin = Self::empty(area);
+        skin.outer = places.len();
+        skin.place.clone_from(&places);
         for place in places {
             let place = std::array::from_fn(|axis| place[axis] + half[axis]);
             let voxel = host(place, |voxel| cells.contains_key(voxel));
             skin.host.push(voxel_at[&voxel]);
-            for (node, weight) in combination(place, voxel, node_at) {
-                skin.node.push(node as u32);
-                skin.weight.push(weight);
-            }
-            skin.start.push(skin.node.len() as u32);
+            skin.push(combination(place, voxel, node_at));
         }
-        skin.add_inner_points(shape, cells, node_at);
+        let deep = |place: [f64; 3]| is_deep(shape, place);
+        let mut nodes: Vec<_> = node_at.iter().filter(|(place, _)| deep(place.map(f64::from))).collect();
+        nodes.sort_unstable_by_key(|(_, node)| **node);
+        nodes.into_iter().for_each(|(_, &node)| skin.push([(node, 1.0)]));
+        let mut voxels: Vec<_> =
+            cells.keys().filter(|place| deep(place.map(|c| f64::from(c) + 0.5))).collect();
+        voxels.sort_unstable_by_key(|&&[x, y, z]| (z, y, x));
+        for voxel in voxels {
+            skin.push(corner_places(voxel).map(|corner| (node_at[&corner], 0.125)));
+        }
+        skin.end_inner();
+        (0..node_at.len()).for_each(|node| skin.push([(node, 1.0)]));
         skin
     }
 
-    /// Adds the nodes and the voxel centres that lie deep enough below the surface.
-    fn add_inner_points(&mut self, shape: Shape, cells: &HashMap<[u16; 3], CutCell>, node_at: &NodeIndex) {
-        let half = Vector::from(shape.half());
-        let inside = |place: [f64; 3]| shape.depth(&(Vector::from(place) - half)).0 > INNER_DEPTH;
-        let mut nodes: Vec<_> = node_at.iter().filter(|(place, _)| inside(place.map(f64::from))).collect();
-        nodes.sort_unstable_by_key(|(_, node)| **node);
-        for (_, &node) in nodes {
+    pub(super) fn empty(area: f64) -> Self {
+        Self {
+            place: Vec::new(),
+            area,
+            host: Vec::new(),
+            outer: 0,
+            with_inner: 0,
+            facing: Vec::new(),
+            start: vec![0],
+            node: Vec::new(),
+            weight: Vec::new(),
+        }
+    }
+
+    pub(super) fn push(&mut self, terms: impl IntoIterator<Item = (usize, f64)>) {
+        for (node, weight) in terms {
             self.node.push(node as u32);
-            self.weight.push(1.0);
-            self.start.push(self.node.len() as u32);
+            self.weight.push(weight);
         }
-        let mut voxels: Vec<_> =
-            cells.keys().filter(|place| inside(place.map(|c| f64::from(c) + 0.5))).collect();
-        voxels.sort_unstable_by_key(|&&[x, y, z]| (z, y, x));
-        for voxel in voxels {
-            for corner in corner_places(voxel) {
-                self.node.push(node_at[&corner] as u32);
-                self.weight.push(0.125);
-            }
-            self.start.push(self.node.len() as u32);
-        }
+        self.start.push(self.node.len() as u32);
+    }
+
+    pub(super) fn end_inner(&mut self) {
+        self.with_inner = self.start.len() - 1;
     }
 
     /// Number of points on the skin.
@@ -103,7 +118,18 @@ impl Skin {
 
     /// Number of points on the skin and inside.
     pub(crate) fn len_with_inner(&self) -> usize {
-        self.start.len() - 1
+        self.with_inner
+    }
+
+    /// The point that stands for the k-th opening of a crack: its place is the way from the
+    /// low to the high face.
+    pub(crate) fn opening(&self, crack: usize, k: usize) -> usize {
+        self.with_inner + OPENINGS * crack + k
+    }
+
+    /// The point that is a node.
+    pub(crate) fn node_point(&self, node: usize) -> usize {
+        self.opening(self.facing.len(), 0) + node
     }
 
     /// Distance of two points when dry (voxel edges).
@@ -120,6 +146,11 @@ impl Skin {
             .zip(&self.weight[range])
             .map(|(&node, &weight)| (node as usize, weight))
     }
+}
+
+/// Whether a place on the grid lies deep enough for inner points.
+pub(super) fn is_deep(shape: Shape, place: [f64; 3]) -> bool {
+    shape.depth(&(Vector::from(place) - Vector::from(shape.half()))).0 > INNER_DEPTH
 }
 
 /// Points on a ball and the area that each stands for.
@@ -211,11 +242,26 @@ pub(super) fn host(place: [f64; 3], is_kept: impl Fn(&[u16; 3]) -> bool) -> [u16
     best.0
 }
 
-/// The nodes and weights that give a point in (or just outside) a voxel: trilinear,
-/// less ½ ξ(1 - ξ) times a share of the second difference along each axis.
+/// The nodes and weights that give a point in (or just outside) a voxel.
 pub(super) fn combination(place: [f64; 3], voxel: [u16; 3], node_at: &NodeIndex) -> Vec<(usize, f64)> {
-    let local: [f64; 3] = std::array::from_fn(|axis| place[axis] - f64::from(voxel[axis]));
     let corners = corner_places(&voxel);
+    let beyond = |corner: usize, axis: usize, up: bool| {
+        let mut there = corners[corner];
+        there[axis] = u16::try_from(i32::from(there[axis]) + if up { 2 } else { -1 }).ok()?;
+        node_at.get(&there).copied()
+    };
+    let local = std::array::from_fn(|axis| place[axis] - f64::from(voxel[axis]));
+    combination_of(local, corners.map(|corner| node_at[&corner]), beyond)
+}
+
+/// The nodes and weights of a place in a voxel with these corners: trilinear, less
+/// ½ ξ(1 - ξ) times a share of the second difference along each axis. `beyond` knows the
+/// nodes that follow an edge, seen from its low corner, along its axis, downwards and up.
+pub(super) fn combination_of(
+    local: [f64; 3],
+    corners: [usize; 8],
+    beyond: impl Fn(usize, usize, bool) -> Option<usize>,
+) -> Vec<(usize, f64)> {
     let mut terms: Vec<(usize, f64)> = Vec::with_capacity(32);
     let mut add = |node: usize, weight: f64| match terms.iter_mut().find(|term| term.0 == node) {
         Some(term) => term.1 += weight,
@@ -223,21 +269,16 @@ pub(super) fn combination(place: [f64; 3], voxel: [u16; 3], node_at: &NodeIndex)
     };
     let shape =
         |corner: usize, axis: usize| if corner >> axis & 1 == 1 { local[axis] } else { 1.0 - local[axis] };
-    for (corner, place) in corners.iter().enumerate() {
-        add(node_at[place], shape(corner, 0) * shape(corner, 1) * shape(corner, 2));
+    for (corner, &node) in corners.iter().enumerate() {
+        add(node, shape(corner, 0) * shape(corner, 1) * shape(corner, 2));
     }
     for axis in 0..3 {
         let bubble = FLATTENING * 0.5 * local[axis] * (1.0 - local[axis]);
         for corner in (0..8).filter(|corner| corner >> axis & 1 == 0) {
             let weight = bubble * shape(corner, (axis + 1) % 3) * shape(corner, (axis + 2) % 3);
-            let [low, high] = [corner, corner | 1 << axis].map(|corner| node_at[&corners[corner]]);
-            let step = |from: [u16; 3], by: i32| {
-                let mut place = from;
-                place[axis] = u16::try_from(i32::from(from[axis]) + by).ok()?;
-                node_at.get(&place).copied()
-            };
-            let before = step(corners[corner], -1);
-            let after = step(corners[corner], 2);
+            let [low, high] = [corner, corner | 1 << axis].map(|corner| corners[corner]);
+            let before = beyond(corner, axis, false);
+            let after = beyond(corner, axis, true);
             // Second differences centred on the low and on the high node.
             let centred: Vec<[usize; 3]> =
                 before.map(|n| [n, low, high]).into_iter().chain(after.map(|n| [low, high, n])).collect();

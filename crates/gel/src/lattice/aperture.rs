@@ -1,19 +1,22 @@
 //! How much of a voxel's face lies in the gel.
 
-use crate::lattice::{Lattice, Shape};
+use super::{Lattice, Shape};
 
 /// Strips of the quadrature over a face.
 const STRIPS: usize = 32;
 
-/// Share of the high face of a voxel along `axis` that lies inside the dry shape.
-pub(super) fn of_face(lattice: &Lattice, voxel: usize, axis: usize) -> f64 {
-    match lattice.shape() {
-        Shape::Block(_) => 1.0,
-        Shape::Ball(across) => {
-            let centre = lattice.voxel_offset(voxel);
-            let (next, last) = ((axis + 1) % 3, (axis + 2) % 3);
-            let half = 0.5 * across as f64;
-            in_disc([centre[next] - 0.5, centre[last] - 0.5], half * half - (centre[axis] + 0.5).powi(2))
+impl Lattice {
+    /// Share of the high face of a voxel along `axis` that lies inside the dry shape.
+    pub(crate) fn face_area(&self, voxel: usize, axis: usize) -> f64 {
+        match self.shape() {
+            Shape::Block(_) => 1.0,
+            Shape::Ball(across) => {
+                let centre = self.voxel_offset(voxel);
+                let (next, last) = ((axis + 1) % 3, (axis + 2) % 3);
+                let half = 0.5 * across as f64;
+                let square = half * half - (centre[axis] + 0.5).powi(2);
+                in_disc([centre[next] - 0.5, centre[last] - 0.5], square)
+            }
         }
     }
 }
