@@ -1,6 +1,6 @@
 use crate::contact::skin_position;
 use crate::elastic::{self, Elastic};
-use crate::lattice::Lattice;
+use crate::lattice::{Face, Lattice};
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
 use std::sync::Arc;
@@ -93,6 +93,13 @@ impl Bead {
         let filled: f64 =
             gradients.iter().enumerate().map(|(voxel, f)| self.lattice.filled(voxel) * f.determinant()).sum();
         filled * self.voxel_edge().powi(3)
+    }
+
+    /// Ruptures the bonds at these faces.
+    pub(crate) fn split(&mut self, faces: &[Face]) {
+        let torn = self.lattice.split(faces);
+        self.positions = torn.carry_nodes(&self.lattice, &self.positions);
+        self.lattice = Arc::new(torn);
     }
 
     /// Mean deformation gradient of every voxel, from dry.

@@ -8,7 +8,7 @@
 
 mod mixed;
 
-use crate::lanes::{self, Lanes, Vector, WIDTH};
+use crate::lanes::{self, Lanes, Vector};
 use crate::lattice::{Group, Lattice};
 use crate::thermodynamics::Gel;
 pub(crate) use mixed::chain_links;

@@ -13,6 +13,7 @@ mod lattice;
 mod obstacle;
 mod relaxation;
 mod rigid;
+mod rupture;
 mod stress;
 mod thermodynamics;
 
@@ -30,5 +31,6 @@ pub use kinetics::{
 pub use lattice::{Face, Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
 pub use relaxation::{Load, Relaxation};
+pub use rupture::{Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError};
 pub use stress::{Bond, StressField, asphericity};
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

@@ -13,23 +13,20 @@ use bedswell_geometry::{Matrix, Vector};
 const REACH: f64 = 1.0;
 
 /// The two sides of a place on a crack.
-#[derive(Clone, Copy, Debug)]
+#[derive(Clone, Copy, Debug, Default)]
 pub(crate) struct Closing {
     /// Unit normal, from the low to the high side.
     normal: Vector,
     /// Area that the place stands for (m²); none where the faces are far apart.
     area: f64,
     /// Pressure that acts without overlap (Pa).
-    pub(crate) multiplier: f64,
+    multiplier: f64,
 }
 
 impl Contacts {
     /// Fits the closings to the cracks and to how they lie now; pressures are kept.
     pub(crate) fn face_cracks(&mut self, skin: &Skin, positions: &[f64]) {
-        self.closings.resize(
-            OPENINGS * skin.facing.len(),
-            Closing { normal: Vector::zeros(), area: 0.0, multiplier: 0.0 },
-        );
+        self.closings.resize(OPENINGS * skin.facing.len(), Closing::default());
         let stride = positions.len() / 3;
         let place = |&node: &u32| {
             let node = node as usize;
@@ -81,6 +78,17 @@ impl Contacts {
             let opening = skin_position(skin, positions, skin.opening(0, index)).dot(&closing.normal);
             closing.multiplier = (closing.multiplier - penalty * opening).max(0.0);
         }
+    }
+
+    /// Pressures (Pa) of all closings.
+    pub(crate) fn crack_pressures(&self) -> Vec<f64> {
+        self.closings.iter().map(|closing| closing.multiplier).collect()
+    }
+
+    /// Takes up pressures (Pa) of closings.
+    pub(crate) fn set_crack_pressures(&mut self, pressures: &[f64]) {
+        let closing = |&multiplier: &f64| Closing { multiplier, ..Closing::default() };
+        self.closings = pressures.iter().map(closing).collect();
     }
 
     /// Deepest overlap of the faces of a crack (m).

@@ -1,7 +1,8 @@
 //! Ruptured bonds and the surfaces they leave.
 
-use super::Lattice;
+use super::{Lattice, corner_places};
 use serde::{Deserialize, Serialize};
+use std::collections::HashMap;
 
 /// The face that two voxels share, where their bond may rupture.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash, Serialize, Deserialize)]
@@ -42,7 +43,7 @@ impl Lattice {
         // has not four voxels around it is on the skin.
         let mut groups = Groups::new(self.cracks.len() + 1);
         let skin = self.cracks.len();
-        let mut first_at: std::collections::HashMap<([u16; 3], usize), usize> = Default::default();
+        let mut first_at: HashMap<([u16; 3], usize), usize> = HashMap::new();
         for (index, crack) in self.cracks.iter().enumerate() {
             for (place, along) in edges_of(self.voxels[crack.high as usize], crack.axis) {
                 if self.is_outer_edge(place, along) {
@@ -54,6 +55,23 @@ impl Lattice {
         }
         let outside = groups.root(skin);
         (0..self.cracks.len()).map(|index| groups.root(index) == outside).collect()
+    }
+
+    /// Places on the grid of a voxel's corners.
+    pub(crate) fn vertices_of(&self, voxel: usize) -> [[u16; 3]; 8] {
+        corner_places(&self.voxels[voxel])
+    }
+
+    /// The voxels round a vertex of the grid that lie on its low side along an axis.
+    pub(crate) fn voxels_below(&self, vertex: [u16; 3], axis: usize) -> [Option<usize>; 4] {
+        let (next, last) = ((axis + 1) % 3, (axis + 2) % 3);
+        [[1, 1], [0, 1], [1, 0], [0, 0]].map(|back| {
+            let mut place = vertex;
+            place[axis] = place[axis].wrapping_sub(1);
+            place[next] = place[next].wrapping_sub(back[0]);
+            place[last] = place[last].wrapping_sub(back[1]);
+            self.voxel_at(place)
+        })
     }
 
     fn is_outer_edge(&self, place: [u16; 3], along: usize) -> bool {

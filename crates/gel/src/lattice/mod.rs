@@ -114,6 +114,23 @@ impl Lattice {
         Self::filling(Shape::Block(size), &cells)
     }
 
+    /// The lattice of those full voxels of a block that are kept, for test pieces of any
+    /// outline. Only what is left of the block's own faces has a skin that feels obstacles.
+    ///
+    /// # Panics
+    /// As `block`.
+    #[track_caller]
+    pub fn carved(size: [usize; 3], keep: impl Fn([usize; 3]) -> bool) -> Self {
+        let mut lattice = Self::block(size);
+        let kept: Vec<[u16; 3]> =
+            lattice.voxels.iter().copied().filter(|voxel| keep(voxel.map(usize::from))).collect();
+        if kept.len() < lattice.voxels.len() {
+            let cells = kept.into_iter().map(|voxel| (voxel, CutCell::FULL)).collect();
+            lattice = Self::filling(Shape::Block(size), &cells);
+        }
+        lattice
+    }
+
     fn filling(shape: Shape, cells: &HashMap<[u16; 3], CutCell>) -> Self {
         let mut voxels: Vec<[u16; 3]> = cells.keys().copied().collect();
         voxels.sort_unstable_by_key(|&[x, y, z]| (z, y, x));

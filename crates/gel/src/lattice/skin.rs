@@ -57,10 +57,16 @@ impl Skin {
         node_at: &NodeIndex,
     ) -> Self {
         let half = shape.half();
-        let (places, area) = match shape {
+        let (mut places, area) = match shape {
             Shape::Ball(across) => ball_points(across),
             Shape::Block(size) => block_points(size),
         };
+        if let Shape::Block(size) = shape {
+            places.retain(|place| {
+                let inside = |axis: usize| ((place[axis] + half[axis]) as usize).min(size[axis] - 1) as u16;
+                cells.contains_key(&[inside(0), inside(1), inside(2)])
+            });
+        }
         let mut skin = Self::empty(area);
         skin.outer = places.len();
         skin.place.clone_from(&places);

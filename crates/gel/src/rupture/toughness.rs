@@ -1,0 +1,136 @@
+use super::strength::Strengths;
+use crate::bead::Bead;
+use crate::thermodynamics::Gel;
+use serde::{Deserialize, Serialize};
+use thiserror::Error;
+
+/// What it takes to tear a gel.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+pub struct Toughness {
+    /// Fracture energy Γ (J/m²) per area of the free-swollen gel. Per area when dry it stays
+    /// the same at any swelling: the chains that must break stay the same (Lake & Thomas
+    /// 1967, Proc. R. Soc. A 300:108, from memory).
+    pub energy: f64,
+    /// Length ℓ (m) of the free-swollen gel over which stress counts as one; what is
+    /// smaller does not weaken the gel. By default Γ over the plane-strain modulus. More of
+    /// it makes gel without cracks weaker, and leaves the load at which cracks grow.
+    pub length: Option<f64>,
+    /// Standard deviation over mean of the strength of places of volume ℓ³ (0 to 0.5;
+    /// default 0.1). None at all lets symmetric beads tear symmetrically.
+    pub scatter: f64,
+    /// Seed of the strengths by place.
+    pub seed: u64,
+}
+
+impl Toughness {
+    /// Tension at which a crack grows, over √(E' Γ/ℓ), when averaged over ℓ at its
+    /// tip: fixed once by strips in pure shear (`cargo run --release -p bedswell-gel
+    /// --example tearing_strip`).
+    pub const TIP_TENSION: f64 = 0.676;
+}
+
+impl Default for Toughness {
+    /// 5 J/m², of the order of highly swollen gels.
+    fn default() -> Self {
+        Self { energy: 5.0, length: None, scatter: 0.1, seed: 0 }
+    }
+}
+
+/// Why a toughness cannot be used.
+#[derive(Clone, Copy, Debug, PartialEq, Error)]
+pub enum ToughnessError {
+    /// The fracture energy is not positive.
+    #[error("a fracture energy of {0} J/m²; it must be positive and finite, as 5 J/m²")]
+    Energy(f64),
+    /// The length is not positive.
+    #[error("a length of {0} m; it must be positive and finite, or left out for its default")]
+    Length(f64),
+    /// The scatter is out of range.
+    #[error("a scatter of strength of {0}; 0 to {MOST_SCATTER} are possible")]
+    Scatter(f64),
+    /// The lattice is too coarse for the length.
+    #[error(
+        "the length of {length:.3e} m spans {voxels:.2} voxels where at least {LEAST_VOXELS} are needed; take {across} voxels across or more, or a longer length"
+    )]
+    TooCoarse {
+        /// The length, free-swollen (m).
+        length: f64,
+        /// The same in voxels.
+        voxels: f64,
+        /// Voxels across that would do.
+        across: usize,
+    },
+    /// The length is no smaller than the bead.
+    #[error(
+        "the length of {length:.3e} m is more than half the bead's free-swollen radius of {radius:.3e} m, so that its stress has no places to differ by; give a shorter length"
+    )]
+    TooLong {
+        /// The length, free-swollen (m).
+        length: f64,
+        /// The bead's radius, free-swollen (m).
+        radius: f64,
+    },
+}
+
+/// Most scatter of strength.
+const MOST_SCATTER: f64 = 0.5;
+/// Voxels that the length must span.
+const LEAST_VOXELS: f64 = 2.0;
+
+/// A toughness in numbers that a dry lattice needs.
+#[derive(Clone, Debug)]
+pub(crate) struct Criterion {
+    /// Mean strength: a tension (Pa).
+    pub(crate) tension: f64,
+    /// Length ℓ of dry gel (m).
+    pub(crate) length: f64,
+    /// Linear stretch from dry of the free-swollen gel.
+    pub(crate) stretch: f64,
+    pub(crate) strengths: Strengths,
+    /// A bound on the strength of a bead's places, over the mean.
+    pub(crate) least: f64,
+}
+
+impl Criterion {
+    /// The criterion of a gel whose toughness was measured when free-swollen as `swollen`.
+    pub(crate) fn new(toughness: &Toughness, swollen: &Gel) -> Result<Self, ToughnessError> {
+        let Toughness { energy, length, scatter, seed } = *toughness;
+        let is_positive = |value: f64| value > 0.0 && value.is_finite();
+        if !is_positive(energy) {
+            return Err(ToughnessError::Energy(energy));
+        }
+        if let Some(length) = length.filter(|&length| !is_positive(length)) {
+            return Err(ToughnessError::Length(length));
+        }
+        if !(0.0..=MOST_SCATTER).contains(&scatter) {
+            return Err(ToughnessError::Scatter(scatter));
+        }
+        let modulus = swollen.moduli().plane_strain();
+        let length = length.unwrap_or(energy / modulus);
+        let stretch = swollen.free_stretch();
+        Ok(Self {
+            tension: Toughness::TIP_TENSION * (modulus * energy / length).sqrt(),
+            length: length / stretch,
+            stretch,
+            strengths: Strengths::new(scatter, length / stretch, seed),
+            least: 0.0,
+        })
+    }
+
+    /// The criterion fitted to a bead, whose lattice must resolve the length.
+    pub(crate) fn fit(mut self, bead: &Bead) -> Result<Self, ToughnessError> {
+        let length = self.length * self.stretch;
+        let voxels = self.length / bead.voxel_edge();
+        if voxels < LEAST_VOXELS * (1.0 - ROUNDING) {
+            let across = (bead.lattice().across() as f64 * LEAST_VOXELS / voxels).ceil() as usize;
+            return Err(ToughnessError::TooCoarse { length, voxels, across });
+        }
+        if self.length > 0.5 * bead.dry_radius() {
+            return Err(ToughnessError::TooLong { length, radius: bead.dry_radius() * self.stretch });
+        }
+        self.least = self.strengths.least(bead.lattice().shape().half().map(|half| half * bead.voxel_edge()));
+        Ok(self)
+    }
+}
+
+const ROUNDING: f64 = 1e-9;
