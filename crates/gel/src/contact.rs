@@ -191,6 +191,19 @@ impl Contacts {
         forces
     }
 
+    /// What counts as a large force (N): the largest on an obstacle or from grips, and a share
+    /// of `rest` where nothing touches.
+    pub(crate) fn force_scale(
+        &self,
+        skin: &Skin,
+        positions: &[f64],
+        obstacles: &[Obstacle],
+        rest: f64,
+    ) -> f64 {
+        let least = (1e-3 * rest).max(self.grip_force(positions));
+        self.forces(skin, positions, obstacles).iter().map(Vector::norm).fold(least, f64::max)
+    }
+
     /// Visits the pairs that press: the force (N) on the skin point and its gap.
     #[inline]
     fn for_each_pressing(

@@ -254,7 +254,7 @@ impl Elastic<'_> {
                     lanes::scale(lanes::add(tensions[d], lanes::scale(edges[d][edge], spring)), weight);
                 for axis in 0..3 {
                     forces[axis][near] = forces[axis][near] - pull[axis];
-                    forces[axis][far] = forces[axis][far] + pull[axis];
+                    forces[axis][far] += pull[axis];
                 }
             }
         }

@@ -155,7 +155,7 @@ impl Solver {
         let voxel = stretch * bead.voxel_edge();
         let skin_area = bead.lattice().skin.area * voxel * voxel;
         let penalty = PENALTY * gel.moduli().plane_strain() / voxel;
-        let rest_force = gel.moduli().shear * (stretch * bead.dry_radius()).powi(2);
+        let rest_force = rest_force(gel, bead);
         let longest_step = longest_step(voxel, obstacles);
         let (elastic, positions) = bead.elastic_and_positions(gel);
         // Pressures outlive a change of their points' area as forces.
@@ -214,9 +214,7 @@ impl Solver {
         self.contacts.collect(skin, skin.len(), positions, obstacles, 2.0 * longest_step);
         self.evaluate(elastic, positions, obstacles);
         for _ in 0..NEWTON_STEPS {
-            let forces = self.contacts.forces(skin, positions, obstacles);
-            let least = (1e-3 * rest_force).max(self.contacts.grip_force(positions));
-            let scale = forces.iter().map(Vector::norm).fold(least, f64::max);
+            let scale = self.contacts.force_scale(skin, positions, obstacles, rest_force);
             hold(elastic, positions, held, &mut self.gradient);
             residual = norm(&self.gradient) / scale;
             if residual <= target {
@@ -282,9 +280,7 @@ impl Solver {
         rest_force: f64,
     ) -> Balance {
         self.evaluate(elastic, positions, obstacles);
-        let forces = self.contacts.forces(&elastic.lattice.skin, positions, obstacles);
-        let least = (1e-3 * rest_force).max(self.contacts.grip_force(positions));
-        let scale = forces.iter().map(Vector::norm).fold(least, f64::max);
+        let scale = self.contacts.force_scale(&elastic.lattice.skin, positions, obstacles, rest_force);
         let stride = positions.len() / 3;
         let at = |values: &[f64], node: usize| {
             Vector::new(values[node], values[stride + node], values[2 * stride + node])
@@ -435,6 +431,11 @@ fn precondition(blocks: &[Matrix], modes: &RigidModes, residual: &[f64], out: &m
     }
     modes.add_coarse(residual, out);
     modes.project(out);
+}
+
+/// G R² of the free-swollen bead (N).
+pub(crate) fn rest_force(gel: &Gel, bead: &Bead) -> f64 {
+    gel.moduli().shear * (gel.free_stretch() * bead.dry_radius()).powi(2)
 }
 
 /// The longest move of a node in one step (m): no point may jump through an obstacle.

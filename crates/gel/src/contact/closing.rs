@@ -90,13 +90,58 @@ impl Contacts {
         let closing = |&multiplier: &f64| Closing { multiplier, ..Closing::default() };
         self.closings = pressures.iter().map(closing).collect();
     }
+}
 
-    /// Deepest overlap of the faces of a crack (m).
-    pub(crate) fn deepest_overlap(&self, skin: &Skin, positions: &[f64]) -> f64 {
-        let overlap = |(index, closing): (usize, &Closing)| {
-            -skin_position(skin, positions, skin.opening(0, index)).dot(&closing.normal)
-        };
-        let facing = self.closings.iter().enumerate().filter(|(_, closing)| closing.area > 0.0);
-        facing.map(overlap).fold(0.0, f64::max)
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::bead::Bead;
+    use crate::lattice::{Face, Lattice};
+    use std::sync::Arc;
+
+    /// Two halves of a block, one moved by a way from where they would just touch.
+    fn halves(way: Vector) -> (Bead, Contacts) {
+        let whole = Lattice::block([4, 4, 4]);
+        let middle = whole
+            .bonds()
+            .into_iter()
+            .filter(|&(low, _, axis)| axis == 0 && whole.voxel_offset(low)[0] == -0.5);
+        let faces: Vec<Face> =
+            middle.map(|(low, _, axis)| Face { low: low as u32, axis: axis as u8 }).collect();
+        let mut bead = Bead::new(Arc::new(whole.split(&faces)), 2.0, Vector::zeros(), 3.0);
+        let mut contacts = Contacts { penalty: 7.0, ..Contacts::default() };
+        let (lattice, stride) = (bead.shared_lattice(), bead.lattice().stride());
+        for voxel in (0..lattice.voxel_count()).filter(|&voxel| lattice.voxel_offset(voxel)[0] > 0.0) {
+            for node in lattice.corners_of(voxel) {
+                let [x, y, z] = lattice.node_offset(node);
+                for (axis, at) in [x, y, z].into_iter().enumerate() {
+                    bead.positions[axis * stride + node] = 3.0 * at + way[axis];
+                }
+            }
+        }
+        contacts.face_cracks(&lattice.skin, &bead.positions);
+        (bead, contacts)
+    }
+
+    fn forces(bead: &Bead, contacts: &Contacts) -> Vec<f64> {
+        let mut forces = vec![0.0; bead.positions.len()];
+        contacts.add_gradient(&bead.lattice().skin, &bead.positions, &[], &mut forces);
+        forces
+    }
+
+    #[test]
+    fn faces_that_part_or_slide_feel_nothing_and_those_that_overlap_are_pushed_apart_evenly() {
+        for way in [Vector::new(0.1, 0.0, 0.0), Vector::new(1e-9, 0.7, -0.4)] {
+            let (bead, contacts) = halves(way);
+            assert!(forces(&bead, &contacts).iter().all(|&force| force == 0.0), "{way}");
+        }
+        let (bead, contacts) = halves(Vector::new(-0.1, 0.2, 0.0));
+        let forces = forces(&bead, &contacts);
+        let column = &forces[..bead.lattice().node_count()];
+        let pushed: f64 = column.iter().filter(|&&force| force < 0.0).sum();
+        // Penalty times overlap times the area of 4 x 4 voxels of edge 3.
+        assert!((pushed / (-7.0 * 0.1 * 144.0) - 1.0).abs() < 1e-12, "{pushed}");
+        assert!(column.iter().sum::<f64>().abs() < 1e-12 * pushed.abs());
+        assert!(forces[bead.lattice().stride()..].iter().all(|force| force.abs() < 1e-12));
     }
 }

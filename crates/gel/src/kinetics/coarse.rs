@@ -66,6 +66,15 @@ impl Coarse {
         Self { start, terms, inverse: pseudo_inverse(stiffness) }
     }
 
+    /// The same displacements for a lattice that has since been split: a guess knows no cracks.
+    pub(super) fn follow(&mut self, lattice: &Lattice) {
+        for node in self.start.len() - 1..lattice.node_count() {
+            let origin = lattice.origin_of(node);
+            self.terms.extend_from_within(self.start[origin] as usize..self.start[origin + 1] as usize);
+            self.start.push(self.terms.len() as u32);
+        }
+    }
+
     /// Adds what the coarse displacements answer to `forces`, for springs of a strength
     /// (N/m), to `motion`.
     pub(super) fn add_answer(&self, forces: &[f64], strength: f64, motion: &mut [f64]) {

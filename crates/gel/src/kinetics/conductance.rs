@@ -43,14 +43,14 @@ impl Conductance {
             for k in 0..cell.count {
                 let sum: f64 = links[k][..cell.count].iter().sum();
                 self.diagonal[slot] += sum;
-                match cell.others[k] {
-                    SKIN => self.skin_own += links[k][k],
-                    other => self.diagonal[other as usize] += links[k][k],
+                if cell.others[k] != SKIN {
+                    self.diagonal[cell.others[k] as usize] += links[k][k];
                 }
-                if let Some(skin) = (0..cell.count).find(|&l| cell.others[l] == SKIN) {
+                for skin in (0..cell.count).filter(|&l| cell.others[l] == SKIN) {
                     self.skin[slot] -= links[k][skin];
-                    if k != skin {
-                        self.skin[cell.others[k] as usize] += links[k][skin];
+                    match cell.others[k] {
+                        SKIN => self.skin_own += links[k][skin],
+                        other => self.skin[other as usize] += links[k][skin],
                     }
                 }
             }
@@ -159,7 +159,7 @@ mod tests {
     use super::*;
     use crate::bead::Bead;
     use crate::elastic::Elastic;
-    use crate::lattice::Lattice;
+    use crate::lattice::{Face, Lattice};
     use crate::thermodynamics::{Gel, GelNumbers, Surroundings};
     use bedswell_geometry::Vector;
     use std::sync::Arc;
@@ -211,8 +211,37 @@ mod tests {
 
     #[test]
     fn what_the_skin_takes_in_is_what_the_voxels_gain_limited_or_not() {
-        let lattice = Arc::new(Lattice::new(8));
-        let (cells, mut conductance) = sheared(&lattice);
+        check_intake(&Arc::new(Lattice::new(8)));
+    }
+
+    #[test]
+    fn so_it_is_with_cracks_that_cross_and_no_water_flows_across_them() {
+        let whole = Lattice::new(8);
+        let near =
+            |&&(low, _, axis): &&(usize, usize, usize)| axis != 2 && whole.voxel_offset(low)[axis] == -0.5;
+        let bonds = whole.bonds();
+        let faces: Vec<Face> = (bonds.iter().filter(near))
+            .map(|&(low, _, axis)| Face { low: low as u32, axis: axis as u8 })
+            .collect();
+        let torn = Arc::new(whole.split(&faces));
+        assert_eq!(torn.bodies().len(), 4);
+        check_intake(&torn);
+        // Water that is added to one body stays there, where no skin is open.
+        let closed = Arc::new(whole.split(&faces));
+        let mut body_of = vec![0; closed.voxel_count()];
+        for (body, voxels) in closed.bodies().iter().enumerate() {
+            voxels.iter().for_each(|&voxel| body_of[voxel] = body);
+        }
+        for (voxel, cell) in cells(&closed, |_| true).iter().enumerate() {
+            for other in cell.others[..cell.count].iter().filter(|&&other| other != SKIN) {
+                let there = closed.slots.iter().position(|slot| slot == other).unwrap();
+                assert_eq!(body_of[voxel], body_of[there]);
+            }
+        }
+    }
+
+    fn check_intake(lattice: &Arc<Lattice>) {
+        let (cells, mut conductance) = sheared(lattice);
         let mut potentials = vec![0.0; lattice.volume.len()];
         lattice.slots.iter().for_each(|&slot| potentials[slot as usize] = -1.0 - f64::from(slot % 7));
         let mut out = vec![0.0; potentials.len()];

@@ -135,6 +135,8 @@ impl Problem<'_> {
         let duration = self.rate() * seconds;
         let stretch = (weighed_mean(&lattice.volume, &at.water)).cbrt();
         let longest = longest_step(stretch * elastic.edge, obstacles);
+        at.contacts.face_cracks(&lattice.skin, &at.positions);
+        at.contacts.follow(&reference.positions);
         self.guess(at, reference, seconds, &mut scratch.ratios);
         let size = elastic.voxel_energy() * elastic.gel.numbers().crosslinks * stretch * stretch;
         let target = self.tolerance * (size * lattice.volume.iter().sum::<f64>()).sqrt();

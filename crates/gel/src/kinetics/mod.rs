@@ -24,6 +24,7 @@ mod snapshot;
 mod stages;
 mod stencil;
 mod step;
+mod tear;
 
 use crate::bead::Bead;
 use crate::contact::{Pair, skin_position};
@@ -32,6 +33,7 @@ use crate::equilibrium::PENALTY;
 use crate::lattice::Shape;
 use crate::obstacle::Obstacle;
 use crate::rigid::Held;
+use crate::rupture::{Criterion, Event};
 use crate::stress::StressField;
 use crate::thermodynamics::{Gel, GelNumbers};
 use coarse::Coarse;
@@ -60,6 +62,8 @@ pub struct Kinetics {
     cells: Vec<Cell>,
     coarse: Coarse,
     scratch: Scratch,
+    criterion: Option<Criterion>,
+    ruptures: Vec<Event>,
 }
 
 impl Kinetics {
@@ -105,6 +109,8 @@ impl Kinetics {
             outside: None,
             sealed: Vec::new(),
             scratch: Scratch::default(),
+            criterion: None,
+            ruptures: Vec::new(),
         })
     }
 
@@ -113,6 +119,7 @@ impl Kinetics {
     /// # Errors
     /// When the snapshot is of another lattice.
     pub fn resume(mut self, snapshot: &Snapshot) -> Result<Self, KineticsError> {
+        self.split(&snapshot.ruptured)?;
         let state = &mut self.state;
         for (field, own) in [
             (&snapshot.positions, &mut state.positions),
@@ -131,6 +138,8 @@ impl Kinetics {
         self.bead.positions.copy_from_slice(&snapshot.positions);
         (self.time, self.came_in, self.next) = (snapshot.time, snapshot.came_in, snapshot.next);
         self.outside = snapshot.outside;
+        self.state.contacts.set_crack_pressures(&snapshot.closed);
+        self.ruptures.clone_from(&snapshot.ruptures);
         Ok(self)
     }
 
@@ -145,6 +154,9 @@ impl Kinetics {
             slopes: self.state.slopes.clone(),
             pressures: pressing.map(|pair| (pair.point, pair.obstacle, pair.multiplier)).collect(),
             point_area: self.state.contacts.area,
+            ruptured: self.bead.lattice().ruptured().collect(),
+            closed: self.state.contacts.crack_pressures(),
+            ruptures: self.ruptures.clone(),
             came_in: self.came_in,
             next: self.next,
             outside: self.outside,
@@ -266,17 +278,20 @@ impl Kinetics {
         self.outside = Some(*outside);
         self.bead.positions.copy_from_slice(&stages.state.positions);
         self.state = stages.state;
+        let ruptures = self.tear(outside, obstacles)?;
+        let skin = &self.bead.lattice().skin;
         Ok(Step {
             time: self.time,
             duration: stages.duration,
             water: self.water(),
             came_in: self.came_in,
-            forces: self.state.contacts.forces(&lattice.skin, &self.state.positions, obstacles),
+            forces: self.state.contacts.forces(skin, &self.state.positions, obstacles),
             penetration: self.penetration(obstacles),
             residual: stages.solved.residual,
             error: stages.error,
             newton_steps: stages.solved.steps,
             iterations: stages.solved.iterations,
+            ruptures,
         })
     }
 
@@ -306,7 +321,8 @@ impl Kinetics {
         }
         contacts.collect(skin, skin.len(), &self.state.positions, obstacles, 0.0);
         let pressing = contacts.linearise(skin, &self.state.positions, obstacles, false);
-        let mut sealed: Vec<u32> = pressing.iter().map(|pressing| pressing.point).collect();
+        let on_skin = |&point: &u32| (point as usize) < skin.len();
+        let mut sealed: Vec<u32> = pressing.iter().map(|pressing| pressing.point).filter(on_skin).collect();
         sealed.dedup();
         if sealed != self.sealed {
             self.cells = cells(elastic.lattice, |point| sealed.binary_search(&(point as u32)).is_err());

@@ -1,4 +1,6 @@
 use super::history::Outside;
+use crate::lattice::Face;
+use crate::rupture::Event;
 use serde::{Deserialize, Serialize};
 
 /// All that a bead's kinetics remember: resumed from it, a run goes on to the same bits.
@@ -18,6 +20,15 @@ pub struct Snapshot {
     pub pressures: Vec<(u32, u32, f64)>,
     /// Area that each skin point had when they last pressed (m²).
     pub point_area: f64,
+    /// Faces of the ruptured bonds, in the order in which they broke.
+    #[serde(default)]
+    pub ruptured: Vec<Face>,
+    /// Pressures (Pa) between the faces of cracks.
+    #[serde(default)]
+    pub closed: Vec<f64>,
+    /// All ruptures so far.
+    #[serde(default)]
+    pub ruptures: Vec<Event>,
     /// Water that has come in since the start (m³).
     pub came_in: f64,
     /// Length of the next step, if nothing hinders it (s).

@@ -81,7 +81,8 @@ impl Problem<'_> {
             water: ahead(&from.water, &middle),
         };
         let mut solved = self.solve(&mut state, &reference, share, scratch)?;
-        for _ in 0..if self.obstacles.is_empty() { 0 } else { corrections } {
+        let presses = !self.obstacles.is_empty() || !state.contacts.closings.is_empty();
+        for _ in 0..if presses { corrections } else { 0 } {
             let skin = &self.elastic.lattice.skin;
             state.contacts.update_multipliers(skin, &state.positions, self.obstacles);
             let again = self.solve(&mut state, &reference, share, scratch)?;

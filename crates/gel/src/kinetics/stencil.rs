@@ -4,7 +4,7 @@
 use crate::lattice::Lattice;
 use bedswell_geometry::{Matrix, Vector};
 
-/// A voxel has at most six neighbours and one piece of skin.
+/// A voxel has at most six neighbours or faces of cracks, and one piece of outer skin.
 pub(super) const FACES: usize = 7;
 
 /// In place of a neighbour: the skin.
@@ -70,6 +70,7 @@ pub(super) fn cells(lattice: &Lattice, open: impl Fn(usize) -> bool) -> Vec<Cell
         add(low, high, share, 1.0);
         add(high, low, 1.0 - share, -1.0);
     }
+    add_cracks(lattice, &middles, &mut faces);
     add_skin(lattice, &middles, open, &mut faces);
     faces.iter().enumerate().map(|(voxel, faces)| Cell::new(lattice.filled(voxel), faces)).collect()
 }
@@ -112,10 +113,24 @@ fn middle(lattice: &Lattice, voxel: usize) -> Vector {
     Vector::from_fn(|axis, _| centre[axis] - 0.5 + lattice.first[axis][slot])
 }
 
+/// Gives the voxels beside cracks that water from outside reaches faces towards it; nothing
+/// flows across a crack.
+fn add_cracks(lattice: &Lattice, middles: &[Vector], faces: &mut [Vec<Face>]) {
+    for (crack, _) in lattice.cracks().iter().zip(lattice.exposed()).filter(|(_, exposed)| *exposed) {
+        let centre = Vector::from(lattice.voxel_offset(crack.low as usize));
+        let normal = Vector::ith(crack.axis, 1.0);
+        let area = lattice.face_area(crack.low as usize, crack.axis);
+        for (voxel, side) in [(crack.low as usize, 1.0), (crack.high as usize, -1.0)] {
+            let reach = centre + normal * 0.5 - middles[voxel];
+            faces[voxel].push(Face { other: SKIN, share: 1.0, area, normal: normal * side, reach });
+        }
+    }
+}
+
 /// Gives every voxel with open skin points one face through them.
 fn add_skin(lattice: &Lattice, middles: &[Vector], open: impl Fn(usize) -> bool, faces: &mut [Vec<Face>]) {
     let mut sums = vec![(0.0, Vector::zeros(), Vector::zeros()); middles.len()];
-    for point in (0..lattice.skin.len()).filter(|&point| open(point)) {
+    for point in (0..lattice.skin.outer).filter(|&point| open(point)) {
         let place = Vector::from(lattice.skin.place[point]);
         let (count, normal, sum) = &mut sums[lattice.skin.host[point] as usize];
         *count += 1.0;

@@ -24,6 +24,8 @@ pub struct Step {
     pub newton_steps: usize,
     /// Iterations of linear solves taken.
     pub iterations: usize,
+    /// Ruptures at its end.
+    pub ruptures: usize,
 }
 
 /// Why a bead cannot go on in time.
@@ -44,6 +46,14 @@ pub enum KineticsError {
         found: usize,
         /// Values expected.
         expected: usize,
+    },
+    /// No equilibrium follows a rupture.
+    #[error("no equilibrium follows the {ruptures}th rupture, at {time} s; try more voxels across")]
+    Torn {
+        /// When (s).
+        time: f64,
+        /// Ruptures so far.
+        ruptures: usize,
     },
     /// No step is short enough.
     #[error(

@@ -29,15 +29,20 @@ impl Lattice {
     pub(crate) fn carry_nodes(&self, from: &Lattice, values: &[f64]) -> Vec<f64> {
         let (old, new) = (from.stride(), self.stride());
         let mut carried = vec![0.0; 3 * new];
-        let first = self.nodes.len() - self.origins.len();
         for axis in 0..3 {
             let column = &mut carried[axis * new..(axis + 1) * new];
             column[..from.nodes.len()].copy_from_slice(&values[axis * old..axis * old + from.nodes.len()]);
             for node in from.nodes.len()..self.nodes.len() {
-                column[node] = column[self.origins[node - first] as usize];
+                column[node] = column[self.origin_of(node)];
             }
         }
         carried
+    }
+
+    /// The node that a node was split from; itself for one of the whole lattice.
+    pub(crate) fn origin_of(&self, node: usize) -> usize {
+        let whole = self.nodes.len() - self.origins.len();
+        node.checked_sub(whole).map_or(node, |copy| self.origins[copy] as usize)
     }
 
     /// Voxel values in slots carried over from the lattice that this one was split from;

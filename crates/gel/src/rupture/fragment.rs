@@ -46,7 +46,7 @@ const DRAG: f64 = 1e-2;
 
 /// Weak springs from the nodes of all bodies but the largest to where they are: nothing
 /// else may hold a fragment, and its state must still be one.
-pub(super) fn drags(lattice: &Lattice, chains: f64) -> Vec<Tie> {
+pub(crate) fn drags(lattice: &Lattice, chains: f64) -> Vec<Tie> {
     let bodies = lattice.bodies();
     let voxels = bodies.iter().skip(1).flatten();
     let mut nodes: Vec<usize> = voxels.flat_map(|&voxel| lattice.corners_of(voxel)).collect();
@@ -56,7 +56,7 @@ pub(super) fn drags(lattice: &Lattice, chains: f64) -> Vec<Tie> {
 }
 
 /// Springs of a stiffness (N/m) from nodes to where they are.
-pub(super) fn drags_on(nodes: impl IntoIterator<Item = usize>, stiffness: f64) -> Vec<Tie> {
+pub(crate) fn drags_on(nodes: impl IntoIterator<Item = usize>, stiffness: f64) -> Vec<Tie> {
     let stiffness = Vector::from_element(stiffness);
     let tie = |node| Tie { node: node as u32, stiffness, place: Vector::zeros(), follows: true };
     nodes.into_iter().map(tie).collect()

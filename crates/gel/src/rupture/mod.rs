@@ -18,7 +18,7 @@ mod unit;
 
 use crate::bead::Bead;
 use crate::contact::Contacts;
-use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance};
+use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, rest_force};
 use crate::lattice::Face;
 use crate::obstacle::Obstacle;
 use crate::stress::StressField;
@@ -26,13 +26,15 @@ use crate::thermodynamics::Gel;
 use average::Field;
 use bedswell_geometry::{Matrix, Vector};
 pub use fragment::Fragment;
+pub(crate) use fragment::{drags, drags_on};
 pub use grip::Grip;
 use serde::{Deserialize, Serialize};
 pub use snapshot::RuptureSnapshot;
 use thiserror::Error;
 pub(crate) use toughness::Criterion;
 pub use toughness::{Toughness, ToughnessError};
-use unit::{Loaded, loaded};
+pub(crate) use unit::Loaded;
+use unit::loaded;
 
 /// A bead that may tear, among fixed obstacles.
 #[derive(Clone, Debug)]
@@ -85,14 +87,15 @@ pub enum RuptureError {
     },
 }
 
-/// Residual to which ruptures are told apart: looser than that of a state at rest.
-const BETWEEN_RUPTURES: f64 = 1e-4;
+/// Net nodal forces that may remain between ruptures, over what one bond of mean strength
+/// bears: with more, cracks would stop where they have not.
+const BETWEEN_RUPTURES: f64 = 0.03;
 /// Ruptures at the same time lie further apart than this (ℓ).
 const APART: f64 = 4.0;
 /// Drag with which states that snap are followed, over the stiffness of chains along an
 /// edge, and how often the gel may move on under it.
-const SNAP_DRAGS: [f64; 4] = [0.03, 0.1, 0.3, 1.0];
-const SNAP_STEPS: usize = 10;
+pub(crate) const SNAP_DRAGS: [f64; 4] = [0.03, 0.1, 0.3, 1.0];
+pub(crate) const SNAP_STEPS: usize = 10;
 
 impl Rupture {
     /// A bead whose gel has a toughness, measured when free-swollen as `swollen`.
@@ -141,7 +144,11 @@ impl Rupture {
             if outcome.is_ok() {
                 break;
             }
-            let loose = Tolerance { residual: BETWEEN_RUPTURES, corrections: SNAP_STEPS, ..tolerance };
+            let loose = Tolerance {
+                residual: self.between_ruptures(gel, obstacles),
+                corrections: SNAP_STEPS,
+                ..tolerance
+            };
             let _ = self.solve(gel, obstacles, loose, drag);
             outcome = self.solve(gel, obstacles, tolerance, 0.0);
         }
@@ -159,9 +166,9 @@ impl Rupture {
     ) -> Result<Equilibrium, EquilibriumError> {
         let (lattice, chains) = (self.bead.lattice(), gel.dry_shear_modulus() * self.bead.voxel_edge());
         self.contacts.ties = grip::ties(&self.grips, chains);
-        self.contacts.ties.extend(fragment::drags(lattice, chains));
+        self.contacts.ties.extend(drags(lattice, chains));
         if drag > 0.0 {
-            self.contacts.ties.extend(fragment::drags_on(0..lattice.node_count(), drag * chains));
+            self.contacts.ties.extend(drags_on(0..lattice.node_count(), drag * chains));
         }
         let mut solver = Solver::with_contacts(&self.bead, self.contacts.clone());
         let outcome = solver.settle(&mut self.bead, gel, obstacles, tolerance);
@@ -181,21 +188,20 @@ impl Rupture {
         obstacles: &[Obstacle],
         tolerance: Tolerance,
     ) -> Result<Equilibrium, RuptureError> {
-        let loose =
-            Tolerance { residual: tolerance.residual.max(BETWEEN_RUPTURES), corrections: 0, ..tolerance };
-        self.settle(gel, obstacles, loose)?;
+        self.settle(gel, obstacles, Tolerance { corrections: 0, ..tolerance })?;
         loop {
-            while self.rupture_once(gel, obstacles, loose)? > 0 {}
-            // What a loose state has not seen, a close one may.
+            while self.rupture_once(gel, obstacles, tolerance.held)? > 0 {}
+            // Contacts that have been corrected may overload what was not.
             let equilibrium = self.settle(gel, obstacles, tolerance)?;
-            if self.rupture_once(gel, obstacles, loose)? == 0 {
+            if self.rupture_once(gel, obstacles, tolerance.held)? == 0 {
                 return Ok(equilibrium);
             }
         }
     }
 
     /// Breaks what is most overloaded, and what else is far from it, and brings the bead to
-    /// rest. Returns how many units of bonds broke.
+    /// rest as closely as the next rupture needs; its place is `held` as by `Tolerance`.
+    /// Returns how many units of bonds broke.
     ///
     /// # Errors
     /// When no equilibrium is found.
@@ -203,17 +209,17 @@ impl Rupture {
         &mut self,
         gel: &Gel,
         obstacles: &[Obstacle],
-        tolerance: Tolerance,
+        held: bool,
     ) -> Result<usize, RuptureError> {
-        let chosen = self.loaded(gel, 1.0, APART);
+        let chosen = overloaded(&self.bead, &StressField::of(&self.bead, gel).stress, &self.criterion);
         if chosen.is_empty() {
             return Ok(0);
         }
         let first = self.events.len();
-        let events: Vec<Event> = chosen.iter().map(|unit| self.event(unit)).collect();
-        self.events.extend(events);
-        let faces: Vec<Face> = chosen.iter().flat_map(|loaded| loaded.unit.faces.iter().copied()).collect();
+        self.events.extend(chosen.iter().map(|loaded| loaded.event(&self.bead, &self.criterion)));
+        let faces: Vec<Face> = chosen.iter().flat_map(|loaded| loaded.faces()).copied().collect();
         self.cut(&faces);
+        let tolerance = Tolerance { residual: self.between_ruptures(gel, obstacles), corrections: 0, held };
         let steps = self.settle(gel, obstacles, tolerance)?.steps;
         self.events[first..].iter_mut().for_each(|event| event.newton_steps = steps);
         Ok(chosen.len())
@@ -222,25 +228,16 @@ impl Rupture {
     /// Largest averaged tension over strength anywhere; at 1 the bead ruptures. 0 where it
     /// is below `least`.
     pub fn load(&self, gel: &Gel, least: f64) -> f64 {
-        self.loaded(gel, least, 0.0).iter().map(|loaded| loaded.ratio).fold(0.0, f64::max)
-    }
-
-    fn loaded(&self, gel: &Gel, ratio: f64, apart: f64) -> Vec<Loaded> {
         let stress = StressField::of(&self.bead, gel).stress;
-        loaded_in(&self.bead, &stress, &self.criterion, ratio, apart)
+        let loaded = loaded_in(&self.bead, &stress, &self.criterion, least, 0.0);
+        loaded.iter().map(|loaded| loaded.ratio).fold(0.0, f64::max)
     }
 
-    fn event(&self, Loaded { unit, ratio, .. }: &Loaded) -> Event {
-        let lattice = self.bead.lattice();
-        let edge = self.free_edge();
-        let area = |face: &Face| lattice.face_area(face.low as usize, usize::from(face.axis));
-        Event {
-            place: unit.place * edge,
-            depth: lattice.shape().depth(&unit.place).0 * edge,
-            area: unit.faces.iter().map(area).sum::<f64>() * edge * edge,
-            ratio: *ratio,
-            newton_steps: 0,
-        }
+    /// Residual to which a state is solved between ruptures.
+    fn between_ruptures(&self, gel: &Gel, obstacles: &[Obstacle]) -> f64 {
+        let bond = self.criterion.tension * self.free_edge().powi(2);
+        let (skin, rest) = (&self.bead.lattice().skin, rest_force(gel, &self.bead));
+        BETWEEN_RUPTURES * bond / self.contacts.force_scale(skin, &self.bead.positions, obstacles, rest)
     }
 
     /// Edge of a free-swollen voxel (m).
@@ -249,8 +246,13 @@ impl Rupture {
     }
 }
 
-/// Units of a bead with this stress (Pa) that are loaded to at least `ratio`, further apart
-/// than `apart` (ℓ).
+/// What ruptures next, at once, in a bead with this stress (Pa); nothing where nothing is
+/// overloaded.
+pub(crate) fn overloaded(bead: &Bead, stress: &[Matrix], criterion: &Criterion) -> Vec<Loaded> {
+    loaded_in(bead, stress, criterion, 1.0, APART)
+}
+
+/// Units that are loaded to at least `ratio`, further apart than `apart` (ℓ).
 fn loaded_in(bead: &Bead, stress: &[Matrix], criterion: &Criterion, ratio: f64, apart: f64) -> Vec<Loaded> {
     let gradients = bead.gradients();
     let field = Field { lattice: bead.lattice(), stress, gradients: &gradients };

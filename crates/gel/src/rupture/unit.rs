@@ -3,8 +3,10 @@
 //! Single bonds split nothing: a crack grows by all intact bonds across one axis round a
 //! vertex. Averaged stress decides whether one gives way, its own stress which.
 
+use super::Event;
 use super::average::{Field, Neighbourhood, Tension};
 use super::toughness::Criterion;
+use crate::bead::Bead;
 use crate::lattice::{Face, Lattice};
 use bedswell_geometry::Vector;
 
@@ -12,15 +14,15 @@ use bedswell_geometry::Vector;
 /// apart: one of the three axes always does.
 const ALIGNED: f64 = 0.56;
 /// Share of its strength at which a unit's own tension makes it worth averaging round it:
-/// where averaged tension is at its largest, that in the middle is hardly smaller.
-const WORTH_AVERAGING: f64 = 0.9;
+/// averages are largest a little ahead of a crack's tip, where tension itself has fallen.
+const WORTH_AVERAGING: f64 = 0.6;
 
 /// The intact bonds across one axis round a vertex.
 #[derive(Clone, Debug)]
-pub(super) struct Unit {
-    pub(super) faces: Vec<Face>,
+struct Unit {
+    faces: Vec<Face>,
     /// Middle of the faces (voxel edges from the centre).
-    pub(super) place: Vector,
+    place: Vector,
 }
 
 impl Unit {
@@ -31,10 +33,30 @@ impl Unit {
 
 /// A unit that is loaded.
 #[derive(Clone, Debug)]
-pub(super) struct Loaded {
-    pub(super) unit: Unit,
+pub(crate) struct Loaded {
+    unit: Unit,
     /// Averaged tension over strength.
     pub(super) ratio: f64,
+}
+
+impl Loaded {
+    /// Faces of its bonds.
+    pub(crate) fn faces(&self) -> &[Face] {
+        &self.unit.faces
+    }
+
+    /// Its rupture.
+    pub(crate) fn event(&self, bead: &Bead, criterion: &Criterion) -> Event {
+        let (lattice, edge) = (bead.lattice(), bead.voxel_edge() * criterion.stretch);
+        let area = |face: &Face| lattice.face_area(face.low as usize, usize::from(face.axis));
+        Event {
+            place: self.unit.place * edge,
+            depth: lattice.shape().depth(&self.unit.place).0.max(0.0) * edge,
+            area: self.faces().iter().map(area).sum::<f64>() * edge * edge,
+            ratio: self.ratio,
+            newton_steps: 0,
+        }
+    }
 }
 
 /// The units that tension tears hardest at among those loaded to at least `ratio` of their
