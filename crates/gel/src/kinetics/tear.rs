@@ -30,6 +30,15 @@ impl Kinetics {
         &self.ruptures
     }
 
+    /// Cuts bonds, as with a blade.
+    ///
+    /// # Errors
+    /// When there is no such bond in the whole lattice.
+    pub fn cut(&mut self, faces: &[Face]) -> Result<(), KineticsError> {
+        self.next = 0.0;
+        self.split(faces)
+    }
+
     /// Ruptures what is overloaded until nothing is, with the water where it is. Returns how
     /// many units of bonds ruptured.
     pub(super) fn tear(&mut self, outside: &Outside, obstacles: &[Obstacle]) -> Result<usize, KineticsError> {
