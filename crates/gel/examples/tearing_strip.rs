@@ -17,6 +17,7 @@ fn main() -> Result<(), Box<dyn Error>> {
     let heights: Vec<usize> =
         std::env::args().skip(1).map(|height| height.parse()).collect::<Result<_, _>>()?;
     let heights = if heights.is_empty() { vec![12, 18, 24] } else { heights };
+    // Above the least, some strip would stop; below the most, some would start too early.
     let (mut least, mut most) = (f64::INFINITY, 0.0_f64);
     for height in heights {
         for (angle, oblique) in [(0, false), (45, true)] {
@@ -33,7 +34,7 @@ fn main() -> Result<(), Box<dyn Error>> {
                     constant(loads[0]),
                     loads.len() - 1
                 );
-                (least, most) = (least.min(hardest), most.max(hardest));
+                (least, most) = (least.min(hardest), most.max(constant(loads[0])));
             }
         }
     }

@@ -274,6 +274,7 @@ pub(crate) fn add_possible_blocks(
             out[node] += stiffness * weight.abs();
         }
     }
+    contacts.add_possible_closings(skin, out);
 }
 
 /// A contact's stiffness along its normal, with a share across it: the normal turns a

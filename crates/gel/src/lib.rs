@@ -1,4 +1,4 @@
-//! Gel thermodynamics, bead lattices and their equilibrium.
+//! Gel thermodynamics, bead lattices, their equilibrium and rupture, water in time.
 
 mod bead;
 mod contact;
@@ -31,6 +31,8 @@ pub use kinetics::{
 pub use lattice::{Face, Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
 pub use relaxation::{Load, Relaxation};
-pub use rupture::{Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError};
+pub use rupture::{
+    Criterion, Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError,
+};
 pub use stress::{Bond, StressField, asphericity};
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

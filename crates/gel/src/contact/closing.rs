@@ -4,13 +4,16 @@
 //! a penalty on the overlap along their common normal, with a multiplier as for obstacles.
 //! Normals are those of the state at which contacts were last prepared.
 
-use super::{Contacts, skin_position};
+use super::{Contacts, skin_position, turning};
 use crate::lattice::{OPENINGS, Skin};
 use bedswell_geometry::{Matrix, Vector};
 
 /// Faces that have slid further apart than this do not face each other any more (edges of
 /// a voxel's swollen face).
 const REACH: f64 = 1.0;
+
+/// Bound on the stiffness that a node sees over what is lumped on it: both sides move.
+const MARGIN: f64 = 2.0;
 
 /// The two sides of a place on a crack.
 #[derive(Clone, Copy, Debug, Default)]
@@ -77,6 +80,16 @@ impl Contacts {
         for (index, closing) in self.closings.iter_mut().enumerate().filter(|(_, c)| c.area > 0.0) {
             let opening = skin_position(skin, positions, skin.opening(0, index)).dot(&closing.normal);
             closing.multiplier = (closing.multiplier - penalty * opening).max(0.0);
+        }
+    }
+
+    /// Adds each node's share of the stiffness as if all cracks were closed, lumped.
+    pub(super) fn add_possible_closings(&self, skin: &Skin, out: &mut [Matrix]) {
+        for (index, closing) in self.closings.iter().enumerate() {
+            let stiffness = turning(&closing.normal) * (MARGIN * self.penalty * closing.area);
+            for (node, weight) in skin.terms(skin.opening(0, index)) {
+                out[node] += stiffness * weight.abs();
+            }
         }
     }
 

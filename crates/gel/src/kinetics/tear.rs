@@ -21,7 +21,7 @@ impl Kinetics {
     /// # Errors
     /// When the toughness is out of range or the lattice too coarse for its length.
     pub fn tearing(mut self, toughness: &Toughness, swollen: &Gel) -> Result<Self, ToughnessError> {
-        self.criterion = Some(Criterion::new(toughness, swollen)?.fit(&self.bead)?);
+        self.criterion = Some(Criterion::new(toughness, swollen, &self.bead)?);
         Ok(self)
     }
 

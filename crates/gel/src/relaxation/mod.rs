@@ -1,6 +1,7 @@
 //! A bead on its way to rest together with what moves around it.
 
 mod inertia;
+mod tear;
 
 use crate::bead::Bead;
 use crate::contact::{Contacts, pull_nodes, skin_position};
@@ -10,6 +11,7 @@ use crate::fold::{FoldLaw, Folds};
 use crate::gel_contact::Push;
 use crate::lattice::{Embedded, POINT_WAY};
 use crate::obstacle::Obstacle;
+use crate::rupture;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
 use inertia::Inertia;
@@ -126,6 +128,7 @@ impl Relaxation {
         let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
         let points = lattice.skin.len_with_inner();
+        self.contacts.face_cracks(&lattice.skin, &self.bead.positions);
         self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, reach);
@@ -142,7 +145,8 @@ impl Relaxation {
     /// Distance (m) by which a skin point and an obstacle may have come nearer since
     /// contacts were last looked for; without end when they never were.
     pub fn approach(&self, obstacles: &[Obstacle]) -> f64 {
-        if self.listed.obstacles.len() != obstacles.len() {
+        let listed = &self.listed;
+        if listed.obstacles.len() != obstacles.len() || listed.positions.len() != self.bead.positions.len() {
             return f64::INFINITY;
         }
         let stride = self.gradient.len() / 3;
@@ -291,9 +295,12 @@ impl Relaxation {
     ) -> Result<Equilibrium, EquilibriumError> {
         let mut bead = self.bead.clone();
         let mut solver = Solver::with_contacts(&bead, self.contacts.clone());
+        let chains = gel.dry_shear_modulus() * bead.voxel_edge();
+        solver.contacts.ties = rupture::drags(bead.lattice(), chains);
         let equilibrium = solver.settle(&mut bead, gel, obstacles, tolerance)?;
         self.bead = bead;
         self.contacts = solver.contacts;
+        self.contacts.ties.clear();
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, 0.0);
         self.listed = Listed::default();

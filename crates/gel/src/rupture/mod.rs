@@ -31,8 +31,7 @@ pub use grip::Grip;
 use serde::{Deserialize, Serialize};
 pub use snapshot::RuptureSnapshot;
 use thiserror::Error;
-pub(crate) use toughness::Criterion;
-pub use toughness::{Toughness, ToughnessError};
+pub use toughness::{Criterion, Toughness, ToughnessError};
 pub(crate) use unit::Loaded;
 use unit::loaded;
 
@@ -103,7 +102,7 @@ impl Rupture {
     /// # Errors
     /// When the toughness is out of range or the lattice too coarse for its length.
     pub fn new(bead: Bead, toughness: &Toughness, swollen: &Gel) -> Result<Self, RuptureError> {
-        let criterion = Criterion::new(toughness, swollen)?.fit(&bead)?;
+        let criterion = Criterion::new(toughness, swollen, &bead)?;
         Ok(Self { bead, criterion, contacts: Contacts::default(), grips: Vec::new(), events: Vec::new() })
     }
 

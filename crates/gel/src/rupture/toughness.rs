@@ -26,7 +26,7 @@ impl Toughness {
     /// Tension at which a crack grows, over √(E' Γ/ℓ), when averaged over ℓ at its
     /// tip: fixed once by strips in pure shear (`cargo run --release -p bedswell-gel
     /// --example tearing_strip`).
-    pub const TIP_TENSION: f64 = 0.67;
+    pub const TIP_TENSION: f64 = 0.677;
 }
 
 impl Default for Toughness {
@@ -77,9 +77,9 @@ const MOST_SCATTER: f64 = 0.5;
 /// Voxels that the length must span.
 const LEAST_VOXELS: f64 = 2.0;
 
-/// A toughness in numbers that a dry lattice needs.
+/// What a bead's stress is compared with: a toughness, fitted to its lattice.
 #[derive(Clone, Debug)]
-pub(crate) struct Criterion {
+pub struct Criterion {
     /// Mean strength: a tension (Pa).
     pub(crate) tension: f64,
     /// Length ℓ of dry gel (m).
@@ -92,8 +92,13 @@ pub(crate) struct Criterion {
 }
 
 impl Criterion {
-    /// The criterion of a gel whose toughness was measured when free-swollen as `swollen`.
-    pub(crate) fn new(toughness: &Toughness, swollen: &Gel) -> Result<Self, ToughnessError> {
+    /// The criterion of a bead whose gel has a toughness, measured when free-swollen as
+    /// `swollen`.
+    ///
+    /// # Errors
+    /// When the toughness is out of range, or its length smaller than the lattice resolves
+    /// or as large as the bead.
+    pub fn new(toughness: &Toughness, swollen: &Gel, bead: &Bead) -> Result<Self, ToughnessError> {
         let Toughness { energy, length, scatter, seed } = *toughness;
         let is_positive = |value: f64| value > 0.0 && value.is_finite();
         if !is_positive(energy) {
@@ -108,17 +113,17 @@ impl Criterion {
         let modulus = swollen.moduli().plane_strain();
         let length = length.unwrap_or(energy / modulus);
         let stretch = swollen.free_stretch();
-        Ok(Self {
+        let criterion = Self {
             tension: Toughness::TIP_TENSION * (modulus * energy / length).sqrt(),
             length: length / stretch,
             stretch,
             strengths: Strengths::new(scatter, length / stretch, seed),
             least: 0.0,
-        })
+        };
+        criterion.fit(bead)
     }
 
-    /// The criterion fitted to a bead, whose lattice must resolve the length.
-    pub(crate) fn fit(mut self, bead: &Bead) -> Result<Self, ToughnessError> {
+    fn fit(mut self, bead: &Bead) -> Result<Self, ToughnessError> {
         let length = self.length * self.stretch;
         let voxels = self.length / bead.voxel_edge();
         if voxels < LEAST_VOXELS * (1.0 - ROUNDING) {

@@ -19,12 +19,12 @@ const AVERAGED: f64 = 1.0 / 6.0;
 
 const TOLERANCE: Tolerance = Tolerance { residual: 1e-5, corrections: 0, held: true };
 
-pub fn gel() -> Gel {
+pub(crate) fn gel() -> Gel {
     Gel::new(GelNumbers { crosslinks: 2.6659866e-5, chi: 0.30, charges: 0.0 }, Surroundings::default())
 }
 
 /// A strip of some angle to the lattice, with a cut along the middle of one half.
-pub struct Strip {
+pub(crate) struct Strip {
     bead: Bead,
     /// Unit vectors on the lattice.
     along: Vector,
@@ -35,7 +35,7 @@ pub struct Strip {
 
 impl Strip {
     /// A strip `height` voxels high along the lattice, or at 45 degrees to it.
-    pub fn new(height: usize, oblique: bool) -> Self {
+    pub(crate) fn new(height: usize, oblique: bool) -> Self {
         let (long, high) = (LENGTH * height as f64, height as f64);
         let thick = (THICKNESS * high).round() as usize;
         let half = std::f64::consts::FRAC_1_SQRT_2;
@@ -57,7 +57,7 @@ impl Strip {
 
     /// The strip, cut and pulled to `stretch`, of a gel with the fracture energy `energy`
     /// (J/m²).
-    pub fn pull(&self, stretch: f64, energy: f64) -> Result<Rupture, RuptureError> {
+    pub(crate) fn pull(&self, stretch: f64, energy: f64) -> Result<Rupture, RuptureError> {
         let toughness = Toughness { energy, length: Some(AVERAGED * HEIGHT), scatter: 0.0, seed: 0 };
         let mut rupture = Rupture::new(self.bead.clone(), &toughness, &gel())?;
         rupture.grip(self.grips(stretch))?;
@@ -68,7 +68,7 @@ impl Strip {
 
     /// Lets a pulled strip tear until it stops, or has torn over `share` of its height;
     /// `visit` sees every state. Returns how far it tore, over the height.
-    pub fn tear(
+    pub(crate) fn tear(
         &self,
         rupture: &mut Rupture,
         share: f64,
@@ -114,7 +114,7 @@ impl Strip {
 
 /// W · height (J/m²) at a stretch: energy in pure shear with nothing to hold the thickness,
 /// less that when free-swollen.
-pub fn released(stretch: f64) -> f64 {
+pub(crate) fn released(stretch: f64) -> f64 {
     let (gel, free) = (gel(), gel().free_stretch());
     let n = gel.numbers().crosslinks;
     let energy = |height: f64, thickness: f64| {
