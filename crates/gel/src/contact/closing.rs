@@ -35,21 +35,20 @@ impl Contacts {
             let node = node as usize;
             Vector::new(positions[node], positions[stride + node], positions[2 * stride + node])
         };
-        for (crack, nodes) in skin.facing.iter().enumerate() {
+        for (crack, facing) in skin.facing.iter().enumerate() {
             let normal = |face: &[u32]| {
                 let corners: Vec<Vector> = face.iter().map(place).collect();
                 0.5 * (corners[2] - corners[0]).cross(&(corners[3] - corners[1]))
             };
-            let (below, above) = nodes.split_at(4);
-            let normal = 0.5 * (normal(below) + normal(above));
+            let normal = 0.5 * (normal(&facing.below) + normal(&facing.above));
             let area = normal.norm().max(f64::MIN_POSITIVE);
             for k in 0..OPENINGS {
                 let apart = skin_position(skin, positions, skin.opening(crack, k)).norm();
-                let facing = apart < REACH * area.sqrt();
+                let meets = apart < REACH * area.sqrt();
                 let closing = &mut self.closings[OPENINGS * crack + k];
                 closing.normal = normal / area;
-                closing.area = if facing { area / OPENINGS as f64 } else { 0.0 };
-                closing.multiplier = if facing { closing.multiplier } else { 0.0 };
+                closing.area = if meets { area * facing.share / OPENINGS as f64 } else { 0.0 };
+                closing.multiplier = if meets { closing.multiplier } else { 0.0 };
             }
         }
     }

@@ -1,8 +1,9 @@
 //! The skin of a torn lattice: points on the faces of its cracks, and those of the outer
 //! skin that lean on nodes which have come apart.
 
-use super::skin::{OPENINGS, combination_of, is_deep};
+use super::skin::{Facing, OPENINGS, combination_of, is_deep};
 use super::{Lattice, Skin};
+use bedswell_geometry::Vector;
 
 /// Where the points of a face lie on it: the middles of its quarters, as on blocks.
 const QUARTERS: [[f64; 2]; OPENINGS] = [[0.25, 0.25], [0.75, 0.25], [0.25, 0.75], [0.75, 0.75]];
@@ -32,8 +33,13 @@ impl Lattice {
                 let low = self.voxels[voxel];
                 for quarter in QUARTERS {
                     let local = on_face(quarter, crack.axis, high);
-                    skin.place
-                        .push(std::array::from_fn(|axis| f64::from(low[axis]) + local[axis] - half[axis]));
+                    let place: [f64; 3] =
+                        std::array::from_fn(|axis| f64::from(low[axis]) + local[axis] - half[axis]);
+                    // Corners of cut voxels lie outside the gel.
+                    if self.shape.depth(&Vector::from(place)).0 <= 0.0 {
+                        continue;
+                    }
+                    skin.place.push(place);
                     skin.host.push(voxel as u32);
                     skin.push(self.trilinear(voxel, local));
                 }
@@ -62,8 +68,8 @@ impl Lattice {
                 let (next, last) = (1 << ((crack.axis + 1) % 3), 1 << ((crack.axis + 2) % 3));
                 [0, next, next | last, last].map(|corner| corners[corner | side << crack.axis] as u32)
             };
-            let (below, above) = (of_face(low, 1), of_face(high, 0));
-            skin.facing.push(std::array::from_fn(|k| if k < 4 { below[k] } else { above[k - 4] }));
+            let share = self.face_area(low, crack.axis);
+            skin.facing.push(Facing { below: of_face(low, 1), above: of_face(high, 0), share });
         }
         (0..self.nodes.len()).for_each(|node| skin.push([(node, 1.0)]));
         skin

@@ -25,6 +25,16 @@ const FLATTENING: f64 = 0.2;
 /// magnitudes of its weights.
 pub(crate) const POINT_WAY: f64 = 1.8;
 
+/// Two faces that a crack has parted.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Facing {
+    /// Nodes of the low and of the high voxel's face, each turned about the axis.
+    pub(crate) below: [u32; 4],
+    pub(crate) above: [u32; 4],
+    /// Share of the face that is gel.
+    pub(crate) share: f64,
+}
+
 /// Contact points on the true surface of the dry shape, each a fixed combination of
 /// node positions. Points inside the gel follow them: where a grain that is small
 /// against the voxels pushes the skin's points aside, they keep it out.
@@ -40,9 +50,8 @@ pub(crate) struct Skin {
     pub(crate) outer: usize,
     /// Points on the skin and inside; then come the openings of cracks, then the nodes.
     with_inner: usize,
-    /// The eight nodes of each crack's faces, those of the low voxel first, each turned
-    /// about the axis.
-    pub(crate) facing: Vec<[u32; 8]>,
+    /// The faces of each crack.
+    pub(crate) facing: Vec<Facing>,
     /// Where the terms of each point begin.
     start: Vec<u32>,
     node: Vec<u32>,
