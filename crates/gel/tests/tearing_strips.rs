@@ -31,10 +31,10 @@ fn strips_12_voxels_high_tear_where_they_release_the_fracture_energy() {
 
 #[test]
 fn strips_18_voxels_high_tear_where_they_release_the_fracture_energy() {
-    check(18, 0.2);
+    check(18, 0.25);
 }
 
 #[test]
-fn strips_24_voxels_high_leave_their_cut_where_they_release_the_fracture_energy() {
-    check(24, 0.01);
+fn strips_24_voxels_high_tear_where_they_release_the_fracture_energy() {
+    check(24, 0.1);
 }

@@ -5,8 +5,8 @@
 //! again before the next rupture, until nothing is overloaded: an avalanche at one water
 //! content. Cracks stay when the bead shrinks and swells again.
 //!
-//! Straight cracks grow alike at any angle to the lattice; oblique ones still drift towards
-//! its axes by up to some ten degrees.
+//! Straight cracks grow alike along the lattice and at 45 degrees to it; how well they keep
+//! other angles has not been measured.
 
 mod average;
 mod fragment;
@@ -45,7 +45,7 @@ pub struct Rupture {
     events: Vec<Event>,
 }
 
-/// Bonds that ruptured together.
+/// Bonds that ruptured together: a patch no wider than ℓ.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Event {
     /// Middle of the new crack surface, from the centre of the free-swollen bead (m).

@@ -1,7 +1,8 @@
 //! The smallest pieces of a crack.
 //!
 //! Single bonds split nothing: a crack grows by all intact bonds across one axis round a
-//! vertex. Averaged stress decides whether one gives way, its own stress which.
+//! vertex, and what lies beside them on the plane of tension. Averaged stress decides
+//! whether one gives way, its own stress which.
 
 use super::Event;
 use super::average::{Field, Neighbourhood, Tension};
@@ -17,11 +18,16 @@ const ALIGNED: f64 = 0.56;
 /// averages are largest a little ahead of a crack's tip, where tension itself has fallen.
 const WORTH_AVERAGING: f64 = 0.6;
 
-/// The intact bonds across one axis round a vertex.
+/// Share of a unit's own tension at which bonds beside it break with it.
+const AS_HARD: f64 = 0.8;
+/// Distances below this are rounding (voxel edges).
+const ROUNDING: f64 = 1e-9;
+
+/// The intact bonds across one axis round a vertex, or more.
 #[derive(Clone, Debug)]
 struct Unit {
     faces: Vec<Face>,
-    /// Middle of the faces (voxel edges from the centre).
+    /// Middle of those round the vertex (voxel edges from the centre).
     place: Vector,
 }
 
@@ -66,7 +72,7 @@ pub(super) fn loaded(field: &Field, criterion: &Criterion, edge: f64, ratio: f64
     let mut neighbourhood = Neighbourhood::new(lattice, criterion.length / edge);
     let strength = |unit: &Unit| criterion.tension * criterion.strengths.at((unit.place * edge).into());
     let mut found: Vec<Loaded> = Vec::new();
-    for Candidate { unit, voxels, own } in candidates(field, criterion, ratio) {
+    for Candidate { unit, voxels, own, .. } in candidates(field, criterion, ratio) {
         let strength = strength(&unit);
         let near = |other: &Loaded| (other.unit.place - unit.place).norm() <= apart;
         if own < WORTH_AVERAGING * ratio * strength || found.iter().any(near) {
@@ -75,18 +81,48 @@ pub(super) fn loaded(field: &Field, criterion: &Criterion, edge: f64, ratio: f64
         let around = neighbourhood.find(lattice, voxels.iter().copied(), &unit.place);
         let Tension { size, normal } = field.mean(around.iter().copied()).tension(criterion.stretch);
         if size >= ratio * strength && normal[unit.axis()].abs() >= ALIGNED {
+            let unit = patch(field, criterion.stretch, (unit, own), &normal, around);
             found.push(Loaded { unit, ratio: size / strength });
         }
     }
     found
 }
 
+/// The unit, with its own tension, together with those bonds of the gel round it that the
+/// plane of the averaged tension crosses and that are pulled about as hard. Fronts so stay
+/// even, and cracks on their plane, at any angle to the lattice and however fine it is;
+/// units alone leave jagged fronts and bridges, which stop cracks that release enough energy.
+fn patch(
+    field: &Field,
+    stretch: f64,
+    (mut unit, own): (Unit, f64),
+    normal: &Vector,
+    around: &[(usize, f64)],
+) -> Unit {
+    let lattice = field.lattice;
+    let is_above =
+        |voxel: usize| (Vector::from(lattice.voxel_offset(voxel)) - unit.place).dot(normal) > ROUNDING;
+    for &(low, _) in around {
+        for axis in 0..3 {
+            let face = Face { low: low as u32, axis: axis as u8 };
+            let crossed = |&high: &usize| is_above(low) != is_above(high) && !unit.faces.contains(&face);
+            let Some(high) = lattice.neighbour(low, 2 * axis + 1).filter(crossed) else { continue };
+            let pair = field.mean([low, high].into_iter().map(|voxel| (voxel, 1.0)));
+            if pair.tension(stretch).size >= AS_HARD * own {
+                unit.faces.push(face);
+            }
+        }
+    }
+    unit
+}
+
 /// A unit whose own tension may overload it.
 struct Candidate {
     unit: Unit,
     voxels: Vec<usize>,
-    /// Its own tension (Pa).
+    /// Its own tension (Pa), and what of it pulls across its faces.
     own: f64,
+    pull: f64,
 }
 
 /// Units round the voxels whose tension comes near the least strength, hardest pulled first.
@@ -101,13 +137,15 @@ fn candidates(field: &Field, criterion: &Criterion, ratio: f64) -> Vec<Candidate
     for vertex in vertices(lattice, &hot) {
         for axis in 0..3 {
             let Some((unit, voxels)) = unit_at(lattice, vertex, axis) else { continue };
-            let own = own(&voxels);
-            if own > enough {
-                candidates.push(Candidate { unit, voxels, own });
+            let Tension { size, normal } =
+                field.mean(voxels.iter().map(|&voxel| (voxel, 1.0))).tension(criterion.stretch);
+            if size > enough {
+                let pull = size * normal[axis].powi(2);
+                candidates.push(Candidate { unit, voxels, own: size, pull });
             }
         }
     }
-    candidates.sort_by(|a, b| b.own.total_cmp(&a.own));
+    candidates.sort_by(|a, b| b.pull.total_cmp(&a.pull));
     candidates
 }
 
