@@ -178,7 +178,7 @@ fn ruptures_are_remembered_through_shrinking_and_swelling_again() {
 #[test]
 fn a_run_resumed_from_what_was_written_goes_on_to_the_same_bits() {
     let (gel, free, grains) = (gel(), gel().free_stretch(), grains(0.65));
-    let start = || Rupture::new(bead(12, 0.6 * free), &toughness(8e-4), &gel).unwrap();
+    let start = || Rupture::new(bead(12, 0.6 * free), &toughness(1.2e-3), &gel).unwrap();
     let stages = [0.7, 0.8, 0.9, 0.95, 1.0];
     let relax = |rupture: &mut Rupture, share: f64| {
         rupture.relax(&gel.limited_to(share * free), &grains, TOLERANCE).unwrap();

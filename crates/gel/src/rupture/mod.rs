@@ -86,14 +86,15 @@ pub enum RuptureError {
     },
 }
 
-/// Net nodal forces that may remain between ruptures, over what one bond of mean strength
+/// Net nodal forces that may remain between ruptures, over what an area ℓ² of mean strength
 /// bears: with more, cracks would stop where they have not.
-const BETWEEN_RUPTURES: f64 = 0.03;
+const BETWEEN_RUPTURES: f64 = 0.01;
 /// Ruptures at the same time lie further apart than this (ℓ).
 const APART: f64 = 4.0;
 /// Drag with which states that snap are followed, over the stiffness of chains along an
-/// edge, and how often the gel may move on under it.
-pub(crate) const SNAP_DRAGS: [f64; 4] = [0.03, 0.1, 0.3, 1.0];
+/// edge, and how often the gel may move on under it. Without any, Newton's method just goes
+/// on from where it was given up.
+pub(crate) const SNAP_DRAGS: [f64; 7] = [0.0, 0.0, 0.03, 0.1, 0.0, 0.3, 1.0];
 pub(crate) const SNAP_STEPS: usize = 10;
 
 impl Rupture {
@@ -234,9 +235,9 @@ impl Rupture {
 
     /// Residual to which a state is solved between ruptures.
     fn between_ruptures(&self, gel: &Gel, obstacles: &[Obstacle]) -> f64 {
-        let bond = self.criterion.tension * self.free_edge().powi(2);
+        let patch = self.criterion.tension * (self.criterion.length * self.criterion.stretch).powi(2);
         let (skin, rest) = (&self.bead.lattice().skin, rest_force(gel, &self.bead));
-        BETWEEN_RUPTURES * bond / self.contacts.force_scale(skin, &self.bead.positions, obstacles, rest)
+        BETWEEN_RUPTURES * patch / self.contacts.force_scale(skin, &self.bead.positions, obstacles, rest)
     }
 
     /// Edge of a free-swollen voxel (m).
