@@ -132,11 +132,7 @@ impl Elastic<'_> {
                 slope.0[lane] = self.gel.mixing_slope(j.0[lane].max(LEAST_VOLUME_RATIO));
             }
             let mean = Lanes::splat(n * (1.0 - SPRING_SHARE));
-            let mut tensions = f;
-            for d in 0..3 {
-                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
-            }
-            self.scatter(&tensions, &edges, &shape, group, out);
+            self.scatter(&tensions_of(&f, mean, &cof, slope), &edges, &shape, group, out);
         }
         smallest
     }
@@ -348,6 +344,17 @@ fn mean_gradient(edges: &[[Vector; 4]; 3], weights: &[[Lanes; 4]; 3]) -> [Vector
 #[inline(always)]
 fn cofactors(f: &[Vector; 3]) -> [Vector; 3] {
     [lanes::cross(f[1], f[2]), lanes::cross(f[2], f[0]), lanes::cross(f[0], f[1])]
+}
+
+/// What each direction of a voxel is pulled with, over kT/Ω and an area: by chains of a
+/// stiffness along F, and by a slope of φ along its cofactors.
+#[inline(always)]
+fn tensions_of(f: &[Vector; 3], chains: Lanes, cof: &[Vector; 3], slope: Lanes) -> [Vector; 3] {
+    let mut tensions = *f;
+    for d in 0..3 {
+        tensions[d] = lanes::add(lanes::scale(f[d], chains), lanes::scale(cof[d], slope));
+    }
+    tensions
 }
 
 /// The largest principal stretch of one lane.

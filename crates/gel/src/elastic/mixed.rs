@@ -2,7 +2,10 @@
 //! its own that holds it at its volume. Slopes of φ, negative pressures over kT/Ω, take
 //! the place of φ' in the forces; volume ratios come out beside them.
 
-use super::{EDGES, Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient};
+use super::{
+    EDGES, Elastic, Linearisation, SPRING_SHARE, cofactors, edge_weights, edges_of, mean_gradient,
+    tensions_of,
+};
 use crate::lanes::{self, Lanes};
 use crate::lattice::Lattice;
 use nalgebra::Matrix3;
@@ -68,11 +71,7 @@ impl Elastic<'_> {
             let cof = cofactors(&f);
             lanes::dot(f[0], cof[0]).store(ratios, slot);
             let slope = Lanes::load(slopes, slot);
-            let mut tensions = f;
-            for d in 0..3 {
-                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
-            }
-            self.scatter(&tensions, &edges, &shape, group, out);
+            self.scatter(&tensions_of(&f, mean, &cof, slope), &edges, &shape, group, out);
         }
     }
 
