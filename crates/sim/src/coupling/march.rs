@@ -12,13 +12,13 @@ use std::sync::Arc;
 /// a nearly dry gel is as hard as the grains' contacts.
 pub(super) const FIRST_STRETCH: f64 = 1.25;
 /// Steps over which the free stretch rises by one increment.
-const RAMP_STEPS: usize = 60;
+const RAMP_STEPS: usize = 220;
 /// Fastest growth per step of a bed that is nothing but gel: the lid must follow it.
 const GROWTH_OF_BED: f64 = 4e-4;
 /// Steps between looks at the residuals.
 const LOOK: usize = 10;
 /// Largest residual (grains, gel) of a recorded state on the way.
-const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 200, required: false };
+const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 40, required: false };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
 /// The same of an end state of beads alone. Without grains between them nothing but smooth
