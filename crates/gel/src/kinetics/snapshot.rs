@@ -1,6 +1,7 @@
 use super::history::Outside;
 use crate::lattice::Face;
 use crate::rupture::Event;
+use super::prop::Prop;
 use serde::{Deserialize, Serialize};
 
 /// All that a bead's kinetics remember: resumed from it, a run goes on to the same bits.
@@ -29,6 +30,11 @@ pub struct Snapshot {
     /// All ruptures so far.
     #[serde(default)]
     pub ruptures: Vec<Event>,
+    /// Forces on the nodes that stay over a step (N), with the opposite sign: weight, other
+    /// beads and the bead's own folds. Empty where there are none.
+    pub loads: Vec<f64>,
+    /// Skin points that press on other beads.
+    pub props: Vec<Prop>,
     /// Water that has come in since the start (m³).
     pub came_in: f64,
     /// Length of the next step, if nothing hinders it (s).
