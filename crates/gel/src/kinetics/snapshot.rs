@@ -1,7 +1,7 @@
 use super::history::Outside;
+use super::prop::Prop;
 use crate::lattice::Face;
 use crate::rupture::Event;
-use super::prop::Prop;
 use serde::{Deserialize, Serialize};
 
 /// All that a bead's kinetics remember: resumed from it, a run goes on to the same bits.

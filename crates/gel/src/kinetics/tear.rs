@@ -94,8 +94,7 @@ impl Kinetics {
         let (gel, lattice) = (Gel::new(self.numbers, outside.surroundings), self.bead.shared_lattice());
         let mut scratch = std::mem::take(&mut self.scratch);
         let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
-        let problem =
-            Problem { supply: None, retardation: 0.0, ..self.problem(elastic, outside, obstacles) };
+        let problem = Problem { supply: None, retardation: 0.0, ..self.problem(elastic, outside, obstacles) };
         let chains = gel.dry_shear_modulus() * self.bead.voxel_edge();
         let mut steps = 0;
         let mut solve = |state: &mut State| {

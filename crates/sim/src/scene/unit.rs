@@ -205,7 +205,7 @@ mod tests {
             ("3 days", Kind::Time, 259_200.0),
             ("1.5 h", Kind::Time, 5400.0),
             ("2e-10 m2/s", Kind::Diffusion, 2e-10),
-            ("36 mm3/h", Kind::Flow, 1e-11),
+            ("20 mm3/s", Kind::Flow, 2e-8),
             ("34 deg", Kind::Angle, 34.0 * std::f64::consts::PI / 180.0),
         ] {
             assert_eq!(parse_quantity(text, kind), Ok(value), "{text}");
