@@ -2,7 +2,7 @@
 //! survive and the end is the same.
 
 use crate::studies::factorial_of;
-use crate::support::{COMMAND, TestEnv, ended};
+use crate::support::{COMMAND, TestEnv, ended, replace_once, root};
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
 
@@ -79,4 +79,39 @@ fn a_full_disk_leaves_no_half_written_run() {
     let ended = ended(output);
     assert_eq!(ended.code, 3, "{}", ended.stderr);
     assert_eq!(env.files(), [env.path("bench-array.csv"), env.path("scene.toml")]);
+}
+
+#[test]
+fn a_killed_history_goes_on_to_the_same_bits() {
+    let env = TestEnv::new();
+    env.write_fast_scene("fast.toml");
+    let scene = std::fs::read_to_string(root().join("scenes/bench-array.toml")).unwrap();
+    let scene = replace_once(&replace_once(&scene, "across = 16", "across = 8"), "= 20", "= 8");
+    let time = "\n[time]\nuntil = \"2 days\"\ndiffusion = \"2e-10 m2/s\"\n\
+                [[time.outside]]\nat = \"1 days\"\npotential = \"-100 kPa\"\n";
+    env.write("scene.toml", &format!("{scene}{time}"));
+    env.succeed(&["run", "scene.toml", "--out", "whole", "--csv"]);
+    let mut child = env
+        .command(&["run", "scene.toml", "--out", "killed", "--csv"])
+        .stdout(Stdio::null())
+        .stderr(Stdio::null())
+        .spawn()
+        .unwrap();
+    let (start, kept) = (Instant::now(), env.path("killed/unfinished.state"));
+    while !kept.exists() {
+        assert!(start.elapsed() < Duration::from_secs(300), "nothing was kept");
+        std::thread::sleep(Duration::from_millis(2));
+    }
+    child.kill().unwrap(); // SIGKILL
+    child.wait().unwrap();
+    assert!(!env.path("killed/summary.json").exists(), "it was done before it was killed");
+    let first = std::fs::metadata(env.path("killed/states/0000.state")).unwrap().modified().unwrap();
+    env.succeed(&["run", "scene.toml", "--out", "killed", "--csv"]);
+    for name in ["summary.json", "history.csv", "course.parquet", "course.csv", "beads.csv"] {
+        assert!(env.read(&format!("whole/{name}")) == env.read(&format!("killed/{name}")), "{name} differs");
+    }
+    // It went on instead of starting anew.
+    let again = std::fs::metadata(env.path("killed/states/0000.state")).unwrap().modified().unwrap();
+    assert_eq!(first, again);
+    assert!(!kept.exists(), "nothing is left to go on from");
 }

@@ -11,7 +11,7 @@ mod mixed;
 use crate::lanes::{self, Lanes, Vector};
 use crate::lattice::{Group, Lattice};
 use crate::thermodynamics::Gel;
-pub(crate) use mixed::chain_links;
+pub(crate) use mixed::{Holding, chain_links};
 use nalgebra::{Matrix3, Vector3};
 use pulp::{Arch, Simd, WithSimd};
 

@@ -25,12 +25,12 @@ pub use datasheet::{
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
 pub use gel_contact::BeadContact;
 pub use kinetics::{
-    Change, History, HistoryError, Kinetics, KineticsError, Outside, Permeability, PermeabilityError,
+    Change, History, HistoryError, Kinetics, KineticsError, Outside, Permeability, PermeabilityError, Prop,
     Settings, Snapshot, Step,
 };
 pub use lattice::{Face, Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
-pub use relaxation::{Load, Relaxation};
+pub use relaxation::{Lead, Load, Relaxation};
 pub use rupture::{
     Criterion, Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError,
 };

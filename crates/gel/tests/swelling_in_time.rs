@@ -3,8 +3,8 @@
 #![allow(clippy::print_stdout, reason = "the measured figures are worth reading")]
 
 use bedswell_gel::{
-    Bead, Change, Gel, GelNumbers, History, Kinetics, Lattice, Obstacle, Outside, Permeability, Settings,
-    Snapshot, Surroundings, Tolerance, swell,
+    Bead, Change, Gel, GelNumbers, History, Kinetics, Lattice, Obstacle, Outside, Permeability, Relaxation,
+    Settings, Snapshot, Surroundings, Tolerance, swell,
 };
 use bedswell_geometry::Vector;
 use std::sync::Arc;
@@ -171,4 +171,69 @@ fn a_run_resumed_from_what_was_written_goes_on_to_the_same_bits() {
     let mut resumed = start().resume(&snapshot).unwrap();
     resumed.advance(&wet, &grains, 0.04 * UNIT, |_, _| ()).unwrap();
     assert_eq!(whole.snapshot(), resumed.snapshot());
+}
+
+/// Lets a bead follow what it grew in a step, and come to rest, `moves` and `steps` long.
+fn rest(kinetics: &mut Kinetics, mut relaxation: Relaxation, obstacles: &[Obstacle], moves: usize) {
+    let stage = kinetics.gel().limited_to((kinetics.bead().volume() / kinetics.bead().dry_volume()).cbrt());
+    let lead = kinetics.lead(&relaxation);
+    let reach = 0.5 * kinetics.bead().swollen_edge();
+    for step in 1..=moves {
+        relaxation.follow(&lead, step, moves);
+        relaxation.renew(&stage, obstacles, reach);
+        relaxation.compute_forces(&stage, obstacles);
+        relaxation.advance(0.4);
+    }
+    relaxation.renew(&stage, obstacles, reach);
+    for _ in 0..400 {
+        relaxation.compute_forces(&stage, obstacles);
+        relaxation.advance(0.4);
+    }
+    relaxation.compute_forces(&stage, obstacles);
+    kinetics.take_over(&relaxation, obstacles);
+}
+
+#[test]
+fn coming_to_rest_between_steps_changes_nothing_where_nothing_moves() {
+    let far = [Obstacle::Plane { point: Vector::new(0.0, 0.0, -1.0), normal: Vector::z() }];
+    let course = |rests: bool| {
+        let mut kinetics = kinetics(bead(8, 2.0), SIXFOLD, Settings::default());
+        let (wet, end) = (outside(0.0, 0.0), 0.02 * UNIT);
+        while kinetics.time() < end {
+            let relaxation = kinetics.relaxation();
+            let until = (kinetics.time() + kinetics.wish(&wet, &far)).min(end);
+            kinetics.step(&wet, &far, until).unwrap();
+            if rests {
+                rest(&mut kinetics, relaxation, &far, 10);
+            }
+        }
+        kinetics.water()
+    };
+    let (alone, resting) = (course(false), course(true));
+    println!("water {:.6} of what it is without rests", resting / alone);
+    assert!((resting / alone - 1.0).abs() < 5e-3);
+}
+
+#[test]
+fn a_bead_that_is_pressed_together_between_steps_keeps_its_water() {
+    let plates = |half: f64| {
+        [1.0, -1.0].map(|side| Obstacle::Plane {
+            point: Vector::z() * (side * half * RADIUS),
+            normal: Vector::z() * -side,
+        })
+    };
+    let mut kinetics = kinetics(bead(8, 5.0), SIXFOLD, Settings::default());
+    let wet = outside(0.0, 0.0);
+    let relaxation = kinetics.relaxation();
+    let before = kinetics.step(&wet, &plates(0.82), 1e-4 * UNIT).unwrap();
+    let (water, volume) = (kinetics.water(), kinetics.bead().volume());
+    rest(&mut kinetics, relaxation, &plates(0.80), 1);
+    println!("water {:.3e}, volume {:.6}", kinetics.water() / water - 1.0, kinetics.bead().volume() / volume);
+    assert_eq!(kinetics.water(), water);
+    assert!((kinetics.bead().volume() / volume - 1.0).abs() < 5e-3);
+    // The next step begins under the pressure that this took, and lets water out.
+    let after = kinetics.step(&wet, &plates(0.80), kinetics.time() + 1e-4 * UNIT).unwrap();
+    let force = |step: &bedswell_gel::Step| step.forces[0].norm();
+    println!("force {:.3e} N before, {:.3e} N after", force(&before), force(&after));
+    assert!(force(&after) > 1.1 * force(&before));
 }

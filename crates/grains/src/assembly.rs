@@ -5,6 +5,7 @@ mod boundary;
 mod contact_list;
 mod contacts;
 mod error;
+mod memory;
 mod motion;
 mod pairs;
 mod rest;
@@ -14,6 +15,7 @@ mod surface;
 pub use account::WorkAccount;
 pub use boundary::Boundary;
 pub use error::AssemblyError;
+pub use memory::GrainMemory;
 pub use rest::{Contact, Partner, Rest};
 
 use crate::contact_law::ContactLaw;

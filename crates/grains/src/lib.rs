@@ -7,7 +7,9 @@ mod grading;
 mod packing;
 mod repose;
 
-pub use assembly::{Assembly, AssemblyError, Boundary, Contact, Lid, Partner, Rest, WorkAccount};
+pub use assembly::{
+    Assembly, AssemblyError, Boundary, Contact, GrainMemory, Lid, Partner, Rest, WorkAccount,
+};
 pub use contact_law::{ContactLaw, ContactLawError, Normal, mindlin_ratio};
 pub use force_statistics::{FORCE_QUANTILES, ForceStatistics};
 pub use grading::{Grading, GradingError, MassCurve, SizeNumbers};

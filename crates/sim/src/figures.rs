@@ -51,7 +51,8 @@ pub fn duration(seconds: f64) -> String {
         ..1.0 => "1 s".into(),
         ..90.0 => format!("{seconds:.0} s"),
         ..5400.0 => format!("{:.0} min", seconds / 60.0),
-        _ => format!("{:.1} h", seconds / 3600.0),
+        ..172_800.0 => format!("{:.1} h", seconds / 3600.0),
+        _ => format!("{:.1} days", seconds / 86_400.0),
     }
 }
 
@@ -90,5 +91,7 @@ mod tests {
         assert_eq!(stress(300.0), "0.300 kPa");
         assert_eq!(force(3.21e-4), "0.321 mN");
         assert_eq!(duration(600.0), "10 min");
+        assert_eq!(duration(36_000.0), "10.0 h");
+        assert_eq!(duration(259_200.0), "3.0 days");
     }
 }

@@ -18,15 +18,18 @@ pub use calibrate::{
     gel_table, read_bench_outcomes,
 };
 pub use check::{CheckLine, checks};
+pub use coupling::Checkpoint;
 pub use folder::{
     FolderError, ReadError, RunFolder, RunSummary, StateRecorder, prepare_run_folder, read_run_folder,
     remove_run_files, write_run_folder,
 };
-pub use outcome::{BeadOutcome, ForceOutcome, GrainRecord, PackOutcome, Quality, Step};
+pub use outcome::{
+    BeadOutcome, BeadTiming, CoursePoint, ForceOutcome, GrainRecord, PackOutcome, Quality, Step, Timing,
+};
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
     BeadAmount, Beads, Bed, Concern, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
-    SoilGrading, Strength, Water, nearest_word, read_scene,
+    SoilGrading, Strength, Time, Water, nearest_word, read_scene,
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
@@ -37,6 +40,6 @@ pub use statistics::{
 };
 pub use study::{
     Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,
-    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, Variation, combination_in_words,
-    read_study, run_study,
+    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, TIMES, Variation,
+    combination_in_words, read_study, run_study,
 };

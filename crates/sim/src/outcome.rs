@@ -56,6 +56,48 @@ pub struct PackOutcome {
     /// The tension in each bead at the end; kept by a single run, left out of a study's journal.
     #[serde(skip)]
     pub tensions: Vec<TensionField>,
+    /// When it happened, where the scene gives a history in time.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub timing: Option<Timing>,
+}
+
+/// When things happened.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct Timing {
+    /// Time of each entry of the history (s).
+    pub seconds: Vec<f64>,
+    /// Every bead after every step in time; kept by a single run, left out of a study's
+    /// journal.
+    #[serde(skip)]
+    pub course: Vec<CoursePoint>,
+}
+
+/// A bead after a step in time.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+pub struct CoursePoint {
+    /// Time (s).
+    pub time_s: f64,
+    /// The bead.
+    pub bead: usize,
+    /// Water taken up per mass of dry gel (g/g).
+    pub uptake_g_per_g: f64,
+    /// 99 % volume quantile of the largest principal tension (Pa).
+    pub tension_q99_pa: f64,
+    /// Largest principal tension in any voxel (Pa).
+    pub largest_tension_pa: f64,
+}
+
+/// When things happened to a bead.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+pub struct BeadTiming {
+    /// When it first held half of the water that it holds at the end (s).
+    pub half_time_s: f64,
+    /// When it first held 90 % of that (s).
+    pub ninety_time_s: f64,
+    /// Most that the 99 % volume quantile of the largest principal tension came to (Pa).
+    pub most_tension_q99_pa: f64,
+    /// When that was (s).
+    pub most_tension_time_s: f64,
 }
 
 impl PackOutcome {
@@ -119,6 +161,10 @@ pub struct BeadOutcome {
     pub tear_probability: f64,
     /// Whether it tore in this pack: its own strength, drawn from the seed.
     pub torn: bool,
+    /// When things happened to it, where the scene gives a history in time. Its tear
+    /// probability is then that of the largest tension that each place has borne.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub timing: Option<BeadTiming>,
 }
 
 /// How well a state is at rest.

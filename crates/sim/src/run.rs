@@ -1,4 +1,4 @@
-use crate::coupling::{DryBed, march};
+use crate::coupling::{Checkpoint, DryBed, march, march_in_time};
 use crate::{PackOutcome, Scene, State, Step};
 use std::ops::ControlFlow;
 use thiserror::Error;
@@ -15,6 +15,17 @@ pub trait Observer: Send {
 
     /// Shown the mixed dry bed first, and then the state after each increment.
     fn look(&mut self, _: State) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
+
+    /// Where a pack with a history in time was stopped, for it to go on from there. One that
+    /// does not fit is not used.
+    fn resume(&mut self) -> Option<Checkpoint> {
+        None
+    }
+
+    /// Given what a pack with a history in time needs to go on after an increment.
+    fn keep(&mut self, _: &Checkpoint) -> ControlFlow<()> {
         ControlFlow::Continue(())
     }
 }
@@ -48,7 +59,8 @@ pub enum RunError {
     },
 }
 
-/// Takes pack number `pack` of `scene` from dry to equilibrium.
+/// Takes pack number `pack` of `scene` from dry to equilibrium, or through the history in
+/// time that the scene gives.
 ///
 /// The result depends on the scene (with its seed) and the pack number alone.
 ///
@@ -62,6 +74,9 @@ pub fn run_pack(scene: &Scene, pack: u64, observer: &mut dyn Observer) -> Result
     // On a worker of the pool from the start, so that no step has to wake one.
     rayon::scope(|_| {
         let bed = DryBed::build(scene, pack, stress)?;
-        march(scene, &gel, bed, pack, observer)
+        match &scene.time {
+            None => march(scene, &gel, bed, pack, observer),
+            Some(time) => march_in_time(scene, time, bed, pack, observer),
+        }
     })
 }

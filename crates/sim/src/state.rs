@@ -31,6 +31,8 @@ pub struct State {
     pub wall: Option<f32>,
     /// The pot has no lid.
     pub open: bool,
+    /// Time (s), where the scene gives a history in time.
+    pub time_s: Option<f64>,
 }
 
 /// A contact that carries force.
@@ -99,6 +101,7 @@ impl State {
             Touched::Floor | Touched::Lid | Touched::Wall => true,
         };
         self.radii.len() == grains
+            && self.time_s.is_none_or(f64::is_finite)
             && self.wall.is_none_or(|radius| radius.is_finite() && radius > 0.0)
             && self.cell.iter().all(|edge| edge.is_finite() && *edge > 0.0)
             && self.centres.as_flattened().iter().chain(&self.radii).all(|x| x.is_finite())

@@ -21,6 +21,7 @@ fn a_resolved_scene_reads_back_bit_for_bit() {
         "dosed-mix",
         "open-pot",
         "absorbency-under-load",
+        "dry-spell",
     ] {
         let scene = example(&format!("{name}.toml"));
         let folder = tempfile::tempdir().unwrap();
@@ -102,7 +103,7 @@ fn a_study_of_a_scene_is_that_scene_alone() {
 
 #[test]
 fn the_invented_gels_swell_as_their_comments_say() {
-    for name in ["tree-pit", "coarse-grit", "planting-sand", "bench-array", "dosed-mix"] {
+    for name in ["tree-pit", "coarse-grit", "planting-sand", "bench-array", "dosed-mix", "dry-spell"] {
         let estimate = example(&format!("{name}.toml")).estimate().unwrap();
         assert!((4.0..6.0).contains(&estimate.free_stretch), "{name}: {estimate:?}");
         assert!((5e3..7.5e3).contains(&estimate.swollen_modulus_pa), "{name}: {estimate:?}");

@@ -30,6 +30,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         asphericity: random.random(),
         tear_probability: random.random(),
         torn: random.random_bool(0.3),
+        timing: None,
     };
     Ok(PackOutcome {
         pack,
@@ -54,6 +55,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         history: Vec::new(),
         positions: Vec::new(),
         tensions: Vec::new(),
+        timing: None,
     })
 }
 

@@ -3,14 +3,15 @@ use crate::exit::Exit;
 use crate::output::{say, say_json};
 use crate::progress::Progress;
 use anyhow::Context;
-use bedswell_sim::figures::{digits, force, length, probability, stress};
+use bedswell_sim::figures::{digits, duration, force, length, probability, stress};
 use bedswell_sim::{
     RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack,
     write_run_folder,
 };
 use std::path::Path;
 
-/// Takes one pack from dry to equilibrium and writes its folder.
+/// Takes one pack from dry to equilibrium, or through its history in time, and writes its
+/// folder.
 pub(super) fn run(arguments: &Run, json: bool) -> anyhow::Result<Exit> {
     let scene = read_scene(&arguments.scene)?;
     prepare_run_folder(&arguments.out, &scene, arguments.pack)?;
@@ -74,6 +75,15 @@ fn in_words(run: &RunSummary, folder: &Path) -> String {
             probability(bead.tear_probability),
             if bead.torn { "; torn in this pack" } else { "" },
         );
+        if let Some(timing) = &bead.timing {
+            text += &format!(
+                "  half of the water after {}, 90 % after {}\n  most tension      {} (99 %), after {}\n",
+                duration(timing.half_time_s),
+                duration(timing.ninety_time_s),
+                stress(timing.most_tension_q99_pa),
+                duration(timing.most_tension_time_s),
+            );
+        }
     }
     text + &format!("\nwritten to {}", folder.display())
 }

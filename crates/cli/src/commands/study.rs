@@ -7,8 +7,8 @@ use crate::output::{note, say, say_json};
 use crate::progress::Progress;
 use bedswell_sim::figures::{digits, estimate, probability};
 use bedswell_sim::{
-    LevelSummary, RESPONSES, StudyOptions, StudySummary, combination_in_words, read_study, run_pack,
-    run_study,
+    LevelSummary, RESPONSES, Response, StudyOptions, StudySummary, TIMES, combination_in_words, read_study,
+    run_pack, run_study,
 };
 use factors_in_words::factors_in_words;
 use std::path::Path;
@@ -82,9 +82,11 @@ fn level_in_words(level: &LevelSummary) -> String {
         );
     }
     // Tears are told above.
-    for response in
-        RESPONSES.iter().filter(|response| !["tear_probability", "torn_fraction"].contains(&response.name))
-    {
+    let told = |response: &&Response| {
+        level.responses.contains_key(response.name)
+            && !["tear_probability", "torn_fraction"].contains(&response.name)
+    };
+    for response in RESPONSES.iter().chain(TIMES).filter(told) {
         let figure = level.figure(response);
         let unit = if figure.is_some() { response.unit } else { "" };
         text += format!("  {:<18}{} {unit}", response.title, estimate(figure, response.show)).trim_end();

@@ -30,6 +30,18 @@ impl Elastic<'_> {
         Arch::new().dispatch(Gradient { elastic: self, positions, slopes, out, ratios });
     }
 
+    /// Adds the forces (N) of the chains and of what holds the voxels at their water to
+    /// `out`, as the energy's gradient.
+    pub(crate) fn add_held_gradient(&self, positions: &[f64], holding: &Holding, out: &mut [f64]) {
+        Arch::new().dispatch(HeldGradient { elastic: self, positions, holding, out });
+    }
+
+    /// Records what `add_diagonal_blocks` needs about a state of such gel.
+    pub(crate) fn linearise_held(&self, positions: &[f64], holding: &Holding, into: &mut Linearisation) {
+        self.linearise_mixed(positions, &holding.slopes, into);
+        into.curvature.copy_from_slice(&holding.stiffness);
+    }
+
     /// Records what `add_mixed_stiffness_times` needs about a state.
     pub(crate) fn linearise_mixed(&self, positions: &[f64], slopes: &[f64], into: &mut Linearisation) {
         for column in into.gradient.iter_mut().chain([&mut into.slope, &mut into.curvature]) {
@@ -72,6 +84,25 @@ impl Elastic<'_> {
             lanes::dot(f[0], cof[0]).store(ratios, slot);
             let slope = Lanes::load(slopes, slot);
             self.scatter(&tensions_of(&f, mean, &cof, slope), &edges, &shape, group, out);
+        }
+    }
+
+    #[inline(always)]
+    fn held_gradient_kernel(&self, positions: &[f64], holding: &Holding, out: &mut [f64]) {
+        let mean = Lanes::splat(self.gel.numbers().crosslinks * (1.0 - SPRING_SHARE));
+        for group in &self.lattice.groups {
+            let slot = group.slot;
+            let shape = self.shape(slot);
+            let edges = edges_of(self.lattice, self.edge, positions, group);
+            let f = mean_gradient(&edges, &shape.weights);
+            let cof = cofactors(&f);
+            let excess = lanes::dot(f[0], cof[0]) - Lanes::load(&holding.water, slot);
+            let slope = Lanes::load(&holding.slopes, slot) + Lanes::load(&holding.stiffness, slot) * excess;
+            let mut tensions = f;
+            for d in 0..3 {
+                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
+            }
+            self.scatter(&tensions, &edges, &shape, group, out);
         }
     }
 
@@ -119,6 +150,31 @@ pub(crate) fn chain_links(lattice: &Lattice, mut visit: impl FnMut(usize, usize,
                 }
             }
         }
+    }
+}
+
+/// What holds voxels at the water they have: in the place of φ' in the forces,
+/// slope + stiffness (J - water), by slot.
+#[derive(Clone, Debug, Default)]
+pub(crate) struct Holding {
+    pub(crate) slopes: Vec<f64>,
+    pub(crate) stiffness: Vec<f64>,
+    /// Volume ratio to dry that each voxel's water gives it.
+    pub(crate) water: Vec<f64>,
+}
+
+struct HeldGradient<'a> {
+    elastic: &'a Elastic<'a>,
+    positions: &'a [f64],
+    holding: &'a Holding,
+    out: &'a mut [f64],
+}
+
+impl WithSimd for HeldGradient<'_> {
+    type Output = ();
+    #[inline(always)]
+    fn with_simd<S: Simd>(self, _: S) {
+        self.elastic.held_gradient_kernel(self.positions, self.holding, self.out);
     }
 }
 

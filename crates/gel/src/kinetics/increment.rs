@@ -1,9 +1,11 @@
 //! One implicit increment of time: where water and solid are at its end.
 
+use super::anchor::Anchor;
 use super::coarse::Coarse;
 use super::conductance::Conductance;
 use super::minres;
 use super::permeability::Permeability;
+use super::prop::Prop;
 use super::saddle::{Guess, Saddle};
 use super::stencil::Cell;
 use crate::contact::Contacts;
@@ -59,6 +61,12 @@ pub(super) struct Problem<'a> {
     /// Most water that the skin takes in (voxel volumes per second).
     pub(super) supply: Option<f64>,
     pub(super) held: Held,
+    /// Forces on the nodes that stay (N), as the gradient of an energy; empty where there
+    /// are none.
+    pub(super) loads: &'a [f64],
+    /// Skin points that press on other beads.
+    pub(super) props: &'a [Prop],
+    pub(super) anchor: Option<Anchor>,
     /// Time by which the chains lag behind (s).
     pub(super) retardation: f64,
     /// Correction that remains, over the bead's own stretch.
@@ -157,10 +165,14 @@ impl Problem<'_> {
             }
             limited = scratch.conductance.limit(self.limit(), limited, &scratch.potentials);
             at.contacts.collect(&lattice.skin, lattice.skin.len(), &at.positions, obstacles, 2.0 * longest);
-            let pressing = at.contacts.linearise(&lattice.skin, &at.positions, obstacles, true);
+            let mut pressing = at.contacts.linearise(&lattice.skin, &at.positions, obstacles, true);
+            pressing.extend(self.props.iter().map(Prop::pressing));
             self.right_hand_side(at, reference, (duration, stiffening), scratch);
             let modes = RigidModes::new(lattice.node_count(), &at.positions, self.held, |motion| {
-                Saddle::stiffness_times(elastic, (&scratch.state, stiffening), &pressing, motion)
+                let mut product =
+                    Saddle::stiffness_times(elastic, (&scratch.state, stiffening), &pressing, motion);
+                self.anchor.iter().for_each(|anchor| anchor.add_stiffness_times(motion, &mut product));
+                product
             });
             modes.project(&mut scratch.right[..nodes]);
             let flow = (&scratch.conductance, duration);
@@ -174,6 +186,7 @@ impl Problem<'_> {
                 duration,
                 compliance: &scratch.compliance,
                 stiffening,
+                anchor: self.anchor,
                 guess: &scratch.guess,
                 coarse: self.coarse,
                 modes: &modes,
@@ -257,6 +270,9 @@ impl Problem<'_> {
             forces.iter_mut().zip(&lag).for_each(|(force, lag)| *force += (stiffening - 1.0) * lag);
         }
         at.contacts.add_gradient(&lattice.skin, &at.positions, obstacles, forces);
+        self.anchor.iter().for_each(|anchor| anchor.add_gradient(&at.positions, forces));
+        self.props.iter().for_each(|prop| prop.add_gradient(&lattice.skin, &at.positions, forces));
+        forces.iter_mut().zip(self.loads).for_each(|(force, load)| *force += load);
         forces.iter_mut().for_each(|force| *force = -*force);
         scratch.conductance.outflow(cells, &lattice.slots, &scratch.potentials, flows);
         let unit = elastic.voxel_energy();

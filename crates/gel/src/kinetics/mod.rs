@@ -12,12 +12,15 @@
 //! (`saddle.rs`): dry, nearly incompressible gel and short, undrained steps cost no more than
 //! swollen gel. Steps (`stages.rs`) are two such increments.
 
+mod anchor;
 mod coarse;
 mod conductance;
 mod history;
 mod increment;
+mod joint;
 mod minres;
 mod permeability;
+mod prop;
 mod saddle;
 mod settings;
 mod snapshot;
@@ -36,14 +39,24 @@ use crate::rigid::Held;
 use crate::rupture::{Criterion, Event};
 use crate::stress::StressField;
 use crate::thermodynamics::{Gel, GelNumbers};
+use anchor::Anchor;
 use coarse::Coarse;
 pub use history::{Change, History, HistoryError, Outside};
 use increment::{Problem, Scratch, State, weighed_mean};
 pub use permeability::{Permeability, PermeabilityError};
+pub use prop::Prop;
 pub use settings::Settings;
 pub use snapshot::Snapshot;
 use stencil::{Cell, cells};
 pub use step::{KineticsError, Step};
+
+/// What chains that lag behind are held by: where the nodes were (m) when the last stage
+/// of a step began, and how long ago (s) that is.
+#[derive(Clone, Debug, Default)]
+struct Lag {
+    start: Vec<f64>,
+    seconds: f64,
+}
 
 /// A bead in time.
 #[derive(Clone, Debug)]
@@ -57,6 +70,11 @@ pub struct Kinetics {
     came_in: f64,
     next: f64,
     outside: Option<Outside>,
+    /// Forces on the nodes that stay (N), as the gradient of an energy, if there are any.
+    loads: Vec<f64>,
+    /// Skin points that press on other beads.
+    props: Vec<Prop>,
+    lag: Lag,
     /// Skin points that contact seals, and the cells without them.
     sealed: Vec<u32>,
     cells: Vec<Cell>,
@@ -107,6 +125,9 @@ impl Kinetics {
             came_in: 0.0,
             next: 0.0,
             outside: None,
+            loads: Vec::new(),
+            props: Vec::new(),
+            lag: Lag::default(),
             sealed: Vec::new(),
             scratch: Scratch::default(),
             criterion: None,
@@ -140,6 +161,9 @@ impl Kinetics {
         self.outside = snapshot.outside;
         self.state.contacts.set_crack_pressures(&snapshot.closed);
         self.ruptures.clone_from(&snapshot.ruptures);
+        self.loads.clone_from(&snapshot.loads);
+        self.props.clone_from(&snapshot.props);
+        self.lag = Lag::default();
         Ok(self)
     }
 
@@ -157,6 +181,8 @@ impl Kinetics {
             ruptured: self.bead.lattice().ruptured().collect(),
             closed: self.state.contacts.crack_pressures(),
             ruptures: self.ruptures.clone(),
+            loads: self.loads.clone(),
+            props: self.props.clone(),
             came_in: self.came_in,
             next: self.next,
             outside: self.outside,
@@ -177,6 +203,11 @@ impl Kinetics {
     pub fn water(&self) -> f64 {
         let mean = weighed_mean(&self.bead.lattice().volume, &self.state.water);
         (mean - 1.0) * self.bead.dry_volume()
+    }
+
+    /// What was outside in the last step, if there was one.
+    pub fn last_outside(&self) -> Option<Outside> {
+        self.outside
     }
 
     /// The gel outside which is what the last step found there.
@@ -244,40 +275,26 @@ impl Kinetics {
         until: f64,
     ) -> Result<Step, KineticsError> {
         assert!(until > self.time, "a step from {} s until {until} s", self.time);
+        self.wish(outside, obstacles);
         let gel = Gel::new(self.numbers, outside.surroundings);
         let lattice = self.bead.shared_lattice();
         let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
-        self.prepare_contacts(&elastic, obstacles);
         let mut scratch = std::mem::take(&mut self.scratch);
-        let voxel = self.bead.voxel_edge().powi(3);
-        let problem = Problem {
-            elastic,
-            obstacles,
-            cells: &self.cells,
-            coarse: &self.coarse,
-            permeability: &self.permeability,
-            supply: outside.supply.map(|supply| supply / voxel),
-            held: self.held(obstacles),
-            tolerance: self.settings.residual,
-            retardation: self.retardation(),
-        };
         let left = until - self.time;
-        if self.outside != Some(*outside) || self.next == 0.0 {
-            self.state.velocities.fill(0.0);
-            let whole = self.permeability.bead_time(self.bead.dry_radius());
-            self.next = self.settings.step_error * problem.pace(&self.state, &mut scratch).min(whole);
-        }
+        let problem = self.problem(elastic, outside, obstacles);
         let outcome = problem.adapted_step(&self.state, self.next, left, &self.settings, &mut scratch);
         self.scratch = scratch;
         let stages = outcome.map_err(|duration| KineticsError::Stalled { time: self.time, duration })?;
         let last = stages.duration >= left;
         self.time = if last { until } else { self.time + stages.duration };
         // A step cut short by the end says little about how long the next may be.
-        self.next = if last { stages.next.max(self.next) } else { stages.next };
-        self.came_in += stages.came_in * voxel;
+        let cut = last && stages.duration < self.next;
+        self.next = if cut { stages.next.max(self.next) } else { stages.next };
+        self.came_in += stages.came_in * self.bead.voxel_edge().powi(3);
         self.outside = Some(*outside);
         self.bead.positions.copy_from_slice(&stages.state.positions);
         self.state = stages.state;
+        self.lag = Lag { start: stages.start, seconds: stages.share };
         let ruptures = self.tear(outside, obstacles)?;
         let skin = &self.bead.lattice().skin;
         Ok(Step {
@@ -293,6 +310,61 @@ impl Kinetics {
             iterations: stages.solved.iterations,
             ruptures,
         })
+    }
+
+    /// Length (s) that the next step will have if nothing hinders it; called for by
+    /// [`step`](Self::step) itself.
+    pub fn wish(&mut self, outside: &Outside, obstacles: &[Obstacle]) -> f64 {
+        let gel = Gel::new(self.numbers, outside.surroundings);
+        let lattice = self.bead.shared_lattice();
+        let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
+        self.prepare_contacts(&elastic, obstacles);
+        if self.outside != Some(*outside) || self.next == 0.0 {
+            self.state.velocities.fill(0.0);
+            let mut scratch = std::mem::take(&mut self.scratch);
+            let whole = self.permeability.bead_time(self.bead.dry_radius());
+            let pace = self.problem(elastic, outside, obstacles).pace(&self.state, &mut scratch);
+            self.scratch = scratch;
+            self.next = (self.settings.step_error * pace).min(whole);
+            self.outside = Some(*outside);
+        }
+        self.next
+    }
+
+    /// What does not change over a step.
+    fn problem<'a>(
+        &'a self,
+        elastic: Elastic<'a>,
+        outside: &Outside,
+        obstacles: &'a [Obstacle],
+    ) -> Problem<'a> {
+        let voxel = self.bead.voxel_edge().powi(3);
+        Problem {
+            elastic,
+            obstacles,
+            cells: &self.cells,
+            coarse: &self.coarse,
+            permeability: &self.permeability,
+            supply: outside.supply.map(|supply| supply / voxel),
+            held: self.held(obstacles),
+            loads: &self.loads,
+            props: &self.props,
+            anchor: self.settings.anchored.then(|| self.anchor(elastic)),
+            tolerance: self.settings.residual,
+            retardation: self.retardation(),
+        }
+    }
+
+    /// The spring that holds a bead's centre near where it is: about as stiff as a contact
+    /// that is well pressed.
+    fn anchor(&self, elastic: Elastic) -> Anchor {
+        let stretch = weighed_mean(&elastic.lattice.volume, &self.state.water).cbrt();
+        let diameter = 2.0 * stretch * self.bead.dry_radius();
+        Anchor {
+            centre: self.bead.centre(),
+            stiffness: elastic.gel.dry_shear_modulus() / stretch * diameter,
+            nodes: elastic.lattice.node_count(),
+        }
     }
 
     /// What must not move: all where nothing touches, the orientation of a ball, which

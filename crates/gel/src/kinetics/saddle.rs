@@ -1,5 +1,6 @@
 //! The linear system of one Newton step: nodes move, pressures and potentials change.
 
+use super::anchor::Anchor;
 use super::coarse::Coarse;
 use super::conductance::Conductance;
 use super::minres::System;
@@ -33,6 +34,7 @@ pub(super) struct Saddle<'a> {
     /// How much stiffer the chains are against motion than at rest; the slopes in `state`
     /// are over it.
     pub(super) stiffening: f64,
+    pub(super) anchor: Option<Anchor>,
     pub(super) guess: &'a Guess,
     pub(super) coarse: &'a Coarse,
     pub(super) modes: &'a RigidModes,
@@ -114,6 +116,7 @@ impl System for Saddle<'_> {
         self.elastic.add_mixed_stiffness_times(self.state, (motion, &scaled), (forces, volumes));
         forces.iter_mut().for_each(|force| *force *= self.stiffening);
         contact::add_stiffness_times(self.pressing, &lattice.skin, motion, forces);
+        self.anchor.iter().for_each(|anchor| anchor.add_stiffness_times(motion, forces));
         self.modes.project(forces);
         self.conductance.outflow_change(self.cells, &lattice.slots, potentials, flows);
         let scale = self.elastic.voxel_energy() * self.duration;

@@ -20,6 +20,9 @@ pub struct Settings {
     pub retardation: f64,
     /// Pressed skin passes no water (default).
     pub contact_seals: bool,
+    /// A soft spring holds the bead's centre near where it was when a step began: for beads
+    /// that come to rest with what moves around them between steps.
+    pub anchored: bool,
     /// The bead's centre and orientation are held, for obstacles that would let it slip out
     /// sideways.
     pub held: bool,
@@ -33,6 +36,7 @@ impl Default for Settings {
             corrections: 1,
             retardation: 3e-4,
             contact_seals: true,
+            anchored: false,
             held: false,
         }
     }

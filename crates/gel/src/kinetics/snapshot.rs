@@ -1,4 +1,5 @@
 use super::history::Outside;
+use super::prop::Prop;
 use crate::lattice::Face;
 use crate::rupture::Event;
 use serde::{Deserialize, Serialize};
@@ -29,6 +30,11 @@ pub struct Snapshot {
     /// All ruptures so far.
     #[serde(default)]
     pub ruptures: Vec<Event>,
+    /// Forces on the nodes that stay over a step (N), with the opposite sign: weight, other
+    /// beads and the bead's own folds. Empty where there are none.
+    pub loads: Vec<f64>,
+    /// Skin points that press on other beads.
+    pub props: Vec<Prop>,
     /// Water that has come in since the start (m³).
     pub came_in: f64,
     /// Length of the next step, if nothing hinders it (s).

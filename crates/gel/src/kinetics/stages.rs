@@ -22,6 +22,10 @@ pub(super) struct Stages {
     pub(super) came_in: f64,
     /// Error of the voxels' volumes, over themselves.
     pub(super) error: f64,
+    /// Where the nodes were as far as its last stage is concerned (m), and the length of
+    /// that stage (s).
+    pub(super) start: Vec<f64>,
+    pub(super) share: f64,
     /// Its last stage's end, with the effort of all and of tries that were too long.
     pub(super) solved: Solved,
 }
@@ -104,6 +108,7 @@ impl Problem<'_> {
         let came_in = duration * ((1.0 - STAGE) * first.intake + STAGE * solved.intake);
         solved.steps += first.steps;
         solved.iterations += first.iterations;
-        Some(Stages { state, duration, next: duration, came_in, error, solved })
+        let start = reference.positions;
+        Some(Stages { state, duration, next: duration, came_in, error, start, share, solved })
     }
 }

@@ -3,7 +3,7 @@
 use super::history::Outside;
 use super::increment::{Problem, Reference, State};
 use super::stencil::cells;
-use super::{Kinetics, KineticsError};
+use super::{Kinetics, KineticsError, Lag};
 use crate::elastic::Elastic;
 use crate::lattice::Face;
 use crate::obstacle::Obstacle;
@@ -83,6 +83,8 @@ impl Kinetics {
         let chains = self.gel().dry_shear_modulus() * self.bead.voxel_edge();
         self.state.contacts.ties = rupture::drags(&lattice, chains);
         self.coarse.follow(&lattice);
+        // What acted on the nodes as they were acts on none of the new ones.
+        (self.loads, self.props, self.lag) = (Vec::new(), Vec::new(), Lag::default());
         self.cells = cells(&lattice, |point| self.sealed.binary_search(&(point as u32)).is_err());
         Ok(())
     }
@@ -91,17 +93,8 @@ impl Kinetics {
     fn rebalance(&mut self, outside: &Outside, obstacles: &[Obstacle]) -> Result<usize, KineticsError> {
         let (gel, lattice) = (Gel::new(self.numbers, outside.surroundings), self.bead.shared_lattice());
         let mut scratch = std::mem::take(&mut self.scratch);
-        let problem = Problem {
-            elastic: Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() },
-            obstacles,
-            cells: &self.cells,
-            coarse: &self.coarse,
-            permeability: &self.permeability,
-            supply: None,
-            held: self.held(obstacles),
-            tolerance: self.settings.residual,
-            retardation: 0.0,
-        };
+        let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
+        let problem = Problem { supply: None, retardation: 0.0, ..self.problem(elastic, outside, obstacles) };
         let chains = gel.dry_shear_modulus() * self.bead.voxel_edge();
         let mut steps = 0;
         let mut solve = |state: &mut State| {

@@ -36,12 +36,21 @@ impl Inertia {
         let positions = &bead.bead.positions;
         let mut state = Linearisation::default();
         let elastic = Elastic { lattice: &lattice, gel, edge: bead.bead.voxel_edge() };
-        elastic.linearise(positions, false, &mut state);
+        let stiffening = match &bead.water {
+            None => {
+                elastic.linearise(positions, false, &mut state);
+                1.0
+            }
+            Some(water) => {
+                elastic.linearise_held(positions, &water.holding, &mut state);
+                water.stiffening
+            }
+        };
         self.own.clear();
         self.own.resize(lattice.stride(), Matrix::zeros());
         elastic.add_diagonal_blocks(&state, &mut self.own);
         for block in &mut self.own {
-            *block = Matrix::from_diagonal_element(block.trace().max(f64::MIN_POSITIVE));
+            *block = Matrix::from_diagonal_element((block.trace() * stiffening).max(f64::MIN_POSITIVE));
         }
         // All points within reach count, so that none turns out too light for the
         // contact it is about to make.

@@ -2,10 +2,11 @@
 
 mod inertia;
 mod tear;
+mod water;
 
 use crate::bead::Bead;
 use crate::contact::{Contacts, pull_nodes, skin_position};
-use crate::elastic::Elastic;
+use crate::elastic::{Elastic, Holding};
 use crate::equilibrium::{Equilibrium, EquilibriumError, Solver, Tolerance, dot};
 use crate::fold::{FoldLaw, Folds};
 use crate::gel_contact::Push;
@@ -15,6 +16,8 @@ use crate::rupture;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
 use inertia::Inertia;
+pub use water::Lead;
+pub(crate) use water::{HeldWater, STIFFNESS};
 
 /// A bead on its way to rest together with movable obstacles, by damped explicit
 /// steps of unit time. Node masses are fictitious and follow the stiffness, so that
@@ -23,12 +26,16 @@ use inertia::Inertia;
 pub struct Relaxation {
     bead: Bead,
     velocities: Vec<f64>,
+    /// What holds it at its water; nothing where water moves freely.
+    water: Option<HeldWater>,
     /// Net force on each node with the opposite sign: the energy's gradient (N).
     gradient: Vec<f64>,
     inertia: Inertia,
     contacts: Contacts,
     /// What the bead does to each obstacle.
     loads: Vec<Load>,
+    /// Skin points that press on other beads, and the forces (N) on them.
+    pulls: Vec<(u32, Vector)>,
     /// Where the bead comes near itself.
     folds: Folds,
     /// Way of the fastest node since forces were last computed (m).
@@ -81,10 +88,12 @@ impl Relaxation {
         let values = bead.positions.len();
         Self {
             velocities: vec![0.0; values],
+            water: None,
             gradient: vec![0.0; values],
             inertia: Inertia::default(),
             contacts: Contacts::default(),
             loads: Vec::new(),
+            pulls: Vec::new(),
             folds: Folds::default(),
             under_way: 0.0,
             last_way: 0.0,
@@ -124,7 +133,10 @@ impl Relaxation {
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
         let deepest = DEPTH * lattice.across() as f64;
-        let pressure = gel.confining_pressure(self.bead.volume() / self.bead.dry_volume());
+        let pressure = match &self.water {
+            None => gel.confining_pressure(self.bead.volume() / self.bead.dry_volume()),
+            Some(water) => water.pressure(&Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() }),
+        };
         let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
         self.contacts.penalty = stiffness / size;
         let points = lattice.skin.len_with_inner();
@@ -182,9 +194,16 @@ impl Relaxation {
     /// Net forces on the nodes, and the loads on the obstacles.
     pub fn compute_forces(&mut self, gel: &Gel, obstacles: &[Obstacle]) {
         self.gradient.fill(0.0);
+        self.pulls.clear();
         let lattice = self.bead.shared_lattice();
         let elastic = Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() };
-        self.smallest_volume_ratio = elastic.add_gradient(&self.bead.positions, &mut self.gradient);
+        self.smallest_volume_ratio = match &self.water {
+            None => elastic.add_gradient(&self.bead.positions, &mut self.gradient),
+            Some(water) => {
+                water.add_gradient(&elastic, &self.bead.positions, &mut self.gradient);
+                water.driest(&lattice.slots)
+            }
+        };
         if self.weight != Vector::zeros() {
             let stride = self.gradient.len() / 3;
             for (node, share) in lattice.node_shares.iter().enumerate() {
@@ -265,6 +284,7 @@ impl Relaxation {
 
     /// Adds a force (N) on a skin point.
     pub(crate) fn pull(&mut self, point: u32, force: Vector) {
+        self.pulls.push((point, force));
         pull_nodes(&mut self.gradient, self.bead.lattice().skin.terms(point as usize), force);
     }
 
@@ -306,6 +326,19 @@ impl Relaxation {
         self.listed = Listed::default();
         self.compute_forces(gel, obstacles);
         Ok(equilibrium)
+    }
+
+    /// Skin points that press on other beads, with the force (N) on each and its stiffness
+    /// (N/m).
+    pub(crate) fn pulls(&self) -> impl Iterator<Item = (u32, Vector, f64)> {
+        let stiffness = 0.5 * self.point_stiffness();
+        let pulls = self.pulls.iter().filter(|(_, force)| force.norm_squared() > 0.0);
+        pulls.map(move |&(point, force)| (point, force, stiffness))
+    }
+
+    /// What holds the voxels at their water, if something does.
+    pub(crate) fn holding(&self) -> Option<&Holding> {
+        self.water.as_ref().map(|water| &water.holding)
     }
 
     /// Whether any skin point presses on something.

@@ -3,6 +3,7 @@ use super::boundary::outward;
 use super::pairs::Sums;
 use super::spring::ContactState;
 use bedswell_geometry::{Cell, Vector, close_pairs};
+use serde::{Deserialize, Serialize};
 
 /// What touches or nearly does, in order of index, with its history.
 #[derive(Clone, Debug)]
@@ -48,6 +49,15 @@ impl ContactList {
         }
     }
 
+    /// Takes over contacts that go on, as of grains that have not moved since; what else is
+    /// near is listed anew at the next look.
+    pub(super) fn restore(&mut self, pairs: Vec<Pair>, bends: Vec<Vector>, plates: Vec<PlatePair>) {
+        (self.pairs, self.bends, self.plates) = (pairs, bends, plates);
+        self.slip = false;
+        self.listed_centres.clear();
+        self.listed_wall = None;
+    }
+
     pub(super) fn truncate(&mut self, count: usize) {
         let mut bends = std::mem::take(&mut self.bends).into_iter();
         self.pairs.retain(|pair| {
@@ -83,7 +93,7 @@ impl ContactList {
 }
 
 /// Two grains that touch or nearly do.
-#[derive(Clone, Copy, Debug)]
+#[derive(Clone, Copy, Debug, Serialize, Deserialize)]
 pub(super) struct Pair {
     pub(super) a: u32,
     pub(super) b: u32,
@@ -92,7 +102,7 @@ pub(super) struct Pair {
 }
 
 /// A grain that touches a plate, or nearly does.
-#[derive(Clone, Copy, Debug)]
+#[derive(Clone, Copy, Debug, Serialize, Deserialize)]
 pub(super) struct PlatePair {
     pub(super) grain: u32,
     pub(super) plate: Plate,
@@ -101,7 +111,7 @@ pub(super) struct PlatePair {
     pub(super) bend: Vector,
 }
 
-#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize)]
 pub(super) enum Plate {
     Floor,
     Lid,

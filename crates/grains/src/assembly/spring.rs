@@ -1,8 +1,9 @@
 use crate::contact_law::{ContactLaw, Normal};
 use bedswell_geometry::Vector;
+use serde::{Deserialize, Serialize};
 
 /// The memory of a contact.
-#[derive(Clone, Copy, Debug, Default)]
+#[derive(Clone, Copy, Debug, Default, Serialize, Deserialize)]
 pub(super) struct ContactState {
     /// Normal force (N), zero when apart.
     pub(super) force: f64,

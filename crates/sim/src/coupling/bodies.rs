@@ -37,6 +37,20 @@ impl Bodies {
         Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), usual_damping: damping, damping }
     }
 
+    /// Puts beads at rest in the place of the same beads; grains stay as they are.
+    pub(super) fn renew(&mut self, beads: Vec<Relaxation>) {
+        self.beads = beads;
+        self.pairs.clear();
+        self.listed.clear();
+        self.damping = self.usual_damping;
+    }
+
+    /// How near (m) an obstacle is that beads of a gel follow.
+    pub(super) fn reach(&self, gel: &Gel) -> f64 {
+        let edge = self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
+        REACH * edge * gel.free_stretch()
+    }
+
     /// Forces on everything, at the places where everything is.
     pub(super) fn compute_forces(&mut self, gel: &Gel) {
         self.look_around(gel);
@@ -80,8 +94,7 @@ impl Bodies {
 
     /// Looks for contacts anew where something has moved too far since the last look.
     fn look_around(&mut self, gel: &Gel) {
-        let edge = self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
-        let reach = REACH * edge * gel.free_stretch();
+        let reach = self.reach(gel);
         let all = self.grains_strayed(0.5 * reach);
         if all {
             self.listed.clone_from(&self.grains.centres);

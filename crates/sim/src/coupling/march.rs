@@ -1,11 +1,12 @@
 use super::bed::DryBed;
 use super::bodies::Bodies;
 use super::contents::Contents;
-use super::measure::{self, Watch};
+use super::measure::{self, Seen, Watch};
 use super::pot::Pot;
-use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene};
+use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene, State, Step};
 use bedswell_gel::{Bead, Gel, Lattice, Relaxation, Tolerance};
 use bedswell_geometry::Vector;
+use std::ops::ControlFlow;
 use std::sync::Arc;
 
 /// Stretch at which the march starts. The mixing energy ends at the dry state, and
@@ -19,6 +20,10 @@ const GROWTH_OF_BED: f64 = 4e-4;
 const LOOK: usize = 10;
 /// Largest residual (grains, gel) of a recorded state on the way.
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 40, required: false };
+/// The same between two steps in time, in which less happens than in an increment.
+pub(super) const BETWEEN_STEPS: Target = Target { steps: 80, ..ON_THE_WAY };
+/// The same where a bead finds no way to go on from such a state.
+pub(super) const NEARER: Target = Target { steps: 1000, ..ON_THE_WAY };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
 /// The same of an end state of beads alone. Without grains between them nothing but smooth
@@ -31,7 +36,7 @@ const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps
 
 /// When a state counts as at rest.
 #[derive(Clone, Copy, Debug)]
-struct Target {
+pub(super) struct Target {
     grains: f64,
     gel: f64,
     balance: f64,
@@ -49,29 +54,14 @@ pub(crate) fn march(
     number: u64,
     observer: &mut dyn Observer,
 ) -> Result<PackOutcome, RunError> {
-    let before = &bed.spheres;
-    let mut march = March::new(scene, &bed, gel);
     let watch = Watch { scene, gel, number, height_before: bed.height };
-    let forces_before = {
-        let mut grains = bed.grains.clone();
-        grains.compute_contacts();
-        measure::forces(&grains)
-    };
+    show_dry_bed(&watch, &bed, observer)?;
+    let mut march = March::new(scene, &bed, gel);
     let free = gel.free_stretch();
     let start = bed.stretch.min(free);
     let count = scene.march.increments;
     let mut history = Vec::with_capacity(count);
     let mut stretch = start;
-    if observer.looks() {
-        // The grains' contacts before anything swells, without touching the march.
-        let mut dry = March::new(scene, &bed, gel);
-        dry.bodies.grains.compute_contacts();
-        let stage = gel.limited_to(start);
-        let step = watch.step(0, &stage, &dry.bodies.beads, &dry.bodies.grains, Quality::default());
-        if observer.look(dry.snapshot(scene, number, &stage, step)).is_break() {
-            return Err(RunError::Stopped { increment: 0 });
-        }
-    }
     for increment in 1..=count {
         let next = start * (free / start).powf(increment as f64 / count as f64);
         let stage = if increment == count { *gel } else { gel.limited_to(next) };
@@ -81,73 +71,59 @@ pub(crate) fn march(
         };
         stretch = next;
         if !settled {
-            let target = match march.bodies.grains.radii.is_empty() {
-                _ if increment < count => ON_THE_WAY,
-                true => AT_THE_END_ALONE,
-                false => AT_THE_END,
-            };
+            let target = if increment < count { ON_THE_WAY } else { march.at_the_end() };
             march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
         }
         measure::guard(&march.bodies).map_err(|reason| RunError::March { increment, reason })?;
+        let seen = watch.see_drained(&stage, &march.bodies.beads);
         let step =
-            watch.step(increment, &stage, &march.bodies.beads, &march.bodies.grains, march.quality(&stage));
+            watch.step((increment, stage.free_stretch()), &seen, &march.bodies.grains, march.quality(&stage));
         history.push(step);
         let mut onwards = observer.step(&step, count);
         if observer.looks() && onwards.is_continue() {
-            onwards = observer.look(march.snapshot(scene, number, &stage, step));
+            onwards = observer.look(march.snapshot(scene, number, &seen, step));
         }
         if onwards.is_break() {
             return Err(RunError::Stopped { increment });
         }
     }
-    let grains = &march.bodies.grains;
-    let contents = Contents::of(&march.bodies);
-    let after = grains.centres.iter();
-    let positions = before
-        .iter()
-        .zip(after)
-        .map(|(grain, after)| GrainRecord {
-            diameter_m: 2.0 * grain.radius,
-            before_m: grain.centre.into(),
-            after_m: (grain.centre + grains.cell.separation(&grain.centre, after)).into(),
-        })
-        .collect();
-    Ok(PackOutcome {
-        pack: number,
-        grains: before.len(),
-        porosity: bed.porosity,
-        fines_left_out: bed.fines_left_out,
-        heave_m: contents.height - watch.height_before,
-        heave_strain: contents.height / watch.height_before - 1.0,
-        beads_out: contents.beads_out,
-        water_l_per_m3: contents.water_l_per_m3(),
-        porosity_left: contents.porosity_left(),
-        overburden_pa: scene.bed.lid_stress,
-        lid_stress_pa: grains.boundary().lid.z / grains.section(),
-        contact_number: grains.contact_number(),
-        forces_before,
-        forces_after: measure::forces(grains),
-        across: march.bodies.beads.first().map_or(0, |bead| bead.bead().lattice().across()),
-        across_asked: scene.beads.across,
-        chosen_overlap: scene.march.overlap,
-        beads: watch.beads(gel, &march.bodies.beads),
-        tensions: watch.tensions(gel, &march.bodies.beads),
-        quality: march.quality(gel),
-        history,
-        positions,
-    })
+    let seen = watch.see_drained(gel, &march.bodies.beads);
+    Ok(march.outcome(&watch, bed, &seen, march.quality(gel), history))
+}
+
+/// Shows the observer the grains' contacts before anything swells.
+pub(super) fn show_dry_bed(
+    watch: &Watch<'_>,
+    bed: &DryBed,
+    observer: &mut dyn Observer,
+) -> Result<(), RunError> {
+    if !observer.looks() {
+        return Ok(());
+    }
+    let Watch { scene, gel, number, .. } = *watch;
+    let mut dry = March::new(scene, bed, gel);
+    dry.bodies.grains.compute_contacts();
+    let stage = gel.limited_to(bed.stretch.min(gel.free_stretch()));
+    let seen = watch.see_drained(&stage, &dry.bodies.beads);
+    let step = watch.step((0, stage.free_stretch()), &seen, &dry.bodies.grains, Quality::default());
+    let state =
+        State { time_s: scene.time.as_ref().map(|_| 0.0), ..dry.snapshot(scene, number, &seen, step) };
+    match observer.look(state) {
+        ControlFlow::Continue(()) => Ok(()),
+        ControlFlow::Break(()) => Err(RunError::Stopped { increment: 0 }),
+    }
 }
 
 /// The bodies of a pack on their way.
 pub(super) struct March {
     pub(super) bodies: Bodies,
     /// The beads' centres are held.
-    hold_beads: bool,
-    pot: Option<Pot>,
+    pub(super) hold_beads: bool,
+    pub(super) pot: Option<Pot>,
 }
 
 impl March {
-    fn new(scene: &Scene, bed: &DryBed, gel: &Gel) -> Self {
+    pub(super) fn new(scene: &Scene, bed: &DryBed, gel: &Gel) -> Self {
         let lattice = Arc::new(Lattice::new(scene.beads.across_for(bed.beads.len())));
         let radius = 0.5 * scene.beads.dry_diameter;
         let stretch = bed.stretch.min(gel.free_stretch());
@@ -161,9 +137,58 @@ impl March {
     }
 
     /// Gives every bead in a pot the weight that goes with what it holds now.
-    fn weigh(&mut self) {
+    pub(super) fn weigh(&mut self) {
         let Some(pot) = self.pot else { return };
         self.bodies.beads.iter_mut().for_each(|bead| bead.set_weight(pot.bead_weight(bead.bead())));
+    }
+
+    /// What came of a pack whose march has ended.
+    pub(super) fn outcome(
+        &self,
+        watch: &Watch<'_>,
+        bed: DryBed,
+        beads: &[Seen<'_>],
+        quality: Quality,
+        history: Vec<Step>,
+    ) -> PackOutcome {
+        let Watch { scene, number, .. } = *watch;
+        let grains = &self.bodies.grains;
+        let contents = Contents::of(&self.bodies);
+        let after = grains.centres.iter();
+        let positions = (bed.spheres.iter().zip(after))
+            .map(|(grain, after)| GrainRecord {
+                diameter_m: 2.0 * grain.radius,
+                before_m: grain.centre.into(),
+                after_m: (grain.centre + grains.cell.separation(&grain.centre, after)).into(),
+            })
+            .collect();
+        let mut before = bed.grains;
+        before.compute_contacts();
+        PackOutcome {
+            pack: number,
+            grains: bed.spheres.len(),
+            porosity: bed.porosity,
+            fines_left_out: bed.fines_left_out,
+            heave_m: contents.height - watch.height_before,
+            heave_strain: contents.height / watch.height_before - 1.0,
+            beads_out: contents.beads_out,
+            water_l_per_m3: contents.water_l_per_m3(),
+            porosity_left: contents.porosity_left(),
+            overburden_pa: scene.bed.lid_stress,
+            lid_stress_pa: grains.boundary().lid.z / grains.section(),
+            contact_number: grains.contact_number(),
+            forces_before: measure::forces(&before),
+            forces_after: measure::forces(grains),
+            across: self.bodies.beads.first().map_or(0, |bead| bead.bead().lattice().across()),
+            across_asked: scene.beads.across,
+            chosen_overlap: scene.march.overlap,
+            beads: watch.beads(beads),
+            tensions: beads.iter().map(|seen| seen.tension.clone()).collect(),
+            quality,
+            history,
+            positions,
+            timing: None,
+        }
     }
 
     /// A single bead among grains that stay where they are needs no march: Newton
@@ -208,8 +233,13 @@ impl March {
         }
     }
 
+    /// When the last state counts as at rest.
+    pub(super) fn at_the_end(&self) -> Target {
+        if self.bodies.grains.radii.is_empty() { AT_THE_END_ALONE } else { AT_THE_END }
+    }
+
     /// Steps until grains, lid and beads are at rest.
-    fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
+    pub(super) fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         self.weigh();
         for step in 0..target.steps {
             self.bodies.compute_forces(gel);
@@ -267,7 +297,7 @@ impl March {
         }
     }
 
-    fn quality(&self, gel: &Gel) -> Quality {
+    pub(super) fn quality(&self, gel: &Gel) -> Quality {
         Quality { swallowed: measure::swallowed(&self.bodies), ..self.rest_quality(gel) }
     }
 }

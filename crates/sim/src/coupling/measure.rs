@@ -19,49 +19,65 @@ pub(super) struct Watch<'a> {
     pub(super) height_before: f64,
 }
 
+/// A bead with the stress in it.
+pub(super) struct Seen<'a> {
+    pub(super) bead: &'a Relaxation,
+    pub(super) field: StressField,
+    /// What its strength is measured against.
+    pub(super) tension: TensionField,
+}
+
 impl Watch<'_> {
-    /// The state after an increment.
+    /// The beads with the stress that a gel whose water moves freely has.
+    pub(super) fn see_drained<'a>(&self, stage: &Gel, beads: &'a [Relaxation]) -> Vec<Seen<'a>> {
+        beads.iter().map(|bead| self.see(bead, StressField::of(bead.bead(), stage))).collect()
+    }
+
+    /// A bead with its stress.
+    pub(super) fn see<'a>(&self, bead: &'a Relaxation, field: StressField) -> Seen<'a> {
+        Seen { bead, tension: self.tension(&field), field }
+    }
+
+    /// The state after an increment, of gel with a given free stretch.
     pub(super) fn step(
         &self,
-        increment: usize,
-        stage: &Gel,
-        beads: &[Relaxation],
+        (increment, free_stretch): (usize, f64),
+        beads: &[Seen<'_>],
         grains: &Assembly,
         quality: Quality,
     ) -> Step {
         let count = beads.len().max(1) as f64;
         let mut step = Step {
             increment,
-            free_stretch: stage.free_stretch(),
+            free_stretch,
             uptake_g_per_g: 0.0,
             heave_m: grains.filled_height() - self.height_before,
             tension_q99_pa: 0.0,
             tear_probability: 0.0,
             quality,
         };
-        for bead in beads {
-            let field = StressField::of(bead.bead(), stage);
-            step.uptake_g_per_g += self.uptake(bead, &field) / count;
-            step.tension_q99_pa += field.tension_quantile(0.99) / count;
-            step.tear_probability += self.tear_probability(&field) / count;
+        for seen in beads {
+            step.uptake_g_per_g += self.uptake(seen) / count;
+            step.tension_q99_pa += seen.field.tension_quantile(0.99) / count;
+            step.tear_probability += self.tear_probability(seen) / count;
         }
         step
     }
 
     /// What became of the beads.
-    pub(super) fn beads(&self, gel: &Gel, beads: &[Relaxation]) -> Vec<BeadOutcome> {
+    pub(super) fn beads(&self, beads: &[Seen<'_>]) -> Vec<BeadOutcome> {
         beads
             .iter()
             .enumerate()
-            .map(|(index, bead)| {
-                let field = StressField::of(bead.bead(), gel);
+            .map(|(index, seen)| {
+                let Seen { bead, field, .. } = seen;
                 let (largest_tension_pa, voxel) = field.largest_tension();
                 let half = 0.5 * bead.bead().lattice().across() as f64;
                 let forces: Vec<f64> = bead.loads().iter().map(|load| load.force.norm()).collect();
-                let tear_probability = self.tear_probability(&field);
+                let tear_probability = self.tear_probability(seen);
                 let strength: f64 = stream(self.scene.seed, &[self.number, STRENGTH, index as u64]).random();
                 BeadOutcome {
-                    uptake_g_per_g: self.uptake(bead, &field),
+                    uptake_g_per_g: self.uptake(seen),
                     volume_ratio: field.volume.iter().sum::<f64>() / field.free_volume.iter().sum::<f64>(),
                     mean_pressure_pa: field.mean_pressure(),
                     largest_tension_pa,
@@ -70,26 +86,22 @@ impl Watch<'_> {
                     compression_q999_pa: field.compression_quantile(0.999),
                     largest_contact_force_n: bead.largest_contact_force(),
                     contacts: forces.iter().filter(|force| **force > 0.0).count(),
-                    asphericity: asphericity(bead.bead(), &field),
+                    asphericity: asphericity(bead.bead(), field),
                     tear_probability,
                     torn: strength < tear_probability,
+                    timing: None,
                 }
             })
             .collect()
     }
 
-    fn uptake(&self, bead: &Relaxation, field: &StressField) -> f64 {
-        let dry = bead.bead().dry_volume();
-        uptake_of_volume_ratio(field.volume.iter().sum::<f64>() / dry, self.scene.gel.dry_density)
+    fn uptake(&self, seen: &Seen<'_>) -> f64 {
+        let dry = seen.bead.bead().dry_volume();
+        uptake_of_volume_ratio(seen.field.volume.iter().sum::<f64>() / dry, self.scene.gel.dry_density)
     }
 
-    /// The tension in each bead.
-    pub(super) fn tensions(&self, gel: &Gel, beads: &[Relaxation]) -> Vec<TensionField> {
-        beads.iter().map(|bead| self.tension(&StressField::of(bead.bead(), gel))).collect()
-    }
-
-    fn tear_probability(&self, field: &StressField) -> f64 {
-        self.tension(field).tear_probability(&self.scene.strength)
+    fn tear_probability(&self, seen: &Seen<'_>) -> f64 {
+        seen.tension.tear_probability(&self.scene.strength)
     }
 
     fn tension(&self, field: &StressField) -> TensionField {

@@ -3,13 +3,20 @@
 
 mod bed;
 mod bodies;
+mod checkpoint;
 mod contents;
+mod course;
+mod in_time;
 mod march;
 mod measure;
 mod neighbourhood;
 mod pot;
+mod records;
 mod snapshot;
 mod touching;
 
 pub(crate) use bed::DryBed;
+pub use checkpoint::Checkpoint;
+pub(crate) use in_time::march_in_time;
 pub(crate) use march::march;
+pub(crate) use records::spans;

@@ -1,14 +1,15 @@
 use super::march::March;
+use super::measure::Seen;
 use super::neighbourhood::Thing;
 use crate::state::{BeadContact, BeadState, GrainContact, State, Touched};
 use crate::{Scene, Step};
-use bedswell_gel::{Gel, Relaxation, StressField};
+use bedswell_gel::Relaxation;
 use bedswell_geometry::{Matrix, Vector};
 use bedswell_grains::{Lid, Partner};
 
 impl March {
     /// What there is to see of this march at `step`.
-    pub(super) fn snapshot(&self, scene: &Scene, pack: u64, stage: &Gel, step: Step) -> State {
+    pub(super) fn snapshot(&self, scene: &Scene, pack: u64, beads: &[Seen<'_>], step: Step) -> State {
         let grains = &self.bodies.grains;
         let mut cell = grains.cell;
         cell.size.z = grains.filled_height();
@@ -31,16 +32,15 @@ impl March {
             centres: self.bodies.grains.spheres().iter().map(|sphere| single(&sphere.centre)).collect(),
             radii: self.bodies.grains.radii.iter().map(|&radius| radius as f32).collect(),
             contacts: contacts.collect(),
-            beads: (0..self.bodies.beads.len()).map(|bead| self.bead_state(bead, stage)).collect(),
+            beads: (beads.iter().enumerate()).map(|(index, seen)| self.bead_state(index, seen)).collect(),
             wall: grains.wall.map(|radius| radius as f32),
             open: grains.lid == Lid::Open,
+            time_s: None,
         }
     }
 
-    fn bead_state(&self, index: usize, stage: &Gel) -> BeadState {
-        let relaxing = &self.bodies.beads[index];
+    fn bead_state(&self, index: usize, Seen { bead: relaxing, field, .. }: &Seen<'_>) -> BeadState {
         let bead = relaxing.bead();
-        let field = StressField::of(bead, stage);
         let dry = bead.voxel_edge().powi(3);
         BeadState {
             across: bead.lattice().across() as u16,

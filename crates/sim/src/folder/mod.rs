@@ -1,4 +1,5 @@
 mod atomic;
+mod checkpoint;
 mod error;
 mod fingerprint;
 mod read_run;
@@ -17,4 +18,4 @@ pub(crate) use atomic::write_atomically;
 pub(crate) use fingerprint::{checksum, fingerprint};
 pub(crate) use run_folder::{write_json, write_scene};
 pub(crate) use table::{Column, Table, Values};
-pub(crate) use tables::{bead_columns, quality_columns};
+pub(crate) use tables::{bead_columns, quality_columns, timing_columns};

@@ -1,6 +1,7 @@
 use super::FolderError;
+use super::checkpoint::{read_checkpoint, write_checkpoint};
 use super::states::write_state;
-use crate::{Observer, State, Step};
+use crate::{Checkpoint, Observer, State, Step};
 use std::ops::ControlFlow;
 use std::path::Path;
 
@@ -42,5 +43,17 @@ impl Observer for StateRecorder<'_> {
             return ControlFlow::Break(());
         }
         self.watching.look(state)
+    }
+
+    fn resume(&mut self) -> Option<Checkpoint> {
+        read_checkpoint(self.folder)
+    }
+
+    fn keep(&mut self, checkpoint: &Checkpoint) -> ControlFlow<()> {
+        if let Err(error) = write_checkpoint(self.folder, checkpoint) {
+            self.failure = Some(error);
+            return ControlFlow::Break(());
+        }
+        ControlFlow::Continue(())
     }
 }

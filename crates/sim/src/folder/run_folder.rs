@@ -1,6 +1,7 @@
 use super::atomic::write_text;
+use super::checkpoint::CHECKPOINT_FILE;
 use super::states::{STATES_FOLDER, read_state, state_path};
-use super::tables::{beads_table, grains_table, history_table};
+use super::tables::{beads_table, course_table, grains_table, history_table};
 use super::{FolderError, fingerprint};
 use crate::{BeadOutcome, ForceOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
 use serde::{Deserialize, Serialize};
@@ -12,7 +13,7 @@ pub(super) const SUMMARY_FILE: &str = "summary.json";
 /// Written first.
 pub(super) const SCENE_FILE: &str = "scene.toml";
 /// Every file of a run folder, besides the states.
-const FILES: [&str; 9] = [
+const FILES: [&str; 12] = [
     SUMMARY_FILE,
     SCENE_FILE,
     SPHERES_FILE,
@@ -22,6 +23,9 @@ const FILES: [&str; 9] = [
     "beads.csv",
     "grains.parquet",
     "grains.csv",
+    "course.parquet",
+    "course.csv",
+    CHECKPOINT_FILE,
 ];
 
 /// What a single run comes to; the contents of its `summary.json`.
@@ -194,11 +198,16 @@ fn write_files(
     outcome: &PackOutcome,
     csv: bool,
 ) -> Result<RunSummary, FolderError> {
-    history_table(&outcome.history).write(folder, "history", csv)?;
+    if let Some(timing) = &outcome.timing {
+        course_table(&timing.course).write(folder, "course", csv)?;
+    }
+    history_table(outcome).write(folder, "history", csv)?;
     beads_table(&outcome.beads).write(folder, "beads", csv)?;
     grains_table(&outcome.positions).write(folder, "grains", csv)?;
     let summary = RunSummary::new(scene, outcome);
     write_json(&folder.join(SUMMARY_FILE), &summary)?;
+    // Nothing is left to go on with.
+    let _ = fs::remove_file(folder.join(CHECKPOINT_FILE));
     Ok(summary)
 }
 

@@ -1,5 +1,6 @@
 use super::{FolderError, ReadError, checksum, write_atomically};
 use crate::State;
+use serde::Serialize;
 use std::fs;
 use std::io::Write;
 use std::path::{Path, PathBuf};
@@ -9,10 +10,11 @@ pub(super) const STATES_FOLDER: &str = "states";
 /// First bytes of every state.
 const MAGIC: &[u8; 8] = b"bedswell";
 /// The form of what follows; a reader refuses what it does not know.
-const FORMAT: u32 = 3;
-/// Forms 1 (in which nothing touches a wall) and 2 lack the last two fields, which say that
-/// there is a pot and that it is open: neither, in the wire format.
-const NO_POT: [u8; 2] = [0, 0];
+const FORMAT: u32 = 4;
+/// Forms 1 (in which nothing touches a wall) and 2 lack the last three fields, which say
+/// that there is a pot, that it is open, and the time; form 3 lacks the time. None of them,
+/// in the wire format.
+const NOTHING: [u8; 3] = [0; 3];
 /// Bytes before the body: magic, format (u32), checksum (u64), both little-endian.
 const HEAD: usize = 20;
 
@@ -24,15 +26,31 @@ pub(super) fn state_path(folder: &Path, increment: usize) -> PathBuf {
 /// Writes one state of a run. Behind magic, format and a checksum of the body, the body
 /// is the [`State`] in the Postcard wire format (version 1).
 pub(super) fn write_state(folder: &Path, state: &State) -> Result<(), FolderError> {
-    let path = state_path(folder, state.step.increment);
-    let body = postcard::to_stdvec(state)
-        .map_err(|error| FolderError::write(&path)(std::io::Error::other(error)))?;
-    write_atomically(&path, |writer| {
-        writer.write_all(MAGIC)?;
-        writer.write_all(&FORMAT.to_le_bytes())?;
+    write_sealed(&state_path(folder, state.step.increment), (MAGIC, FORMAT), state)
+}
+
+/// Writes a value in the Postcard wire format behind magic, format and checksum.
+pub(super) fn write_sealed(
+    path: &Path,
+    (magic, format): (&[u8; 8], u32),
+    value: &impl Serialize,
+) -> Result<(), FolderError> {
+    let body =
+        postcard::to_stdvec(value).map_err(|error| FolderError::write(path)(std::io::Error::other(error)))?;
+    write_atomically(path, |writer| {
+        writer.write_all(magic)?;
+        writer.write_all(&format.to_le_bytes())?;
         writer.write_all(&checksum(&body).to_le_bytes())?;
         writer.write_all(&body)
     })
+}
+
+/// The format and the body of a file behind its magic; `None` where it was cut short or
+/// altered.
+pub(super) fn unseal<'a>(bytes: &'a [u8], magic: &[u8; 8]) -> Option<(u32, &'a [u8])> {
+    let (head, body) = bytes.split_at_checked(HEAD)?;
+    let format = u32::from_le_bytes([head[8], head[9], head[10], head[11]]);
+    (head.starts_with(magic) && head[12..] == checksum(body).to_le_bytes()).then_some((format, body))
 }
 
 /// Reads one state.
@@ -52,7 +70,8 @@ pub(super) fn read_state(path: &Path) -> Result<State, ReadError> {
     }
     let state: State = match format {
         FORMAT => postcard::from_bytes(body),
-        _ => postcard::from_bytes(&[body, &NO_POT].concat()),
+        3 => postcard::from_bytes(&[body, &NOTHING[..1]].concat()),
+        _ => postcard::from_bytes(&[body, &NOTHING].concat()),
     }
     .map_err(|_| damaged())?;
     if state.is_sound() { Ok(state) } else { Err(damaged()) }
@@ -77,6 +96,7 @@ mod tests {
             beads: Vec::new(),
             wall,
             open: wall.is_some(),
+            time_s: wall.map(f64::from),
         }
     }
 
@@ -91,12 +111,12 @@ mod tests {
         let folder = tempfile::tempdir().unwrap();
         let path = folder.path().join("old.state");
         let body = postcard::to_stdvec(&state(None)).unwrap();
-        for format in [1, 2] {
-            write_form(&path, format, &body[..body.len() - NO_POT.len()]);
+        for (format, missing) in [(1, 3), (2, 3), (3, 1)] {
+            write_form(&path, format, &body[..body.len() - missing]);
             assert_eq!(read_state(&path).unwrap(), state(None), "form {format}");
         }
         write_form(&path, FORMAT + 1, &body);
-        assert!(matches!(read_state(&path), Err(ReadError::Newer { format: 4, known: 3, .. })));
+        assert!(matches!(read_state(&path), Err(ReadError::Newer { format: 5, known: 4, .. })));
     }
 
     #[test]

@@ -1,5 +1,5 @@
 use super::{Column, Table, Values};
-use crate::{BeadOutcome, GrainRecord, Quality, Step};
+use crate::{BeadOutcome, BeadTiming, CoursePoint, GrainRecord, PackOutcome, Quality, Step};
 
 /// The columns that say what became of each bead.
 pub(crate) fn bead_columns<'a>(beads: impl Iterator<Item = &'a BeadOutcome> + Clone) -> Vec<Column> {
@@ -42,22 +42,60 @@ pub(crate) fn quality_columns<'a>(states: impl Iterator<Item = &'a Quality> + Cl
 pub(super) fn beads_table(beads: &[BeadOutcome]) -> Table {
     let mut columns = vec![Column::new("bead", Values::Count((0..beads.len() as i64).collect()))];
     columns.extend(bead_columns(beads.iter()));
+    columns.extend(timing_columns(beads.iter()));
+    Table { columns }
+}
+
+/// The columns that say when things happened to each bead; none where no bead tells.
+pub(crate) fn timing_columns<'a>(beads: impl Iterator<Item = &'a BeadOutcome> + Clone) -> Vec<Column> {
+    let number = |name, value: fn(&BeadTiming) -> f64| {
+        let values = beads.clone().map(|bead| bead.timing.as_ref().map_or(f64::NAN, value));
+        Column::new(name, Values::Number(values.collect()))
+    };
+    if beads.clone().all(|bead| bead.timing.is_none()) {
+        return Vec::new();
+    }
+    vec![
+        number("half_time_s", |timing| timing.half_time_s),
+        number("ninety_time_s", |timing| timing.ninety_time_s),
+        number("most_tension_q99_pa", |timing| timing.most_tension_q99_pa),
+        number("most_tension_time_s", |timing| timing.most_tension_time_s),
+    ]
+}
+
+/// One row per bead and step in time of a run.
+pub(super) fn course_table(course: &[CoursePoint]) -> Table {
+    let number = |name, value: fn(&CoursePoint) -> f64| {
+        Column::new(name, Values::Number(course.iter().map(value).collect()))
+    };
+    let columns = vec![
+        number("time_s", |point| point.time_s),
+        Column::new("bead", Values::Count(course.iter().map(|point| point.bead as i64).collect())),
+        number("uptake_g_per_g", |point| point.uptake_g_per_g),
+        number("tension_q99_pa", |point| point.tension_q99_pa),
+        number("largest_tension_pa", |point| point.largest_tension_pa),
+    ];
     Table { columns }
 }
 
 /// One row per increment of a run.
-pub(super) fn history_table(history: &[Step]) -> Table {
+pub(super) fn history_table(outcome: &PackOutcome) -> Table {
+    let history = &outcome.history;
     let number = |name, value: fn(&Step) -> f64| {
         Column::new(name, Values::Number(history.iter().map(value).collect()))
     };
     let mut columns = vec![
         Column::new("increment", Values::Count(history.iter().map(|step| step.increment as i64).collect())),
         number("free_stretch", |step| step.free_stretch),
+    ];
+    let seconds = outcome.timing.iter().map(|timing| timing.seconds.clone());
+    columns.extend(seconds.map(|seconds| Column::new("time_s", Values::Number(seconds))));
+    columns.extend([
         number("uptake_g_per_g", |step| step.uptake_g_per_g),
         number("heave_m", |step| step.heave_m),
         number("tension_q99_pa", |step| step.tension_q99_pa),
         number("tear_probability", |step| step.tear_probability),
-    ];
+    ]);
     columns.extend(quality_columns(history.iter().map(|step| &step.quality)));
     Table { columns }
 }

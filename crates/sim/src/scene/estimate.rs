@@ -1,5 +1,6 @@
 use super::budget::voxels;
 use super::{BeadAmount, Scene, SoilGrading, Water};
+use crate::coupling::spans;
 use bedswell_gel::{Gel, GelNumbers, Surroundings, uptake_of_volume_ratio};
 use bedswell_geometry::volume_of_radius;
 use bedswell_grains::{PackError, beads_for_dose};
@@ -18,6 +19,11 @@ const SECONDS_PER_VOXEL: f64 = 1.2e-4;
 const SECONDS_PER_VOXEL_ALONE: f64 = 7e-6;
 /// The same for one grain that moves (s).
 const SECONDS_PER_GRAIN: f64 = 3e-4;
+/// Steps in time of a span between changes outside, about.
+const STEPS_PER_SPAN: f64 = 120.0;
+/// Time that one voxel and one grain take in one step in time, with the rest after it (s).
+const SECONDS_PER_VOXEL_IN_TIME: f64 = 4.5e-4;
+const SECONDS_PER_GRAIN_IN_TIME: f64 = 1.2e-4;
 /// Memory of the program itself (bytes).
 const BYTES_AT_LEAST: f64 = 1e7;
 
@@ -127,7 +133,7 @@ impl Scene {
         } else {
             SECONDS_PER_VOXEL * voxels + SECONDS_PER_GRAIN * diameters.len() as f64
         };
-        let gel = self.swelling_gel();
+        let gel = self.wettest_gel();
         let free_stretch = gel.free_stretch();
         let swollen_modulus_pa = gel.moduli().shear;
         Ok(SceneEstimate {
@@ -148,7 +154,14 @@ impl Scene {
             free_uptake_g_per_g: uptake_of_volume_ratio(gel.free_volume_ratio(), self.gel.dry_density),
             swollen_modulus_pa,
             load_ratio: self.bed.lid_stress / swollen_modulus_pa,
-            seconds_per_pack: self.march.increments as f64 * seconds_per_increment,
+            seconds_per_pack: match &self.time {
+                None => self.march.increments as f64 * seconds_per_increment,
+                Some(time) => {
+                    let per_step = SECONDS_PER_VOXEL_IN_TIME * voxels
+                        + SECONDS_PER_GRAIN_IN_TIME * diameters.len() as f64;
+                    STEPS_PER_SPAN * spans(&time.history, time.until).len() as f64 * per_step
+                }
+            },
             memory_bytes: BYTES_AT_LEAST
                 + BYTES_PER_VOXEL * voxels
                 + BYTES_PER_GRAIN * diameters.len() as f64,

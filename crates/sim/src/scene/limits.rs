@@ -5,6 +5,7 @@ use super::error::SceneError;
 use super::raw::Node;
 use super::room::{check_pot, check_room};
 use super::section::Entry;
+use super::time::check_records;
 use super::{BeadAmount, Scene, SceneEstimate, SoilGrading};
 use bedswell_geometry::{Cell, Vector};
 use bedswell_grains::MassCurve;
@@ -38,6 +39,7 @@ pub(crate) fn check_limits(document: &Node, scene: &Scene) -> Result<(), SceneEr
     check_bead_size(document, scene, &estimate)?;
     check_pot(document, scene, &estimate)?;
     check_room(document, scene, &estimate)?;
+    check_records(document, scene)?;
     check_given_centres(document, scene)
 }
 

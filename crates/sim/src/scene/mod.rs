@@ -15,13 +15,14 @@ mod room;
 mod section;
 mod soil;
 mod spheres;
+mod time;
 mod unit;
 mod write;
 
 pub use concern::Concern;
 pub use error::{Place, SceneError};
 pub use estimate::SceneEstimate;
-pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Water};
+pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Time, Water};
 pub use read::read_scene;
 pub use write::SPHERES_FILE;
 

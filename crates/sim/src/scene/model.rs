@@ -1,3 +1,4 @@
+use bedswell_gel::History;
 use serde::{Deserialize, Serialize};
 
 /// Everything one pack needs, checked and in SI units. Made from a scene file by
@@ -22,6 +23,25 @@ pub struct Scene {
     pub strength: Strength,
     /// How the march from dry to equilibrium is taken.
     pub march: March,
+    /// The history in time, if the bed is followed through one.
+    pub time: Option<Time>,
+}
+
+/// A history in time, and how water moves in it.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+pub struct Time {
+    /// When it ends (s).
+    pub until: f64,
+    /// Cooperative diffusion coefficient of the gel, free-swollen in the scene's water (m²/s).
+    pub diffusion: f64,
+    /// Power of the gel's water with which its permeability grows.
+    pub exponent: f64,
+    /// No water passes where a bead presses on grains or walls.
+    pub contact_seals: bool,
+    /// Error of the gel's volumes, over themselves, that a step may make.
+    pub step_error: f64,
+    /// What is outside the beads, from when on.
+    pub history: History,
 }
 
 /// The bed and its load.

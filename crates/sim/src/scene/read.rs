@@ -6,13 +6,14 @@ use super::limits::check_limits;
 use super::raw::{Node, Value, read_document};
 use super::section::{Entry, Section, refuse_unknown};
 use super::soil::{read_no_soil, read_soil, to_vector};
+use super::time::{POTENTIALS, read_time};
 use super::unit::Kind;
 use super::{BeadAmount, Beads, March, Scene, SoilGrading, Strength, Water};
 use bedswell_geometry::Vector;
 use std::path::Path;
 
 /// The tables of a scene file.
-const TABLES: [&str; 8] = ["scene", "bed", "soil", "beads", "gel", "water", "strength", "march"];
+const TABLES: [&str; 9] = ["scene", "bed", "soil", "beads", "gel", "water", "strength", "march", "time"];
 /// Any number at all; what is allowed is checked afterwards.
 const ANY: std::ops::RangeInclusive<f64> = f64::NEG_INFINITY..=f64::INFINITY;
 
@@ -64,6 +65,7 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
         water,
         strength: read_strength(document)?,
         march: read_march(document)?,
+        time: read_time(document, &water)?,
     };
     check_limits(document, &scene)?;
     Ok(scene)
@@ -129,7 +131,7 @@ fn read_water(document: &Node) -> Result<Water, SceneError> {
     let section = Section::new(document, "water", &["salt", "potential", "temperature"])?;
     let salt = section.get("salt").map_or(Ok(0.0), |salt| salt.quantity(Kind::Concentration, 0.0..=6.0))?;
     let potential =
-        section.get("potential").map_or(Ok(0.0), |value| value.quantity(Kind::Stress, -1e7..=0.0))?;
+        section.get("potential").map_or(Ok(0.0), |value| value.quantity(Kind::Stress, POTENTIALS))?;
     let temperature = section
         .get("temperature")
         .map_or(Ok(298.15), |value| value.quantity(Kind::Temperature, 273.15..=373.15))?;

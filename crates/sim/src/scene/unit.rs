@@ -13,6 +13,9 @@ pub(crate) enum Kind {
     Concentration,
     Temperature,
     Angle,
+    Time,
+    Diffusion,
+    Flow,
 }
 
 /// A unit: its spelling, its kind, and its size (a power of ten times a factor) and zero
@@ -40,6 +43,10 @@ const fn celsius(name: &'static str) -> Unit {
 /// Pa in a pound-force per square inch, by the definitions of the pound (0.45359237 kg),
 /// standard gravity (9.80665 m/s²) and the inch (0.0254 m).
 const POUND_PER_SQUARE_INCH: f64 = 0.453_592_37 * 9.806_65 / (0.0254 * 0.0254);
+
+/// Seconds in an hour and in a day.
+const HOUR: f64 = 3600.0;
+const DAY: f64 = 24.0 * HOUR;
 
 /// Radians in a degree.
 const DEGREE: f64 = std::f64::consts::PI / 180.0;
@@ -75,6 +82,20 @@ const UNITS: &[Unit] = &[
     unit("rad", Kind::Angle, 0),
     odd_unit("deg", Kind::Angle, DEGREE),
     odd_unit("°", Kind::Angle, DEGREE),
+    unit("s", Kind::Time, 0),
+    odd_unit("min", Kind::Time, 60.0),
+    odd_unit("h", Kind::Time, HOUR),
+    odd_unit("hours", Kind::Time, HOUR),
+    odd_unit("d", Kind::Time, DAY),
+    odd_unit("days", Kind::Time, DAY),
+    odd_unit("weeks", Kind::Time, 7.0 * DAY),
+    unit("m2/s", Kind::Diffusion, 0),
+    unit("cm2/s", Kind::Diffusion, -4),
+    unit("mm2/s", Kind::Diffusion, -6),
+    unit("m3/s", Kind::Flow, 0),
+    unit("mm3/s", Kind::Flow, -9),
+    odd_unit("mm3/h", Kind::Flow, 1e-9 / HOUR),
+    odd_unit("mL/h", Kind::Flow, 1e-6 / HOUR),
 ];
 
 impl Kind {
@@ -88,6 +109,9 @@ impl Kind {
             Kind::Concentration => "a concentration",
             Kind::Temperature => "a temperature",
             Kind::Angle => "an angle",
+            Kind::Time => "a time",
+            Kind::Diffusion => "a diffusion coefficient",
+            Kind::Flow => "a flow",
         }
     }
 
@@ -178,6 +202,10 @@ mod tests {
             ("25 degC", Kind::Temperature, 298.15),
             ("3 g/kg", Kind::MassRatio, 3e-3),
             ("1 mm3", Kind::Volume, 1e-9),
+            ("3 days", Kind::Time, 259_200.0),
+            ("1.5 h", Kind::Time, 5400.0),
+            ("2e-10 m2/s", Kind::Diffusion, 2e-10),
+            ("20 mm3/s", Kind::Flow, 2e-8),
             ("34 deg", Kind::Angle, 34.0 * std::f64::consts::PI / 180.0),
         ] {
             assert_eq!(parse_quantity(text, kind), Ok(value), "{text}");

@@ -1,7 +1,8 @@
 //! A checked scene as text that reads back to the same scene, bit for bit.
 
 use super::unit::Kind;
-use super::{BeadAmount, Gel, Scene, SoilGrading, Strength};
+use super::{BeadAmount, Gel, Scene, SoilGrading, Strength, Time};
+use bedswell_gel::Change;
 use std::fmt::Write;
 
 /// File that [`Scene::to_toml`] refers to when the soil lists its spheres.
@@ -69,6 +70,10 @@ impl Scene {
         text.line("increments", self.march.increments);
         text.line("overlap", number(self.march.overlap));
         text.line("damping", number(self.march.damping));
+
+        if let Some(time) = &self.time {
+            text.time(time);
+        }
         text.text
     }
 
@@ -131,6 +136,25 @@ impl Writer {
         self.line("chi", number(gel.chi));
         self.line("charges", number(gel.charges));
         self.line("dry_density", with_unit(gel.dry_density, Kind::Density));
+    }
+
+    fn time(&mut self, time: &Time) {
+        self.table("time");
+        self.line("until", with_unit(time.until, Kind::Time));
+        self.line("diffusion", with_unit(time.diffusion, Kind::Diffusion));
+        self.line("exponent", number(time.exponent));
+        self.line("contact_seals", time.contact_seals);
+        self.line("step_error", number(time.step_error));
+        let changes: Vec<Change> = time.history.clone().into();
+        for Change { time, outside } in changes {
+            self.table("[time.outside]");
+            self.line("at", with_unit(time, Kind::Time));
+            self.line("potential", with_unit(outside.surroundings.potential, Kind::Stress));
+            self.line("salt", with_unit(outside.surroundings.salt, Kind::Concentration));
+            if let Some(supply) = outside.supply {
+                self.line("supply", with_unit(supply, Kind::Flow));
+            }
+        }
     }
 
     fn strength(&mut self, strength: &Strength) {

@@ -1,5 +1,5 @@
 use super::plan::Plan;
-use super::response::{RESPONSES, Response};
+use super::response::{Response, responses};
 use super::{Study, Variation};
 use crate::statistics::{
     Combination, Deviation, Estimate, MainEffect, Measure, bootstrap_mean, bootstrap_rank_correlation,
@@ -65,7 +65,8 @@ pub(super) fn effects(study: &Study, plan: &Plan, seed: u64) -> Vec<Effects> {
         return Vec::new();
     }
     let of = if study.is_sampled() { in_sample } else { in_factorial };
-    RESPONSES.iter().map(|response| of(study, plan, response, seed)).collect()
+    let responses = responses(study.levels.iter().map(|level| &level.scene));
+    responses.map(|response| of(study, plan, response, seed)).collect()
 }
 
 fn in_factorial(study: &Study, plan: &Plan, response: &Response, seed: u64) -> Effects {

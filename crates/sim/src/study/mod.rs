@@ -21,5 +21,5 @@ pub use effects::{Effects, FactorEffect, Interaction, LevelEffect};
 pub use factor::{Factor, Variation, combination_in_words};
 pub use model::{Level, Study};
 pub use read::read_study;
-pub use response::{RESPONSES, Response};
+pub use response::{RESPONSES, Response, TIMES};
 pub use summary::{FailedPack, LevelSummary, StudySummary};

@@ -1,5 +1,5 @@
 use crate::figures::digits;
-use crate::{BeadOutcome, PackOutcome};
+use crate::{BeadOutcome, BeadTiming, PackOutcome, Scene};
 
 /// What is asked of a pack: studies give its means, their limits and what moves it.
 pub struct Response {
@@ -30,6 +30,12 @@ pub const RESPONSES: &[Response] = &[
     response("tension_q99_pa", "99 % tension", "kPa", kilo, |pack| mean(pack, |bead| bead.tension_q99_pa)),
 ];
 
+/// The responses of packs with a history in time, besides.
+pub const TIMES: &[Response] = &[
+    response("half_time_s", "half the uptake", "h", hours, |pack| time(pack, |bead| bead.half_time_s)),
+    response("ninety_time_s", "90 % of uptake", "h", hours, |pack| time(pack, |bead| bead.ninety_time_s)),
+];
+
 const fn response(
     name: &'static str,
     title: &'static str,
@@ -38,6 +44,14 @@ const fn response(
     value: fn(&PackOutcome) -> f64,
 ) -> Response {
     Response { name, title, unit, show, value }
+}
+
+/// The responses of packs of these scenes.
+pub(super) fn responses<'a>(
+    mut scenes: impl Iterator<Item = &'a Scene>,
+) -> impl Iterator<Item = &'static Response> + Clone {
+    let times = if scenes.any(|scene| scene.time.is_some()) { TIMES } else { &[] };
+    RESPONSES.iter().chain(times)
 }
 
 impl Response {
@@ -68,6 +82,16 @@ fn milli(value: f64) -> String {
 
 fn kilo(value: f64) -> String {
     digits(1e-3 * value)
+}
+
+fn hours(value: f64) -> String {
+    digits(value / 3600.0)
+}
+
+/// Mean over the beads of a pack of a time, if the beads tell it.
+fn time(pack: &PackOutcome, quantity: fn(&BeadTiming) -> f64) -> f64 {
+    let times = pack.beads.iter().map(|bead| bead.timing.as_ref().map_or(f64::NAN, quantity));
+    times.sum::<f64>() / pack.beads.len() as f64
 }
 
 /// Mean over the beads of a pack.

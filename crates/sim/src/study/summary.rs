@@ -1,7 +1,7 @@
 use super::effects::effects;
 use super::journal::PackEnd;
 use super::plan::Plan;
-use super::response::RESPONSES;
+use super::response::responses;
 use super::{Effects, Factor, Response, Study};
 use crate::PackOutcome;
 use crate::statistics::{Estimate, bootstrap_mean, clopper_pearson, clustered_fraction, wilson};
@@ -96,7 +96,7 @@ pub(crate) fn summarise(study: &Study, plan: &Plan, fingerprint: &str) -> StudyS
     let levels = study.levels.iter().enumerate().map(|(index, level)| LevelSummary {
         values: level.values.clone(),
         stopped_early: plan.stopped_early(index, study.packs),
-        ..summarise_packs(plan.level_rows(index), seed)
+        ..summarise_packs(study, plan.level_rows(index), seed)
     });
     let levels: Vec<LevelSummary> = levels.collect();
     let stopped_early = levels.iter().any(|level| level.stopped_early);
@@ -108,13 +108,14 @@ pub(crate) fn summarise(study: &Study, plan: &Plan, fingerprint: &str) -> StudyS
         seed,
         factors: study.factors.clone(),
         complete: done == wanted,
-        overall: LevelSummary { stopped_early, ..summarise_packs(plan.rows(), seed) },
+        overall: LevelSummary { stopped_early, ..summarise_packs(study, plan.rows(), seed) },
         levels,
         effects: effects(study, plan, seed),
     }
 }
 
 fn summarise_packs<'a>(
+    study: &Study,
     rows: impl Iterator<Item = (usize, u64, &'a PackEnd)> + Clone,
     seed: u64,
 ) -> LevelSummary {
@@ -154,7 +155,9 @@ fn summarise_packs<'a>(
         tear_fraction_clustered_low: clustered.map(|fraction| fraction.interval.low),
         tear_fraction_clustered_high: clustered.map(|fraction| fraction.interval.high),
         effective_beads: clustered.map(|fraction| fraction.effective_trials),
-        responses: RESPONSES.iter().map(|response| (response.name.into(), figure(response))).collect(),
+        responses: responses(study.levels.iter().map(|level| &level.scene))
+            .map(|response| (response.name.into(), figure(response)))
+            .collect(),
         porosity: bootstrap_mean(&porosity, seed),
     }
 }

@@ -1,7 +1,7 @@
 //! The columns of factors, and the table of combinations.
 
 use super::quantity::number_and_unit;
-use super::response::RESPONSES;
+use super::response::responses;
 use super::{Factor, LevelSummary, Study};
 use crate::Estimate;
 use crate::folder::{Column, Table, Values};
@@ -10,7 +10,7 @@ use std::sync::Arc;
 /// One row per combination: its values, and what its packs come to.
 pub(super) fn levels_table(study: &Study, levels: &[LevelSummary]) -> Table {
     let mut columns = factor_columns(study, 0..levels.len());
-    for response in RESPONSES {
+    for response in responses(study.levels.iter().map(|level| &level.scene)) {
         let column = |end: &str, side: fn(Estimate) -> Option<f64>| {
             let values: Vec<Option<f64>> =
                 levels.iter().map(|level| level.figure(response).and_then(side)).collect();
