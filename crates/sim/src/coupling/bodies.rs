@@ -10,6 +10,9 @@ use rayon::prelude::*;
 const SETTLING: (f64, f64) = (0.6, 0.2);
 /// Largest net force on a grain, over the mean contact force, of grains that only chatter.
 const CHATTER: f64 = 2e-3;
+/// Steps without growth after which, in every so many, so many are damped like those of grains
+/// that only chatter: a loose grain that slides on its neighbours may flutter for ever with less.
+const CALM: (usize, usize, usize) = (10_000, 5_000, 1_000);
 /// Share of each force component that is turned against the motion, on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
@@ -81,10 +84,13 @@ impl Bodies {
         );
     }
 
-    /// Damps as befits the largest net force on a grain, over the mean contact force.
-    pub(super) fn damp(&mut self, residual: f64) {
+    /// Damps as befits the largest net force on a grain, over the mean contact force, after
+    /// so many steps with nothing growing.
+    pub(super) fn damp(&mut self, residual: f64, step: usize) {
         let settling = SETTLING.0 * (self.usual_damping / SETTLING.1);
-        self.damping = if residual < CHATTER { settling } else { self.usual_damping };
+        let (late, cycle, calm) = CALM;
+        let calms = step >= late && step % cycle < calm;
+        self.damping = if residual < CHATTER || calms { settling } else { self.usual_damping };
     }
 
     pub(super) fn step(&mut self, gel: &Gel) {

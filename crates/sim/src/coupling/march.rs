@@ -34,6 +34,13 @@ const AT_THE_END_ALONE: Target =
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
 
+/// What an end state may be left with when nothing that is measured changes any more: the
+/// grains that still creep then carry next to nothing.
+const UNCHANGING: Target = Target { grains: 1e-3, gel: 1e-4, balance: 1e-5, steps: 2_500, required: true };
+/// Largest change of the bed's height and of the gel's volume, of themselves, over these
+/// steps where nothing changes.
+const CHANGE: f64 = 1e-5;
+
 /// When a state counts as at rest.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Target {
@@ -44,6 +51,14 @@ pub(super) struct Target {
     steps: usize,
     /// Giving up is a failure; otherwise the march goes on from where it is.
     required: bool,
+}
+
+impl Target {
+    fn is_met(&self, quality: &Quality) -> bool {
+        quality.grain_residual <= self.grains
+            && quality.gel_residual <= self.gel
+            && quality.bead_balance <= self.balance
+    }
 }
 
 /// Takes a pack from dry to joint equilibrium of grains, lid and beads.
@@ -224,7 +239,7 @@ impl March {
         }
         let growth = (to / from).powf(1.0 / steps as f64);
         let mut stretch = from;
-        self.bodies.damp(f64::INFINITY);
+        self.bodies.damp(f64::INFINITY, 0);
         for _ in 0..steps {
             stretch *= growth;
             let stage = gel.limited_to(stretch);
@@ -241,25 +256,28 @@ impl March {
     /// Steps until grains, lid and beads are at rest.
     pub(super) fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         self.weigh();
+        let mut before = None;
         for step in 0..target.steps {
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
                 let quality = self.rest_quality(gel);
-                if quality.grain_residual <= target.grains
-                    && quality.gel_residual <= target.gel
-                    && quality.bead_balance <= target.balance
-                {
+                if target.is_met(&quality) {
                     return Ok(());
                 }
-                self.bodies.damp(quality.grain_residual);
+                if target.required && step % UNCHANGING.steps == 0 {
+                    let now = self.size();
+                    let is_same = |before| change(before, now) <= CHANGE;
+                    if UNCHANGING.is_met(&quality) && before.is_some_and(is_same) {
+                        return Ok(());
+                    }
+                    before = Some(now);
+                }
+                self.bodies.damp(quality.grain_residual, step);
             }
             self.bodies.advance();
         }
         let quality = self.rest_quality(gel);
-        let tolerable = quality.grain_residual < TOLERABLE.grains
-            && quality.gel_residual < TOLERABLE.gel
-            && quality.bead_balance < TOLERABLE.balance;
-        if tolerable || !target.required {
+        if TOLERABLE.is_met(&quality) || !target.required {
             return Ok(());
         }
         Err(format!(
@@ -274,6 +292,12 @@ impl March {
             quality.bead_balance,
             TOLERABLE.balance
         ))
+    }
+
+    /// Height of the lid (m) and volume of the gel (m³).
+    fn size(&self) -> [f64; 2] {
+        let volume = self.bodies.beads.iter().map(|bead| bead.bead().volume()).sum();
+        [self.bodies.grains.cell.size.z, volume]
     }
 
     /// The bead whose gel is furthest from rest.
@@ -300,6 +324,11 @@ impl March {
     pub(super) fn quality(&self, gel: &Gel) -> Quality {
         Quality { swallowed: measure::swallowed(&self.bodies), ..self.rest_quality(gel) }
     }
+}
+
+/// Largest change of a size, of itself.
+fn change(before: [f64; 2], now: [f64; 2]) -> f64 {
+    before.iter().zip(&now).map(|(before, now)| (now / before - 1.0).abs()).fold(0.0, f64::max)
 }
 
 #[cfg(test)]
