@@ -1,4 +1,5 @@
 use crate::bead::Bead;
+use crate::lattice::{Lattice, Neighbourhood};
 use crate::thermodynamics::Gel;
 use bedswell_geometry::{Matrix, Vector};
 
@@ -81,6 +82,25 @@ impl StressField {
     /// Compare quantiles: point maxima at contact edges depend on the resolution.
     pub fn tension_quantile(&self, share: f64) -> f64 {
         quantile(self.principal.iter().map(|p| p[0]), &self.free_volume, share)
+    }
+
+    /// The largest principal tension (Pa) round each voxel, of the stress averaged over a reach
+    /// (voxel edges) with the weight 1 - r²/reach² and the gel when dry, as far as intact
+    /// bonds lead: unlike that of single voxels it hardly depends on how many there are. Up to
+    /// one edge it is each voxel's own.
+    pub fn tensions_over(&self, lattice: &Lattice, reach: f64) -> Vec<f64> {
+        let mut around = Neighbourhood::new(lattice, reach);
+        let over = |voxel: usize| {
+            let place = Vector::from(lattice.voxel_offset(voxel));
+            let (mut sum, mut total) = (Matrix::zeros(), 0.0);
+            for &(other, weight) in around.find(lattice, std::iter::once(voxel), &place) {
+                let weight = weight * lattice.filled(other);
+                sum += self.stress[other] * weight;
+                total += weight;
+            }
+            principal(&(sum / total))[0]
+        };
+        (0..self.stress.len()).map(over).collect()
     }
 
     /// The principal compression (Pa, positive) that a share of the gel's volume

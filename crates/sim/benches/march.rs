@@ -1,10 +1,12 @@
-//! Whole packs from dry to joint equilibrium on all cores: time, and the most memory held.
+//! Whole packs on all cores: time to pack them dry, time from dry to joint equilibrium, and
+//! the most memory held.
 //!
 //! `cargo bench -p bedswell-sim --bench march [-- NAME…]`, on a machine that does nothing else.
 
 #![allow(clippy::print_stdout, reason = "a program that prints a table")]
 
-use bedswell_sim::{BeadAmount, Scene, read_scene, run_pack};
+use bedswell_sim::{BeadAmount, Observer, Scene, State, Step, read_scene, run_pack};
+use std::ops::ControlFlow;
 use std::path::Path;
 use std::time::Instant;
 
@@ -18,14 +20,18 @@ const CASES: [(&str, usize, usize, usize); 4] = [
 
 fn main() {
     let chosen: Vec<String> = std::env::args().skip(1).filter(|name| !name.starts_with("--")).collect();
-    println!("{:<20} {:>7} {:>6} {:>7} {:>8} {:>8}  end", "case", "grains", "beads", "across", "s", "MiB");
+    println!(
+        "{:<20} {:>7} {:>6} {:>7} {:>7} {:>8} {:>8}  end",
+        "case", "grains", "beads", "across", "pack s", "swell s", "MiB"
+    );
     for (name, grains, beads, across) in CASES {
         if !chosen.is_empty() && !chosen.iter().any(|chosen| chosen == name) {
             continue;
         }
         let scene = scene(grains, beads, across);
         let started = Instant::now();
-        let end = match run_pack(&scene, 0, &mut ()) {
+        let mut packed = Packed(None);
+        let end = match run_pack(&scene, 0, &mut packed) {
             Ok(outcome) => format!(
                 "uptake {:.1} g/g, grains {:.1e}, gel {:.1e}, swallowed {:.1e}",
                 outcome.beads.iter().map(|bead| bead.uptake_g_per_g).sum::<f64>() / beads as f64,
@@ -35,9 +41,30 @@ fn main() {
             ),
             Err(error) => error.to_string(),
         };
-        let seconds = started.elapsed().as_secs_f64();
+        let packed = packed.0.unwrap_or_else(Instant::now);
+        let [packing, swelling] = [packed - started, packed.elapsed()].map(|time| time.as_secs_f64());
         let memory = most_memory().map_or("-".to_owned(), |mebibytes| format!("{mebibytes:.0}"));
-        println!("{name:<20} {grains:>7} {beads:>6} {across:>7} {seconds:>8.1} {memory:>8}  {end}");
+        println!(
+            "{name:<20} {grains:>7} {beads:>6} {across:>7} {packing:>7.1} {swelling:>8.1} {memory:>8}  {end}"
+        );
+    }
+}
+
+/// When the bed was packed dry.
+struct Packed(Option<Instant>);
+
+impl Observer for Packed {
+    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
+        ControlFlow::Continue(())
+    }
+
+    fn looks(&self) -> bool {
+        self.0.is_none()
+    }
+
+    fn look(&mut self, _: State) -> ControlFlow<()> {
+        self.0.get_or_insert_with(Instant::now);
+        ControlFlow::Continue(())
     }
 }
 

@@ -173,7 +173,7 @@ fn among_held_spheres_tension_goes_with_the_modulus() {
 #[test]
 fn the_fitted_tables_take_the_place_of_those_of_a_scene() {
     let outcomes = read("geometry,grade,torn\nbench-array.toml,two\u{b7}ply,yes\n").unwrap();
-    let strength = Strength { volume: outcomes.grades[0].strength.volume, scale: 432.1, modulus: 7.0 };
+    let strength = Strength { scale: 432.1, modulus: 7.0, ..outcomes.grades[0].strength };
     let cases: Vec<LoadCase> = [(350.0, 9), (420.0, 28), (500.0, 39)]
         .map(|(tension, torn)| LoadCase {
             name: String::new(),
@@ -203,7 +203,7 @@ fn the_fitted_tables_take_the_place_of_those_of_a_scene() {
     std::fs::write(folder.path().join(bedswell_sim::SPHERES_FILE), scene.spheres_csv().unwrap()).unwrap();
     let read_back = read_scene(&path).unwrap();
     assert_eq!((read_back.gel, read_back.strength.volume), (scene.gel, strength.volume));
-    let fitted = fit.strength(strength.volume).unwrap();
+    let fitted = fit.strength(&strength).unwrap();
     approx::assert_relative_eq!(read_back.strength.scale, fitted.scale, max_relative = 1e-5);
     approx::assert_relative_eq!(read_back.strength.modulus, fitted.modulus, max_relative = 1e-5);
     assert!(
@@ -214,4 +214,23 @@ fn the_fitted_tables_take_the_place_of_those_of_a_scene() {
     let none_torn = [LoadCase { torn: 0, ..cases[0].clone() }];
     let bound = fit_strength(&none_torn, &strength).unwrap();
     assert_eq!(gel_table(&outcomes.grades[0], &bound, "outcomes.csv"), None);
+}
+
+/// Tension counts as one over a length, so that the weakest link does not hang on a voxel.
+#[test]
+fn what_strength_is_measured_against_hardly_depends_on_the_voxels() {
+    let largest = |across: usize, length: Option<f64>| {
+        let file = Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes/bench-array-hard.toml");
+        let mut scene = read_scene(&file).unwrap_or_else(|error| panic!("{error}"));
+        scene.beads.across = across;
+        scene.strength.length = length;
+        let outcome = run_pack(&scene, 0, &mut ()).unwrap_or_else(|error| panic!("{error}"));
+        outcome.tensions[0].tensions.iter().copied().fold(f64::NEG_INFINITY, f64::max)
+    };
+    let [coarse, middle, fine] = [12, 16, 24].map(|across| largest(across, None));
+    assert!((coarse / middle - 1.0).abs() < 0.05, "{coarse} and {middle} Pa");
+    assert!((fine / middle - 1.0).abs() < 0.05, "{fine} and {middle} Pa");
+    // Single voxels differ by much more.
+    let [coarse, middle] = [12, 16].map(|across| largest(across, Some(1e-6)));
+    assert!((coarse / middle - 1.0).abs() > 0.3, "{coarse} and {middle} Pa");
 }

@@ -98,7 +98,7 @@ fn load_cases(outcomes: &BenchOutcomes, grade: &BenchGrade, fields: &[TensionFie
 }
 
 fn as_json(Fitted { grade, cases, fit }: &Fitted<'_>) -> serde_json::Value {
-    let law = fit.strength(grade.strength.volume);
+    let law = fit.strength(&grade.strength);
     let array = |case: &LoadCase| {
         serde_json::json!({
             "geometry": case.name,
@@ -163,7 +163,7 @@ fn in_words(Fitted { grade, cases, fit }: &Fitted<'_>) -> String {
     };
     text +=
         &format!("  tension           at {} voxels across; strength holds for beads as fine\n", grade.across);
-    if let Some(law) = fit.strength(grade.strength.volume) {
+    if let Some(law) = fit.strength(&grade.strength) {
         text += &in_arrays(cases, &law);
     }
     if let Some(p_value) = agreement.p_value {

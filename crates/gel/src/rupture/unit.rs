@@ -5,10 +5,10 @@
 //! whether one gives way, its own stress which.
 
 use super::Event;
-use super::average::{Field, Neighbourhood, Tension};
+use super::average::{Field, Tension};
 use super::toughness::Criterion;
 use crate::bead::Bead;
-use crate::lattice::{Face, Lattice};
+use crate::lattice::{Face, Lattice, Neighbourhood};
 use bedswell_geometry::Vector;
 
 /// Bonds give way whose faces lie within 47 degrees or so of the plane that tension pulls

@@ -121,7 +121,7 @@ pub fn fit_strength(cases: &[LoadCase], assumed: &Strength) -> Result<StrengthFi
             StrengthFit::AtMost { scale, assumed_modulus }
         });
     }
-    let law = |scale: f64, modulus: f64| Strength { scale, modulus, volume: assumed.volume };
+    let law = |scale: f64, modulus: f64| Strength { scale, modulus, ..*assumed };
     let (ln_modulus, ln_scale, best) = likelihood.best();
     let floor = best - DROP;
     let modulus = LN_MODULI.map(|end| {
@@ -144,15 +144,15 @@ pub fn fit_strength(cases: &[LoadCase], assumed: &Strength) -> Result<StrengthFi
 }
 
 impl StrengthFit {
-    /// The strength that was found, at this reference volume (m³); none where outcomes give no
-    /// more than a bound.
-    pub fn strength(&self, volume: f64) -> Option<Strength> {
+    /// The strength that was found, at the reference volume and length of an assumed one; none
+    /// where outcomes give no more than a bound.
+    pub fn strength(&self, assumed: &Strength) -> Option<Strength> {
         match *self {
             Self::Both { scale, modulus, .. } => {
-                Some(Strength { scale: scale.value, modulus: modulus.value, volume })
+                Some(Strength { scale: scale.value, modulus: modulus.value, ..*assumed })
             }
             Self::Scale { scale, assumed_modulus, .. } => {
-                Some(Strength { scale: scale.value, modulus: assumed_modulus, volume })
+                Some(Strength { scale: scale.value, modulus: assumed_modulus, ..*assumed })
             }
             Self::AtLeast { .. } | Self::AtMost { .. } => None,
         }

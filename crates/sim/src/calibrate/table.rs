@@ -8,7 +8,7 @@ use crate::statistics::Measure;
 /// scene, under a comment that says where they come from; none where the outcomes give no more
 /// than a bound. `source` names the table of outcomes.
 pub fn gel_table(grade: &BenchGrade, fit: &StrengthFit, source: &str) -> Option<String> {
-    let strength = fit.strength(grade.strength.volume)?;
+    let strength = fit.strength(&grade.strength)?;
     let mut comment = format!(
         "Grade {}: strength from {source}, {} of {} beads torn, by their tension at {} voxels across.",
         grade.name,

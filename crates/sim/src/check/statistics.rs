@@ -89,5 +89,5 @@ pub(super) const LINES: &[fn() -> CheckLine] = &[
 ];
 
 fn of_modulus(modulus: f64) -> Strength {
-    Strength { scale: 1.0, modulus, volume: 1.0 }
+    Strength { scale: 1.0, modulus, volume: 1.0, length: None }
 }

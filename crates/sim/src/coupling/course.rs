@@ -1,4 +1,4 @@
-use crate::{BeadTiming, CoursePoint, PackOutcome, Timing};
+use crate::{BeadTiming, CoursePoint, PackOutcome, Scene, Timing};
 use bedswell_gel::{Kinetics, StressField, uptake_of_volume_ratio};
 use rayon::prelude::*;
 use serde::{Deserialize, Serialize};
@@ -8,7 +8,8 @@ use serde::{Deserialize, Serialize};
 pub(super) struct Course {
     /// All beads of a step after another, in order.
     points: Vec<CoursePoint>,
-    /// Largest tension (Pa) that each voxel of each bead has borne.
+    /// Largest tension (Pa), as strength is measured against, that each voxel of each bead has
+    /// borne.
     pub(super) peaks: Vec<Vec<f64>>,
 }
 
@@ -24,17 +25,17 @@ impl Course {
     }
 
     /// Notes where the beads are after a step.
-    pub(super) fn note(&mut self, beads: &[Kinetics], dry_density: f64) {
+    pub(super) fn note(&mut self, beads: &[Kinetics], scene: &Scene) {
         let fields: Vec<StressField> = beads.par_iter().map(Kinetics::stress).collect();
         for (index, ((bead, field), peaks)) in beads.iter().zip(&fields).zip(&mut self.peaks).enumerate() {
-            for (peak, principal) in peaks.iter_mut().zip(&field.principal) {
-                *peak = peak.max(principal[0]);
-            }
+            let lattice = bead.bead().lattice();
+            let tensions = field.tensions_over(lattice, scene.strength_reach(lattice.across()));
+            peaks.iter_mut().zip(&tensions).for_each(|(peak, tension)| *peak = peak.max(*tension));
             let ratio = 1.0 + bead.water() / bead.bead().dry_volume();
             self.points.push(CoursePoint {
                 time_s: bead.time(),
                 bead: index,
-                uptake_g_per_g: uptake_of_volume_ratio(ratio, dry_density),
+                uptake_g_per_g: uptake_of_volume_ratio(ratio, scene.gel.dry_density),
                 tension_q99_pa: field.tension_quantile(0.99),
                 largest_tension_pa: field.largest_tension().0,
             });

@@ -153,7 +153,7 @@ impl<'a> InTime<'a> {
         while self.now() < until {
             self.step(until)?;
             let Self { course, kinetics, .. } = self;
-            course.note(kinetics, watch.scene.gel.dry_density);
+            course.note(kinetics, watch.scene);
         }
         Ok(())
     }

@@ -35,7 +35,7 @@ impl Watch<'_> {
 
     /// A bead with its stress.
     pub(super) fn see<'a>(&self, bead: &'a Relaxation, field: StressField) -> Seen<'a> {
-        Seen { bead, tension: self.tension(&field), field }
+        Seen { bead, tension: self.tension(bead, &field), field }
     }
 
     /// The state after an increment, of gel with a given free stretch.
@@ -104,12 +104,14 @@ impl Watch<'_> {
         seen.tension.tear_probability(&self.scene.strength)
     }
 
-    fn tension(&self, field: &StressField) -> TensionField {
+    fn tension(&self, bead: &Relaxation, field: &StressField) -> TensionField {
+        let lattice = bead.bead().lattice();
+        let reach = self.scene.strength_reach(lattice.across());
         // Volumes are those of the free-swollen gel in the scene's water, also on the way.
         let scale = self.gel.free_volume_ratio() / field.reference_volume_ratio;
         TensionField {
             volumes: field.free_volume.iter().map(|v| v * scale).collect(),
-            tensions: field.principal.iter().map(|p| p[0]).collect(),
+            tensions: field.tensions_over(lattice, reach),
         }
     }
 }

@@ -5,6 +5,8 @@ use std::fmt;
 
 /// Mean grain diameters across a pot below which its wall shows in the porosity.
 const WIDE_POT: f64 = 10.0;
+/// Voxels that a length must span for the tension over it to be resolved.
+const LEAST_VOXELS: f64 = 2.0;
 
 /// What a user should know about a scene that can be run all the same.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -17,6 +19,13 @@ pub enum Concern {
         asked: usize,
         /// Voxels that all beads may have.
         budget: usize,
+    },
+    /// Tension counts as one over less than voxels resolve.
+    CoarseStrength {
+        /// Voxels over which it does.
+        voxels: f64,
+        /// Voxels across a bead that would do.
+        across: usize,
     },
     /// Free-swollen, the beads would more than fill the pores.
     PoresFilled {
@@ -56,6 +65,11 @@ impl Scene {
         if used < asked {
             concerns.push(Concern::CoarserBeads { used, asked, budget: self.beads.voxel_budget });
         }
+        let voxels = self.strength_reach(used);
+        if voxels < LEAST_VOXELS {
+            let across = (used as f64 * LEAST_VOXELS / voxels).ceil() as usize;
+            concerns.push(Concern::CoarseStrength { voxels, across });
+        }
         if estimate.grains == 0 {
             return concerns;
         }
@@ -83,6 +97,12 @@ impl fmt::Display for Concern {
             Self::CoarserBeads { used, asked, budget } => write!(
                 f,
                 "beads are {used} voxels across, not {asked} as asked for, to stay within beads.voxel_budget = {budget}"
+            ),
+            Self::CoarseStrength { voxels, across } => write!(
+                f,
+                "strength.length spans {} voxels where {LEAST_VOXELS} are needed: single voxels rule the tear \
+                 probability; take beads.across = {across} or more, or a longer length",
+                digits(voxels)
             ),
             Self::PoresFilled { times, held: false } => write!(
                 f,

@@ -24,6 +24,9 @@ const STEPS_PER_SPAN: f64 = 120.0;
 /// Time that one voxel and one grain take in one step in time, with the rest after it (s).
 const SECONDS_PER_VOXEL_IN_TIME: f64 = 4.5e-4;
 const SECONDS_PER_GRAIN_IN_TIME: f64 = 1.2e-4;
+/// Length over which tension counts as one, over a bead's free-swollen diameter: what 12
+/// voxels across resolve.
+const USUAL_STRENGTH_LENGTH: f64 = 1.0 / 6.0;
 /// Memory of the program itself (bytes).
 const BYTES_AT_LEAST: f64 = 1e7;
 
@@ -96,6 +99,13 @@ impl Scene {
                 beads_for_dose(*dose, beads.dry_diameter, gel.dry_density, &grains, soil.density)
             }
         }
+    }
+
+    /// Voxel edges over which tension counts as one in beads of so many voxels across.
+    pub(crate) fn strength_reach(&self, across: usize) -> f64 {
+        let diameter = self.beads.dry_diameter * self.swelling_gel().free_stretch();
+        let share = self.strength.length.map_or(USUAL_STRENGTH_LENGTH, |length| length / diameter);
+        share * across as f64
     }
 
     /// The gel in the scene's water, under this pressure (Pa) besides.

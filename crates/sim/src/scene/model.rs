@@ -178,6 +178,10 @@ pub struct Strength {
     pub modulus: f64,
     /// Reference volume (m³) of swollen gel.
     pub volume: f64,
+    /// Length (m) of free-swollen gel over which tension counts as one. By default a sixth
+    /// of a bead's free-swollen diameter.
+    #[serde(default)]
+    pub length: Option<f64>,
 }
 
 /// How the march from dry to equilibrium is taken.

@@ -139,11 +139,12 @@ fn read_water(document: &Node) -> Result<Water, SceneError> {
 }
 
 fn read_strength(document: &Node) -> Result<Strength, SceneError> {
-    let section = Section::new(document, "strength", &["scale", "modulus", "volume"])?;
+    let section = Section::new(document, "strength", &["scale", "modulus", "volume", "length"])?;
     Ok(Strength {
         scale: section.need("scale", "scale = \"8 kPa\"")?.positive(Kind::Stress)?,
         modulus: section.need("modulus", "modulus = 8")?.number(1.0..=100.0)?,
         volume: section.need("volume", "volume = \"1 mm3\"")?.positive(Kind::Volume)?,
+        length: section.get("length").map(|length| length.positive(Kind::Length)).transpose()?,
     })
 }
 

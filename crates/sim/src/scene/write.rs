@@ -162,6 +162,9 @@ impl Writer {
         self.line("scale", with_unit(strength.scale, Kind::Stress));
         self.line("modulus", number(strength.modulus));
         self.line("volume", with_unit(strength.volume, Kind::Volume));
+        if let Some(length) = strength.length {
+            self.line("length", with_unit(length, Kind::Length));
+        }
     }
 
     fn table(&mut self, name: &str) {

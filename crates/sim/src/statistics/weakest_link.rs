@@ -36,7 +36,7 @@ mod tests {
     use super::*;
 
     fn of_modulus(modulus: f64) -> Strength {
-        Strength { scale: 1.0, modulus, volume: 1.0 }
+        Strength { scale: 1.0, modulus, volume: 1.0, length: None }
     }
 
     /// Weibull modulus, mean/σ₀, median/σ₀, strength at 8 and at 1000 times the volume; computed

@@ -3,7 +3,7 @@ use bedswell_geometry::stream;
 use rand::RngExt;
 
 const VOLUME: f64 = 1e-9;
-const ASSUMED: Strength = Strength { scale: 1.0, modulus: 8.0, volume: VOLUME };
+const ASSUMED: Strength = Strength { scale: 1.0, modulus: 8.0, volume: VOLUME, length: None };
 
 fn case(tension: f64, torn: u64, beads: u64) -> LoadCase {
     LoadCase { name: format!("{tension} Pa"), field: TensionField::uniform(VOLUME, tension), torn, beads }
@@ -39,7 +39,7 @@ fn estimates_and_profile_limits_agree_with_scipy() {
 #[test]
 fn limits_hold_the_true_law_as_often_as_they_should() {
     const BENCHES: usize = 300;
-    let truth = Strength { scale: 500.0, modulus: 6.0, volume: VOLUME };
+    let truth = Strength { scale: 500.0, modulus: 6.0, volume: VOLUME, length: None };
     let mut random = stream(11, &[]);
     let (mut scales, mut moduli) = (Vec::new(), Vec::new());
     let (mut scale_held, mut modulus_held) = (0, 0);
@@ -93,7 +93,7 @@ fn whole_beads_bound_the_scale_from_below() {
     else {
         panic!("no bead tore");
     };
-    let strength = Strength { scale, modulus: assumed_modulus, volume: VOLUME };
+    let strength = Strength { scale, modulus: assumed_modulus, volume: VOLUME, length: None };
     let probability = TensionField::uniform(VOLUME, 400.0).tear_probability(&strength);
     approx::assert_abs_diff_eq!(probability, 0.139_108, epsilon = 0.51e-6);
 }
@@ -104,7 +104,7 @@ fn torn_beads_bound_the_scale_from_above() {
     let StrengthFit::AtMost { scale, assumed_modulus } = fit_strength(&cases, &ASSUMED).unwrap() else {
         panic!("every bead tore");
     };
-    let strength = Strength { scale, modulus: assumed_modulus, volume: VOLUME };
+    let strength = Strength { scale, modulus: assumed_modulus, volume: VOLUME, length: None };
     let probability = |case: &LoadCase| case.field.tear_probability(&strength).powi(case.beads as i32);
     approx::assert_abs_diff_eq!(cases.iter().map(probability).product::<f64>(), 0.05, epsilon = 1e-9);
 }
