@@ -31,6 +31,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         tear_probability: random.random(),
         torn: random.random_bool(0.3),
         timing: None,
+        tears: None,
     };
     Ok(PackOutcome {
         pack,
@@ -56,6 +57,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         positions: Vec::new(),
         tensions: Vec::new(),
         timing: None,
+        tears: None,
     })
 }
 

@@ -1,3 +1,5 @@
+use super::cycles::cycles;
+use super::tearing::Tearing;
 use crate::{BeadTiming, CoursePoint, PackOutcome, Timing};
 use bedswell_gel::{Kinetics, StressField, uptake_of_volume_ratio};
 use rayon::prelude::*;
@@ -24,7 +26,7 @@ impl Course {
     }
 
     /// Notes where the beads are after a step.
-    pub(super) fn note(&mut self, beads: &[Kinetics], dry_density: f64) {
+    pub(super) fn note(&mut self, beads: &[Kinetics], dry_density: f64, tearing: Option<&Tearing>) {
         let fields: Vec<StressField> = beads.par_iter().map(Kinetics::stress).collect();
         for (index, ((bead, field), peaks)) in beads.iter().zip(&fields).zip(&mut self.peaks).enumerate() {
             for (peak, principal) in peaks.iter_mut().zip(&field.principal) {
@@ -37,6 +39,7 @@ impl Course {
                 uptake_g_per_g: uptake_of_volume_ratio(ratio, dry_density),
                 tension_q99_pa: field.tension_quantile(0.99),
                 largest_tension_pa: field.largest_tension().0,
+                cracks: tearing.map(|tearing| tearing.cracks_of(index, bead.bead())),
             });
         }
     }
@@ -45,6 +48,9 @@ impl Course {
     pub(super) fn tell(self, mut outcome: PackOutcome, times: &[f64]) -> PackOutcome {
         for (index, bead) in outcome.beads.iter_mut().enumerate() {
             bead.timing = Some(self.timing_of(index));
+        }
+        if let Some(tears) = &mut outcome.tears {
+            tears.cycles = cycles(&self.points, outcome.beads.len());
         }
         outcome.timing = Some(Timing { seconds: times.to_vec(), course: self.points });
         outcome
