@@ -41,7 +41,8 @@ pub use statistics::{
 };
 pub use tears::{BeadTears, Cracks, CyclePoint, FirstRupture, Moment, PackTears, Region, RuptureEvent};
 pub use study::{
-    Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,
-    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, TIMES, Variation,
+    Effects, Factor, FactorEffect, FactorSurvival, FailedPack, GroupComparison, Interaction, JudgedBin, Level, LevelEffect, LevelSummary, PackRunner,
+    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, StudySurvival, SurvivalGroup, TIMES,
+    Variation, WeakestLinkAgreement,
     combination_in_words, read_study, run_study,
 };

@@ -107,8 +107,9 @@ impl<'a> InTime<'a> {
             held: scene.beads.held,
             ..Settings::default()
         };
-        // Where all come to rest after a step, that corrects what it leaves.
-        let settings = match is_bench(scene, bed) {
+        // Where all come to rest after a step, that corrects what it leaves. What cracks make
+        // uneven would drift before it touches anything.
+        let settings = match is_bench(scene, bed) && scene.toughness.is_none() {
             true => alone,
             false => Settings { residual: RESIDUAL, anchored: true, ..alone },
         };

@@ -25,6 +25,8 @@ const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, step
 pub(super) const BETWEEN_STEPS: Target = Target { steps: 80, ..ON_THE_WAY };
 /// The same where a bead finds no way to go on from such a state.
 pub(super) const NEARER: Target = Target { steps: 1000, ..ON_THE_WAY };
+/// The same between ruptures: long enough for what a crack sets free to go through the bead.
+pub(super) const AFTER_RUPTURE: Target = Target { steps: 300, ..ON_THE_WAY };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
 /// The same of an end state of beads alone. Without grains between them nothing but smooth
@@ -180,7 +182,7 @@ impl March {
         if self.hold_still(gel, 1.0, last) {
             return Ok(());
         }
-        let target = if last { self.at_the_end() } else { NEARER };
+        let target = if last { self.at_the_end() } else { AFTER_RUPTURE };
         self.rest(gel, target)
     }
 

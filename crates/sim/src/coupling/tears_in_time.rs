@@ -1,7 +1,7 @@
 //! Ruptures between steps in time, with the water where it is.
 
 use super::in_time::InTime;
-use super::march::NEARER;
+use super::march::AFTER_RUPTURE;
 use super::measure::Watch;
 use super::tearing::Tearing;
 use bedswell_gel::Kinetics;
@@ -34,7 +34,7 @@ impl InTime<'_> {
 
     fn rest_nearer(&mut self) -> Result<(), String> {
         let stage = self.stage();
-        self.march.rest(&stage, NEARER)?;
+        self.march.rest(&stage, AFTER_RUPTURE)?;
         self.take_over(&stage);
         Ok(())
     }
