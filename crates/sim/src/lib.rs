@@ -39,10 +39,10 @@ pub use statistics::{
     bootstrap_mean, clopper_pearson, clustered_fraction, kaplan_meier, log_rank, mean_strength,
     strength_ratio, tear_probability, wilson,
 };
-pub use tears::{BeadTears, Cracks, CyclePoint, FirstRupture, Moment, PackTears, Region, RuptureEvent};
 pub use study::{
-    Effects, Factor, FactorEffect, FactorSurvival, FailedPack, GroupComparison, Interaction, JudgedBin, Level, LevelEffect, LevelSummary, PackRunner,
-    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, StudySurvival, SurvivalGroup, TIMES,
-    Variation, WeakestLinkAgreement,
-    combination_in_words, read_study, run_study,
+    Effects, Factor, FactorEffect, FactorSurvival, FailedPack, GroupComparison, Interaction, JudgedBin,
+    Level, LevelEffect, LevelSummary, PackRunner, RESPONSES, Response, Study, StudyObserver, StudyOptions,
+    StudySummary, StudySurvival, SurvivalGroup, TIMES, Variation, WeakestLinkAgreement, combination_in_words,
+    read_study, run_study,
 };
+pub use tears::{BeadTears, Cracks, CyclePoint, FirstRupture, Moment, PackTears, Region, RuptureEvent};

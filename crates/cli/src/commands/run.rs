@@ -5,8 +5,8 @@ use crate::progress::Progress;
 use anyhow::Context;
 use bedswell_sim::figures::{digits, duration, force, length, probability, stress};
 use bedswell_sim::{
-    BeadTears, Moment, Region, RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack,
-    write_run_folder,
+    BeadTears, Moment, Region, RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene,
+    remove_run_files, run_pack, write_run_folder,
 };
 use std::path::Path;
 

@@ -67,7 +67,8 @@ impl Locator {
         let number = self.voxel_at[&low];
         let corners = self.beside_cracks.get(&number).copied();
         let corners = corners.unwrap_or_else(|| corner_places(&low).map(|corner| self.node_at[&corner]));
-        let local: [f64; 3] = std::array::from_fn(|axis| place[axis] + self.half[axis] - f64::from(low[axis]));
+        let local: [f64; 3] =
+            std::array::from_fn(|axis| place[axis] + self.half[axis] - f64::from(low[axis]));
         let weight = |corner: usize| {
             let along = |axis: usize| if corner >> axis & 1 == 1 { local[axis] } else { 1.0 - local[axis] };
             along(0) * along(1) * along(2)

@@ -28,12 +28,7 @@ pub fn fragments(bead: &Bead) -> Vec<Fragment> {
         let total: f64 = body.iter().map(volume).sum();
         let moment: Vector = body.iter().map(|v| bead.voxel_centre(*v) * volume(v)).sum();
         let dry: f64 = body.iter().map(|&v| lattice.filled(v)).sum::<f64>() * voxel;
-        Fragment {
-            voxels: body.len(),
-            share: dry / bead.dry_volume(),
-            volume: total,
-            place: moment / total,
-        }
+        Fragment { voxels: body.len(), share: dry / bead.dry_volume(), volume: total, place: moment / total }
     };
     let mut fragments: Vec<Fragment> = lattice.bodies().iter().map(fragment).collect();
     fragments.sort_by(|a, b| b.share.total_cmp(&a.share));

@@ -36,8 +36,7 @@ impl March {
     }
 
     fn is_overloaded(&self, gel: &Gel, tearing: &Tearing) -> bool {
-        let overloaded =
-            |(bead, criterion): (&Relaxation, &Criterion)| bead.is_overloaded(gel, criterion);
+        let overloaded = |(bead, criterion): (&Relaxation, &Criterion)| bead.is_overloaded(gel, criterion);
         self.bodies.beads.iter().zip(&tearing.criteria).any(overloaded)
     }
 

@@ -151,12 +151,7 @@ impl<'a> InTime<'a> {
     }
 
     /// Goes on to the end of an increment.
-    pub(super) fn go_on(
-        &mut self,
-        watch: &Watch<'_>,
-        times: &[f64],
-        increment: usize,
-    ) -> Result<(), String> {
+    pub(super) fn go_on(&mut self, watch: &Watch<'_>, times: &[f64], increment: usize) -> Result<(), String> {
         let until = times[increment - 1];
         while self.now() < until {
             let before = self.if_whole();
@@ -270,7 +265,12 @@ impl<'a> InTime<'a> {
     }
 
     /// Lets beads follow their leads and everything come to rest.
-    pub(super) fn rest_with(&mut self, beads: Vec<Relaxation>, leads: &[Lead], moves: usize) -> Result<(), String> {
+    pub(super) fn rest_with(
+        &mut self,
+        beads: Vec<Relaxation>,
+        leads: &[Lead],
+        moves: usize,
+    ) -> Result<(), String> {
         let stage = self.stage();
         self.march.bodies.renew(beads);
         self.march.weigh();

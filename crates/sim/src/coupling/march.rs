@@ -62,8 +62,8 @@ pub(crate) fn march(
     let mut march = March::new(scene, &bed, gel);
     let ramp = Ramp { gel, start: bed.stretch.min(gel.free_stretch()), count: scene.march.increments };
     let beads = march.bodies.beads.iter().map(Relaxation::bead);
-    let mut tearing = Tearing::new(scene, gel, number, beads)
-        .map_err(|reason| RunError::March { increment: 1, reason })?;
+    let mut tearing =
+        Tearing::new(scene, gel, number, beads).map_err(|reason| RunError::March { increment: 1, reason })?;
     let mut history = Vec::with_capacity(ramp.count);
     for increment in 1..=ramp.count {
         let at = |reason| RunError::March { increment, reason };

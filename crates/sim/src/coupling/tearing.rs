@@ -2,7 +2,9 @@
 
 use super::bodies::Bodies;
 use super::touching::nearest_skin;
-use crate::{BeadTears, Cracks, FirstRupture, Moment, PackOutcome, PackTears, RuptureEvent, Scene, Toughness};
+use crate::{
+    BeadTears, Cracks, FirstRupture, Moment, PackOutcome, PackTears, RuptureEvent, Scene, Toughness,
+};
 use bedswell_gel::{Bead, Criterion, Event, Gel, fragments};
 use bedswell_geometry::{Vector, stream};
 use rand::RngExt;
@@ -181,7 +183,8 @@ fn nearest_contact(bodies: &Bodies, index: usize, place: &Vector) -> Option<(f64
     let (bead, around) = (&bodies.beads[index], &bodies.around[index]);
     let centre = bead.bead().centre();
     let pressed = around.obstacles.iter().zip(bead.loads()).filter(|(_, load)| load.stiffness > 0.0);
-    let things = pressed.map(|(obstacle, _)| (obstacle.distance(place).max(0.0), obstacle.direction(&centre)));
+    let things =
+        pressed.map(|(obstacle, _)| (obstacle.distance(place).max(0.0), obstacle.direction(&centre)));
     let beads = bodies.pairs.iter().filter(|pair| pair.force.norm() > 0.0);
     let beads = beads.filter_map(|pair| {
         let (other, shift) = pair.seen_from(index)?;

@@ -1,8 +1,8 @@
 use super::atomic::write_text;
 use super::checkpoint::CHECKPOINT_FILE;
 use super::states::{STATES_FOLDER, read_state, state_path};
-use super::tear_tables::{cycles_table, events_table};
 use super::tables::{beads_table, course_table, grains_table, history_table};
+use super::tear_tables::{cycles_table, events_table};
 use super::{FolderError, fingerprint};
 use crate::{BeadOutcome, ForceOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
 use serde::{Deserialize, Serialize};

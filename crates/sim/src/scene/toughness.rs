@@ -52,7 +52,9 @@ pub(super) fn read_toughness(document: &Node) -> Result<Option<Toughness>, Scene
     let length = section.get("length").map(|entry| entry.positive(Kind::Length)).transpose()?;
     let scatter = match (section.get("scatter"), section.get("modulus")) {
         (Some(_), Some(modulus)) => {
-            return Err(modulus.refuse("the scatter of strengths is given twice; keep one of scatter and modulus"));
+            return Err(
+                modulus.refuse("the scatter of strengths is given twice; keep one of scatter and modulus")
+            );
         }
         (None, Some(modulus)) => bedswell_gel::Toughness::scatter_of(modulus.number(MODULI)?),
         (Some(scatter), None) => scatter.number(0.0..=bedswell_gel::Toughness::MOST_SCATTER)?,

@@ -110,8 +110,7 @@ pub fn run_study(
         .write(folder, "outcomes", options.csv)
         .and_then(|()| levels_table(study, &summary.levels).write(folder, "levels", options.csv))
         .and_then(|()| {
-            survival_table(study, &plan)
-                .map_or(Ok(()), |table| table.write(folder, "survival", options.csv))
+            survival_table(study, &plan).map_or(Ok(()), |table| table.write(folder, "survival", options.csv))
         })
         .and_then(|()| {
             let judged = summary.agreement.as_ref().map(agreement_table);

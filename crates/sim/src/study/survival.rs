@@ -198,9 +198,8 @@ fn measured_in(in_time: bool) -> &'static str {
 pub(super) fn survival_table(study: &Study, plan: &Plan) -> Option<Table> {
     let in_time = is_in_time(study);
     let groups = groups(study, plan);
-    let curves: Vec<(&Group<'_>, SurvivalCurve)> = (groups.iter())
-        .filter_map(|group| Some((group, kaplan_meier(&group.lifetimes(in_time)?))))
-        .collect();
+    let curves: Vec<(&Group<'_>, SurvivalCurve)> =
+        (groups.iter()).filter_map(|group| Some((group, kaplan_meier(&group.lifetimes(in_time)?)))).collect();
     if curves.is_empty() {
         return None;
     }
@@ -245,9 +244,7 @@ pub(super) fn weakest_link_agreement(plan: &Plan) -> Option<WeakestLinkAgreement
     let pairs: Vec<(f64, bool)> = beads.map(|bead| (bead.tear_probability, bead.torn)).collect();
     let bins = (pairs.len() / BEADS_PER_BIN).clamp(1, MOST_BINS);
     let judged = agreement(&pairs, bins, 0).ok()?;
-    let agrees = |bin: &AgreementBin| {
-        (bin.interval.low..=bin.interval.high).contains(&bin.predicted)
-    };
+    let agrees = |bin: &AgreementBin| (bin.interval.low..=bin.interval.high).contains(&bin.predicted);
     Some(WeakestLinkAgreement {
         beads: pairs.len() as u64,
         bins: judged.bins.iter().map(|bin| JudgedBin { bin: *bin, agrees: agrees(bin) }).collect(),

@@ -1,6 +1,8 @@
 use super::figure_table::{FigureTable, Group};
 use bedswell_sim::figures::{digits, duration};
-use bedswell_sim::{FactorSurvival, Measure, StudySummary, StudySurvival, SurvivalGroup, WeakestLinkAgreement};
+use bedswell_sim::{
+    FactorSurvival, Measure, StudySummary, StudySurvival, SurvivalGroup, WeakestLinkAgreement,
+};
 
 /// What became of beads that might tear, and whether the weakest link foretold it; `None` where
 /// none might.
@@ -45,8 +47,7 @@ fn groups(survival: &StudySurvival, factor: &str, groups: &[SurvivalGroup]) -> S
         let labels = vec![group.value.clone(), format!("{} of {}", group.torn, group.beads)];
         (labels, vec![Some(fraction), half])
     };
-    let show: Box<dyn Fn(f64) -> String> =
-        if in_time { Box::new(duration) } else { Box::new(digits) };
+    let show: Box<dyn Fn(f64) -> String> = if in_time { Box::new(duration) } else { Box::new(digits) };
     let half = if in_time { "half are torn after" } else { "half are torn at a stretch of" };
     let table = FigureTable {
         labels: vec![factor.rsplit('.').next().unwrap_or_default().into(), "torn".into()],
@@ -65,11 +66,8 @@ fn agreement(judged: &WeakestLinkAgreement) -> String {
         let bin = &judged.bin;
         let range = format!("{} to {}", digits(bin.lowest), digits(bin.highest));
         let verdict = if judged.agrees { "" } else { "differ" };
-        let observed = Measure {
-            value: bin.observed,
-            low: Some(bin.interval.low),
-            high: Some(bin.interval.high),
-        };
+        let observed =
+            Measure { value: bin.observed, low: Some(bin.interval.low), high: Some(bin.interval.high) };
         let labels = vec![range, bin.count.to_string(), digits(bin.predicted), verdict.into()];
         (labels, vec![Some(observed)])
     });
@@ -84,5 +82,8 @@ fn agreement(judged: &WeakestLinkAgreement) -> String {
         let p = if p < 1e-4 { "<0.0001".into() } else { digits(p) };
         format!("\nIf the weakest link were right, as large a difference would have p {p}.")
     });
-    format!("Tear probability by the weakest link against beads that tore:\n{}{test}", table.lines().join("\n"))
+    format!(
+        "Tear probability by the weakest link against beads that tore:\n{}{test}",
+        table.lines().join("\n")
+    )
 }
