@@ -83,13 +83,39 @@ fn a_full_disk_leaves_no_half_written_run() {
 
 #[test]
 fn a_killed_history_goes_on_to_the_same_bits() {
-    let env = TestEnv::new();
-    env.write_fast_scene("fast.toml");
     let scene = std::fs::read_to_string(root().join("scenes/bench-array.toml")).unwrap();
     let scene = replace_once(&replace_once(&scene, "across = 16", "across = 8"), "= 20", "= 8");
     let time = "\n[time]\nuntil = \"2 days\"\ndiffusion = \"2e-10 m2/s\"\n\
                 [[time.outside]]\nat = \"1 days\"\npotential = \"-100 kPa\"\n";
-    env.write("scene.toml", &format!("{scene}{time}"));
+    kill_and_go_on(&format!("{scene}{time}"), "unfinished.state", &[]);
+}
+
+#[test]
+fn a_history_killed_after_ruptures_goes_on_to_the_same_bits() {
+    let scene = std::fs::read_to_string(root().join("scenes/sphere-array.toml")).unwrap();
+    let scene = [
+        ("across = 16", "across = 10"),
+        ("increments = 16", "increments = 6"),
+        ("energy = \"0.02 J/m2\"", "energy = \"9 J/m2\""),
+        ("length = \"0.7 mm\"", "length = \"1.1 mm\""),
+        ("scatter = 0.3", "scatter = 0.1"),
+    ]
+    .iter()
+    .fold(scene, |scene, (from, to)| replace_once(&scene, from, to));
+    let time = "\n[time]\nuntil = \"6 h\"\ndiffusion = \"5e-10 m2/s\"\nstep_error = 0.1\n\
+                [[time.outside]]\nat = \"3 h\"\npotential = \"-20 kPa\"\n";
+    // The first increment is past the first rupture.
+    let env = kill_and_go_on(&format!("{scene}{time}"), "states/0001.state", &["events.csv", "cycles.csv"]);
+    let first = &env.json("whole/summary.json")["beads"][0]["tears"]["first"]["at"]["increment"];
+    assert_eq!(first, 1, "it tears in the first increment");
+}
+
+/// Runs a scene as a whole and killed, in another folder, once a file is there; the results
+/// must be the same.
+fn kill_and_go_on(scene: &str, once: &str, more: &[&str]) -> TestEnv {
+    let env = TestEnv::new();
+    env.write_fast_scene("fast.toml");
+    env.write("scene.toml", scene);
     env.succeed(&["run", "scene.toml", "--out", "whole", "--csv"]);
     let mut child = env
         .command(&["run", "scene.toml", "--out", "killed", "--csv"])
@@ -98,7 +124,7 @@ fn a_killed_history_goes_on_to_the_same_bits() {
         .spawn()
         .unwrap();
     let (start, kept) = (Instant::now(), env.path("killed/unfinished.state"));
-    while !kept.exists() {
+    while !kept.exists() || !env.path(&format!("killed/{once}")).exists() {
         assert!(start.elapsed() < Duration::from_secs(300), "nothing was kept");
         std::thread::sleep(Duration::from_millis(2));
     }
@@ -107,11 +133,13 @@ fn a_killed_history_goes_on_to_the_same_bits() {
     assert!(!env.path("killed/summary.json").exists(), "it was done before it was killed");
     let first = std::fs::metadata(env.path("killed/states/0000.state")).unwrap().modified().unwrap();
     env.succeed(&["run", "scene.toml", "--out", "killed", "--csv"]);
-    for name in ["summary.json", "history.csv", "course.parquet", "course.csv", "beads.csv"] {
+    let names = ["summary.json", "history.csv", "course.parquet", "course.csv", "beads.csv"];
+    for name in names.iter().chain(more) {
         assert!(env.read(&format!("whole/{name}")) == env.read(&format!("killed/{name}")), "{name} differs");
     }
     // It went on instead of starting anew.
     let again = std::fs::metadata(env.path("killed/states/0000.state")).unwrap().modified().unwrap();
     assert_eq!(first, again);
     assert!(!kept.exists(), "nothing is left to go on from");
+    env
 }

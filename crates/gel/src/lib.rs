@@ -33,6 +33,7 @@ pub use obstacle::Obstacle;
 pub use relaxation::{Lead, Load, Relaxation};
 pub use rupture::{
     Criterion, Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError,
+    fragments,
 };
 pub use stress::{Bond, StressField, asphericity};
 pub use thermodynamics::{Gel, GelNumbers, Moduli, Surroundings, WATER_DENSITY};

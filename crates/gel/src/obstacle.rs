@@ -51,6 +51,11 @@ impl Obstacle {
         self.gap(place).distance
     }
 
+    /// Unit vector from a point outside towards the nearest point of the surface.
+    pub fn direction(&self, place: &Vector) -> Vector {
+        -self.gap(place).normal
+    }
+
     /// How far the surface has moved (m) from another place of the same obstacle.
     pub(crate) fn way(&self, other: &Obstacle) -> f64 {
         match (self, other) {

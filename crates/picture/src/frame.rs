@@ -85,8 +85,15 @@ impl Frame {
             open: before.open,
             periodic: before.periodic,
         };
-        frame.beads = (before.beads.iter().zip(&after.beads).zip(&nearest.beads))
-            .filter_map(|((one, other), near)| BeadView::between(run, one, other, near, share))
+        frame.beads = (0..before.beads.len().min(after.beads.len()))
+            .filter_map(|bead| {
+                // Where a bead tore in between, its nodes are others: cracks come at once.
+                let tore = before.ruptured.get(bead) != after.ruptured.get(bead);
+                let [one, other] = if tore { [nearest; 2] } else { [before, after] };
+                let model = Arc::clone(run.model(nearest, bead)?);
+                let near = &nearest.beads[bead];
+                BeadView::between(run, model, &one.beads[bead], &other.beads[bead], near, share)
+            })
             .collect();
         let middle = frame.beads.first().map_or(0.5 * cell, |bead| bead.centre());
         let single = frame.beads.len() == 1;
@@ -209,12 +216,12 @@ impl Frame {
 impl BeadView {
     fn between(
         run: &Run,
+        model: Arc<BeadModel>,
         before: &BeadState,
         after: &BeadState,
         near: &BeadState,
         share: f32,
     ) -> Option<Self> {
-        let model = Arc::clone(run.model(before.across)?);
         let fits = |bead: &BeadState| {
             bead.nodes.len() == model.lattice.node_count()
                 && bead.stress.len() == model.gel.len()

@@ -16,6 +16,7 @@ mod places;
 mod run;
 mod section;
 mod theme;
+mod torn;
 
 pub use annotate::{Words, annotate};
 pub use draw::{Scales, draw};

@@ -1,8 +1,9 @@
-use bedswell_gel::{Lattice, Locator, MaterialPoint};
+use crate::torn::{Bonded, crack_faces};
+use bedswell_gel::{Face, Lattice, Locator, MaterialPoint};
 use std::collections::HashMap;
 use std::sync::OnceLock;
 
-/// What all beads with the same number of voxels across have in common.
+/// What all beads with the same number of voxels across and the same cracks have in common.
 pub(crate) struct BeadModel {
     pub(crate) lattice: Lattice,
     /// Voxels at the low and the high side of every bond.
@@ -32,12 +33,22 @@ pub(crate) struct Grid {
 const FINEST: usize = 32;
 
 impl BeadModel {
-    pub(crate) fn new(across: usize) -> Self {
-        let lattice = Lattice::new(across);
+    pub(crate) fn new(across: usize, ruptured: &[Face]) -> Self {
+        let whole = Lattice::new(across);
+        let lattice = if ruptured.is_empty() { whole } else { whole.split(ruptured) };
         let locator = Locator::new(&lattice);
         let half = 0.5 * across as f64;
-        let (directions, triangles) = sphere((2 * across).clamp(across, FINEST.max(across)));
-        let skin = directions.iter().map(|d| locator.find(d.map(|c| c * half))).collect();
+        let (directions, mut triangles) = sphere((2 * across).clamp(across, FINEST.max(across)));
+        let mut skin: Vec<MaterialPoint> =
+            directions.iter().map(|d| locator.find(d.map(|c| c * half))).collect();
+        let bonded = Bonded::new(&lattice);
+        triangles.retain(|&[a, b, c]| {
+            let [a, b, c] = [a, b, c].map(|point| skin[point as usize].voxel);
+            bonded.hang_together(a, b) && bonded.hang_together(b, c) && bonded.hang_together(c, a)
+        });
+        let (points, faces) = crack_faces(&lattice, &locator, skin.len() as u32);
+        skin.extend(points);
+        triangles.extend(faces);
         let gel: Vec<f64> = (0..lattice.voxel_count()).map(|voxel| lattice.filled(voxel)).collect();
         let all: f64 = gel.iter().sum();
         Self {
@@ -60,6 +71,7 @@ impl BeadModel {
 impl Grid {
     fn new(lattice: &Lattice) -> Self {
         let locator = Locator::new(lattice);
+        let bonded = Bonded::new(lattice);
         let mut grid = Self::default();
         let across = lattice.across() as i32;
         let place = |[x, y, z]: [i32; 3]| [x, y, z].map(|c| 0.5 * f64::from(c - across));
@@ -83,7 +95,12 @@ impl Grid {
                         })
                     });
                     let middle = locator.find(place([x, y, z]).map(|c| c + 0.25));
-                    grid.cells.push((middle.voxel, corners));
+                    let is_whole = corners.iter().all(|&corner| {
+                        bonded.hang_together(middle.voxel, grid.points[corner as usize].voxel)
+                    });
+                    if is_whole {
+                        grid.cells.push((middle.voxel, corners));
+                    }
                 }
             }
         }

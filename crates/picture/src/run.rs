@@ -2,6 +2,7 @@ use crate::frame::Frame;
 use crate::model::BeadModel;
 use crate::palette::round_up;
 use crate::{Field, GrainShade};
+use bedswell_gel::Face;
 use bedswell_painter::Point;
 use bedswell_sim::{ReadError, RunFolder, RunSummary, Scene, State, Step, read_run_folder};
 use std::collections::BTreeMap;
@@ -20,7 +21,8 @@ pub struct Run {
     /// What a user should know about it.
     pub notes: Vec<String>,
     pub(crate) states: Vec<Arc<State>>,
-    models: BTreeMap<u16, Arc<BeadModel>>,
+    /// By voxels across and ruptured bonds.
+    models: BTreeMap<(u16, Vec<Face>), Arc<BeadModel>>,
     ranges: Ranges,
     /// Largest tension in any state (Pa).
     peak: f32,
@@ -69,8 +71,10 @@ impl Run {
 
     /// Adds the next state.
     pub fn push(&mut self, state: State) {
-        for bead in &state.beads {
-            self.models.entry(bead.across).or_insert_with(|| Arc::new(BeadModel::new(bead.across.into())));
+        for (index, bead) in state.beads.iter().enumerate() {
+            let ruptured = ruptured(&state, index);
+            let model = || Arc::new(BeadModel::new(bead.across.into(), ruptured));
+            self.models.entry((bead.across, ruptured.to_vec())).or_insert_with(model);
         }
         self.states.push(Arc::new(state));
         if let Some(frame) = self.end().and_then(|end| self.frame(end)) {
@@ -106,8 +110,9 @@ impl Run {
         Some(Frame::between(self, &self.states[before], &self.states[after], share, time))
     }
 
-    pub(crate) fn model(&self, across: u16) -> Option<&Arc<BeadModel>> {
-        self.models.get(&across)
+    /// The model of a bead of a state.
+    pub(crate) fn model(&self, state: &State, bead: usize) -> Option<&Arc<BeadModel>> {
+        self.models.get(&(state.beads.get(bead)?.across, ruptured(state, bead).to_vec()))
     }
 
     /// Value (SI units) that the colour scale of a field spans: twice for stresses that have
@@ -149,6 +154,11 @@ impl Run {
         let frame = self.frame(self.end()?)?;
         Some([frame.bed_bounds(), frame.bead_bounds()])
     }
+}
+
+/// Ruptured bonds of a bead of a state.
+fn ruptured(state: &State, bead: usize) -> &[Face] {
+    state.ruptured.get(bead).map_or(&[], Vec::as_slice)
 }
 
 impl Ranges {

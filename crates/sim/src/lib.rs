@@ -11,6 +11,7 @@ mod scene;
 mod state;
 mod statistics;
 mod study;
+mod tears;
 
 pub use bedswell_grains::{Grading, SizeNumbers};
 pub use calibrate::{
@@ -29,7 +30,7 @@ pub use outcome::{
 pub use run::{Observer, RunError, run_pack};
 pub use scene::{
     BeadAmount, Beads, Bed, Concern, Gel, March, Place, SPHERES_FILE, Scene, SceneError, SceneEstimate, Soil,
-    SoilGrading, Strength, Time, Water, nearest_word, read_scene,
+    SoilGrading, Strength, Time, Toughness, Water, nearest_word, read_scene,
 };
 pub use state::{BeadContact, BeadState, GrainContact, State, Touched};
 pub use statistics::{
@@ -39,7 +40,9 @@ pub use statistics::{
     strength_ratio, tear_probability, wilson,
 };
 pub use study::{
-    Effects, Factor, FactorEffect, FailedPack, Interaction, Level, LevelEffect, LevelSummary, PackRunner,
-    RESPONSES, Response, Study, StudyObserver, StudyOptions, StudySummary, TIMES, Variation,
-    combination_in_words, read_study, run_study,
+    Effects, Factor, FactorEffect, FactorSurvival, FailedPack, GroupComparison, Interaction, JudgedBin,
+    Level, LevelEffect, LevelSummary, PackRunner, RESPONSES, Response, Study, StudyObserver, StudyOptions,
+    StudySummary, StudySurvival, SurvivalGroup, TIMES, Variation, WeakestLinkAgreement, combination_in_words,
+    read_study, run_study,
 };
+pub use tears::{BeadTears, Cracks, CyclePoint, FirstRupture, Moment, PackTears, Region, RuptureEvent};

@@ -1,4 +1,4 @@
-use crate::TensionField;
+use crate::{BeadTears, Cracks, PackTears, TensionField};
 use serde::{Deserialize, Serialize};
 
 /// What became of one pack: the bed, each bead, and how it got there.
@@ -59,6 +59,9 @@ pub struct PackOutcome {
     /// When it happened, where the scene gives a history in time.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub timing: Option<Timing>,
+    /// The cracks of its beads, where the scene gives the gel a toughness.
+    #[serde(skip)]
+    pub tears: Option<PackTears>,
 }
 
 /// When things happened.
@@ -85,6 +88,8 @@ pub struct CoursePoint {
     pub tension_q99_pa: f64,
     /// Largest principal tension in any voxel (Pa).
     pub largest_tension_pa: f64,
+    /// Its cracks, where the scene gives the gel a toughness.
+    pub cracks: Option<Cracks>,
 }
 
 /// When things happened to a bead.
@@ -157,14 +162,19 @@ pub struct BeadOutcome {
     pub contacts: usize,
     /// Asphericity of the gyration tensor: 0 for a sphere, 1 for a rod.
     pub asphericity: f64,
-    /// Probability that the bead tears, by the weakest link.
+    /// Probability that the bead tears, by the weakest link, from the tension in a bead that
+    /// stays whole.
     pub tear_probability: f64,
-    /// Whether it tore in this pack: its own strength, drawn from the seed.
+    /// Whether it tore in this pack: in earnest, where the scene gives the gel a toughness;
+    /// otherwise by its own strength, drawn from the seed.
     pub torn: bool,
     /// When things happened to it, where the scene gives a history in time. Its tear
     /// probability is then that of the largest tension that each place has borne.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub timing: Option<BeadTiming>,
+    /// Its ruptures, where the scene gives the gel a toughness.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub tears: Option<BeadTears>,
 }
 
 /// How well a state is at rest.

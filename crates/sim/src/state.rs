@@ -1,4 +1,5 @@
 use crate::Step;
+use bedswell_gel::Face;
 use serde::{Deserialize, Serialize};
 
 /// Everything there is to see of a pack at one increment. Lengths in m, forces in N,
@@ -33,6 +34,10 @@ pub struct State {
     pub open: bool,
     /// Time (s), where the scene gives a history in time.
     pub time_s: Option<f64>,
+    /// Faces of the ruptured bonds of each bead, in the order in which they broke; empty where
+    /// no bead may tear. The lattice of a bead, its nodes and bonds are those of
+    /// [`bedswell_gel::Lattice::split`].
+    pub ruptured: Vec<Vec<Face>>,
 }
 
 /// A contact that carries force.
@@ -102,6 +107,10 @@ impl State {
         };
         self.radii.len() == grains
             && self.time_s.is_none_or(f64::is_finite)
+            && (self.ruptured.is_empty() || self.ruptured.len() == self.beads.len())
+            && (self.ruptured.iter().zip(&self.beads)).all(|(faces, bead)| {
+                faces.iter().all(|face| (face.low as usize) < bead.stress.len() && face.axis < 3)
+            })
             && self.wall.is_none_or(|radius| radius.is_finite() && radius > 0.0)
             && self.cell.iter().all(|edge| edge.is_finite() && *edge > 0.0)
             && self.centres.as_flattened().iter().chain(&self.radii).all(|x| x.is_finite())

@@ -1,8 +1,8 @@
 //! Studies: nothing lost, nothing done twice, and the same files however they were made.
 
 use bedswell_sim::{
-    BeadAmount, BeadOutcome, FolderError, ForceOutcome, PackOutcome, Quality, RESPONSES, RunError, Scene,
-    Study, StudyOptions, StudySummary, read_study, run_study,
+    BeadAmount, BeadOutcome, BeadTears, Cracks, FolderError, ForceOutcome, Moment, PackOutcome, Quality,
+    RESPONSES, RunError, Scene, Study, StudyOptions, StudySummary, read_study, run_study,
 };
 use std::path::Path;
 use std::sync::atomic::{AtomicU64, Ordering};
@@ -31,6 +31,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         tear_probability: random.random(),
         torn: random.random_bool(0.3),
         timing: None,
+        tears: None,
     };
     Ok(PackOutcome {
         pack,
@@ -56,6 +57,7 @@ fn stand_in(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
         positions: Vec::new(),
         tensions: Vec::new(),
         timing: None,
+        tears: None,
     })
 }
 
@@ -266,4 +268,57 @@ fn a_summary_reads_back_as_it_was_written() {
         let text = std::fs::read_to_string(folder.path().join("summary.json")).unwrap();
         assert_eq!(serde_json::from_str::<StudySummary>(&text).unwrap(), summary);
     }
+}
+
+/// A stand-in whose beads tear the sooner the larger the dose, or not at all.
+fn tearing(scene: &Scene, pack: u64) -> Result<PackOutcome, RunError> {
+    let BeadAmount::Dose(dose) = scene.beads.amount else { panic!("{:?}", scene.beads.amount) };
+    let mut outcome = stand_in(scene, pack)?;
+    for (index, bead) in outcome.beads.iter_mut().enumerate() {
+        let free_stretch = 2.0 + f64::from(pack as u32) - 1e3 * dose + 0.1 * index as f64;
+        let at = |free_stretch| Moment { increment: 1, free_stretch, time_s: 0.0 };
+        bead.torn = free_stretch < 4.0;
+        bead.tears = Some(BeadTears {
+            ruptures: usize::from(bead.torn),
+            cracks: Cracks::default(),
+            crack_share: 0.0,
+            first: None,
+            torn_at: bead.torn.then(|| at(free_stretch.max(1.0))),
+            watched_until: at(4.0),
+        });
+    }
+    Ok(outcome)
+}
+
+#[test]
+fn torn_beads_make_survival_curves_their_comparison_and_a_table_of_agreement() {
+    let study = Study { packs: 8, ..study_of(DOSE_AND_LOAD) };
+    let folder = tempfile::tempdir().unwrap();
+    let options = StudyOptions { threads: 2, csv: true };
+    let summary = run_study(&study, folder.path(), options, &tearing, &mut ()).unwrap();
+    let survival = summary.survival.as_ref().unwrap();
+    assert_eq!((survival.measured_in.as_str(), survival.factors.len()), ("free_stretch", 2));
+    // Doses of 0.6, 1.2 and 1.8 g/kg, 2 loads, 8 packs of 2 beads: torn below a stretch of 4.
+    let doses = &survival.factors[0];
+    let torn: Vec<(u64, u64)> = doses.groups.iter().map(|group| (group.torn, group.beads)).collect();
+    assert_eq!(torn, [(12, 32), (16, 32), (16, 32)]);
+    let by_hand = 1.0 - 12.0 / 32.0;
+    assert!((doses.groups[0].whole_at_end - by_hand).abs() < 1e-12 && doses.groups[0].median.is_none());
+    let loads = survival.factors[1].log_rank.unwrap();
+    assert!(
+        loads.chi_squared < 1e-9 && (loads.p_value - 1.0).abs() < 1e-6,
+        "the load does nothing: {loads:?}"
+    );
+    assert!(doses.log_rank.unwrap().chi_squared > loads.chi_squared);
+    let judged = summary.agreement.as_ref().unwrap();
+    assert_eq!(judged.bins.iter().map(|bin| bin.bin.count).sum::<u64>(), judged.beads);
+    assert_eq!(judged.beads, 96);
+    let rows = |name: &str| std::fs::read_to_string(folder.path().join(name)).unwrap().lines().count() - 1;
+    assert_eq!(rows("agreement.csv"), judged.bins.len());
+    let steps = std::fs::read_to_string(folder.path().join("survival.csv")).unwrap();
+    assert!(steps.starts_with("factor,value,free_stretch,at_risk,torn,whole"), "{steps}");
+    assert!(folder.path().join("survival.parquet").exists());
+    // A study whose beads cannot tear has neither.
+    let plain = conduct(&study_of(DOSE_AND_LOAD), tempfile::tempdir().unwrap().path(), 1);
+    assert!(plain.survival.is_none() && plain.agreement.is_none());
 }

@@ -5,8 +5,8 @@ use crate::progress::Progress;
 use anyhow::Context;
 use bedswell_sim::figures::{digits, duration, force, length, probability, stress};
 use bedswell_sim::{
-    RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene, remove_run_files, run_pack,
-    write_run_folder,
+    BeadTears, Moment, Region, RunError, RunSummary, StateRecorder, prepare_run_folder, read_scene,
+    remove_run_files, run_pack, write_run_folder,
 };
 use std::path::Path;
 
@@ -73,8 +73,15 @@ fn in_words(run: &RunSummary, folder: &Path) -> String {
             stress(bead.largest_tension_pa),
             stress(bead.compression_q999_pa),
             probability(bead.tear_probability),
-            if bead.torn { "; torn in this pack" } else { "" },
+            match (bead.torn, &bead.tears) {
+                (true, None) => "; torn in this pack",
+                (_, Some(_)) => " if it could not tear, by the weakest link",
+                _ => "",
+            },
         );
+        if let Some(tears) = &bead.tears {
+            text += &ruptures_in_words(tears);
+        }
         if let Some(timing) = &bead.timing {
             text += &format!(
                 "  half of the water after {}, 90 % after {}\n  most tension      {} (99 %), after {}\n",
@@ -86,4 +93,29 @@ fn in_words(run: &RunSummary, folder: &Path) -> String {
         }
     }
     text + &format!("\nwritten to {}", folder.display())
+}
+
+/// How a bead tore, or that it did not.
+fn ruptures_in_words(tears: &BeadTears) -> String {
+    let Some(first) = &tears.first else { return "  ruptures          none\n".into() };
+    let when = |at: &Moment| match at.time_s {
+        0.0 => format!("at a free stretch of {}", digits(at.free_stretch)),
+        seconds => format!("after {}", duration(seconds)),
+    };
+    let place = match (first.region, first.to_contact_m) {
+        (Region::Axis, Some(distance)) => format!("on the axis of a contact {} away", length(distance)),
+        (_, Some(distance)) => format!("on the flank, {} from the nearest contact", length(distance)),
+        (_, None) => "with nothing touching it".into(),
+    };
+    format!(
+        "  ruptures          {}; the first {}, {} deep, {place}\n  cracks            {} of the mid-section, {} \
+         {}{}\n",
+        tears.ruptures,
+        when(&first.at),
+        length(first.depth_m),
+        digits(tears.crack_share),
+        tears.cracks.fragments,
+        if tears.cracks.fragments == 1 { "piece" } else { "pieces" },
+        tears.torn_at.map_or(String::new(), |at| format!("; torn {}", when(&at))),
+    )
 }

@@ -1,5 +1,6 @@
 mod factors_in_words;
 mod figure_table;
+mod tears_in_words;
 
 use crate::args::Study;
 use crate::exit::Exit;
@@ -12,6 +13,7 @@ use bedswell_sim::{
 };
 use factors_in_words::factors_in_words;
 use std::path::Path;
+use tears_in_words::tears_in_words;
 
 /// Runs the packs of a study and tells the tear probability.
 pub(super) fn study(arguments: &Study, json: bool) -> anyhow::Result<Exit> {
@@ -57,6 +59,7 @@ fn in_words(study: &StudySummary, folder: &Path) -> String {
         [level] if study.factors.is_empty() => format!("{}\n\n{}", study.name, level_in_words(level)),
         _ => format!("{}\n", factors_in_words(study)),
     };
+    let text = tears_in_words(study).map_or(text.clone(), |tears| format!("{text}\n{tears}\n"));
     format!("{text}\nWith 95 % limits. Tables and summary are in {}", folder.display())
 }
 

@@ -10,6 +10,7 @@ use super::{Kinetics, Lag, Prop};
 use crate::elastic::{Elastic, Holding};
 use crate::obstacle::Obstacle;
 use crate::relaxation::{HeldWater, Lead, Relaxation, STIFFNESS};
+use crate::rupture;
 use crate::thermodynamics::Gel;
 
 impl Kinetics {
@@ -64,6 +65,8 @@ impl Kinetics {
             }
         }
         self.state.contacts = rest.skin_contacts(obstacles);
+        let chains = gel.dry_shear_modulus() * self.bead.voxel_edge();
+        self.state.contacts.ties = rupture::drags(&lattice, chains);
         self.loads = rest.other_forces(&gel, obstacles);
         self.props = rest
             .pulls()

@@ -25,6 +25,28 @@ impl Kinetics {
         Ok(self)
     }
 
+    /// Whether anything is overloaded in the bead as it is.
+    pub fn is_overloaded(&self, criterion: &Criterion) -> bool {
+        !rupture::overloaded(&self.bead, &self.stress().stress, criterion).is_empty()
+    }
+
+    /// Ruptures what is most overloaded, and what else is far from it, with nothing moved yet:
+    /// for beads that do not tear in their own steps. Let them come to rest (`relaxation`,
+    /// `take_over`) and ask again, until nothing is. Returns how many units of bonds ruptured.
+    ///
+    /// # Errors
+    /// Never for bonds of this lattice.
+    pub fn rupture_once(&mut self, criterion: &Criterion) -> Result<usize, KineticsError> {
+        let overloaded = rupture::overloaded(&self.bead, &self.stress().stress, criterion);
+        self.ruptures.extend(overloaded.iter().map(|loaded| loaded.event(&self.bead, criterion)));
+        self.split(&overloaded.iter().flat_map(|loaded| loaded.faces()).copied().collect::<Vec<_>>())?;
+        if !overloaded.is_empty() {
+            // What was going on before says little about how long the next step may be.
+            self.next = 0.0;
+        }
+        Ok(overloaded.len())
+    }
+
     /// All ruptures so far.
     pub fn ruptures(&self) -> &[Event] {
         &self.ruptures
@@ -45,17 +67,12 @@ impl Kinetics {
         let Some(criterion) = self.criterion.clone() else { return Ok(0) };
         let before = self.ruptures.len();
         loop {
-            let overloaded = rupture::overloaded(&self.bead, &self.stress().stress, &criterion);
-            if overloaded.is_empty() {
-                return Ok(self.ruptures.len() - before);
-            }
             let first = self.ruptures.len();
-            self.ruptures.extend(overloaded.iter().map(|loaded| loaded.event(&self.bead, &criterion)));
-            self.split(&overloaded.iter().flat_map(|loaded| loaded.faces()).copied().collect::<Vec<_>>())?;
+            if self.rupture_once(&criterion)? == 0 {
+                return Ok(first - before);
+            }
             let steps = self.rebalance(outside, obstacles)?;
             self.ruptures[first..].iter_mut().for_each(|event| event.newton_steps = steps);
-            // What was going on before says little about how long the next step may be.
-            self.next = 0.0;
         }
     }
 

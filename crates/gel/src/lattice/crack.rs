@@ -33,7 +33,15 @@ impl Lattice {
 
     /// Area of one side of all cracks when dry (voxel edges squared).
     pub fn crack_area(&self) -> f64 {
-        self.cracks.iter().map(|crack| self.face_area(crack.low as usize, crack.axis)).sum()
+        self.cracks.iter().fold(0.0, |area, crack| area + self.face_area(crack.low as usize, crack.axis))
+    }
+
+    /// Area when dry (voxel edges squared) that water from outside reaches: the outer skin, and
+    /// both faces of cracks that open to it.
+    pub fn wetted_area(&self) -> f64 {
+        let cracks = self.cracks.iter().zip(self.exposed()).filter(|(_, exposed)| *exposed);
+        let faces: f64 = cracks.map(|(crack, _)| 2.0 * self.face_area(crack.low as usize, crack.axis)).sum();
+        self.skin.outer as f64 * self.skin.area + faces
     }
 
     /// Which of the ruptured bonds lie on cracks that reach the outer skin, so that water

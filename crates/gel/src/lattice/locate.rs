@@ -1,5 +1,5 @@
 use super::skin::{combination, combination_of, host};
-use super::{Lattice, NodeIndex, number_nodes};
+use super::{Lattice, NodeIndex, corner_places, number_nodes};
 use std::collections::HashMap;
 
 /// Finds places of the dry ball in its lattice.
@@ -54,6 +54,27 @@ impl Locator {
             nodes: nodes.into_iter().map(|(node, weight)| (node as u32, weight as f32)).collect(),
             values: self.values(place, voxel),
         }
+    }
+
+    /// The material point at a place, carried by the voxel with its centre at `voxel` (both
+    /// relative to the ball's centre, in voxel edges) alone, with that voxel's own values: for
+    /// the two sides of a crack.
+    ///
+    /// # Panics
+    /// When there is no such voxel.
+    pub fn find_in(&self, voxel: [f64; 3], place: [f64; 3]) -> MaterialPoint {
+        let low: [u16; 3] = std::array::from_fn(|axis| (voxel[axis] + self.half[axis] - 0.5).round() as u16);
+        let number = self.voxel_at[&low];
+        let corners = self.beside_cracks.get(&number).copied();
+        let corners = corners.unwrap_or_else(|| corner_places(&low).map(|corner| self.node_at[&corner]));
+        let local: [f64; 3] =
+            std::array::from_fn(|axis| place[axis] + self.half[axis] - f64::from(low[axis]));
+        let weight = |corner: usize| {
+            let along = |axis: usize| if corner >> axis & 1 == 1 { local[axis] } else { 1.0 - local[axis] };
+            along(0) * along(1) * along(2)
+        };
+        let nodes = corners.iter().enumerate().map(|(corner, &node)| (node as u32, weight(corner) as f32));
+        MaterialPoint { voxel: number, nodes: nodes.collect(), values: vec![(number, 1.0)] }
     }
 
     fn values(&self, place: [f64; 3], host: [u16; 3]) -> Vec<(u32, f32)> {

@@ -12,7 +12,7 @@ impl Lattice {
     /// The lattice with the bonds at these faces ruptured as well; faces without an intact
     /// bond are passed over. Voxels, nodes and skin points keep their numbers, new nodes
     /// follow in the order of the faces.
-    pub(crate) fn split(&self, faces: &[Face]) -> Self {
+    pub fn split(&self, faces: &[Face]) -> Self {
         let mut lattice = self.clone();
         let mut parted = Vec::new();
         for face in faces {

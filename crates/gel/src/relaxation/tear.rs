@@ -8,6 +8,11 @@ use crate::stress::StressField;
 use crate::thermodynamics::Gel;
 
 impl Relaxation {
+    /// Whether anything is overloaded in the bead as it is.
+    pub fn is_overloaded(&self, gel: &Gel, criterion: &Criterion) -> bool {
+        !rupture::overloaded(&self.bead, &StressField::of(&self.bead, gel).stress, criterion).is_empty()
+    }
+
     /// Ruptures what is most overloaded in the bead as it is, and what else is far from it;
     /// nothing where nothing is. Ask when everything is at rest, and again when it has come
     /// to rest anew: contacts and masses must be renewed first, also those to other beads.

@@ -1,4 +1,5 @@
 use super::Rupture;
+use crate::bead::Bead;
 use crate::contact::Tie;
 use crate::lattice::Lattice;
 use bedswell_geometry::Vector;
@@ -17,27 +18,27 @@ pub struct Fragment {
     pub place: Vector,
 }
 
+/// The bodies into which a bead has come apart, largest first; one where it has not.
+pub fn fragments(bead: &Bead) -> Vec<Fragment> {
+    let lattice = bead.lattice();
+    let gradients = bead.gradients();
+    let voxel = bead.voxel_edge().powi(3);
+    let fragment = |body: &Vec<usize>| {
+        let volume = |&v: &usize| lattice.filled(v) * gradients[v].determinant() * voxel;
+        let total: f64 = body.iter().map(volume).sum();
+        let moment: Vector = body.iter().map(|v| bead.voxel_centre(*v) * volume(v)).sum();
+        let dry: f64 = body.iter().map(|&v| lattice.filled(v)).sum::<f64>() * voxel;
+        Fragment { voxels: body.len(), share: dry / bead.dry_volume(), volume: total, place: moment / total }
+    };
+    let mut fragments: Vec<Fragment> = lattice.bodies().iter().map(fragment).collect();
+    fragments.sort_by(|a, b| b.share.total_cmp(&a.share));
+    fragments
+}
+
 impl Rupture {
     /// The bodies into which the bead has come apart, largest first; one where it has not.
     pub fn fragments(&self) -> Vec<Fragment> {
-        let (bead, lattice) = (&self.bead, self.bead.lattice());
-        let gradients = bead.gradients();
-        let voxel = bead.voxel_edge().powi(3);
-        let fragment = |body: &Vec<usize>| {
-            let volume = |&v: &usize| lattice.filled(v) * gradients[v].determinant() * voxel;
-            let total: f64 = body.iter().map(volume).sum();
-            let moment: Vector = body.iter().map(|v| bead.voxel_centre(*v) * volume(v)).sum();
-            let dry: f64 = body.iter().map(|&v| lattice.filled(v)).sum::<f64>() * voxel;
-            Fragment {
-                voxels: body.len(),
-                share: dry / bead.dry_volume(),
-                volume: total,
-                place: moment / total,
-            }
-        };
-        let mut fragments: Vec<Fragment> = lattice.bodies().iter().map(fragment).collect();
-        fragments.sort_by(|a, b| b.share.total_cmp(&a.share));
-        fragments
+        fragments(&self.bead)
     }
 }
 

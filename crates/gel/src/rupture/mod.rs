@@ -25,7 +25,7 @@ use crate::stress::StressField;
 use crate::thermodynamics::Gel;
 use average::Field;
 use bedswell_geometry::{Matrix, Vector};
-pub use fragment::Fragment;
+pub use fragment::{Fragment, fragments};
 pub(crate) use fragment::{drags, drags_on};
 pub use grip::Grip;
 use serde::{Deserialize, Serialize};
@@ -50,6 +50,8 @@ pub struct Rupture {
 pub struct Event {
     /// Middle of the new crack surface, from the centre of the free-swollen bead (m).
     pub place: Vector,
+    /// Where that lay in space just before (m).
+    pub lay: Vector,
     /// How far it lies below the free-swollen bead's surface (m).
     pub depth: f64,
     /// Area of one side when free-swollen (m²).
@@ -119,7 +121,7 @@ impl Rupture {
 
     /// Area of one side of all cracks when free-swollen (m²).
     pub fn crack_area(&self) -> f64 {
-        self.bead.lattice().crack_area() * self.free_edge().powi(2)
+        self.criterion.crack_area(&self.bead)
     }
 
     /// Cuts bonds, as with a blade.
@@ -238,11 +240,6 @@ impl Rupture {
         let patch = self.criterion.tension * (self.criterion.length * self.criterion.stretch).powi(2);
         let (skin, rest) = (&self.bead.lattice().skin, rest_force(gel, &self.bead));
         BETWEEN_RUPTURES * patch / self.contacts.force_scale(skin, &self.bead.positions, obstacles, rest)
-    }
-
-    /// Edge of a free-swollen voxel (m).
-    fn free_edge(&self) -> f64 {
-        self.bead.voxel_edge() * self.criterion.stretch
     }
 }
 

@@ -52,17 +52,21 @@ impl Strengths {
     }
 }
 
+/// Standard deviation over mean of Weibull's distribution with a modulus.
+pub(super) fn scatter_of(modulus: f64) -> f64 {
+    (gamma(1.0 + 2.0 / modulus) / gamma(1.0 + 1.0 / modulus).powi(2) - 1.0).max(0.0).sqrt()
+}
+
 /// The Weibull modulus whose distribution has this standard deviation over its mean.
 fn modulus_of(scatter: f64) -> f64 {
     if scatter == 0.0 {
         return f64::INFINITY;
     }
-    let of_modulus = |m: f64| (gamma(1.0 + 2.0 / m) / gamma(1.0 + 1.0 / m).powi(2) - 1.0).max(0.0).sqrt();
     // It falls with m; bisection on ln m.
     let (mut low, mut high) = (0.0_f64, 20.0_f64);
     for _ in 0..100 {
         let middle = 0.5 * (low + high);
-        if of_modulus(middle.exp()) > scatter { low = middle } else { high = middle }
+        if scatter_of(middle.exp()) > scatter { low = middle } else { high = middle }
     }
     low.exp()
 }

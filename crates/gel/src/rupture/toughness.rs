@@ -1,4 +1,4 @@
-use super::strength::Strengths;
+use super::strength::{self, Strengths};
 use crate::bead::Bead;
 use crate::thermodynamics::Gel;
 use serde::{Deserialize, Serialize};
@@ -27,6 +27,44 @@ impl Toughness {
     /// tip: fixed once by strips in pure shear (`cargo run --release -p bedswell-gel
     /// --example tearing_strip`).
     pub const TIP_TENSION: f64 = 0.687;
+    /// Most scatter of strength.
+    pub const MOST_SCATTER: f64 = 0.5;
+
+    /// Whether it can be used on beads with so many voxels across and a dry radius (m), with
+    /// `swollen` as the free-swollen gel. Returns the length ℓ (m) of that gel.
+    ///
+    /// # Errors
+    /// When it is out of range, or its length smaller than the lattice resolves or as large
+    /// as the bead.
+    pub fn check(&self, swollen: &Gel, across: usize, dry_radius: f64) -> Result<f64, ToughnessError> {
+        let Self { energy, length, scatter, .. } = *self;
+        let is_positive = |value: f64| value > 0.0 && value.is_finite();
+        if !is_positive(energy) {
+            return Err(ToughnessError::Energy(energy));
+        }
+        if let Some(length) = length.filter(|&length| !is_positive(length)) {
+            return Err(ToughnessError::Length(length));
+        }
+        if !(0.0..=Self::MOST_SCATTER).contains(&scatter) {
+            return Err(ToughnessError::Scatter(scatter));
+        }
+        let length = length.unwrap_or(energy / swollen.moduli().plane_strain());
+        let radius = dry_radius * swollen.free_stretch();
+        let voxels = length * across as f64 / (2.0 * radius);
+        if voxels < LEAST_VOXELS * (1.0 - ROUNDING) {
+            let across = (across as f64 * LEAST_VOXELS / voxels).ceil() as usize;
+            return Err(ToughnessError::TooCoarse { length, voxels, across });
+        }
+        if length > 0.5 * radius {
+            return Err(ToughnessError::TooLong { length, radius });
+        }
+        Ok(length)
+    }
+
+    /// The scatter of strengths with this Weibull modulus.
+    pub fn scatter_of(modulus: f64) -> f64 {
+        strength::scatter_of(modulus)
+    }
 }
 
 impl Default for Toughness {
@@ -46,7 +84,7 @@ pub enum ToughnessError {
     #[error("a length of {0} m; it must be positive and finite, or left out for its default")]
     Length(f64),
     /// The scatter is out of range.
-    #[error("a scatter of strength of {0}; 0 to {MOST_SCATTER} are possible")]
+    #[error("a scatter of strength of {0}; 0 to {most} are possible", most = Toughness::MOST_SCATTER)]
     Scatter(f64),
     /// The lattice is too coarse for the length.
     #[error(
@@ -72,8 +110,6 @@ pub enum ToughnessError {
     },
 }
 
-/// Most scatter of strength.
-const MOST_SCATTER: f64 = 0.5;
 /// Voxels that the length must span.
 const LEAST_VOXELS: f64 = 2.0;
 
@@ -99,42 +135,23 @@ impl Criterion {
     /// When the toughness is out of range, or its length smaller than the lattice resolves
     /// or as large as the bead.
     pub fn new(toughness: &Toughness, swollen: &Gel, bead: &Bead) -> Result<Self, ToughnessError> {
-        let Toughness { energy, length, scatter, seed } = *toughness;
-        let is_positive = |value: f64| value > 0.0 && value.is_finite();
-        if !is_positive(energy) {
-            return Err(ToughnessError::Energy(energy));
-        }
-        if let Some(length) = length.filter(|&length| !is_positive(length)) {
-            return Err(ToughnessError::Length(length));
-        }
-        if !(0.0..=MOST_SCATTER).contains(&scatter) {
-            return Err(ToughnessError::Scatter(scatter));
-        }
-        let modulus = swollen.moduli().plane_strain();
-        let length = length.unwrap_or(energy / modulus);
+        let length = toughness.check(swollen, bead.lattice().across(), bead.dry_radius())?;
+        let Toughness { energy, scatter, seed, .. } = *toughness;
         let stretch = swollen.free_stretch();
-        let criterion = Self {
-            tension: Toughness::TIP_TENSION * (modulus * energy / length).sqrt(),
+        let strengths = Strengths::new(scatter, length / stretch, seed);
+        let half = bead.lattice().shape().half().map(|half| half * bead.voxel_edge());
+        Ok(Self {
+            tension: Toughness::TIP_TENSION * (swollen.moduli().plane_strain() * energy / length).sqrt(),
             length: length / stretch,
             stretch,
-            strengths: Strengths::new(scatter, length / stretch, seed),
-            least: 0.0,
-        };
-        criterion.fit(bead)
+            least: strengths.least(half),
+            strengths,
+        })
     }
 
-    fn fit(mut self, bead: &Bead) -> Result<Self, ToughnessError> {
-        let length = self.length * self.stretch;
-        let voxels = self.length / bead.voxel_edge();
-        if voxels < LEAST_VOXELS * (1.0 - ROUNDING) {
-            let across = (bead.lattice().across() as f64 * LEAST_VOXELS / voxels).ceil() as usize;
-            return Err(ToughnessError::TooCoarse { length, voxels, across });
-        }
-        if self.length > 0.5 * bead.dry_radius() {
-            return Err(ToughnessError::TooLong { length, radius: bead.dry_radius() * self.stretch });
-        }
-        self.least = self.strengths.least(bead.lattice().shape().half().map(|half| half * bead.voxel_edge()));
-        Ok(self)
+    /// Area of one side of all cracks of a bead when free-swollen (m²).
+    pub fn crack_area(&self, bead: &Bead) -> f64 {
+        bead.lattice().crack_area() * (bead.voxel_edge() * self.stretch).powi(2)
     }
 }
 

@@ -55,8 +55,14 @@ impl Loaded {
     pub(crate) fn event(&self, bead: &Bead, criterion: &Criterion) -> Event {
         let (lattice, edge) = (bead.lattice(), bead.voxel_edge() * criterion.stretch);
         let area = |face: &Face| lattice.face_area(face.low as usize, usize::from(face.axis));
+        let voxels = self.faces().iter().flat_map(|face| {
+            let low = face.low as usize;
+            [Some(low), lattice.neighbour(low, 2 * usize::from(face.axis) + 1)]
+        });
+        let middles: Vec<Vector> = voxels.flatten().map(|voxel| bead.voxel_centre(voxel)).collect();
         Event {
             place: self.unit.place * edge,
+            lay: middles.iter().sum::<Vector>() / middles.len() as f64,
             depth: lattice.shape().depth(&self.unit.place).0.max(0.0) * edge,
             area: self.faces().iter().map(area).sum::<f64>() * edge * edge,
             ratio: self.ratio,

@@ -1,4 +1,5 @@
 use super::course::Course;
+use super::tearing::Told;
 use crate::folder::fingerprint;
 use crate::{Scene, Step};
 use bedswell_gel::Snapshot;
@@ -19,6 +20,7 @@ pub struct Checkpoint {
     /// Growth of the beads' stretch (1/s) in the last step.
     pub(super) rate: Option<f64>,
     pub(super) course: Course,
+    pub(super) told: Told,
     /// The increments so far.
     pub(super) history: Vec<Step>,
 }

@@ -1,3 +1,5 @@
+use super::cycles::cycles;
+use super::tearing::Tearing;
 use crate::{BeadTiming, CoursePoint, PackOutcome, Scene, Timing};
 use bedswell_gel::{Kinetics, StressField, uptake_of_volume_ratio};
 use rayon::prelude::*;
@@ -25,7 +27,7 @@ impl Course {
     }
 
     /// Notes where the beads are after a step.
-    pub(super) fn note(&mut self, beads: &[Kinetics], scene: &Scene) {
+    pub(super) fn note(&mut self, beads: &[Kinetics], scene: &Scene, tearing: Option<&Tearing>) {
         let fields: Vec<StressField> = beads.par_iter().map(Kinetics::stress).collect();
         for (index, ((bead, field), peaks)) in beads.iter().zip(&fields).zip(&mut self.peaks).enumerate() {
             let lattice = bead.bead().lattice();
@@ -38,6 +40,7 @@ impl Course {
                 uptake_g_per_g: uptake_of_volume_ratio(ratio, scene.gel.dry_density),
                 tension_q99_pa: field.tension_quantile(0.99),
                 largest_tension_pa: field.largest_tension().0,
+                cracks: tearing.map(|tearing| tearing.cracks_of(index, bead.bead())),
             });
         }
     }
@@ -46,6 +49,9 @@ impl Course {
     pub(super) fn tell(self, mut outcome: PackOutcome, times: &[f64]) -> PackOutcome {
         for (index, bead) in outcome.beads.iter_mut().enumerate() {
             bead.timing = Some(self.timing_of(index));
+        }
+        if let Some(tears) = &mut outcome.tears {
+            tears.cycles = cycles(&self.points, outcome.beads.len());
         }
         outcome.timing = Some(Timing { seconds: times.to_vec(), course: self.points });
         outcome

@@ -7,7 +7,8 @@ use super::course::Course;
 use super::march::{BETWEEN_STEPS, March, NEARER, show_dry_bed};
 use super::measure::{self, Seen, Watch};
 use super::records::record_times;
-use crate::{Observer, PackOutcome, Quality, RunError, Scene, State, Step, Time};
+use super::tearing::Tearing;
+use crate::{Moment, Observer, PackOutcome, Quality, RunError, Scene, State, Step, Time};
 use bedswell_gel::{
     Bead, Gel, Kinetics, KineticsError, Lattice, Lead, Outside, Permeability, Relaxation, Settings, Snapshot,
     StressField,
@@ -49,13 +50,8 @@ pub(crate) fn march_in_time(
         show_dry_bed(&watch, &bed, observer)?;
         march.start().map_err(at(1))?;
     }
-    for (index, &until) in times.iter().enumerate().skip(history.len()) {
-        let increment = index + 1;
-        march.advance(&watch, until).map_err(at(increment))?;
-        if increment == times.len() {
-            march.come_to_rest().map_err(at(increment))?;
-        }
-        measure::guard(&march.march.bodies).map_err(at(increment))?;
+    for increment in history.len() + 1..=times.len() {
+        march.go_on(&watch, &times, increment).map_err(at(increment))?;
         let (step, state) = march.record(&watch, increment, observer.looks());
         history.push(step);
         let mut onwards = observer.step(&step, times.len());
@@ -82,19 +78,22 @@ fn at(increment: usize) -> impl Fn(String) -> RunError {
 }
 
 /// A pack on its way through time.
-struct InTime<'a> {
+#[derive(Clone)]
+pub(super) struct InTime<'a> {
     time: &'a Time,
-    march: March,
+    pub(super) march: March,
     /// A bead is alone among grains that stay where they are, and needs no rest besides its
     /// own steps.
     is_bench: bool,
-    kinetics: Vec<Kinetics>,
+    pub(super) kinetics: Vec<Kinetics>,
     /// The grains as mixed, and the beads before they take up water.
     dry: (Assembly, Vec<Kinetics>),
     /// Growth of the stretch (1/s) of the bead that changed most in the last step; nothing
     /// right after a change outside.
     rate: Option<f64>,
     course: Course,
+    /// By what beads tear, if they may.
+    pub(super) tearing: Option<Tearing>,
 }
 
 impl<'a> InTime<'a> {
@@ -108,8 +107,9 @@ impl<'a> InTime<'a> {
             held: scene.beads.held,
             ..Settings::default()
         };
-        // Where all come to rest after a step, that corrects what it leaves.
-        let settings = match is_bench(scene, bed) {
+        // Where all come to rest after a step, that corrects what it leaves. What cracks make
+        // uneven would drift before it touches anything.
+        let settings = match is_bench(scene, bed) && scene.toughness.is_none() {
             true => alone,
             false => Settings { residual: RESIDUAL, anchored: true, ..alone },
         };
@@ -119,6 +119,7 @@ impl<'a> InTime<'a> {
             Kinetics::new(bead, gel.numbers(), permeability, settings).map_err(words)
         };
         let kinetics: Vec<Kinetics> = bed.beads.iter().map(bead).collect::<Result<_, _>>()?;
+        let tearing = Tearing::new(scene, gel, watch.number, kinetics.iter().map(Kinetics::bead))?;
         let course = Course::new(kinetics.len(), lattice.voxel_count());
         Ok(Self {
             time,
@@ -128,6 +129,7 @@ impl<'a> InTime<'a> {
             kinetics,
             rate: None,
             course,
+            tearing,
         })
     }
 
@@ -136,7 +138,7 @@ impl<'a> InTime<'a> {
     }
 
     /// The gel that would swell freely to the beads' mean size.
-    fn stage(&self) -> Gel {
+    pub(super) fn stage(&self) -> Gel {
         let dry: f64 = self.kinetics.iter().map(|bead| bead.bead().dry_volume()).sum();
         let water: f64 = self.kinetics.iter().map(Kinetics::water).sum();
         self.kinetics[0].gel().limited_to((1.0 + water / dry).cbrt())
@@ -148,14 +150,28 @@ impl<'a> InTime<'a> {
         self.rest_with(beads, &[], 1)
     }
 
-    /// Goes on to `until` (s).
-    fn advance(&mut self, watch: &Watch<'_>, until: f64) -> Result<(), String> {
+    /// Goes on to the end of an increment.
+    pub(super) fn go_on(&mut self, watch: &Watch<'_>, times: &[f64], increment: usize) -> Result<(), String> {
+        let until = times[increment - 1];
         while self.now() < until {
+            let before = self.if_whole();
             self.step(until)?;
-            let Self { course, kinetics, .. } = self;
-            course.note(kinetics, watch.scene);
+            self.tear(increment, false)?;
+            self.tell_whole(before, watch, times, increment);
+            let Self { course, kinetics, tearing, .. } = self;
+            course.note(kinetics, watch.scene, tearing.as_ref());
         }
-        Ok(())
+        if increment == times.len() {
+            let before = self.if_whole();
+            self.come_to_rest()?;
+            self.tear(increment, true)?;
+            self.tell_whole(before, watch, times, increment);
+        }
+        measure::guard(&self.march.bodies)
+    }
+
+    pub(super) fn moment(&self, increment: usize) -> Moment {
+        Moment { increment, free_stretch: self.kinetics[0].gel().free_stretch(), time_s: self.now() }
     }
 
     /// One step of all beads, not beyond `until` (s), and the rest after it.
@@ -222,7 +238,8 @@ impl<'a> InTime<'a> {
             );
             let Err(error): Result<(), KineticsError> = stepped else { return Ok(start) };
             tries += 1;
-            if tries > TRIES || self.is_bench {
+            let is_torn = self.tearing.as_ref().is_some_and(|tearing| !tearing.is_whole());
+            if tries > TRIES || (self.is_bench && !is_torn) {
                 return Err(words(error));
             }
             let beads = std::mem::take(&mut self.kinetics).into_iter().zip(&before);
@@ -248,7 +265,12 @@ impl<'a> InTime<'a> {
     }
 
     /// Lets beads follow their leads and everything come to rest.
-    fn rest_with(&mut self, beads: Vec<Relaxation>, leads: &[Lead], moves: usize) -> Result<(), String> {
+    pub(super) fn rest_with(
+        &mut self,
+        beads: Vec<Relaxation>,
+        leads: &[Lead],
+        moves: usize,
+    ) -> Result<(), String> {
         let stage = self.stage();
         self.march.bodies.renew(beads);
         self.march.weigh();
@@ -266,7 +288,7 @@ impl<'a> InTime<'a> {
     }
 
     /// Brings everything as near to rest as the end of a march is.
-    fn come_to_rest(&mut self) -> Result<(), String> {
+    pub(super) fn come_to_rest(&mut self) -> Result<(), String> {
         if self.is_bench && !self.march.bodies.beads[0].is_folded() {
             return Ok(());
         }
@@ -278,7 +300,7 @@ impl<'a> InTime<'a> {
     }
 
     /// The beads in time take over where everything came to rest.
-    fn take_over(&mut self, stage: &Gel) {
+    pub(super) fn take_over(&mut self, stage: &Gel) {
         let bodies = &mut self.march.bodies;
         bodies.compute_forces(stage);
         let rest = bodies.beads.par_iter().zip(&bodies.around);
@@ -290,7 +312,7 @@ impl<'a> InTime<'a> {
 
     /// The beads with their stress, whose strength is measured against the largest tension
     /// that each place has borne so far.
-    fn see<'b>(&'b self, watch: &Watch<'_>) -> Vec<Seen<'b>> {
+    pub(super) fn see<'b>(&'b self, watch: &Watch<'_>) -> Vec<Seen<'b>> {
         let fields: Vec<StressField> = self.kinetics.par_iter().map(Kinetics::stress).collect();
         let beads = self.march.bodies.beads.iter().zip(fields).zip(&self.course.peaks);
         let see = |((bead, field), peaks): ((&'b Relaxation, StressField), &Vec<f64>)| {
@@ -306,10 +328,16 @@ impl<'a> InTime<'a> {
     }
 
     /// The figures of an increment, and what there is to see of it.
-    fn record(&self, watch: &Watch<'_>, increment: usize, looked_at: bool) -> (Step, Option<State>) {
+    fn record(&mut self, watch: &Watch<'_>, increment: usize, looked_at: bool) -> (Step, Option<State>) {
+        let Self { tearing, kinetics, .. } = self;
+        let whole = tearing.as_mut().and_then(|tearing| {
+            tearing.record(kinetics.iter().map(Kinetics::bead));
+            tearing.whole_mean(increment)
+        });
         let seen = self.see(watch);
         let free = self.kinetics[0].gel().free_stretch();
-        let step = watch.step((increment, free), &seen, &self.march.bodies.grains, self.quality());
+        let mut step = watch.step((increment, free), &seen, &self.march.bodies.grains, self.quality());
+        step.tear_probability = whole.unwrap_or(step.tear_probability);
         let state = looked_at.then(|| State {
             time_s: Some(self.now()),
             ..self.march.snapshot(watch.scene, watch.number, &seen, step)
@@ -327,6 +355,7 @@ impl<'a> InTime<'a> {
             beads: self.kinetics.iter().map(Kinetics::snapshot).collect(),
             rate: self.rate,
             course: self.course.clone(),
+            told: self.tearing.as_ref().map(|tearing| tearing.told.clone()).unwrap_or_default(),
             history: history.to_vec(),
         }
     }
@@ -355,11 +384,19 @@ impl<'a> InTime<'a> {
         }
         bodies.renew(beads.iter().map(Kinetics::relaxation).collect());
         (self.kinetics, self.rate, self.course) = (beads, kept.rate, kept.course.clone());
+        if let Some(tearing) = &mut self.tearing {
+            tearing.told.clone_from(&kept.told);
+        }
         true
     }
 
     fn outcome(self, watch: &Watch<'_>, bed: DryBed, history: Vec<Step>, times: &[f64]) -> PackOutcome {
+        let end = self.moment(times.len());
         let outcome = self.march.outcome(watch, bed, &self.see(watch), self.quality(), history);
+        let outcome = match self.tearing {
+            None => outcome,
+            Some(tearing) => tearing.tell(outcome, end),
+        };
         self.course.tell(outcome, times)
     }
 }

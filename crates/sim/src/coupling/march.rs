@@ -3,7 +3,8 @@ use super::bodies::Bodies;
 use super::contents::Contents;
 use super::measure::{self, Seen, Watch};
 use super::pot::Pot;
-use crate::{GrainRecord, Observer, PackOutcome, Quality, RunError, Scene, State, Step};
+use super::tearing::Tearing;
+use crate::{GrainRecord, Moment, Observer, PackOutcome, Quality, RunError, Scene, State, Step};
 use bedswell_gel::{Bead, Gel, Lattice, Relaxation, Tolerance};
 use bedswell_geometry::Vector;
 use std::ops::ControlFlow;
@@ -24,6 +25,8 @@ const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, step
 pub(super) const BETWEEN_STEPS: Target = Target { steps: 80, ..ON_THE_WAY };
 /// The same where a bead finds no way to go on from such a state.
 pub(super) const NEARER: Target = Target { steps: 1000, ..ON_THE_WAY };
+/// The same between ruptures: long enough for what a crack sets free to go through the bead.
+pub(super) const AFTER_RUPTURE: Target = Target { steps: 300, ..ON_THE_WAY };
 /// The same of the end state.
 const AT_THE_END: Target = Target { grains: 1e-4, gel: 1e-4, balance: 1e-5, steps: 60_000, required: true };
 /// The same of an end state of beads alone. Without grains between them nothing but smooth
@@ -72,29 +75,26 @@ pub(crate) fn march(
     let watch = Watch { scene, gel, number, height_before: bed.height };
     show_dry_bed(&watch, &bed, observer)?;
     let mut march = March::new(scene, &bed, gel);
-    let free = gel.free_stretch();
-    let start = bed.stretch.min(free);
-    let count = scene.march.increments;
-    let mut history = Vec::with_capacity(count);
-    let mut stretch = start;
-    for increment in 1..=count {
-        let next = start * (free / start).powf(increment as f64 / count as f64);
-        let stage = if increment == count { *gel } else { gel.limited_to(next) };
-        let settled = march.hold_still(&stage, next / stretch, increment == count) || {
-            march.swell(gel, stretch, next);
-            false
-        };
-        stretch = next;
-        if !settled {
-            let target = if increment < count { ON_THE_WAY } else { march.at_the_end() };
-            march.rest(&stage, target).map_err(|reason| RunError::March { increment, reason })?;
+    let ramp = Ramp { gel, start: bed.stretch.min(gel.free_stretch()), count: scene.march.increments };
+    let beads = march.bodies.beads.iter().map(Relaxation::bead);
+    let mut tearing =
+        Tearing::new(scene, gel, number, beads).map_err(|reason| RunError::March { increment: 1, reason })?;
+    let mut history = Vec::with_capacity(ramp.count);
+    for increment in 1..=ramp.count {
+        let at = |reason| RunError::March { increment, reason };
+        let stage = march.grow(&ramp, increment).map_err(at)?;
+        if let Some(tearing) = &mut tearing {
+            march.tear(&watch, &ramp, increment, tearing).map_err(at)?;
         }
-        measure::guard(&march.bodies).map_err(|reason| RunError::March { increment, reason })?;
         let seen = watch.see_drained(&stage, &march.bodies.beads);
-        let step =
+        let mut step =
             watch.step((increment, stage.free_stretch()), &seen, &march.bodies.grains, march.quality(&stage));
+        if let Some(tearing) = &mut tearing {
+            tearing.record(march.bodies.beads.iter().map(Relaxation::bead));
+            step.tear_probability = tearing.whole_mean(increment).unwrap_or(step.tear_probability);
+        }
         history.push(step);
-        let mut onwards = observer.step(&step, count);
+        let mut onwards = observer.step(&step, ramp.count);
         if observer.looks() && onwards.is_continue() {
             onwards = observer.look(march.snapshot(scene, number, &seen, step));
         }
@@ -103,7 +103,34 @@ pub(crate) fn march(
         }
     }
     let seen = watch.see_drained(gel, &march.bodies.beads);
-    Ok(march.outcome(&watch, bed, &seen, march.quality(gel), history))
+    let outcome = march.outcome(&watch, bed, &seen, march.quality(gel), history);
+    Ok(match tearing {
+        None => outcome,
+        Some(tearing) => tearing.tell(outcome, ramp.moment(ramp.count)),
+    })
+}
+
+/// How the gel's free stretch rises from increment to increment.
+pub(super) struct Ramp<'a> {
+    gel: &'a Gel,
+    start: f64,
+    pub(super) count: usize,
+}
+
+impl Ramp<'_> {
+    /// Free stretch at an increment.
+    fn stretch(&self, increment: usize) -> f64 {
+        self.start * (self.gel.free_stretch() / self.start).powf(increment as f64 / self.count as f64)
+    }
+
+    /// The gel at an increment.
+    pub(super) fn stage(&self, increment: usize) -> Gel {
+        if increment == self.count { *self.gel } else { self.gel.limited_to(self.stretch(increment)) }
+    }
+
+    pub(super) fn moment(&self, increment: usize) -> Moment {
+        Moment { increment, free_stretch: self.stage(increment).free_stretch(), time_s: 0.0 }
+    }
 }
 
 /// Shows the observer the grains' contacts before anything swells.
@@ -130,6 +157,7 @@ pub(super) fn show_dry_bed(
 }
 
 /// The bodies of a pack on their way.
+#[derive(Clone)]
 pub(super) struct March {
     pub(super) bodies: Bodies,
     /// The beads' centres are held.
@@ -149,6 +177,28 @@ impl March {
         let mut march = Self { bodies, hold_beads: scene.beads.held, pot: Pot::of(scene) };
         march.weigh();
         march
+    }
+
+    /// Grows the beads by one increment and brings everything to rest. Returns their gel.
+    pub(super) fn grow(&mut self, ramp: &Ramp<'_>, increment: usize) -> Result<Gel, String> {
+        let (stretch, next) = (ramp.stretch(increment - 1), ramp.stretch(increment));
+        let (stage, last) = (ramp.stage(increment), increment == ramp.count);
+        if !self.hold_still(&stage, next / stretch, last) {
+            self.swell(ramp.gel, stretch, next);
+            let target = if last { self.at_the_end() } else { ON_THE_WAY };
+            self.rest(&stage, target)?;
+        }
+        measure::guard(&self.bodies)?;
+        Ok(stage)
+    }
+
+    /// Brings everything to rest where the beads do not grow.
+    pub(super) fn rest_again(&mut self, gel: &Gel, last: bool) -> Result<(), String> {
+        if self.hold_still(gel, 1.0, last) {
+            return Ok(());
+        }
+        let target = if last { self.at_the_end() } else { AFTER_RUPTURE };
+        self.rest(gel, target)
     }
 
     /// Gives every bead in a pot the weight that goes with what it holds now.
@@ -203,6 +253,7 @@ impl March {
             history,
             positions,
             timing: None,
+            tears: None,
         }
     }
 

@@ -90,6 +90,7 @@ impl Watch<'_> {
                     tear_probability,
                     torn: strength < tear_probability,
                     timing: None,
+                    tears: None,
                 }
             })
             .collect()
@@ -100,7 +101,7 @@ impl Watch<'_> {
         uptake_of_volume_ratio(seen.field.volume.iter().sum::<f64>() / dry, self.scene.gel.dry_density)
     }
 
-    fn tear_probability(&self, seen: &Seen<'_>) -> f64 {
+    pub(super) fn tear_probability(&self, seen: &Seen<'_>) -> f64 {
         seen.tension.tear_probability(&self.scene.strength)
     }
 

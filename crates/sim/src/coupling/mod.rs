@@ -1,11 +1,13 @@
 //! Where grains and gel meet: the dry bed, the march to joint equilibrium, and what
 //! is measured on the way.
 
+mod avalanche;
 mod bed;
 mod bodies;
 mod checkpoint;
 mod contents;
 mod course;
+mod cycles;
 mod in_time;
 mod march;
 mod measure;
@@ -13,6 +15,8 @@ mod neighbourhood;
 mod pot;
 mod records;
 mod snapshot;
+mod tearing;
+mod tears_in_time;
 mod touching;
 
 pub(crate) use bed::DryBed;

@@ -36,6 +36,10 @@ impl March {
             wall: grains.wall.map(|radius| radius as f32),
             open: grains.lid == Lid::Open,
             time_s: None,
+            ruptured: match scene.toughness {
+                None => Vec::new(),
+                Some(_) => beads.iter().map(|seen| seen.bead.bead().lattice().ruptured().collect()).collect(),
+            },
         }
     }
 

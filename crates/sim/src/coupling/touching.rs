@@ -1,6 +1,6 @@
 //! Beads that press on each other.
 
-use bedswell_gel::{BeadContact, Relaxation};
+use bedswell_gel::{Bead, BeadContact, Relaxation};
 use bedswell_geometry::{Cell, Vector};
 
 /// Two beads that may touch.
@@ -15,7 +15,23 @@ pub(super) struct Pair {
     pub(super) force: Vector,
 }
 
+/// Distance (m) of a place from the nearest point of a bead's skin.
+pub(super) fn nearest_skin(bead: &Bead, place: &Vector) -> f64 {
+    let points = 0..bead.lattice().skin_point_count();
+    points.map(|point| (bead.skin_point(point) - place).norm()).fold(f64::INFINITY, f64::min)
+}
+
 impl Pair {
+    /// The other bead, seen from one of the two, and the shift to the image that this one sees
+    /// (m).
+    pub(super) fn seen_from(&self, bead: usize) -> Option<(usize, Vector)> {
+        match bead {
+            first if first == self.first => Some((self.second, self.shift)),
+            second if second == self.second => Some((self.first, -self.shift)),
+            _ => None,
+        }
+    }
+
     pub(super) fn press(&mut self, beads: &mut [Relaxation]) {
         let (first, second) = two(beads, self.first, self.second);
         let moved = first.last_way() + second.last_way();

@@ -8,6 +8,7 @@ mod run_folder;
 mod states;
 mod table;
 mod tables;
+mod tear_tables;
 
 pub use error::FolderError;
 pub use read_run::{ReadError, RunFolder, read_run_folder};
@@ -19,3 +20,4 @@ pub(crate) use fingerprint::{checksum, fingerprint};
 pub(crate) use run_folder::{write_json, write_scene};
 pub(crate) use table::{Column, Table, Values};
 pub(crate) use tables::{bead_columns, quality_columns, timing_columns};
+pub(crate) use tear_tables::tear_columns;

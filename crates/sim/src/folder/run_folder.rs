@@ -2,6 +2,7 @@ use super::atomic::write_text;
 use super::checkpoint::CHECKPOINT_FILE;
 use super::states::{STATES_FOLDER, read_state, state_path};
 use super::tables::{beads_table, course_table, grains_table, history_table};
+use super::tear_tables::{cycles_table, events_table};
 use super::{FolderError, fingerprint};
 use crate::{BeadOutcome, ForceOutcome, PackOutcome, Quality, SPHERES_FILE, Scene, read_scene};
 use serde::{Deserialize, Serialize};
@@ -13,7 +14,7 @@ pub(super) const SUMMARY_FILE: &str = "summary.json";
 /// Written first.
 pub(super) const SCENE_FILE: &str = "scene.toml";
 /// Every file of a run folder, besides the states.
-const FILES: [&str; 12] = [
+const FILES: [&str; 16] = [
     SUMMARY_FILE,
     SCENE_FILE,
     SPHERES_FILE,
@@ -25,6 +26,10 @@ const FILES: [&str; 12] = [
     "grains.csv",
     "course.parquet",
     "course.csv",
+    "events.parquet",
+    "events.csv",
+    "cycles.parquet",
+    "cycles.csv",
     CHECKPOINT_FILE,
 ];
 
@@ -200,6 +205,12 @@ fn write_files(
 ) -> Result<RunSummary, FolderError> {
     if let Some(timing) = &outcome.timing {
         course_table(&timing.course).write(folder, "course", csv)?;
+    }
+    if let Some(tears) = &outcome.tears {
+        events_table(&tears.events).write(folder, "events", csv)?;
+        if outcome.timing.is_some() {
+            cycles_table(&tears.cycles).write(folder, "cycles", csv)?;
+        }
     }
     history_table(outcome).write(folder, "history", csv)?;
     beads_table(&outcome.beads).write(folder, "beads", csv)?;

@@ -10,11 +10,11 @@ pub(super) const STATES_FOLDER: &str = "states";
 /// First bytes of every state.
 const MAGIC: &[u8; 8] = b"bedswell";
 /// The form of what follows; a reader refuses what it does not know.
-const FORMAT: u32 = 4;
-/// Forms 1 (in which nothing touches a wall) and 2 lack the last three fields, which say
-/// that there is a pot, that it is open, and the time; form 3 lacks the time. None of them,
-/// in the wire format.
-const NOTHING: [u8; 3] = [0; 3];
+const FORMAT: u32 = 5;
+/// Forms 1 (in which nothing touches a wall) and 2 lack the last four fields, which say
+/// that there is a pot, that it is open, the time, and what has ruptured; form 3 lacks the last
+/// two, form 4 the last. None of them, in the wire format.
+const NOTHING: [u8; 4] = [0; 4];
 /// Bytes before the body: magic, format (u32), checksum (u64), both little-endian.
 const HEAD: usize = 20;
 
@@ -70,7 +70,8 @@ pub(super) fn read_state(path: &Path) -> Result<State, ReadError> {
     }
     let state: State = match format {
         FORMAT => postcard::from_bytes(body),
-        3 => postcard::from_bytes(&[body, &NOTHING[..1]].concat()),
+        4 => postcard::from_bytes(&[body, &NOTHING[..1]].concat()),
+        3 => postcard::from_bytes(&[body, &NOTHING[..2]].concat()),
         _ => postcard::from_bytes(&[body, &NOTHING].concat()),
     }
     .map_err(|_| damaged())?;
@@ -97,6 +98,7 @@ mod tests {
             wall,
             open: wall.is_some(),
             time_s: wall.map(f64::from),
+            ruptured: Vec::new(),
         }
     }
 
@@ -111,12 +113,12 @@ mod tests {
         let folder = tempfile::tempdir().unwrap();
         let path = folder.path().join("old.state");
         let body = postcard::to_stdvec(&state(None)).unwrap();
-        for (format, missing) in [(1, 3), (2, 3), (3, 1)] {
+        for (format, missing) in [(1, 4), (2, 4), (3, 2), (4, 1)] {
             write_form(&path, format, &body[..body.len() - missing]);
             assert_eq!(read_state(&path).unwrap(), state(None), "form {format}");
         }
         write_form(&path, FORMAT + 1, &body);
-        assert!(matches!(read_state(&path), Err(ReadError::Newer { format: 5, known: 4, .. })));
+        assert!(matches!(read_state(&path), Err(ReadError::Newer { format: 6, known: 5, .. })));
     }
 
     #[test]

@@ -1,3 +1,4 @@
+use super::tear_tables::{course_columns, pack_columns, tear_columns};
 use super::{Column, Table, Values};
 use crate::{BeadOutcome, BeadTiming, CoursePoint, GrainRecord, PackOutcome, Quality, Step};
 
@@ -43,6 +44,7 @@ pub(super) fn beads_table(beads: &[BeadOutcome]) -> Table {
     let mut columns = vec![Column::new("bead", Values::Count((0..beads.len() as i64).collect()))];
     columns.extend(bead_columns(beads.iter()));
     columns.extend(timing_columns(beads.iter()));
+    columns.extend(tear_columns(beads.iter()));
     Table { columns }
 }
 
@@ -68,13 +70,14 @@ pub(super) fn course_table(course: &[CoursePoint]) -> Table {
     let number = |name, value: fn(&CoursePoint) -> f64| {
         Column::new(name, Values::Number(course.iter().map(value).collect()))
     };
-    let columns = vec![
+    let mut columns = vec![
         number("time_s", |point| point.time_s),
         Column::new("bead", Values::Count(course.iter().map(|point| point.bead as i64).collect())),
         number("uptake_g_per_g", |point| point.uptake_g_per_g),
         number("tension_q99_pa", |point| point.tension_q99_pa),
         number("largest_tension_pa", |point| point.largest_tension_pa),
     ];
+    columns.extend(course_columns(course));
     Table { columns }
 }
 
@@ -96,6 +99,7 @@ pub(super) fn history_table(outcome: &PackOutcome) -> Table {
         number("tension_q99_pa", |step| step.tension_q99_pa),
         number("tear_probability", |step| step.tear_probability),
     ]);
+    columns.extend(outcome.tears.iter().flat_map(|tears| pack_columns(&tears.cracks)));
     columns.extend(quality_columns(history.iter().map(|step| &step.quality)));
     Table { columns }
 }

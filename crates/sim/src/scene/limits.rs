@@ -6,6 +6,7 @@ use super::raw::Node;
 use super::room::{check_pot, check_room};
 use super::section::Entry;
 use super::time::check_records;
+use super::toughness::check_toughness;
 use super::{BeadAmount, Scene, SceneEstimate, SoilGrading};
 use bedswell_geometry::{Cell, Vector};
 use bedswell_grains::MassCurve;
@@ -40,6 +41,7 @@ pub(crate) fn check_limits(document: &Node, scene: &Scene) -> Result<(), SceneEr
     check_pot(document, scene, &estimate)?;
     check_room(document, scene, &estimate)?;
     check_records(document, scene)?;
+    check_toughness(document, scene, &estimate)?;
     check_given_centres(document, scene)
 }
 

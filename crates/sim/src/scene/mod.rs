@@ -1,3 +1,4 @@
+mod array;
 mod bed;
 mod budget;
 mod concern;
@@ -16,6 +17,7 @@ mod section;
 mod soil;
 mod spheres;
 mod time;
+mod toughness;
 mod unit;
 mod write;
 
@@ -24,6 +26,7 @@ pub use error::{Place, SceneError};
 pub use estimate::SceneEstimate;
 pub use model::{BeadAmount, Beads, Bed, Gel, March, Scene, Soil, SoilGrading, Strength, Time, Water};
 pub use read::read_scene;
+pub use toughness::Toughness;
 pub use write::SPHERES_FILE;
 
 pub(crate) use raw::{Node, Value, read_document};

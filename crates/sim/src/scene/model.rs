@@ -1,3 +1,4 @@
+use super::Toughness;
 use bedswell_gel::History;
 use serde::{Deserialize, Serialize};
 
@@ -21,6 +22,8 @@ pub struct Scene {
     pub water: Water,
     /// The gel's strength.
     pub strength: Strength,
+    /// What it takes to tear the gel, if beads are to tear in earnest.
+    pub toughness: Option<Toughness>,
     /// How the march from dry to equilibrium is taken.
     pub march: March,
     /// The history in time, if the bed is followed through one.

@@ -7,13 +7,15 @@ use super::raw::{Node, Value, read_document};
 use super::section::{Entry, Section, refuse_unknown};
 use super::soil::{read_no_soil, read_soil, to_vector};
 use super::time::{POTENTIALS, read_time};
+use super::toughness::read_toughness;
 use super::unit::Kind;
 use super::{BeadAmount, Beads, March, Scene, SoilGrading, Strength, Water};
 use bedswell_geometry::Vector;
 use std::path::Path;
 
 /// The tables of a scene file.
-const TABLES: [&str; 9] = ["scene", "bed", "soil", "beads", "gel", "water", "strength", "march", "time"];
+const TABLES: [&str; 10] =
+    ["scene", "bed", "soil", "beads", "gel", "water", "strength", "toughness", "march", "time"];
 /// Any number at all; what is allowed is checked afterwards.
 const ANY: std::ops::RangeInclusive<f64> = f64::NEG_INFINITY..=f64::INFINITY;
 
@@ -64,6 +66,7 @@ pub(crate) fn scene_from(document: &Node, path: &Path) -> Result<Scene, SceneErr
         gel: read_gel(document)?,
         water,
         strength: read_strength(document)?,
+        toughness: read_toughness(document)?,
         march: read_march(document)?,
         time: read_time(document, &water)?,
     };

@@ -1,3 +1,4 @@
+use super::array::read_array;
 use super::error::SceneError;
 use super::friction::read_friction;
 use super::raw::Node;
@@ -8,7 +9,7 @@ use super::{Soil, SoilGrading};
 use bedswell_geometry::{Cell, Sphere, Vector};
 use std::path::Path;
 
-const KNOWN: [&str; 12] = [
+const KNOWN: [&str; 13] = [
     "density",
     "friction",
     "rolling_friction",
@@ -17,6 +18,7 @@ const KNOWN: [&str; 12] = [
     "median",
     "spread",
     "fines_cutoff",
+    "array",
     "spheres",
     "spheres_unit",
     "cell",
@@ -46,28 +48,35 @@ pub(crate) fn read_soil(document: &Node, scene_path: &Path) -> Result<(Soil, Vec
     let fines_cutoff = section.get("fines_cutoff").map(|entry| entry.positive(Kind::Length)).transpose()?;
 
     let mut corner = Vector::zeros();
-    let grading = match (section.get("sieves"), section.get("median"), section.get("spheres")) {
-        (Some(sieves), None, None) => read_sieves(&sieves, fines_cutoff)?,
-        (None, Some(median), None) => SoilGrading::Lognormal {
+    let ways = ["sieves", "median", "spheres", "array"].map(|key| section.get(key));
+    let grading = match ways {
+        [Some(sieves), None, None, None] => read_sieves(&sieves, fines_cutoff)?,
+        [None, Some(median), None, None] => SoilGrading::Lognormal {
             median: median.positive(Kind::Length)?,
             spread: section.need("spread", "spread = 1.4")?.number(1.0..=5.0)?,
             fines_cutoff,
         },
-        (None, None, Some(spheres)) => {
+        [None, None, Some(spheres), None] => {
             let (grading, lower) = read_listed(&section, &spheres, scene_path)?;
             corner = lower;
             grading
         }
-        (None, None, None) => {
+        [None, None, None, Some(array)] => {
+            let read = read_array(document)?;
+            let (grading, lower) = read.ok_or_else(|| array.refuse("must be a table, [soil.array]"))?;
+            corner = lower;
+            grading
+        }
+        [None, None, None, None] => {
             let mend = "write one of sieves = [[\"0.5 mm\", 0.0], [\"2 mm\", 100.0]], median = \"1.2 mm\" with \
-                        spread = 1.4, or spheres = \"bed.csv\"";
+                        spread = 1.4, spheres = \"bed.csv\", or a table [soil.array] with diameter and gap";
             return Err(section.missing("sieves", mend.into()));
         }
-        (sieves, median, spheres) => {
-            let twice: Vec<Entry<'_>> = [spheres, median, sieves].into_iter().flatten().collect();
-            return Err(
-                twice[0].refuse("the grain sizes are given twice; keep one of sieves, median and spheres")
-            );
+        several => {
+            let twice: Vec<Entry<'_>> = several.into_iter().rev().flatten().collect();
+            return Err(twice[0].refuse(
+                "the grain sizes are given twice; keep one of sieves, median, spheres and [soil.array]",
+            ));
         }
     };
     let soil = Soil { grading, density, friction, rolling_friction };

@@ -1,7 +1,7 @@
 //! A checked scene as text that reads back to the same scene, bit for bit.
 
 use super::unit::Kind;
-use super::{BeadAmount, Gel, Scene, SoilGrading, Strength, Time};
+use super::{BeadAmount, Gel, Scene, SoilGrading, Strength, Time, Toughness};
 use bedswell_gel::Change;
 use std::fmt::Write;
 
@@ -65,6 +65,9 @@ impl Scene {
         text.line("temperature", with_unit(self.water.temperature, Kind::Temperature));
 
         text.strength(&self.strength);
+        if let Some(toughness) = &self.toughness {
+            text.toughness(toughness);
+        }
 
         text.table("march");
         text.line("increments", self.march.increments);
@@ -165,6 +168,17 @@ impl Writer {
         if let Some(length) = strength.length {
             self.line("length", with_unit(length, Kind::Length));
         }
+    }
+
+    fn toughness(&mut self, toughness: &Toughness) {
+        self.table("toughness");
+        self.line("energy", with_unit(toughness.energy, Kind::FractureEnergy));
+        if let Some(length) = toughness.length {
+            self.line("length", with_unit(length, Kind::Length));
+        }
+        self.line("scatter", number(toughness.scatter));
+        self.line("torn_area", number(toughness.torn_area));
+        self.line("torn_share", number(toughness.torn_share));
     }
 
     fn table(&mut self, name: &str) {

@@ -2,12 +2,13 @@
 
 use crate::scene::{Node, Value};
 
-const CHOICES: [&[&str]; 5] = [
+const CHOICES: [&[&str]; 6] = [
     &["bed.lid_stress", "bed.depth"],
     &["beads.count", "beads.dose", "beads.centres"],
     &["soil.friction", "soil.angle_of_repose"],
     &["soil.rolling_friction", "soil.angle_of_repose"],
-    &["soil.sieves", "soil.median", "soil.spheres"],
+    &["soil.sieves", "soil.median", "soil.spheres", "soil.array"],
+    &["toughness.scatter", "toughness.modulus"],
 ];
 
 /// Takes the keys out of the scene that `key` stands for, so that `bed.depth` can vary in a

@@ -2,6 +2,7 @@ use super::journal::{JOURNAL_FILE, Journal, PackEnd, Row};
 use super::outcomes::outcomes_table;
 use super::plan::Plan;
 use super::summary::summarise;
+use super::survival::{agreement_table, survival_table};
 use super::tables::levels_table;
 use super::{Study, StudySummary};
 use crate::folder::{fingerprint, write_json, write_scene};
@@ -108,6 +109,13 @@ pub fn run_study(
     outcomes_table(study, &plan)
         .write(folder, "outcomes", options.csv)
         .and_then(|()| levels_table(study, &summary.levels).write(folder, "levels", options.csv))
+        .and_then(|()| {
+            survival_table(study, &plan).map_or(Ok(()), |table| table.write(folder, "survival", options.csv))
+        })
+        .and_then(|()| {
+            let judged = summary.agreement.as_ref().map(agreement_table);
+            judged.map_or(Ok(()), |table| table.write(folder, "agreement", options.csv))
+        })
         .and_then(|()| write_json(&folder.join("summary.json"), &summary))
         .map_err(|error| error.keeping(kept))?;
     Ok(summary)

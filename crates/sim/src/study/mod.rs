@@ -14,6 +14,7 @@ mod read;
 mod read_factor;
 mod response;
 mod summary;
+mod survival;
 mod tables;
 
 pub use conduct::{PackRunner, StudyObserver, StudyOptions, run_study};
@@ -23,3 +24,6 @@ pub use model::{Level, Study};
 pub use read::read_study;
 pub use response::{RESPONSES, Response, TIMES};
 pub use summary::{FailedPack, LevelSummary, StudySummary};
+pub use survival::{
+    FactorSurvival, GroupComparison, JudgedBin, StudySurvival, SurvivalGroup, WeakestLinkAgreement,
+};

@@ -3,7 +3,7 @@ use super::journal::PackEnd;
 use super::plan::Plan;
 use super::tables::factor_columns;
 use crate::PackOutcome;
-use crate::folder::{Column, Table, Values, bead_columns, quality_columns, timing_columns};
+use crate::folder::{Column, Table, Values, bead_columns, quality_columns, tear_columns, timing_columns};
 use std::sync::Arc;
 
 /// One row per bead of every pack, in order; a failed pack has one row that says why.
@@ -32,6 +32,9 @@ pub(crate) fn outcomes_table(study: &Study, plan: &Plan) -> Table {
     );
     columns.extend(
         timing_columns(ended.clone().map(|(pack, bead)| &pack.beads[*bead])).into_iter().map(if_finished),
+    );
+    columns.extend(
+        tear_columns(ended.clone().map(|(pack, bead)| &pack.beads[*bead])).into_iter().map(if_finished),
     );
     columns.extend(
         [

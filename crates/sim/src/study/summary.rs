@@ -2,6 +2,7 @@ use super::effects::effects;
 use super::journal::PackEnd;
 use super::plan::Plan;
 use super::response::responses;
+use super::survival::{StudySurvival, WeakestLinkAgreement, survival, weakest_link_agreement};
 use super::{Effects, Factor, Response, Study};
 use crate::PackOutcome;
 use crate::statistics::{Estimate, bootstrap_mean, clopper_pearson, clustered_fraction, wilson};
@@ -32,6 +33,12 @@ pub struct StudySummary {
     pub levels: Vec<LevelSummary>,
     /// What the factors do to each response; empty without factors.
     pub effects: Vec<Effects>,
+    /// How long beads stayed whole, where scenes give the gel a toughness.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub survival: Option<StudySurvival>,
+    /// The weakest link's tear probabilities held against the beads that tore there.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub agreement: Option<WeakestLinkAgreement>,
 }
 
 /// What the packs of one level come to. Intervals are two-sided at 95 %.
@@ -111,6 +118,8 @@ pub(crate) fn summarise(study: &Study, plan: &Plan, fingerprint: &str) -> StudyS
         overall: LevelSummary { stopped_early, ..summarise_packs(study, plan.rows(), seed) },
         levels,
         effects: effects(study, plan, seed),
+        survival: survival(study, plan),
+        agreement: weakest_link_agreement(plan),
     }
 }
 
