@@ -77,3 +77,53 @@ pub(crate) fn crack_faces(
     }
     (points, triangles)
 }
+
+#[cfg(test)]
+mod tests {
+    use crate::model::BeadModel;
+    use bedswell_gel::{Face, Lattice};
+
+    /// A ball of 12 voxels across, cut through its middle.
+    fn halves() -> BeadModel {
+        let whole = Lattice::new(12);
+        let middle = |&(low, _, axis): &(usize, usize, usize)| {
+            axis == 2 && (whole.voxel_offset(low)[2] + 0.5).abs() < 1e-9
+        };
+        let face = |(low, _, axis): (usize, usize, usize)| Face { low: low as u32, axis: axis as u8 };
+        let faces: Vec<Face> = whole.bonds().into_iter().filter(middle).map(face).collect();
+        BeadModel::new(12, &faces)
+    }
+
+    #[test]
+    fn both_faces_of_a_cut_are_skin_and_cover_the_mid_section() {
+        let (model, whole) = (halves(), BeadModel::new(12, &[]));
+        let first = whole.skin.len() as u32;
+        let place = |point: u32| {
+            let nodes = model.skin[point as usize].nodes.iter();
+            nodes.fold([0.0; 3], |sum, &(node, weight)| {
+                let at = model.lattice.node_offset(node as usize);
+                [0, 1, 2].map(|axis| sum[axis] + f64::from(weight) * at[axis])
+            })
+        };
+        let (mut up, mut down) = (0.0, 0.0);
+        for triangle in model.triangles.iter().filter(|triangle| triangle[0] >= first) {
+            let [a, b, c] = triangle.map(place);
+            let twice = (b[0] - a[0]) * (c[1] - a[1]) - (b[1] - a[1]) * (c[0] - a[0]);
+            if twice > 0.0 { up += 0.5 * twice } else { down -= 0.5 * twice }
+        }
+        let section = std::f64::consts::PI * 36.0;
+        assert!((up / section - 1.0).abs() < 0.05 && (up - down).abs() < 1e-6 * up, "{up} {down} {section}");
+    }
+
+    #[test]
+    fn no_triangle_of_the_outer_skin_spans_a_cut() {
+        let (model, whole) = (halves(), BeadModel::new(12, &[]));
+        let side =
+            |point: u32| model.lattice.voxel_offset(model.skin[point as usize].voxel as usize)[2] > 0.0;
+        let outer: Vec<_> =
+            model.triangles.iter().filter(|triangle| (triangle[0] as usize) < whole.skin.len()).collect();
+        assert!(outer.len() < whole.triangles.len() && outer.len() > whole.triangles.len() * 9 / 10);
+        assert!(outer.iter().all(|[a, b, c]| side(*a) == side(*b) && side(*b) == side(*c)));
+        assert!(model.grid().cells.len() < whole.grid().cells.len());
+    }
+}
