@@ -79,5 +79,6 @@ fn state(grains: usize, across: usize, increment: usize) -> State {
         wall: None,
         open: false,
         time_s: None,
+        ruptured: Vec::new(),
     }
 }
