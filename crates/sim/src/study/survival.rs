@@ -8,6 +8,7 @@ use crate::statistics::{
 };
 use crate::{BeadOutcome, Moment, PackOutcome};
 use serde::{Deserialize, Serialize};
+use std::collections::BTreeMap;
 use std::sync::Arc;
 
 /// How long beads stayed whole, where scenes give the gel a toughness. Beads are taken as
@@ -44,7 +45,8 @@ pub struct SurvivalGroup {
     pub torn: u64,
     /// Torn beads over beads.
     pub torn_fraction: f64,
-    /// Lower exact 95 % limit of that, beads of one pack being alike; none for a single pack.
+    /// Lower exact 95 % limit of that, beads of packs of one number being alike; none for a
+    /// single pack.
     pub torn_fraction_low: Option<f64>,
     /// Its upper limit.
     pub torn_fraction_high: Option<f64>,
@@ -142,7 +144,13 @@ impl Group<'_> {
     }
 
     fn summary(&self, curve: &SurvivalCurve) -> SurvivalGroup {
-        let torn: Vec<(u64, u64)> = self.packs.iter().map(|pack| pack.torn_beads()).collect();
+        // Packs of one number share their random choices at every combination.
+        let mut alike: BTreeMap<u64, (u64, u64)> = BTreeMap::new();
+        for pack in &self.packs {
+            let (sum, own) = (alike.entry(pack.pack).or_default(), pack.torn_beads());
+            *sum = (sum.0 + own.0, sum.1 + own.1);
+        }
+        let torn: Vec<(u64, u64)> = alike.into_values().collect();
         let interval = clustered_fraction(&torn).map(|fraction| fraction.interval);
         let (torn, beads) = (self.beads().filter(|bead| bead.torn).count(), self.beads().count());
         let median = curve.median();
