@@ -108,7 +108,11 @@ fn doubtful_scenes_say_what_is_doubtful() {
     let rise = 0.05 * ratio + 0.412 * ratio * ratio;
     let concerns = pot.concerns().unwrap();
     assert!(
-        matches!(concerns[..], [Concern::NarrowPot { rise: told, .. }] if (told - rise).abs() < 1e-12),
+        matches!(
+            concerns[..],
+            [Concern::CoarseStrength { across: 12, .. }, Concern::NarrowPot { rise: told, .. }]
+                if (told - rise).abs() < 1e-12
+        ),
         "{concerns:?}"
     );
     pot.bed.grains = 40;
