@@ -24,7 +24,7 @@ fn compared(survival: &StudySurvival, factor: &FactorSurvival) -> String {
             digits(test.chi_squared),
             test.degrees_of_freedom,
             if test.degrees_of_freedom == 1 { "" } else { "s" },
-            if test.p_value < 1e-4 { "<0.0001".into() } else { digits(test.p_value) },
+            probability(test.p_value),
         ),
     };
     format!("{}\n{test}", groups(survival, &factor.factor, &factor.groups))
@@ -64,11 +64,12 @@ fn groups(survival: &StudySurvival, factor: &str, groups: &[SurvivalGroup]) -> S
 fn agreement(judged: &WeakestLinkAgreement) -> String {
     let rows = judged.bins.iter().map(|judged| {
         let bin = &judged.bin;
-        let range = format!("{} to {}", digits(bin.lowest), digits(bin.highest));
+        let [lowest, highest] = [bin.lowest, bin.highest].map(probability);
+        let range = if lowest == highest { lowest } else { format!("{lowest} to {highest}") };
         let verdict = if judged.agrees { "" } else { "differ" };
         let observed =
             Measure { value: bin.observed, low: Some(bin.interval.low), high: Some(bin.interval.high) };
-        let labels = vec![range, bin.count.to_string(), digits(bin.predicted), verdict.into()];
+        let labels = vec![range, bin.count.to_string(), probability(bin.predicted), verdict.into()];
         (labels, vec![Some(observed)])
     });
     let labels = ["weakest link", "beads", "foretold", ""].map(str::to_owned);
@@ -79,11 +80,16 @@ fn agreement(judged: &WeakestLinkAgreement) -> String {
         rows: rows.collect(),
     };
     let test = judged.p_value.map_or(String::new(), |p| {
-        let p = if p < 1e-4 { "<0.0001".into() } else { digits(p) };
+        let p = probability(p);
         format!("\nIf the weakest link were right, as large a difference would have p {p}.")
     });
     format!(
         "Tear probability by the weakest link against beads that tore:\n{}{test}",
         table.lines().join("\n")
     )
+}
+
+/// As short as a table wants it.
+fn probability(value: f64) -> String {
+    if value < 1e-4 { "<0.0001".into() } else { digits(value) }
 }
