@@ -3,34 +3,13 @@
 
 #![allow(clippy::print_stdout, reason = "the measured figures are worth reading")]
 
-use bedswell_gel::{Change, History, Outside, Surroundings};
-use bedswell_sim::{
-    BeadAmount, Checkpoint, Observer, PackOutcome, RunError, Scene, Step, Time, read_scene, run_pack,
-};
-use std::ops::ControlFlow;
-use std::path::{Path, PathBuf};
+mod support;
 
-const HOUR: f64 = 3600.0;
-
-fn scenes() -> PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes")
-}
+use bedswell_sim::{BeadAmount, PackOutcome, RunError, Scene, read_scene, run_pack};
+use support::{HOUR, Resuming, Stopping, in_time, scenes};
 
 fn example(name: &str) -> Scene {
     read_scene(&scenes().join(name)).unwrap()
-}
-
-/// The scene over time, in water at these potentials (Pa) from these times (s) on.
-fn in_time(scene: Scene, until: f64, potentials: &[(f64, f64)]) -> Scene {
-    let water = scene.water;
-    let change = |&(time, potential): &(f64, f64)| {
-        let surroundings = Surroundings { potential, salt: water.salt, temperature: water.temperature };
-        Change { time, outside: Outside { surroundings, supply: None } }
-    };
-    let history = History::new(potentials.iter().map(change).collect()).unwrap();
-    let time =
-        Time { until, diffusion: 5e-10, exponent: 1.5, contact_seals: true, step_error: 0.02, history };
-    Scene { time: Some(time), ..scene }
 }
 
 /// A bead that lifts a few grains under a light lid.
@@ -107,40 +86,6 @@ fn a_bed_dries_under_suction_and_drinks_again() {
     assert_eq!(seconds, [0.25, 1.0, 1.25, 2.0, 2.25, 3.0].map(|hours| hours * HOUR));
     assert!(uptakes[3] < 0.2 * uptakes[1] && uptakes[5] > 3.0 * uptakes[3]);
     assert!(heaves[3] < heaves[1] && heaves[5] > heaves[3]);
-}
-
-/// Stops after an increment and keeps what is needed to go on.
-struct Stopping {
-    after: usize,
-    kept: Option<Checkpoint>,
-}
-
-impl Observer for Stopping {
-    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
-        ControlFlow::Continue(())
-    }
-
-    fn keep(&mut self, checkpoint: &Checkpoint) -> ControlFlow<()> {
-        self.kept = Some(checkpoint.clone());
-        if checkpoint.increment() == self.after { ControlFlow::Break(()) } else { ControlFlow::Continue(()) }
-    }
-}
-
-/// Goes on from what was kept.
-struct Resuming {
-    kept: Option<Checkpoint>,
-    seen: Vec<usize>,
-}
-
-impl Observer for Resuming {
-    fn step(&mut self, step: &Step, _: usize) -> ControlFlow<()> {
-        self.seen.push(step.increment);
-        ControlFlow::Continue(())
-    }
-
-    fn resume(&mut self) -> Option<Checkpoint> {
-        self.kept.take()
-    }
 }
 
 #[test]

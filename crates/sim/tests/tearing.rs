@@ -3,19 +3,14 @@
 
 #![allow(clippy::print_stdout, reason = "the measured figures are worth reading")]
 
-use bedswell_gel::{Change, History, Outside, Surroundings};
+mod support;
+
 use bedswell_sim::{
-    BeadAmount, Checkpoint, Observer, PackOutcome, Region, RunError, Scene, State, Step, Time, Toughness,
-    read_scene, run_pack, write_run_folder,
+    BeadAmount, Observer, PackOutcome, Region, RunError, Scene, State, Step, Time, Toughness, read_scene,
+    run_pack, write_run_folder,
 };
 use std::ops::ControlFlow;
-use std::path::{Path, PathBuf};
-
-const HOUR: f64 = 3600.0;
-
-fn scenes() -> PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).join("../../scenes")
-}
+use support::{HOUR, Resuming, Stopping, scenes};
 
 /// A closer array than the example's, with a bead of few voxels.
 fn array() -> Scene {
@@ -46,16 +41,10 @@ fn read_with(changes: &[(&str, &str)]) -> Result<Scene, String> {
     read_scene(&path).map_err(|error| error.to_string())
 }
 
-/// The scene over time, in water at these potentials (Pa) from these times (s) on.
+/// The same with steps as rough as these tests need.
 fn in_time(scene: Scene, until: f64, potentials: &[(f64, f64)]) -> Scene {
-    let water = scene.water;
-    let change = |&(time, potential): &(f64, f64)| {
-        let surroundings = Surroundings { potential, salt: water.salt, temperature: water.temperature };
-        Change { time, outside: Outside { surroundings, supply: None } }
-    };
-    let history = History::new(potentials.iter().map(change).collect()).unwrap();
-    let time = Time { until, diffusion: 5e-10, exponent: 1.5, contact_seals: true, step_error: 0.1, history };
-    Scene { time: Some(time), ..scene }
+    let scene = support::in_time(scene, until, potentials);
+    Scene { time: scene.time.map(|time| Time { step_error: 0.1, ..time }), ..scene }
 }
 
 #[test]
@@ -243,36 +232,6 @@ fn cycled(energy: f64) -> Scene {
     in_time(scene, 9.0 * HOUR, &[(0.0, 0.0), (3.0 * HOUR, -2e4), (6.0 * HOUR, 0.0)])
 }
 
-/// Stops after an increment and keeps what is needed to go on.
-struct Stopping {
-    after: usize,
-    kept: Option<Checkpoint>,
-}
-
-impl Observer for Stopping {
-    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
-        ControlFlow::Continue(())
-    }
-
-    fn keep(&mut self, checkpoint: &Checkpoint) -> ControlFlow<()> {
-        self.kept = Some(checkpoint.clone());
-        if checkpoint.increment() == self.after { ControlFlow::Break(()) } else { ControlFlow::Continue(()) }
-    }
-}
-
-/// Goes on from what was kept.
-struct Resuming(Option<Checkpoint>);
-
-impl Observer for Resuming {
-    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
-        ControlFlow::Continue(())
-    }
-
-    fn resume(&mut self) -> Option<Checkpoint> {
-        self.0.take()
-    }
-}
-
 #[test]
 fn cracks_are_remembered_through_drying_and_a_stopped_run_goes_on_to_the_same_bits() {
     let scene = cycled(9.0);
@@ -293,7 +252,7 @@ fn cracks_are_remembered_through_drying_and_a_stopped_run_goes_on_to_the_same_bi
     let mut stopping = Stopping { after: 2, kept: None };
     let stopped = run_pack(&scene, 0, &mut stopping).unwrap_err();
     assert!(matches!(stopped, RunError::Stopped { increment: 2 }), "{stopped}");
-    let resumed = run_pack(&scene, 0, &mut Resuming(stopping.kept)).unwrap();
+    let resumed = run_pack(&scene, 0, &mut Resuming { kept: stopping.kept, seen: Vec::new() }).unwrap();
     assert!(resumed == whole, "the run that was stopped differs");
 }
 

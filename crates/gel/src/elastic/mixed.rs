@@ -98,11 +98,7 @@ impl Elastic<'_> {
             let cof = cofactors(&f);
             let excess = lanes::dot(f[0], cof[0]) - Lanes::load(&holding.water, slot);
             let slope = Lanes::load(&holding.slopes, slot) + Lanes::load(&holding.stiffness, slot) * excess;
-            let mut tensions = f;
-            for d in 0..3 {
-                tensions[d] = lanes::add(lanes::scale(f[d], mean), lanes::scale(cof[d], slope));
-            }
-            self.scatter(&tensions, &edges, &shape, group, out);
+            self.scatter(&tensions_of(&f, mean, &cof, slope), &edges, &shape, group, out);
         }
     }
 
