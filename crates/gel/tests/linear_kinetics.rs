@@ -24,7 +24,13 @@ fn from(time: f64, potential: f64) -> Change {
 
 /// Chains that do not lag behind, and steps that follow small strains closely.
 fn settings() -> Settings {
-    Settings { step_error: 1e-2 * STRAIN, residual: 1e-3 * STRAIN, retardation: 0.0, ..Settings::default() }
+    Settings {
+        step_error: 1e-2 * STRAIN,
+        residual: 1e-3 * STRAIN,
+        retardation: 0.0,
+        most_retardation: 0.0,
+        ..Settings::default()
+    }
 }
 
 /// A neutral gel of n = 1e-3 whose drained Poisson ratio is the wanted one.
@@ -200,6 +206,7 @@ fn a_dent_relaxes_by_what_the_poisson_ratio_says() {
         step_error: 2e-3,
         residual: 1e-6,
         retardation: 0.0,
+        most_retardation: 0.0,
         corrections: 4,
         ..Settings::default()
     };

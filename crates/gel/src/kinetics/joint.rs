@@ -18,7 +18,7 @@ impl Kinetics {
     pub fn relaxation(&self) -> Relaxation {
         let mut relaxation = Relaxation::new(self.bead.clone());
         let mut lag = self.chain_forces(&self.state.velocities);
-        lag.iter_mut().for_each(|force| *force *= self.retardation());
+        lag.iter_mut().for_each(|force| *force *= self.retardation);
         relaxation.hold(HeldWater { holding: self.holding(1.0), stiffening: 1.0, lag });
         relaxation
     }
@@ -35,7 +35,7 @@ impl Kinetics {
     pub fn lead(&self, from: &Relaxation) -> Lead {
         let stiffening = match self.lag.seconds {
             0.0 => 1.0,
-            seconds => 1.0 + self.retardation() / seconds,
+            seconds => 1.0 + self.retardation / seconds,
         };
         let mut lag = match self.lag.seconds {
             0.0 => vec![0.0; self.state.positions.len()],

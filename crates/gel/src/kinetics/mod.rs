@@ -58,6 +58,9 @@ struct Lag {
     seconds: f64,
 }
 
+/// Time by which chains lag behind, at most, over the time since the outside changed.
+const LAGGING: f64 = 0.5;
+
 /// A bead in time.
 #[derive(Clone, Debug)]
 pub struct Kinetics {
@@ -70,6 +73,10 @@ pub struct Kinetics {
     came_in: f64,
     next: f64,
     outside: Option<Outside>,
+    /// When (s) the outside last changed, and by how long (s) the chains lagged behind in the
+    /// last step.
+    changed: f64,
+    retardation: f64,
     /// Forces on the nodes that stay (N), as the gradient of an energy, if there are any.
     loads: Vec<f64>,
     /// Skin points that press on other beads.
@@ -125,6 +132,8 @@ impl Kinetics {
             came_in: 0.0,
             next: 0.0,
             outside: None,
+            changed: 0.0,
+            retardation: 0.0,
             loads: Vec::new(),
             props: Vec::new(),
             lag: Lag::default(),
@@ -159,6 +168,7 @@ impl Kinetics {
         self.bead.positions.copy_from_slice(&snapshot.positions);
         (self.time, self.came_in, self.next) = (snapshot.time, snapshot.came_in, snapshot.next);
         self.outside = snapshot.outside;
+        (self.changed, self.retardation) = (snapshot.changed, snapshot.retardation);
         self.state.contacts.set_crack_pressures(&snapshot.closed);
         self.ruptures.clone_from(&snapshot.ruptures);
         self.loads.clone_from(&snapshot.loads);
@@ -186,6 +196,8 @@ impl Kinetics {
             came_in: self.came_in,
             next: self.next,
             outside: self.outside,
+            changed: self.changed,
+            retardation: self.retardation,
         }
     }
 
@@ -228,15 +240,20 @@ impl Kinetics {
     pub fn stress(&self) -> StressField {
         let lattice = self.bead.lattice();
         let rates = elastic::gradients(lattice, self.bead.voxel_edge(), &self.state.velocities);
-        let lag = self.retardation();
+        let lag = self.retardation;
         StressField::with(&self.bead, &self.gel(), |voxel, f| {
             (f + rates[voxel] * lag, self.state.slopes[lattice.slots[voxel] as usize])
         })
     }
 
-    /// Time by which the chains lag behind (s).
-    fn retardation(&self) -> f64 {
-        self.settings.retardation * self.permeability.bead_time(self.bead.dry_radius())
+    /// Time by which the chains lag behind in the next step (s).
+    fn next_retardation(&self) -> f64 {
+        let whole = self.permeability.bead_time(self.bead.dry_radius());
+        let Settings { retardation, most_retardation, .. } = self.settings;
+        if !self.ruptures.is_empty() {
+            return retardation * whole;
+        }
+        (LAGGING * (self.time - self.changed)).min(most_retardation * whole).max(retardation * whole)
     }
 
     /// Follows a history to `until` (s) among obstacles that stay where they are; `visit`
@@ -276,6 +293,7 @@ impl Kinetics {
     ) -> Result<Step, KineticsError> {
         assert!(until > self.time, "a step from {} s until {until} s", self.time);
         self.wish(outside, obstacles);
+        self.retardation = self.next_retardation();
         let gel = Gel::new(self.numbers, outside.surroundings);
         let lattice = self.bead.shared_lattice();
         let elastic = Elastic { lattice: &lattice, gel: &gel, edge: self.bead.voxel_edge() };
@@ -326,6 +344,9 @@ impl Kinetics {
             let pace = self.problem(elastic, outside, obstacles).pace(&self.state, &mut scratch);
             self.scratch = scratch;
             self.next = (self.settings.step_error * pace).min(whole);
+            if self.outside != Some(*outside) {
+                self.changed = self.time;
+            }
             self.outside = Some(*outside);
         }
         self.next
@@ -351,7 +372,7 @@ impl Kinetics {
             props: &self.props,
             anchor: self.settings.anchored.then(|| self.anchor(elastic)),
             tolerance: self.settings.residual,
-            retardation: self.retardation(),
+            retardation: self.retardation,
         }
     }
 

@@ -11,13 +11,15 @@ pub struct Settings {
     /// Times per step that contact pressures are corrected for the penetration they took
     /// (default 1). They are corrected further with every step.
     pub corrections: usize,
-    /// Time by which the chains lag behind their force, over R²/D of the reference state
-    /// (default 3e-4): a viscosity that slows what is faster. A dry bead's skin swells so
-    /// much more than its core that it would crease, finer than any lattice. This keeps the
-    /// skin smooth up to 20 across, at the price of a third more tension in the core before
-    /// that time; a third of it lets such a bead crease and unfold, in three times as many
-    /// steps. Swollen beads need none.
+    /// Time by which the chains lag behind their force right after a change outside, over R²/D
+    /// of the reference state (default 3e-4): a viscosity that slows what is faster. A dry
+    /// bead's skin swells so much more than its core that it creases, finer than any lattice
+    /// and in ever more steps; this keeps it smooth. Swollen beads need none.
     pub retardation: f64,
+    /// What that may rise to as half the time since the change (default 1e-2). The core's
+    /// tension early on stays that of the chains, and later nothing is so fast. It does not
+    /// rise in a bead with ruptures, which are fast.
+    pub most_retardation: f64,
     /// Pressed skin passes no water (default).
     pub contact_seals: bool,
     /// A soft spring holds the bead's centre near where it was when a step began: for beads
@@ -35,6 +37,7 @@ impl Default for Settings {
             residual: 1e-5,
             corrections: 1,
             retardation: 3e-4,
+            most_retardation: 1e-2,
             contact_seals: true,
             anchored: false,
             held: false,

@@ -41,4 +41,8 @@ pub struct Snapshot {
     pub next: f64,
     /// What was outside in the last step.
     pub outside: Option<Outside>,
+    /// When the outside last changed (s).
+    pub changed: f64,
+    /// By how long the chains lagged behind in the last step (s).
+    pub retardation: f64,
 }

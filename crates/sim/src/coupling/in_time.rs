@@ -107,8 +107,12 @@ impl<'a> InTime<'a> {
             held: scene.beads.held,
             ..Settings::default()
         };
-        // Where all come to rest after a step, that corrects what it leaves. What cracks make
-        // uneven would drift before it touches anything.
+        // Where all come to rest after a step, that corrects what it leaves, and short steps
+        // keep skins smooth. What cracks make uneven would drift before it touches anything.
+        let alone = match is_bench(scene, bed) {
+            true => alone,
+            false => Settings { most_retardation: alone.retardation, ..alone },
+        };
         let settings = match is_bench(scene, bed) && scene.toughness.is_none() {
             true => alone,
             false => Settings { residual: RESIDUAL, anchored: true, ..alone },
@@ -200,6 +204,11 @@ impl<'a> InTime<'a> {
         let end = if wish >= left { until } else { now + wish.min(0.5 * left) };
 
         let before: Vec<f64> = self.kinetics.iter().map(volume_ratio).collect();
+        let is_free = self.is_bench && self.tearing.is_none() && self.rate.is_none();
+        let snapshots: Vec<Snapshot> = match is_free {
+            true => self.kinetics.iter().map(Kinetics::snapshot).collect(),
+            false => Vec::new(),
+        };
         let start = self.step_beads(start, &outside, end)?;
         let after = self.kinetics.iter().map(volume_ratio);
         let grown = after.zip(&before).map(|(after, before)| ((after / before).ln() / 3.0).abs());
@@ -210,7 +219,13 @@ impl<'a> InTime<'a> {
             if self.march.bodies.grains.radii.is_empty() { GROWTH_PER_MOVE_ALONE } else { GROWTH_PER_MOVE };
         let moves = ((grown / per_move).ceil() as usize).max(1);
         if self.is_bench && self.rest_alone() {
+            // Nothing but its own error limits the steps of a bead alone that cannot tear.
+            self.rate = self.rate.filter(|_| !is_free);
             return Ok(());
+        }
+        if is_free && grown > growth {
+            // What folds in a long step may pass through itself: it is taken again in short ones.
+            return self.go_back(&snapshots);
         }
         let leads: Vec<Lead> =
             self.kinetics.iter().zip(&start).map(|(bead, start)| bead.lead(start)).collect();
@@ -242,14 +257,20 @@ impl<'a> InTime<'a> {
             if tries > TRIES || (self.is_bench && !is_torn) {
                 return Err(words(error));
             }
-            let beads = std::mem::take(&mut self.kinetics).into_iter().zip(&before);
-            self.kinetics =
-                beads.map(|(bead, before)| bead.resume(before)).collect::<Result<_, _>>().map_err(words)?;
+            self.go_back(&before)?;
             let stage = self.stage();
             self.march.rest(&stage, NEARER)?;
             self.take_over(&stage);
             start = self.kinetics.iter().map(Kinetics::relaxation).collect();
         }
+    }
+
+    /// Takes the beads back to where they were.
+    fn go_back(&mut self, before: &[Snapshot]) -> Result<(), String> {
+        let beads = std::mem::take(&mut self.kinetics).into_iter().zip(before);
+        self.kinetics =
+            beads.map(|(bead, before)| bead.resume(before)).collect::<Result<_, _>>().map_err(words)?;
+        Ok(())
     }
 
     /// A bead alone among held grains is at rest after its steps, unless it presses on
