@@ -3,7 +3,7 @@
 //!
 //! `cargo bench -p bedswell-sim --bench march [-- NAME…]`, on a machine that does nothing else.
 
-#![allow(clippy::print_stdout, reason = "a program that prints a table")]
+#![allow(clippy::print_stdout, clippy::print_stderr, reason = "a program that prints a table")]
 
 use bedswell_sim::{BeadAmount, Observer, Scene, State, Step, read_scene, run_pack};
 use std::ops::ControlFlow;
@@ -30,7 +30,7 @@ fn main() {
         }
         let scene = scene(grains, beads, across);
         let started = Instant::now();
-        let mut packed = Packed(None);
+        let mut packed = Packed { at: None, started };
         let end = match run_pack(&scene, 0, &mut packed) {
             Ok(outcome) => format!(
                 "uptake {:.1} g/g, grains {:.1e}, gel {:.1e}, swallowed {:.1e}",
@@ -41,7 +41,7 @@ fn main() {
             ),
             Err(error) => error.to_string(),
         };
-        let packed = packed.0.unwrap_or_else(Instant::now);
+        let packed = packed.at.unwrap_or_else(Instant::now);
         let [packing, swelling] = [packed - started, packed.elapsed()].map(|time| time.as_secs_f64());
         let memory = most_memory().map_or("-".to_owned(), |mebibytes| format!("{mebibytes:.0}"));
         println!(
@@ -50,20 +50,25 @@ fn main() {
     }
 }
 
-/// When the bed was packed dry.
-struct Packed(Option<Instant>);
+/// When the bed was packed dry. Tells on standard error how far the march has come.
+struct Packed {
+    at: Option<Instant>,
+    started: Instant,
+}
 
 impl Observer for Packed {
-    fn step(&mut self, _: &Step, _: usize) -> ControlFlow<()> {
+    fn step(&mut self, step: &Step, count: usize) -> ControlFlow<()> {
+        let seconds = self.started.elapsed().as_secs_f64();
+        eprintln!("increment {} of {count} after {seconds:.0} s", step.increment);
         ControlFlow::Continue(())
     }
 
     fn looks(&self) -> bool {
-        self.0.is_none()
+        self.at.is_none()
     }
 
     fn look(&mut self, _: State) -> ControlFlow<()> {
-        self.0.get_or_insert_with(Instant::now);
+        self.at.get_or_insert_with(Instant::now);
         ControlFlow::Continue(())
     }
 }
