@@ -16,9 +16,9 @@ pub struct Settings {
     /// bead's skin swells so much more than its core that it creases, finer than any lattice
     /// and in ever more steps; this keeps it smooth. Swollen beads need none.
     pub retardation: f64,
-    /// What that may rise to as half the time since the change (default 1e-2). The core's
-    /// tension early on stays that of the chains, and later nothing is so fast. It does not
-    /// rise in a bead with ruptures, which are fast.
+    /// What that may rise to as half the time since the change (default 1e-2). Held to
+    /// the least, a bead of 20 across pulls at its core as much at first and about a tenth less
+    /// later, until it creases. It does not rise in a bead with ruptures, which are fast.
     pub most_retardation: f64,
     /// Pressed skin passes no water (default).
     pub contact_seals: bool,

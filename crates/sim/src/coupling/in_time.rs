@@ -109,13 +109,11 @@ impl<'a> InTime<'a> {
         };
         // Where all come to rest after a step, that corrects what it leaves, and short steps
         // keep skins smooth. What cracks make uneven would drift before it touches anything.
-        let alone = match is_bench(scene, bed) {
-            true => alone,
-            false => Settings { most_retardation: alone.retardation, ..alone },
-        };
-        let settings = match is_bench(scene, bed) && scene.toughness.is_none() {
-            true => alone,
-            false => Settings { residual: RESIDUAL, anchored: true, ..alone },
+        let joint = Settings { residual: RESIDUAL, anchored: true, ..alone };
+        let settings = match (is_bench(scene, bed), scene.toughness) {
+            (true, None) => alone,
+            (true, Some(_)) => joint,
+            (false, _) => Settings { most_retardation: joint.retardation, ..joint },
         };
         let radius = 0.5 * scene.beads.dry_diameter;
         let bead = |centre: &Vector| {
@@ -205,11 +203,7 @@ impl<'a> InTime<'a> {
 
         let before: Vec<f64> = self.kinetics.iter().map(volume_ratio).collect();
         let is_free = self.is_bench && self.tearing.is_none() && self.rate.is_none();
-        let snapshots: Vec<Snapshot> = match is_free {
-            true => self.kinetics.iter().map(Kinetics::snapshot).collect(),
-            false => Vec::new(),
-        };
-        let start = self.step_beads(start, &outside, end)?;
+        let (start, snapshots) = self.step_beads(start, &outside, end)?;
         let after = self.kinetics.iter().map(volume_ratio);
         let grown = after.zip(&before).map(|(after, before)| ((after / before).ln() / 3.0).abs());
         let grown = grown.fold(0.0, f64::max);
@@ -233,13 +227,13 @@ impl<'a> InTime<'a> {
     }
 
     /// Takes all beads to `end` (s). Where one finds no way, all come nearer to rest and try
-    /// again. Returns where they started from.
+    /// again. Returns where they started from, twice: to come to rest from, and to go back to.
     fn step_beads(
         &mut self,
         mut start: Vec<Relaxation>,
         outside: &Outside,
         end: f64,
-    ) -> Result<Vec<Relaxation>, String> {
+    ) -> Result<(Vec<Relaxation>, Vec<Snapshot>), String> {
         let mut tries = 0;
         loop {
             let before: Vec<Snapshot> = self.kinetics.iter().map(Kinetics::snapshot).collect();
@@ -251,7 +245,7 @@ impl<'a> InTime<'a> {
                     Ok(())
                 },
             );
-            let Err(error): Result<(), KineticsError> = stepped else { return Ok(start) };
+            let Err(error): Result<(), KineticsError> = stepped else { return Ok((start, before)) };
             tries += 1;
             let is_torn = self.tearing.as_ref().is_some_and(|tearing| !tearing.is_whole());
             if tries > TRIES || (self.is_bench && !is_torn) {
