@@ -142,6 +142,33 @@ fn a_pot_that_holds_no_bed() {
         "density = \"600 kg/m3\"",
         &["soil.density", "floats up", "997 kg/m3"],
     );
+    refused_scene(
+        &replace_once(&potful(), "top = \"open\"", "top = \"open\"\nflooded = true"),
+        "dry_density = \"1400 kg/m3\"",
+        "dry_density = \"900 kg/m3\"",
+        &["gel.dry_density", "floats up", "997 kg/m3"],
+    );
+}
+
+#[test]
+fn a_pot_around_spheres_that_lie_in_a_cell() {
+    let env = TestEnv::new();
+    let scene = std::fs::read_to_string(root().join("scenes/bench-array.toml")).unwrap();
+    let fixed = "fixed_grains = true";
+    env.write("scene.toml", &replace_once(&scene, fixed, &format!("{fixed}\npot = \"20 mm\"")));
+    std::fs::copy(root().join("scenes/bench-array.csv"), env.path("bench-array.csv")).unwrap();
+    env.refuse(&["describe", "scene.toml"], 2, &["scene.toml, line 12", "bed.pot", "lists its spheres"]);
+}
+
+#[test]
+fn more_gel_than_a_bed_that_cannot_rise_bears() {
+    let held = replace_once(&quick_scene(), "lid_stress = ", "lid_held = true\nlid_stress = ");
+    refused_scene(
+        &held,
+        "count = 1 ",
+        "count = 100 ",
+        &["beads.count = 100", "fill the pores", "cannot rise", "1e6 Pa"],
+    );
 }
 
 #[test]

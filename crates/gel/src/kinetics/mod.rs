@@ -432,3 +432,47 @@ impl Kinetics {
         self.state.contacts.pairs.iter().map(depth).fold(0.0, f64::max)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::{Lattice, Surroundings};
+    use bedswell_geometry::Vector;
+    use std::sync::Arc;
+
+    #[test]
+    fn chains_lag_the_longer_behind_the_longer_nothing_has_changed_outside() {
+        let numbers = GelNumbers { crosslinks: 2.7e-5, chi: 0.3, charges: 0.0 };
+        let gel = Gel::new(numbers, Surroundings::default());
+        let bead = Bead::new(Arc::new(Lattice::new(8)), 2e-4, Vector::zeros(), 3.0);
+        let permeability = Permeability::new(&gel, 1e-10, 1.5).unwrap();
+        let (settings, whole) = (Settings::default(), permeability.bead_time(bead.dry_radius()));
+        let mut kinetics = Kinetics::new(bead, numbers, permeability, settings).unwrap();
+        let under = |potential: f64| Outside {
+            surroundings: Surroundings { potential, ..Surroundings::default() },
+            supply: None,
+        };
+        let dried = 0.1 * whole;
+        let changes =
+            [(0.0, 0.0), (dried, -5e3)].map(|(time, potential)| Change { time, outside: under(potential) });
+        let history = History::new(changes.to_vec()).unwrap();
+        let mut lags = Vec::new();
+        kinetics
+            .advance(&history, &[], 2.0 * dried, |bead, step| {
+                lags.push((step.time - step.duration, bead.retardation / whole));
+            })
+            .unwrap();
+        let (least, most) = (settings.retardation, settings.most_retardation);
+        for changed in [0.0, dried] {
+            let after = |(start, _): &&(f64, f64)| (*start < dried) == (changed < dried);
+            let lags: Vec<(f64, f64)> = lags.iter().filter(after).copied().collect();
+            approx::assert_relative_eq!(lags[0].1, least, max_relative = 1e-12);
+            approx::assert_relative_eq!(lags.last().unwrap().1, most, max_relative = 1e-12);
+            assert!(lags.iter().any(|(_, lag)| *lag > 1.1 * least && *lag < 0.9 * most), "{lags:?}");
+            for (start, lag) in lags {
+                let risen = (LAGGING * (start - changed) / whole).clamp(least, most);
+                approx::assert_relative_eq!(lag, risen, max_relative = 1e-9);
+            }
+        }
+    }
+}
