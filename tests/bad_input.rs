@@ -166,8 +166,8 @@ fn more_gel_than_a_bed_that_cannot_rise_bears() {
     refused_scene(
         &held,
         "count = 1 ",
-        "count = 100 ",
-        &["beads.count = 100", "fill the pores", "cannot rise", "1e6 Pa"],
+        "count = 400 ",
+        &["beads.count = 400", "fill the pores", "cannot rise", "1e6 Pa"],
     );
 }
 
