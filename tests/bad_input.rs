@@ -136,14 +136,15 @@ fn a_pot_that_holds_no_bed() {
         "dry_diameter = \"5 mm\"",
         &["beads.dry_diameter", "larger than the bed", "wider pot"],
     );
+    let flooded = replace_once(&potful(), "top = \"open\"", "top = \"open\"\nflooded = true");
     refused_scene(
-        &replace_once(&potful(), "top = \"open\"", "top = \"open\"\nflooded = true"),
+        &flooded,
         "density = \"2500 kg/m3\"",
         "density = \"600 kg/m3\"",
         &["soil.density", "floats up", "997 kg/m3"],
     );
     refused_scene(
-        &replace_once(&potful(), "top = \"open\"", "top = \"open\"\nflooded = true"),
+        &flooded,
         "dry_density = \"1400 kg/m3\"",
         "dry_density = \"900 kg/m3\"",
         &["gel.dry_density", "floats up", "997 kg/m3"],
