@@ -71,6 +71,8 @@ pub struct Load {
 struct Listed {
     positions: Vec<f64>,
     obstacles: Vec<Obstacle>,
+    /// How much further away each obstacle was than what is followed (m).
+    slack: Vec<f64>,
     extent: f64,
 }
 
@@ -126,8 +128,9 @@ impl Relaxation {
     }
 
     /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere
-    /// in the bead, and renews the node masses. The obstacles' indices must not change
-    /// over the march. Contacts to other beads must be weighed anew.
+    /// in the bead, and renews the node masses; this lasts until they have approached by half
+    /// as much. The obstacles' indices must not change over the march. Contacts to other beads
+    /// must be weighed anew.
     pub fn renew(&mut self, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
@@ -147,10 +150,13 @@ impl Relaxation {
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles, reach);
         self.inertia = inertia;
+        let (centre, extent) = (self.bead.centre(), self.bead.extent());
+        let slack = |obstacle: &Obstacle| (obstacle.gap(&centre).distance - extent - reach).max(0.0);
         self.listed = Listed {
             positions: self.bead.positions.clone(),
+            slack: obstacles.iter().map(slack).collect(),
             obstacles: obstacles.to_vec(),
-            extent: self.bead.extent(),
+            extent,
         };
     }
 
@@ -166,12 +172,13 @@ impl Relaxation {
         for node in 0..self.bead.lattice().node_count() {
             let way: f64 = [node, stride + node, 2 * stride + node]
                 .iter()
-                .map(|&place| (self.bead.positions[place] - self.listed.positions[place]).powi(2))
+                .map(|&place| (self.bead.positions[place] - listed.positions[place]).powi(2))
                 .sum();
             furthest = furthest.max(way);
         }
-        let obstacles = self.listed.obstacles.iter().zip(obstacles).map(|(before, now)| before.way(now));
-        POINT_WAY * furthest.sqrt() + obstacles.fold(0.0, f64::max)
+        let before = listed.obstacles.iter().zip(&listed.slack);
+        let ways = before.zip(obstacles).map(|((before, slack), now)| before.way(now) - slack);
+        POINT_WAY * furthest.sqrt() + ways.fold(0.0, f64::max)
     }
 
     /// Distance of the skin from the bead's centre (m), at most, when contacts were last

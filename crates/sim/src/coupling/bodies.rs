@@ -1,4 +1,4 @@
-use super::neighbourhood::Neighbourhood;
+use super::neighbourhood::{Neighbourhood, WATCH};
 use super::touching::{self, Pair};
 use bedswell_gel::{Gel, Relaxation};
 use bedswell_geometry::Vector;
@@ -17,6 +17,10 @@ const CALM: (usize, usize, usize) = (10_000, 5_000, 1_000);
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
 const REACH: f64 = 0.3;
+/// Share of that distance after which contacts are looked for again.
+const TRUSTED: f64 = 0.5;
+/// Grains within this many times that distance of a bead are its obstacles.
+const LOOK: f64 = 2.0;
 
 /// Grains and beads in motion.
 #[derive(Clone, Debug)]
@@ -26,7 +30,7 @@ pub(super) struct Bodies {
     pub(super) around: Vec<Neighbourhood>,
     /// Pairs of beads that may touch.
     pub(super) pairs: Vec<Pair>,
-    /// Where the grains were when the beads' neighbours were last looked for.
+    /// Where the grains were when all beads' neighbours were last looked for.
     listed: Vec<Vector>,
     /// Share of each force component on grains and lid that is turned against the motion.
     /// Little of it lets slow rearrangements come to their end soonest.
@@ -71,7 +75,7 @@ impl Bodies {
         for (bead, around) in self.beads.iter().zip(&self.around) {
             around.pass_on(bead, &mut self.grains);
         }
-        self.pairs.iter_mut().for_each(|pair| pair.press(&mut self.beads));
+        touching::press(&mut self.pairs, &mut self.beads);
     }
 
     /// Moves everything by one step.
@@ -101,7 +105,9 @@ impl Bodies {
     /// Looks for contacts anew where something has moved too far since the last look.
     fn look_around(&mut self, gel: &Gel) {
         let reach = self.reach(gel);
-        let all = self.grains_strayed(0.5 * reach);
+        // What no bead watches may come as near as what they follow: half of that way until all
+        // look again, half before.
+        let all = self.grains_strayed(0.5 * (LOOK * (1.0 + WATCH) - 1.0) * reach);
         if all {
             self.listed.clone_from(&self.grains.centres);
         }
@@ -109,9 +115,11 @@ impl Bodies {
         let due: Vec<bool> = (self.beads.par_iter_mut().zip(&mut self.around))
             .map(|(bead, around)| {
                 around.update(bead, grains);
-                let due = all || bead.approach(&around.obstacles) > 0.5 * reach;
+                let limit = TRUSTED * reach;
+                let due =
+                    all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;
                 if due {
-                    around.extend(bead, grains, 2.0 * reach);
+                    around.extend(bead, grains, LOOK * reach);
                     bead.renew(gel, &around.obstacles, reach);
                 }
                 due
