@@ -73,16 +73,17 @@ impl BeadContact {
         }
     }
 
-    /// Makes the first bead heavy enough for this contact.
-    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation) {
-        first.weigh_probes(&self.first_in_second, first.push_by(second));
-        first.weigh_hosts(&self.second_in_first, second.push_by(first));
+    /// Makes the first bead heavy enough for this contact, where the skins may touch once they
+    /// have come `near` (m) by less.
+    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation, near: f64) {
+        first.weigh_probes(&self.first_in_second, first.push_by(second), near);
+        first.weigh_hosts(&self.second_in_first, second.push_by(first), near);
     }
 
-    /// Makes the second bead heavy enough for this contact.
-    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation) {
-        second.weigh_probes(&self.second_in_first, second.push_by(first));
-        second.weigh_hosts(&self.first_in_second, first.push_by(second));
+    /// The same for the second bead.
+    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation, near: f64) {
+        second.weigh_probes(&self.second_in_first, second.push_by(first), near);
+        second.weigh_hosts(&self.first_in_second, first.push_by(second), near);
     }
 
     /// Whether the beads are out of reach of each other.
@@ -182,9 +183,15 @@ impl Facing {
         self.presses.iter().map(|press| press.force).sum()
     }
 
-    /// The points that may press, where they may, and their stiffness (N/m) in space.
-    pub(crate) fn possible(&self, law: Push) -> impl Iterator<Item = (u32, &Embedded, Matrix)> + '_ {
-        self.probes.iter().map(move |probe| {
+    /// The points within `near` (m) of pressing, where they may, and their stiffness (N/m) in
+    /// space.
+    pub(crate) fn possible(
+        &self,
+        law: Push,
+        near: f64,
+    ) -> impl Iterator<Item = (u32, &Embedded, Matrix)> + '_ {
+        let close = self.probes.iter().filter(move |probe| probe.clearance < TRUSTED * near);
+        close.map(move |probe| {
             let slope = probe.slope * law.edge;
             let share = slope.norm_squared().max(1.0);
             let stiffness = contact::turning(&slope.normalize()) * (MARGIN * law.stiffness * share);

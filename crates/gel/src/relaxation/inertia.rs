@@ -30,8 +30,8 @@ pub(super) struct Inertia {
 }
 
 impl Inertia {
-    /// Masses for the gel's own stiffness and the contacts that are within `reach` (m).
-    pub(super) fn renew(&mut self, bead: &Relaxation, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
+    /// Masses for the gel's own stiffness and the contacts that are within `near` (m).
+    pub(super) fn renew(&mut self, bead: &Relaxation, gel: &Gel, obstacles: &[Obstacle], near: f64) {
         let lattice = bead.bead.shared_lattice();
         let positions = &bead.bead.positions;
         let mut state = Linearisation::default();
@@ -52,10 +52,17 @@ impl Inertia {
         for block in &mut self.own {
             *block = Matrix::from_diagonal_element((block.trace() * stiffening).max(f64::MIN_POSITIVE));
         }
-        // All points within reach count, so that none turns out too light for the
+        // All points that are near count, so that none turns out too light for the
         // contact it is about to make.
-        contact::add_possible_blocks(&bead.contacts, &lattice.skin, positions, obstacles, &mut self.own);
-        for (point, stiffness) in bead.folds.possible(bead.fold_law(), reach) {
+        contact::add_possible_blocks(
+            &bead.contacts,
+            &lattice.skin,
+            positions,
+            obstacles,
+            near,
+            &mut self.own,
+        );
+        for (point, stiffness) in bead.folds.possible(bead.fold_law(), near) {
             let terms = lattice.skin.terms(point as usize);
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
@@ -88,17 +95,17 @@ impl Inertia {
 
 impl Relaxation {
     /// Makes the nodes behind skin points heavy enough for the contacts they may make.
-    pub(crate) fn weigh_probes(&mut self, facing: &Facing, law: Push) {
+    pub(crate) fn weigh_probes(&mut self, facing: &Facing, law: Push, near: f64) {
         let lattice = self.bead.shared_lattice();
-        for (point, _, stiffness) in facing.possible(law) {
+        for (point, _, stiffness) in facing.possible(law, near) {
             self.inertia.weigh(lattice.skin.terms(point as usize), stiffness);
         }
     }
 
     /// Makes the nodes behind places in the gel heavy enough for the contacts they may take.
-    pub(crate) fn weigh_hosts(&mut self, facing: &Facing, law: Push) {
+    pub(crate) fn weigh_hosts(&mut self, facing: &Facing, law: Push, near: f64) {
         let lattice = self.bead.shared_lattice();
-        for (_, at, stiffness) in facing.possible(law) {
+        for (_, at, stiffness) in facing.possible(law, near) {
             self.inertia.weigh(lattice.possible_terms(at).into_iter(), stiffness);
         }
     }

@@ -16,9 +16,12 @@ const CALM: (usize, usize, usize) = (10_000, 5_000, 1_000);
 /// Share of each force component that is turned against the motion, on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
-const REACH: f64 = 0.3;
+const REACH: f64 = 0.45;
 /// Share of that distance after which contacts are looked for again.
-const TRUSTED: f64 = 0.5;
+const TRUSTED: f64 = 0.9;
+/// Skin points within this many swollen voxel edges of what they may touch have mass for it;
+/// masses are renewed after half of that way.
+const NEAR: f64 = 0.3;
 /// Grains within this many times that distance of a bead are its obstacles.
 const LOOK: f64 = 2.0;
 
@@ -111,22 +114,33 @@ impl Bodies {
         if all {
             self.listed.clone_from(&self.grains.centres);
         }
+        let near = NEAR / REACH * reach;
         let grains = &self.grains;
-        let due: Vec<bool> = (self.beads.par_iter_mut().zip(&mut self.around))
+        let due: Vec<(bool, bool)> = (self.beads.par_iter_mut().zip(&mut self.around))
             .map(|(bead, around)| {
                 around.update(bead, grains);
                 let limit = TRUSTED * reach;
-                let due =
+                let looks =
                     all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;
-                if due {
+                if looks {
                     around.extend(bead, grains, LOOK * reach);
-                    bead.renew(gel, &around.obstacles, reach);
+                    bead.look(gel, &around.obstacles, reach);
                 }
-                due
+                let weighs = looks || bead.approach_since_weighed(&around.obstacles) > 0.5 * near;
+                if weighs {
+                    bead.weigh(gel, &around.obstacles, near);
+                }
+                (looks, weighs)
             })
             .collect();
-        if due.contains(&true) && self.beads.len() > 1 {
-            touching::look(&mut self.pairs, &mut self.beads, &self.grains.cell, &due, reach);
+        if self.beads.len() > 1 {
+            let (looks, mut weighs): (Vec<bool>, Vec<bool>) = due.into_iter().unzip();
+            if looks.contains(&true) {
+                touching::look(&mut self.pairs, &self.beads, &self.grains.cell, &looks, reach, &mut weighs);
+            }
+            if weighs.contains(&true) {
+                touching::weigh(&self.pairs, &mut self.beads, &weighs, 2.0 * near);
+            }
         }
     }
 

@@ -47,18 +47,17 @@ pub(super) fn press(pairs: &mut [Pair], beads: &mut [Relaxation]) {
     }
 }
 
-/// Finds the beads within `reach` (m) of those that are `due`, and gives every bead that
-/// this concerns the mass that its contacts need.
-pub(super) fn look(pairs: &mut Vec<Pair>, beads: &mut [Relaxation], cell: &Cell, due: &[bool], reach: f64) {
-    let mut concerned = due.to_vec();
-    pairs.retain(|pair| {
-        let kept = !due[pair.first] && !due[pair.second];
-        if !kept {
-            concerned[pair.first] = true;
-            concerned[pair.second] = true;
-        }
-        kept
-    });
+/// Finds the beads within `reach` (m) of those that are `due`. Beads that this concerns must be
+/// weighed: they are added to `concerned`.
+pub(super) fn look(
+    pairs: &mut Vec<Pair>,
+    beads: &[Relaxation],
+    cell: &Cell,
+    due: &[bool],
+    reach: f64,
+    concerned: &mut [bool],
+) {
+    pairs.retain(|pair| !due[pair.first] && !due[pair.second]);
     let found = near(beads, cell, due, reach);
     for pair in &found {
         concerned[pair.first] = true;
@@ -66,16 +65,26 @@ pub(super) fn look(pairs: &mut Vec<Pair>, beads: &mut [Relaxation], cell: &Cell,
     }
     pairs.extend(found);
     pairs.sort_unstable_by_key(|pair| (pair.first, pair.second));
+}
+
+/// Gives beads whose masses were renewed, and those they may touch, the mass that their contacts
+/// within `near` (m) need.
+pub(super) fn weigh(pairs: &[Pair], beads: &mut [Relaxation], renewed: &[bool], near: f64) {
+    let mut concerned = renewed.to_vec();
+    for pair in pairs.iter().filter(|pair| renewed[pair.first] || renewed[pair.second]) {
+        concerned[pair.first] = true;
+        concerned[pair.second] = true;
+    }
     for (bead, _) in beads.iter_mut().zip(&concerned).filter(|(_, concerned)| **concerned) {
         bead.forget_others();
     }
     for pair in pairs {
         let (first, second) = two(beads, pair.first, pair.second);
         if concerned[pair.first] {
-            pair.contact.weigh_first(first, second);
+            pair.contact.weigh_first(first, second, near);
         }
         if concerned[pair.second] {
-            pair.contact.weigh_second(first, second);
+            pair.contact.weigh_second(first, second, near);
         }
     }
 }
