@@ -5,6 +5,7 @@
 //! balance in force and torque. Skins that meet so keep about half a voxel apart.
 
 use crate::bead::Bead;
+use crate::contact::turning;
 use bedswell_geometry::{Matrix, Vector, visit_close_points};
 
 /// Points nearer than this when dry (voxel edges) are neighbours on one skin.
@@ -148,10 +149,19 @@ impl Folds {
 
     /// Every point of a pair within `reach` (m) of repelling, with a bound on the pair's
     /// stiffness (N/m).
-    pub(crate) fn possible(&self, law: FoldLaw, reach: f64) -> impl Iterator<Item = (u32, Matrix)> + '_ {
-        let stiffness = Matrix::from_diagonal_element(MARGIN * law.of_pair());
+    pub(crate) fn possible<'a>(
+        &'a self,
+        bead: &'a Bead,
+        law: FoldLaw,
+        reach: f64,
+    ) -> impl Iterator<Item = (u32, Matrix)> + 'a {
         let near = self.pairs.iter().filter(move |pair| pair.clearance < reach);
-        near.flat_map(move |pair| [(pair.a, stiffness), (pair.b, stiffness)])
+        near.flat_map(move |pair| {
+            let apart = bead.skin_point(pair.a as usize) - bead.skin_point(pair.b as usize);
+            let normal = apart / apart.norm().max(f64::MIN_POSITIVE);
+            let stiffness = turning(&normal) * (MARGIN * law.of_pair());
+            [(pair.a, stiffness), (pair.b, stiffness)]
+        })
     }
 }
 

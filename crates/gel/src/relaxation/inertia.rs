@@ -27,6 +27,8 @@ pub(super) struct Inertia {
     masses: Vec<Matrix>,
     /// Their inverses.
     mobilities: Vec<Matrix>,
+    /// The masses with which nodes last moved.
+    moved: Vec<Matrix>,
 }
 
 impl Inertia {
@@ -62,7 +64,7 @@ impl Inertia {
             near,
             &mut self.own,
         );
-        for (point, stiffness) in bead.folds.possible(bead.fold_law(), near) {
+        for (point, stiffness) in bead.folds.possible(&bead.bead, bead.fold_law(), near) {
             let terms = lattice.skin.terms(point as usize);
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
@@ -85,11 +87,26 @@ impl Inertia {
         self.mobilities.clear();
     }
 
-    fn mobilities(&mut self) -> &[Matrix] {
-        if self.mobilities.is_empty() {
-            self.mobilities.extend(self.masses.iter().map(|mass| mass.try_inverse().unwrap_or_default()));
+    /// Takes up masses that were renewed. They must not feed the motion: a node keeps its
+    /// velocity or its momentum, whichever has less energy.
+    fn settle(&mut self, velocities: &mut [f64]) {
+        if !self.mobilities.is_empty() {
+            return;
         }
-        &self.mobilities
+        self.mobilities.extend(self.masses.iter().map(|mass| mass.try_inverse().unwrap_or_default()));
+        let stride = velocities.len() / 3;
+        if self.moved.len() == self.masses.len() {
+            for (node, (before, mass)) in self.moved.iter().zip(&self.masses).enumerate() {
+                let places = [node, stride + node, 2 * stride + node];
+                let velocity = Vector::from(places.map(|place| velocities[place]));
+                let momentum = before * velocity;
+                let slower = self.mobilities[node] * momentum;
+                if slower.dot(&momentum) < velocity.dot(&(mass * velocity)) {
+                    (0..3).for_each(|axis| velocities[places[axis]] = slower[axis]);
+                }
+            }
+        }
+        self.moved.clone_from(&self.masses);
     }
 }
 
@@ -118,7 +135,8 @@ impl Relaxation {
         let (stride, nodes) = (self.gradient.len() / 3, self.bead.lattice().node_count());
         let drift = self.drift;
         let mut fastest = 0.0_f64;
-        for (node, mobility) in self.inertia.mobilities()[..nodes].iter().enumerate() {
+        self.inertia.settle(&mut self.velocities);
+        for (node, mobility) in self.inertia.mobilities[..nodes].iter().enumerate() {
             let places = [node, stride + node, 2 * stride + node];
             let velocity = Vector::from(places.map(|place| self.velocities[place]));
             let force = places.map(|place| -self.gradient[place]);

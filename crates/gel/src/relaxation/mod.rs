@@ -38,6 +38,8 @@ pub struct Relaxation {
     pulls: Vec<(u32, Vector)>,
     /// Where the bead comes near itself.
     folds: Folds,
+    /// Pressure per distance that a fold lacks (Pa/m).
+    fold_penalty: f64,
     /// Way of the fastest node since forces were last computed (m).
     under_way: f64,
     /// The same between the last two times (m).
@@ -124,6 +126,7 @@ impl Relaxation {
             loads: Vec::new(),
             pulls: Vec::new(),
             folds: Folds::default(),
+            fold_penalty: 0.0,
             under_way: 0.0,
             last_way: 0.0,
             last_obstacles: Vec::new(),
@@ -163,6 +166,7 @@ impl Relaxation {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
+        self.fold_penalty = self.soft_penalty(gel);
         let points = lattice.skin.len_with_inner();
         self.contacts.face_cracks(&lattice.skin, &self.bead.positions);
         self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
@@ -184,8 +188,8 @@ impl Relaxation {
             None => gel.confining_pressure(self.bead.volume() / self.bead.dry_volume()),
             Some(water) => water.pressure(&Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() }),
         };
-        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
-        self.contacts.penalty = stiffness / (gel.free_stretch() * self.bead.voxel_edge());
+        let size = gel.free_stretch() * self.bead.voxel_edge();
+        self.contacts.penalty = self.soft_penalty(gel).max(pressure / (deepest * size));
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles, near);
         self.inertia = inertia;
@@ -314,8 +318,16 @@ impl Relaxation {
         Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge: faced.free_edge() }
     }
 
+    /// Pressure per penetration (Pa/m) where none is so high that little may be left of it.
+    fn soft_penalty(&self, gel: &Gel) -> f64 {
+        PENALTY * gel.moduli().plane_strain() / (gel.free_stretch() * self.bead.voxel_edge())
+    }
+
+    /// Skins that meet keep a distance, so that what a fold gives way by is not lost: folds
+    /// stay soft in gel that is held tight, and slide.
     fn fold_law(&self) -> FoldLaw {
-        FoldLaw { stiffness: self.point_stiffness(), area: self.contacts.area, edge: self.free_edge() }
+        let area = self.contacts.area;
+        FoldLaw { stiffness: self.fold_penalty * area, area, edge: self.free_edge() }
     }
 
     /// Edge of a free-swollen voxel when contacts were last looked for (m).
@@ -362,6 +374,7 @@ impl Relaxation {
         self.bead = bead;
         self.contacts = solver.contacts;
         self.contacts.ties.clear();
+        self.fold_penalty = self.soft_penalty(gel);
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, 0.0);
         self.listed = Standing::default();

@@ -96,6 +96,7 @@ impl Relaxation {
     /// forces.
     pub(crate) fn press_as(&mut self, contacts: Contacts, gel: &Gel, obstacles: &[Obstacle]) {
         self.contacts = contacts;
+        self.fold_penalty = self.soft_penalty(gel);
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, 0.0);
         self.compute_forces(gel, obstacles);
