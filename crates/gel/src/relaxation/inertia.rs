@@ -156,6 +156,9 @@ impl Relaxation {
     /// stiff: as a whole it answers with a mass of its own, like a grain.
     fn advance_drift(&mut self, damping: f64) {
         let mass = DRIFT_MASS_FACTOR * self.pressing_stiffness;
+        // As for a node: momentum is kept where the mass has risen.
+        self.drift *= (self.drift_mass / mass.max(f64::MIN_POSITIVE)).min(1.0);
+        self.drift_mass = mass;
         let force = self.net_force();
         for axis in 0..3 {
             let drift = &mut self.drift[axis];

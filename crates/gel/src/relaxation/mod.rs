@@ -54,6 +54,8 @@ pub struct Relaxation {
     weighed: Standing,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
     drift: Vector,
+    /// The mass with which it last drifted.
+    drift_mass: f64,
     /// The bead's weight, less its buoyancy (N).
     weight: Vector,
     /// Sum of the stiffnesses of the points that press (N/m).
@@ -134,6 +136,7 @@ impl Relaxation {
             listed_extent: 0.0,
             weighed: Standing::default(),
             drift: Vector::zeros(),
+            drift_mass: 0.0,
             weight: Vector::zeros(),
             pressing_stiffness: 0.0,
             smallest_volume_ratio: f64::INFINITY,
