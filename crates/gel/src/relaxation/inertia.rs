@@ -166,3 +166,38 @@ impl Relaxation {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use approx::assert_relative_eq;
+
+    fn moved_with(mass: Matrix, velocity: Vector) -> (Inertia, Vec<f64>) {
+        let mut inertia = Inertia { masses: vec![mass], ..Inertia::default() };
+        let mut velocities = velocity.as_slice().to_vec();
+        inertia.settle(&mut velocities);
+        (inertia, velocities)
+    }
+
+    #[test]
+    fn renewed_masses_keep_velocity_or_momentum_and_add_no_energy() {
+        let velocity = Vector::new(0.3, -0.2, 0.1);
+        let light = Matrix::from_diagonal_element(2.0);
+        let normal = Vector::new(1.0, 2.0, -1.0).normalize();
+        let heavy = light + normal * normal.transpose() * 50.0;
+        let (mut inertia, mut velocities) = moved_with(light, velocity);
+        assert_relative_eq!(Vector::from_column_slice(&velocities), velocity);
+
+        inertia.masses = vec![heavy];
+        inertia.mobilities.clear();
+        inertia.settle(&mut velocities);
+        let slower = Vector::from_column_slice(&velocities);
+        assert_relative_eq!(heavy * slower, light * velocity, epsilon = 1e-12);
+        assert!(slower.dot(&(heavy * slower)) < velocity.dot(&(light * velocity)));
+
+        inertia.masses = vec![light];
+        inertia.mobilities.clear();
+        inertia.settle(&mut velocities);
+        assert_relative_eq!(Vector::from_column_slice(&velocities), slower);
+    }
+}
