@@ -1,4 +1,4 @@
-use super::neighbourhood::{Neighbourhood, WATCH};
+use super::neighbourhood::Neighbourhood;
 use super::touching::{self, Pair};
 use bedswell_gel::{Gel, Relaxation};
 use bedswell_geometry::Vector;
@@ -16,14 +16,7 @@ const CALM: (usize, usize, usize) = (10_000, 5_000, 1_000);
 /// Share of each force component that is turned against the motion, on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
-const REACH: f64 = 0.45;
-/// Share of that distance after which contacts are looked for again.
-const TRUSTED: f64 = 0.9;
-/// Skin points within this many swollen voxel edges of what they may touch have mass for it;
-/// masses are renewed after half of that way.
-const NEAR: f64 = 0.3;
-/// Grains within this many times that distance of a bead are its obstacles.
-const LOOK: f64 = 2.0;
+const REACH: f64 = 0.3;
 
 /// Grains and beads in motion.
 #[derive(Clone, Debug)]
@@ -33,7 +26,7 @@ pub(super) struct Bodies {
     pub(super) around: Vec<Neighbourhood>,
     /// Pairs of beads that may touch.
     pub(super) pairs: Vec<Pair>,
-    /// Where the grains were when all beads' neighbours were last looked for.
+    /// Where the grains were when the beads' neighbours were last looked for.
     listed: Vec<Vector>,
     /// Share of each force component on grains and lid that is turned against the motion.
     /// Little of it lets slow rearrangements come to their end soonest.
@@ -78,7 +71,7 @@ impl Bodies {
         for (bead, around) in self.beads.iter().zip(&self.around) {
             around.pass_on(bead, &mut self.grains);
         }
-        touching::press(&mut self.pairs, &mut self.beads);
+        self.pairs.iter_mut().for_each(|pair| pair.press(&mut self.beads));
     }
 
     /// Moves everything by one step.
@@ -108,39 +101,24 @@ impl Bodies {
     /// Looks for contacts anew where something has moved too far since the last look.
     fn look_around(&mut self, gel: &Gel) {
         let reach = self.reach(gel);
-        // What no bead watches may come as near as what they follow: half of that way until all
-        // look again, half before.
-        let all = self.grains_strayed(0.5 * (LOOK * (1.0 + WATCH) - 1.0) * reach);
+        let all = self.grains_strayed(0.5 * reach);
         if all {
             self.listed.clone_from(&self.grains.centres);
         }
-        let near = NEAR / REACH * reach;
         let grains = &self.grains;
-        let due: Vec<(bool, bool)> = (self.beads.par_iter_mut().zip(&mut self.around))
+        let due: Vec<bool> = (self.beads.par_iter_mut().zip(&mut self.around))
             .map(|(bead, around)| {
                 around.update(bead, grains);
-                let limit = TRUSTED * reach;
-                let looks =
-                    all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;
-                if looks {
-                    around.extend(bead, grains, LOOK * reach);
-                    bead.look(gel, &around.obstacles, reach);
+                let due = all || bead.approach(&around.obstacles) > 0.5 * reach;
+                if due {
+                    around.extend(bead, grains, 2.0 * reach);
+                    bead.renew(gel, &around.obstacles, reach);
                 }
-                let weighs = looks || bead.approach_since_weighed(&around.obstacles) > 0.5 * near;
-                if weighs {
-                    bead.weigh(gel, &around.obstacles, near);
-                }
-                (looks, weighs)
+                due
             })
             .collect();
-        if self.beads.len() > 1 {
-            let (looks, mut weighs): (Vec<bool>, Vec<bool>) = due.into_iter().unzip();
-            if looks.contains(&true) {
-                touching::look(&mut self.pairs, &self.beads, &self.grains.cell, &looks, reach, &mut weighs);
-            }
-            if weighs.contains(&true) {
-                touching::weigh(&self.pairs, &mut self.beads, &weighs, 2.0 * near);
-            }
+        if due.contains(&true) && self.beads.len() > 1 {
+            touching::look(&mut self.pairs, &mut self.beads, &self.grains.cell, &due, reach);
         }
     }
 
