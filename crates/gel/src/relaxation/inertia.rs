@@ -17,6 +17,10 @@ const MASS_FACTOR: f64 = 2.0;
 /// Mass of the bead as a whole over the stiffness of its contacts.
 const DRIFT_MASS_FACTOR: f64 = 4.0;
 
+/// What a bead keeps per step of the mass with which it drifted: points that touch now and
+/// then would take its motion away each time they do.
+const FORGETTING: f64 = 0.99;
+
 /// Masses are matrices: heavy only along the normals of the contacts that a node may
 /// make, so that the skin slides as freely as the gel inside moves.
 #[derive(Clone, Debug, Default)]
@@ -156,6 +160,7 @@ impl Relaxation {
     /// stiff: as a whole it answers with a mass of its own, like a grain.
     fn advance_drift(&mut self, damping: f64) {
         let mass = DRIFT_MASS_FACTOR * self.pressing_stiffness;
+        let mass = if mass > 0.0 { mass.max(FORGETTING * self.drift_mass) } else { 0.0 };
         // As for a node: momentum is kept where the mass has risen.
         self.drift *= (self.drift_mass / mass.max(f64::MIN_POSITIVE)).min(1.0);
         self.drift_mass = mass;
