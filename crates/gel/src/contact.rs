@@ -257,18 +257,25 @@ pub(crate) fn add_diagonal_blocks(pressing: &[Pressing], skin: &Skin, out: &mut 
     }
 }
 
-/// Adds each node's share of the stiffness as if every pair pressed, lumped so that it
-/// bounds what the pairs do together.
+/// Adds each node's share of the stiffness as if every pair within `near` (m) pressed, lumped
+/// so that it bounds what the pairs do together.
 pub(crate) fn add_possible_blocks(
     contacts: &Contacts,
     skin: &Skin,
     positions: &[f64],
     obstacles: &[Obstacle],
+    near: f64,
     out: &mut [Matrix],
 ) {
     for pair in &contacts.pairs {
+        if pair.clearance > near {
+            continue;
+        }
         let place = skin_position(skin, positions, pair.point as usize);
-        let normal = obstacles[pair.obstacle as usize].gap(&place).normal;
+        let Gap { distance, normal, .. } = obstacles[pair.obstacle as usize].gap(&place);
+        if distance > near && pair.multiplier <= 0.0 {
+            continue;
+        }
         let stiffness = turning(&normal) * (contacts.penalty * contacts.area);
         for (node, weight) in skin.terms(pair.point as usize) {
             out[node] += stiffness * weight.abs();

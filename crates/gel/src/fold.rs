@@ -5,14 +5,19 @@
 //! balance in force and torque. Skins that meet so keep about half a voxel apart.
 
 use crate::bead::Bead;
-use crate::lattice::{Lattice, POINT_WAY};
+use crate::contact::turning;
 use bedswell_geometry::{Matrix, Vector, visit_close_points};
 
 /// Points nearer than this when dry (voxel edges) are neighbours on one skin.
 const NEIGHBOURS: f64 = 3.0;
 /// Pairs are listed whose points are nearer than this beyond that distance (free-swollen
 /// voxel edges).
-const REACH: f64 = 0.8;
+const REACH: f64 = 1.6;
+/// Where points can go less far than this (free-swollen voxel edges) before pairs may be
+/// missing, all pairs are looked for.
+const LEAST_WAY: f64 = 0.1;
+/// Where more than one point in so many has gone further, all pairs are looked for.
+const FEW: usize = 16;
 /// Distance at which points begin to repel each other (free-swollen voxel edges).
 const THICKNESS: f64 = 0.6;
 /// Points of the other skin that a point typically presses on at once.
@@ -24,13 +29,20 @@ const CRUSHED: f64 = 0.25;
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Folds {
     pairs: Vec<FoldPair>,
-    /// Nodes where they were when pairs were last looked for, and the free-swollen voxel
-    /// edge then (m).
-    listed: (Vec<f64>, f64),
+    listed: Listed,
     /// Volume that folded skins may have lost to each other (m³).
     pub(crate) overlap: f64,
     /// Pairs that repel each other.
     pub(crate) pressing: usize,
+}
+
+/// Where every skin point was when its pairs were last looked for.
+#[derive(Clone, Debug, Default)]
+struct Listed {
+    /// About the skin's middle then, in the skin's size then.
+    places: Vec<Vector>,
+    /// Pairs were left out whose points were further apart than this, in the skin's size.
+    apart: f64,
 }
 
 #[derive(Clone, Copy, Debug)]
@@ -59,33 +71,51 @@ impl FoldLaw {
 }
 
 impl Folds {
-    /// Looks for pairs anew if any may be missing that are within `reach` (m) of repelling
+    /// Looks for pairs anew where any may be missing that are within `reach` (m) of repelling
     /// each other.
     pub(crate) fn renew(&mut self, bead: &Bead, law: FoldLaw, reach: f64) {
-        let (listed, edge) = &self.listed;
-        let complete = listed.len() == bead.positions.len() && {
-            // Pairs left out were further apart than this; growth has taken them further
-            // apart, distortion nearer at most.
-            let apart = (THICKNESS + REACH) * edge;
-            let Change { growth, distortion } = Change::between(listed, &bead.positions, bead.lattice());
-            growth * apart - 2.0 * distortion > THICKNESS * law.edge + reach
-        };
-        if !complete {
-            *self = Self::find(bead, law);
+        let skin = Placed::of(bead);
+        // Points that have gone less than this way, growth aside, have no pairs missing.
+        let way = 0.5 * (skin.size * self.listed.apart - THICKNESS * law.edge - reach);
+        if self.listed.places.len() == skin.places.len() && way > LEAST_WAY * law.edge {
+            let before = self.listed.places.iter();
+            let strayed: Vec<bool> = skin
+                .seen
+                .iter()
+                .zip(before)
+                .map(|(now, before)| (now - before).norm() * skin.size > way)
+                .collect();
+            let count = strayed.iter().filter(|strayed| **strayed).count();
+            if count <= skin.places.len() / FEW {
+                self.look_again(bead, law, &skin, &strayed);
+                return;
+            }
         }
+        *self = Self::find(bead, law, skin);
     }
 
-    fn find(bead: &Bead, law: FoldLaw) -> Self {
-        let skin = &bead.lattice().skin;
-        let places: Vec<Vector> = (0..skin.len()).map(|point| bead.skin_point(point)).collect();
+    fn find(bead: &Bead, law: FoldLaw, skin: Placed) -> Self {
+        let reach = (THICKNESS + REACH) * law.edge;
         let mut pairs = Vec::new();
-        visit_close_points(&places, (THICKNESS + REACH) * law.edge, |a, b| {
-            if skin.apart_when_dry(a, b) > NEIGHBOURS {
-                let clearance = (places[a] - places[b]).norm() - THICKNESS * law.edge;
-                pairs.push(FoldPair { a: a as u32, b: b as u32, clearance });
+        visit_close_points(&skin.places, reach, |a, b| pairs.extend(FoldPair::of(bead, law, &skin, a, b)));
+        let listed = Listed { apart: reach / skin.size, places: skin.seen };
+        Self { pairs, listed, overlap: 0.0, pressing: 0 }
+    }
+
+    /// Looks for the pairs of the points that have strayed.
+    fn look_again(&mut self, bead: &Bead, law: FoldLaw, skin: &Placed, strayed: &[bool]) {
+        self.pairs.retain(|pair| !strayed[pair.a as usize] && !strayed[pair.b as usize]);
+        let Listed { places, apart } = &mut self.listed;
+        let again = || (0..strayed.len()).filter(|&point| strayed[point]);
+        again().for_each(|point| places[point] = skin.seen[point]);
+        for a in again() {
+            for b in 0..places.len() {
+                let twice = b == a || (strayed[b] && b < a);
+                if !twice && (places[b] - places[a]).norm_squared() < *apart * *apart {
+                    self.pairs.extend(FoldPair::of(bead, law, skin, a, b));
+                }
             }
-        });
-        Self { pairs, listed: (bead.positions.clone(), law.edge), overlap: 0.0, pressing: 0 }
+        }
     }
 
     /// Visits the pairs that repel each other, with the force (N) on the first point.
@@ -119,32 +149,50 @@ impl Folds {
 
     /// Every point of a pair within `reach` (m) of repelling, with a bound on the pair's
     /// stiffness (N/m).
-    pub(crate) fn possible(&self, law: FoldLaw, reach: f64) -> impl Iterator<Item = (u32, Matrix)> + '_ {
-        let stiffness = Matrix::from_diagonal_element(MARGIN * law.of_pair());
+    pub(crate) fn possible<'a>(
+        &'a self,
+        bead: &'a Bead,
+        law: FoldLaw,
+        reach: f64,
+    ) -> impl Iterator<Item = (u32, Matrix)> + 'a {
         let near = self.pairs.iter().filter(move |pair| pair.clearance < reach);
-        near.flat_map(move |pair| [(pair.a, stiffness), (pair.b, stiffness)])
+        near.flat_map(move |pair| {
+            let apart = bead.skin_point(pair.a as usize) - bead.skin_point(pair.b as usize);
+            let normal = apart / apart.norm().max(f64::MIN_POSITIVE);
+            let stiffness = turning(&normal) * (MARGIN * law.of_pair());
+            [(pair.a, stiffness), (pair.b, stiffness)]
+        })
     }
 }
 
-/// How a shape has changed: growth about its middle, and what is left (m) at most.
-struct Change {
-    growth: f64,
-    distortion: f64,
+impl FoldPair {
+    /// Two points that are no neighbours on one skin.
+    fn of(bead: &Bead, law: FoldLaw, skin: &Placed, a: usize, b: usize) -> Option<Self> {
+        let clearance = (skin.places[a] - skin.places[b]).norm() - THICKNESS * law.edge;
+        let is_far = bead.lattice().skin.apart_when_dry(a, b) > NEIGHBOURS;
+        is_far.then_some(Self { a: a as u32, b: b as u32, clearance })
+    }
 }
 
-impl Change {
-    fn between(before: &[f64], now: &[f64], lattice: &Lattice) -> Self {
-        let (stride, nodes) = (before.len() / 3, lattice.node_count());
-        let place = |of: &[f64], node: usize| Vector::new(of[node], of[stride + node], of[2 * stride + node]);
-        let middle = |of: &[f64]| (0..nodes).map(|node| place(of, node)).sum::<Vector>() / nodes as f64;
-        let (from, to) = (middle(before), middle(now));
-        let size = |of: &[f64], middle: Vector| {
-            (0..nodes).map(|node| (place(of, node) - middle).norm_squared()).sum::<f64>().sqrt()
-        };
-        let growth = size(now, to) / size(before, from);
-        let moved = |node: usize| (place(now, node) - to) - (place(before, node) - from) * growth;
-        let distortion = (0..nodes).map(|node| moved(node).norm_squared()).fold(0.0, f64::max).sqrt();
-        Self { growth, distortion: POINT_WAY * distortion }
+/// Where the skin points are.
+struct Placed {
+    places: Vec<Vector>,
+    /// About the middle, in the size.
+    seen: Vec<Vector>,
+    /// Root mean square distance from the middle (m).
+    size: f64,
+}
+
+impl Placed {
+    fn of(bead: &Bead) -> Self {
+        let places: Vec<Vector> =
+            (0..bead.lattice().skin.len()).map(|point| bead.skin_point(point)).collect();
+        let count = places.len().max(1) as f64;
+        let middle = places.iter().sum::<Vector>() / count;
+        let square: f64 = places.iter().map(|place| (place - middle).norm_squared()).sum();
+        let size = (square / count).sqrt().max(f64::MIN_POSITIVE);
+        let seen = places.iter().map(|place| (place - middle) / size).collect();
+        Self { places, seen, size }
     }
 }
 
@@ -155,6 +203,7 @@ const MARGIN: f64 = 4.0;
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::lattice::Lattice;
     use approx::assert_relative_eq;
     use std::sync::Arc;
 
@@ -188,7 +237,7 @@ mod tests {
     #[test]
     fn forces_are_the_slope_of_the_energy() {
         let mut bead = flattened();
-        let mut folds = Folds::find(&bead, LAW);
+        let mut folds = Folds::find(&bead, LAW, Placed::of(&bead));
         let mut pulls = vec![0.0; bead.positions.len()];
         let stride = bead.lattice().stride();
         for (point, force) in forces(&bead, &mut folds) {
@@ -214,7 +263,7 @@ mod tests {
     #[test]
     fn forces_balance_in_force_and_torque() {
         let bead = flattened();
-        let forces = forces(&bead, &mut Folds::find(&bead, LAW));
+        let forces = forces(&bead, &mut Folds::find(&bead, LAW, Placed::of(&bead)));
         let size: f64 = forces.iter().map(|(_, force)| force.norm()).sum();
         let net: Vector = forces.iter().map(|(_, force)| force).sum();
         let torque: Vector =
@@ -223,10 +272,45 @@ mod tests {
         assert!(net.norm() < 1e-12 * size && torque.norm() < 1e-12 * size * bead.extent());
     }
 
+    /// A few points that go far are looked for by themselves; none of their pairs is missed, nor
+    /// of those that all together drift, grow and turn a little.
+    #[test]
+    fn pairs_of_points_that_stray_are_found() {
+        let mut bead = flattened();
+        let mut folds = Folds::default();
+        folds.renew(&bead, LAW, 0.1);
+        let stride = bead.lattice().stride();
+        let mut partial = 0;
+        for round in 0..40 {
+            for node in 0..bead.lattice().node_count() {
+                let way = if node % 97 == round { 0.9 } else { 0.02 };
+                let angle = (node * 7 + round * 3) as f64;
+                bead.positions[node] = 1.001 * bead.positions[node] + way * angle.sin();
+                bead.positions[stride + node] += 0.05 + way * angle.cos();
+            }
+            let full = Folds::find(&bead, LAW, Placed::of(&bead));
+            let before = folds.listed.apart;
+            folds.renew(&bead, LAW, 0.1);
+            partial += usize::from(folds.listed.apart == before);
+            let near = |folds: &Folds| {
+                let place = |point: u32| bead.skin_point(point as usize);
+                let is_near =
+                    |pair: &&FoldPair| (place(pair.a) - place(pair.b)).norm() < THICKNESS * LAW.edge + 0.1;
+                let key = |pair: &FoldPair| (pair.a.min(pair.b), pair.a.max(pair.b));
+                let mut near: Vec<(u32, u32)> = folds.pairs.iter().filter(is_near).map(key).collect();
+                near.sort_unstable();
+                near
+            };
+            assert!(near(&full).len() > 10, "{} pairs near", near(&full).len());
+            assert_eq!(near(&folds), near(&full), "round {round}");
+        }
+        assert!(partial > 20, "{partial} partial looks");
+    }
+
     #[test]
     fn neighbours_on_one_skin_do_not_repel_each_other() {
         let bead = Bead::new(Arc::new(Lattice::new(8)), 4.0, Vector::zeros(), 2.0);
-        let mut folds = Folds::find(&bead, LAW);
+        let mut folds = Folds::find(&bead, LAW, Placed::of(&bead));
         assert!(forces(&bead, &mut folds).is_empty() && folds.pressing == 0);
     }
 }

@@ -39,6 +39,8 @@ pub struct BeadContact {
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Facing {
     probes: Vec<Probe>,
+    /// Forces of the points that have entered gel.
+    pub(crate) presses: Vec<Press>,
     /// Volume by which the gels overlap (m³), counted from this side.
     pub(crate) overlap: f64,
 }
@@ -54,6 +56,7 @@ struct Probe {
 }
 
 /// A force (N) on a skin point from gel that it has entered.
+#[derive(Clone, Copy, Debug)]
 pub(crate) struct Press {
     pub(crate) point: u32,
     pub(crate) at: Embedded,
@@ -65,21 +68,22 @@ impl BeadContact {
     /// seen `shift` (m) from where its coordinates say (a periodic image).
     pub fn find(first: &Relaxation, second: &Relaxation, shift: Vector, reach: f64) -> Self {
         Self {
-            first_in_second: Facing::look(first.bead(), second.bead(), -shift, reach),
-            second_in_first: Facing::look(second.bead(), first.bead(), shift, reach),
+            first_in_second: Facing::look(first.bead(), second.bead(), second.extent(), -shift, reach),
+            second_in_first: Facing::look(second.bead(), first.bead(), first.extent(), shift, reach),
         }
     }
 
-    /// Makes the first bead heavy enough for this contact.
-    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation) {
-        first.weigh_probes(&self.first_in_second, first.push_by(second));
-        first.weigh_hosts(&self.second_in_first, second.push_by(first));
+    /// Makes the first bead heavy enough for this contact, where the skins may touch once they
+    /// have come `near` (m) by less.
+    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation, near: f64) {
+        first.weigh_probes(&self.first_in_second, first.push_by(second), near);
+        first.weigh_hosts(&self.second_in_first, second.push_by(first), near);
     }
 
-    /// Makes the second bead heavy enough for this contact.
-    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation) {
-        second.weigh_probes(&self.second_in_first, second.push_by(first));
-        second.weigh_hosts(&self.first_in_second, first.push_by(second));
+    /// The same for the second bead.
+    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation, near: f64) {
+        second.weigh_probes(&self.second_in_first, second.push_by(first), near);
+        second.weigh_hosts(&self.first_in_second, first.push_by(second), near);
     }
 
     /// Whether the beads are out of reach of each other.
@@ -92,53 +96,47 @@ impl BeadContact {
         0.5 * (self.first_in_second.overlap + self.second_in_first.overlap)
     }
 
-    /// Adds the forces of the two beads on each other, which have come nearer by at most
-    /// `moved` (m) since the last call. Returns the force (N) on the first.
-    pub fn press(
-        &mut self,
-        first: &mut Relaxation,
-        second: &mut Relaxation,
-        shift: Vector,
-        moved: f64,
-    ) -> Vector {
-        let mut total = Vector::zeros();
-        let mut stiffnesses = 0.0;
-        for (facing, from_first) in [(&mut self.first_in_second, true), (&mut self.second_in_first, false)] {
-            let (probing, faced, seen) = if from_first {
-                (&mut *first, &mut *second, -shift)
-            } else {
-                (&mut *second, &mut *first, shift)
-            };
-            let push = probing.push_by(faced);
-            let presses = facing.measure(probing.bead(), faced.bead(), seen, push, moved);
-            for press in &presses {
-                probing.pull(press.point, press.force);
-                faced.pull_at(&press.at, -press.force);
-                stiffnesses += push.stiffness;
-                total += if from_first { press.force } else { -press.force };
-            }
-        }
-        first.note_contact(total, stiffnesses);
-        second.note_contact(-total, stiffnesses);
+    /// Finds the forces of the two beads on each other, which have come nearer by at most
+    /// `moved` (m) since the last call; the second is seen `shift` (m) from where its
+    /// coordinates say.
+    pub fn measure(&mut self, first: &Relaxation, second: &Relaxation, shift: Vector, moved: f64) {
+        let (one, other) = (first.bead(), second.bead());
+        self.first_in_second.measure(one, other, -shift, first.push_by(second), moved);
+        self.second_in_first.measure(other, one, shift, second.push_by(first), moved);
+    }
+
+    /// Adds the forces last measured to both beads. Returns the force (N) on the first.
+    pub fn press(&self, first: &mut Relaxation, second: &mut Relaxation) -> Vector {
+        let on_first = self.first_in_second.press(first, second);
+        let on_second = self.second_in_first.press(second, first);
+        let total = on_first - on_second;
+        let stiffness = self.first_in_second.presses.len() as f64 * first.push_by(second).stiffness
+            + self.second_in_first.presses.len() as f64 * second.push_by(first).stiffness;
+        first.note_contact(total, stiffness);
+        second.note_contact(-total, stiffness);
         total
     }
 }
 
 impl Facing {
-    /// The points of `probing` within `reach` (m) of the gel of `faced`; `probing` is
-    /// seen `seen` (m) from where its coordinates say.
-    fn look(probing: &Bead, faced: &Bead, seen: Vector, reach: f64) -> Self {
+    /// The points of `probing` within `reach` (m) of the gel of `faced`, whose skin lay within
+    /// `extent` (m) of its centre before it moved by less than `reach`; `probing` is seen `seen`
+    /// (m) from where its coordinates say.
+    fn look(probing: &Bead, faced: &Bead, extent: f64, seen: Vector, reach: f64) -> Self {
         let lattice = faced.lattice();
+        // The centre has moved too.
+        let (centre, extent) = (faced.centre(), extent + 3.0 * reach);
+        let near = |(_, place): &(usize, Vector)| (place - centre).norm_squared() <= extent * extent;
+        let close: Vec<(usize, Vector)> =
+            skin_places(probing).map(|place| place + seen).enumerate().filter(near).collect();
+        if close.is_empty() {
+            return Self::default();
+        }
         let places: Vec<[f64; 3]> = skin_places(faced).map(Into::into).collect();
         let Ok(tree) = ImmutableKdTree::<f64, 3>::new_from_slice(&places) else { return Self::default() };
         let search = (SEARCH * faced.swollen_edge() + reach).powi(2);
-        let (centre, extent) = (faced.centre(), faced.extent() + reach);
         let mut probes = Vec::new();
-        for (point, place) in skin_places(probing).enumerate() {
-            let place = place + seen;
-            if (place - centre).norm_squared() > extent * extent {
-                continue;
-            }
+        for (point, place) in close {
             let query = place.into();
             let near = tree.query(&query).nearest_one::<SquaredEuclidean<f64>>().execute();
             if near.distance > search {
@@ -153,20 +151,13 @@ impl Facing {
                 probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0 });
             }
         }
-        Self { probes, overlap: 0.0 }
+        Self { probes, ..Self::default() }
     }
 
-    /// The forces on the points that have entered gel. The gels have come nearer by at
+    /// Finds the forces on the points that have entered gel. The gels have come nearer by at
     /// most `moved` (m) since the last call.
-    pub(crate) fn measure(
-        &mut self,
-        probing: &Bead,
-        faced: &Bead,
-        seen: Vector,
-        law: Push,
-        moved: f64,
-    ) -> Vec<Press> {
-        let mut presses = Vec::new();
+    pub(crate) fn measure(&mut self, probing: &Bead, faced: &Bead, seen: Vector, law: Push, moved: f64) {
+        self.presses.clear();
         let mut depths = 0.0;
         for probe in &mut self.probes {
             probe.clearance -= moved;
@@ -176,17 +167,31 @@ impl Facing {
             let place = probing.skin_point(probe.point as usize) + seen;
             let (force, depth) = probe.push(faced, &place, law);
             if depth > 0.0 {
-                presses.push(Press { point: probe.point, at: probe.at, force });
+                self.presses.push(Press { point: probe.point, at: probe.at, force });
             }
             depths += depth;
         }
         self.overlap = depths * law.edge * law.area;
-        presses
     }
 
-    /// The points that may press, where they may, and their stiffness (N/m) in space.
-    pub(crate) fn possible(&self, law: Push) -> impl Iterator<Item = (u32, &Embedded, Matrix)> + '_ {
-        self.probes.iter().map(move |probe| {
+    /// Adds the forces to both beads. Returns the force (N) on the one that is probing.
+    fn press(&self, probing: &mut Relaxation, faced: &mut Relaxation) -> Vector {
+        for press in &self.presses {
+            probing.pull(press.point, press.force);
+            faced.pull_at(&press.at, -press.force);
+        }
+        self.presses.iter().map(|press| press.force).sum()
+    }
+
+    /// The points within `near` (m) of pressing, where they may, and their stiffness (N/m) in
+    /// space.
+    pub(crate) fn possible(
+        &self,
+        law: Push,
+        near: f64,
+    ) -> impl Iterator<Item = (u32, &Embedded, Matrix)> + '_ {
+        let close = self.probes.iter().filter(move |probe| probe.clearance < TRUSTED * near);
+        close.map(move |probe| {
             let slope = probe.slope * law.edge;
             let share = slope.norm_squared().max(1.0);
             let stiffness = contact::turning(&slope.normalize()) * (MARGIN * law.stiffness * share);
@@ -235,6 +240,11 @@ impl Push {
 /// Where a place lies in gel.
 fn sound(faced: &Bead, place: &Vector, from: Embedded) -> Option<(Embedded, Depth)> {
     let (at, gradient) = faced.lattice().embed(&faced.positions, place, from)?;
+    let found = faced.lattice().depth(&at, &gradient)?;
+    if found.depth <= 0.0 {
+        return Some((at, found));
+    }
+    let gradient = faced.lattice().smooth_gradient(&faced.positions, &at, &gradient);
     Some((at, faced.lattice().depth(&at, &gradient)?))
 }
 
@@ -268,11 +278,11 @@ mod tests {
         (place(Vector::zeros(), 0.15), place(Vector::new(13.0, 7.0, 4.0), -0.1))
     }
 
-    fn look(probing: &Bead, faced: &Bead) -> (Facing, Vec<Press>) {
-        let mut facing = Facing::look(probing, faced, Vector::zeros(), 1.0);
-        let presses = facing.measure(probing, faced, Vector::zeros(), LAW, 0.0);
-        assert!(presses.len() > 3, "{} points press", presses.len());
-        (facing, presses)
+    fn look(probing: &Bead, faced: &Bead) -> Facing {
+        let mut facing = Facing::look(probing, faced, faced.extent(), Vector::zeros(), 1.0);
+        facing.measure(probing, faced, Vector::zeros(), LAW, 0.0);
+        assert!(facing.presses.len() > 3, "{} points press", facing.presses.len());
+        facing
     }
 
     fn place_of(bead: &Bead, at: &Embedded) -> Vector {
@@ -282,7 +292,7 @@ mod tests {
     #[test]
     fn a_point_and_the_gel_it_has_entered_push_at_the_same_place() {
         let (probing, faced) = overlapping();
-        for Press { point, at, .. } in look(&probing, &faced).1 {
+        for Press { point, at, .. } in look(&probing, &faced).presses {
             let point = probing.skin_point(point as usize);
             assert_relative_eq!(place_of(&faced, &at), point, epsilon = 1e-9);
             let weights: f64 = faced.lattice().embedded_terms(&at).iter().map(|(_, weight)| weight).sum();
@@ -293,7 +303,7 @@ mod tests {
     /// The forces (N) of the first bead's skin in the second's gel on the nodes of both.
     fn pulls(first: &Bead, second: &Bead) -> [Vec<Vector>; 2] {
         let mut pulls = [first, second].map(|bead| vec![Vector::zeros(); bead.lattice().node_count()]);
-        for Press { point, at, force } in look(first, second).1 {
+        for Press { point, at, force } in look(first, second).presses {
             first.lattice().skin.terms(point as usize).for_each(|(node, w)| pulls[0][node] += force * w);
             second.lattice().embedded_terms(&at).iter().for_each(|&(node, w)| pulls[1][node] -= force * w);
         }
@@ -331,7 +341,7 @@ mod tests {
     fn forces_are_the_slope_of_the_energy() {
         let (first, second) = overlapping();
         let pulls = pulls(&first, &second);
-        let (facing, _) = look(&first, &second);
+        let facing = look(&first, &second);
         let largest = pulls.iter().flatten().map(Vector::norm).fold(0.0, f64::max);
         let mut beads = [first, second];
         let mut compared = 0;

@@ -180,11 +180,13 @@ fn rest(kinetics: &mut Kinetics, mut relaxation: Relaxation, obstacles: &[Obstac
     let reach = 0.5 * kinetics.bead().swollen_edge();
     for step in 1..=moves {
         relaxation.follow(&lead, step, moves);
-        relaxation.renew(&stage, obstacles, reach);
+        relaxation.look(&stage, obstacles, reach);
+        relaxation.weigh(&stage, obstacles, reach);
         relaxation.compute_forces(&stage, obstacles);
         relaxation.advance(0.4);
     }
-    relaxation.renew(&stage, obstacles, reach);
+    relaxation.look(&stage, obstacles, reach);
+    relaxation.weigh(&stage, obstacles, reach);
     for _ in 0..400 {
         relaxation.compute_forces(&stage, obstacles);
         relaxation.advance(0.4);

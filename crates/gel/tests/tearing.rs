@@ -261,7 +261,8 @@ fn halves_of_a_bead_bear_on_each_other_as_a_whole_one_does() {
     };
     let mut marching = Relaxation::new(start());
     marching.cut(&faces);
-    marching.renew(&gel, &hole, 0.2 * RADIUS);
+    marching.look(&gel, &hole, 0.2 * RADIUS);
+    marching.weigh(&gel, &hole, 0.2 * RADIUS);
     for _ in 0..5_000 {
         marching.compute_forces(&gel, &hole);
         // Loads cancel in the hole: the residual is over 1e-3 G R².

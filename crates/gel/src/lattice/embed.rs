@@ -38,6 +38,9 @@ const NEWTON_STEPS: usize = 12;
 const BEYOND: f64 = 1.0;
 /// How far a place may slide before contacts are looked for again (voxel edges).
 const SLIDE: f64 = 0.5;
+/// The map's gradient passes over from voxel to voxel within this distance of their face (voxel
+/// edges).
+const BLENDED: f64 = 0.1;
 /// Accepted error of a place (voxel edges).
 const ROUNDING: f64 = 1e-11;
 
@@ -66,6 +69,40 @@ impl Lattice {
             }
         }
         None
+    }
+
+    /// The map's gradient at a place (m per voxel edge), which is `gradient` in its own voxel,
+    /// without the steps that it has at the faces: a surface has no kinks there.
+    pub(crate) fn smooth_gradient(&self, positions: &[f64], at: &Embedded, gradient: &Matrix) -> Matrix {
+        let across = at.local.map(|c| {
+            let (face, inside) = if c < 0.5 { (0, c) } else { (1, 1.0 - c) };
+            (face, (0.5 * (1.0 - inside.max(0.0) / BLENDED)).max(0.0))
+        });
+        if across.iter().all(|&(_, share)| share == 0.0) {
+            return *gradient;
+        }
+        let mut sum = Matrix::zeros();
+        for crossed in 0..8_u32 {
+            let (mut there, mut weight) = (*at, 1.0);
+            for (axis, &(face, share)) in across.iter().enumerate() {
+                if crossed >> axis & 1 == 0 {
+                    weight *= 1.0 - share;
+                    continue;
+                }
+                weight *= share;
+                let neighbour = self.neighbours[there.voxel as usize][2 * axis + face];
+                if neighbour != NO_VOXEL {
+                    there.voxel = neighbour;
+                    there.local[axis] += if face == 0 { 1.0 } else { -1.0 };
+                }
+            }
+            if weight > 0.0 {
+                let own = there.voxel == at.voxel;
+                sum += weight
+                    * if own { *gradient } else { map(&self.corner_positions(positions, there.voxel), there.local).1 };
+            }
+        }
+        sum
     }
 
     /// Where a skin point lies in the voxel that carries it.
@@ -170,19 +207,23 @@ impl Lattice {
 /// Stands for a neighbour that is not there.
 pub(super) const NO_VOXEL: u32 = u32::MAX;
 
+/// The place (m) at trilinear coordinates, and the gradient there (m per voxel edge).
+fn map(corners: &[Vector; 8], [x, y, z]: [f64; 3]) -> (Vector, Matrix) {
+    // Along x, then y, then z.
+    let ends: [Vector; 4] = std::array::from_fn(|k| corners[2 * k].lerp(&corners[2 * k + 1], x));
+    let slopes: [Vector; 4] = std::array::from_fn(|k| corners[2 * k + 1] - corners[2 * k]);
+    let (near, far) = (ends[0].lerp(&ends[1], y), ends[2].lerp(&ends[3], y));
+    let along_x = slopes[0].lerp(&slopes[1], y).lerp(&slopes[2].lerp(&slopes[3], y), z);
+    let along_y = (ends[1] - ends[0]).lerp(&(ends[3] - ends[2]), z);
+    (near.lerp(&far, z), Matrix::from_columns(&[along_x, along_y, far - near]))
+}
+
 /// Finds the trilinear coordinates of a place, from those given; returns the gradient
 /// there. `None` where the map cannot be inverted.
 fn invert(corners: &[Vector; 8], place: &Vector, local: &mut [f64; 3]) -> Option<Matrix> {
     for step in 0..NEWTON_STEPS {
-        let [x, y, z] = *local;
-        // Along x, then y, then z.
-        let ends: [Vector; 4] = std::array::from_fn(|k| corners[2 * k].lerp(&corners[2 * k + 1], x));
-        let slopes: [Vector; 4] = std::array::from_fn(|k| corners[2 * k + 1] - corners[2 * k]);
-        let (near, far) = (ends[0].lerp(&ends[1], y), ends[2].lerp(&ends[3], y));
-        let along_x = slopes[0].lerp(&slopes[1], y).lerp(&slopes[2].lerp(&slopes[3], y), z);
-        let along_y = (ends[1] - ends[0]).lerp(&(ends[3] - ends[2]), z);
-        let gradient = Matrix::from_columns(&[along_x, along_y, far - near]);
-        let way = gradient.try_inverse()? * (place - near.lerp(&far, z));
+        let (found, gradient) = map(corners, *local);
+        let way = gradient.try_inverse()? * (place - found);
         for axis in 0..3 {
             local[axis] = (local[axis] + way[axis].clamp(-1.0, 1.0)).clamp(-2.0, 3.0);
         }

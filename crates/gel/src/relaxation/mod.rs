@@ -38,16 +38,24 @@ pub struct Relaxation {
     pulls: Vec<(u32, Vector)>,
     /// Where the bead comes near itself.
     folds: Folds,
+    /// Pressure per distance that a fold lacks (Pa/m).
+    fold_penalty: f64,
     /// Way of the fastest node since forces were last computed (m).
     under_way: f64,
     /// The same between the last two times (m).
     last_way: f64,
     /// Obstacles where they were when forces were last computed.
     last_obstacles: Vec<Obstacle>,
-    /// Nodes and obstacles where they were when contacts were last looked for.
-    listed: Listed,
+    /// When contacts were last looked for.
+    listed: Standing,
+    /// Distance of the skin from the bead's centre then (m).
+    listed_extent: f64,
+    /// When the masses were last renewed.
+    weighed: Standing,
     /// Velocity of the bead as a whole (m per step), besides that of its nodes.
     drift: Vector,
+    /// The mass with which it last drifted.
+    drift_mass: f64,
     /// The bead's weight, less its buoyancy (N).
     weight: Vector,
     /// Sum of the stiffnesses of the points that press (N/m).
@@ -67,11 +75,36 @@ pub struct Load {
     pub stiffness: f64,
 }
 
+/// Nodes and obstacles where they once were.
 #[derive(Clone, Debug, Default)]
-struct Listed {
+struct Standing {
     positions: Vec<f64>,
     obstacles: Vec<Obstacle>,
-    extent: f64,
+    /// How much further away each obstacle was than what counted as near (m).
+    slack: Vec<f64>,
+}
+
+impl Standing {
+    /// Distance (m) by which a skin point and an obstacle may have come nearer since, what was
+    /// further away than near not counted; without end when this is of another bead.
+    fn approach(&self, bead: &Bead, obstacles: &[Obstacle]) -> f64 {
+        if self.obstacles.len() != obstacles.len() || self.positions.len() != bead.positions.len() {
+            return f64::INFINITY;
+        }
+        let ways = self.obstacles.iter().zip(&self.slack).zip(obstacles);
+        let obstacles = ways.map(|((before, slack), now)| before.way(now) - slack);
+        POINT_WAY * self.way(bead) + obstacles.fold(0.0, f64::max)
+    }
+
+    /// Way of the node that has gone furthest since (m).
+    fn way(&self, bead: &Bead) -> f64 {
+        let stride = self.positions.len() / 3;
+        let square = |node: usize| -> f64 {
+            let places = [node, stride + node, 2 * stride + node];
+            places.iter().map(|&place| (bead.positions[place] - self.positions[place]).powi(2)).sum()
+        };
+        (0..bead.lattice().node_count()).map(square).fold(0.0, f64::max).sqrt()
+    }
 }
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
@@ -95,11 +128,15 @@ impl Relaxation {
             loads: Vec::new(),
             pulls: Vec::new(),
             folds: Folds::default(),
+            fold_penalty: 0.0,
             under_way: 0.0,
             last_way: 0.0,
             last_obstacles: Vec::new(),
-            listed: Listed::default(),
+            listed: Standing::default(),
+            listed_extent: 0.0,
+            weighed: Standing::default(),
             drift: Vector::zeros(),
+            drift_mass: 0.0,
             weight: Vector::zeros(),
             pressing_stiffness: 0.0,
             smallest_volume_ratio: f64::INFINITY,
@@ -125,59 +162,70 @@ impl Relaxation {
         self.weight = weight;
     }
 
-    /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere
-    /// in the bead, and renews the node masses. The obstacles' indices must not change
-    /// over the march. Contacts to other beads must be weighed anew.
-    pub fn renew(&mut self, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
+    /// Finds the skin points within `reach` (m) of an obstacle or of gel from elsewhere in the
+    /// bead; this lasts until they have approached by as much. The obstacles' indices must not
+    /// change over the march.
+    pub fn look(&mut self, gel: &Gel, obstacles: &[Obstacle], reach: f64) {
         let size = gel.free_stretch() * self.bead.voxel_edge();
         let lattice = self.bead.shared_lattice();
         self.contacts.area = lattice.skin.area * size * size;
+        self.fold_penalty = self.soft_penalty(gel);
+        let points = lattice.skin.len_with_inner();
+        self.contacts.face_cracks(&lattice.skin, &self.bead.positions);
+        self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
+        let law = self.fold_law();
+        // Both points of a pair may go that way.
+        self.folds.renew(&self.bead, law, 2.0 * reach);
+        self.listed_extent = self.bead.extent();
+        self.listed = self.standing(obstacles, self.listed_extent + reach);
+        self.weighed = Standing::default();
+    }
+
+    /// Renews the contacts' stiffness and the node masses, for contacts within `near` (m); this
+    /// lasts until they have approached by half as much. Contacts to other beads must be weighed
+    /// anew.
+    pub fn weigh(&mut self, gel: &Gel, obstacles: &[Obstacle], near: f64) {
+        let lattice = self.bead.shared_lattice();
         let deepest = DEPTH * lattice.across() as f64;
         let pressure = match &self.water {
             None => gel.confining_pressure(self.bead.volume() / self.bead.dry_volume()),
             Some(water) => water.pressure(&Elastic { lattice: &lattice, gel, edge: self.bead.voxel_edge() }),
         };
-        let stiffness = (PENALTY * gel.moduli().plane_strain()).max(pressure / deepest);
-        self.contacts.penalty = stiffness / size;
-        let points = lattice.skin.len_with_inner();
-        self.contacts.face_cracks(&lattice.skin, &self.bead.positions);
-        self.contacts.collect(&lattice.skin, points, &self.bead.positions, obstacles, reach);
-        let law = self.fold_law();
-        self.folds.renew(&self.bead, law, reach);
+        let size = gel.free_stretch() * self.bead.voxel_edge();
+        self.contacts.penalty = self.soft_penalty(gel).max(pressure / (deepest * size));
         let mut inertia = std::mem::take(&mut self.inertia);
-        inertia.renew(self, gel, obstacles, reach);
+        inertia.renew(self, gel, obstacles, near);
         self.inertia = inertia;
-        self.listed = Listed {
+        let way = (1.0 + POINT_WAY) * self.listed.way(&self.bead);
+        self.weighed = self.standing(obstacles, self.listed_extent + way + near);
+    }
+
+    /// Where nodes and obstacles are now; `near` (m) from the bead's centre counts as near.
+    fn standing(&self, obstacles: &[Obstacle], near: f64) -> Standing {
+        let centre = self.bead.centre();
+        let slack = |obstacle: &Obstacle| (obstacle.gap(&centre).distance - near).max(0.0);
+        Standing {
             positions: self.bead.positions.clone(),
+            slack: obstacles.iter().map(slack).collect(),
             obstacles: obstacles.to_vec(),
-            extent: self.bead.extent(),
-        };
+        }
     }
 
     /// Distance (m) by which a skin point and an obstacle may have come nearer since
     /// contacts were last looked for; without end when they never were.
     pub fn approach(&self, obstacles: &[Obstacle]) -> f64 {
-        let listed = &self.listed;
-        if listed.obstacles.len() != obstacles.len() || listed.positions.len() != self.bead.positions.len() {
-            return f64::INFINITY;
-        }
-        let stride = self.gradient.len() / 3;
-        let mut furthest = 0.0_f64;
-        for node in 0..self.bead.lattice().node_count() {
-            let way: f64 = [node, stride + node, 2 * stride + node]
-                .iter()
-                .map(|&place| (self.bead.positions[place] - self.listed.positions[place]).powi(2))
-                .sum();
-            furthest = furthest.max(way);
-        }
-        let obstacles = self.listed.obstacles.iter().zip(obstacles).map(|(before, now)| before.way(now));
-        POINT_WAY * furthest.sqrt() + obstacles.fold(0.0, f64::max)
+        self.listed.approach(&self.bead, obstacles)
+    }
+
+    /// The same since masses were last renewed.
+    pub fn approach_since_weighed(&self, obstacles: &[Obstacle]) -> f64 {
+        self.weighed.approach(&self.bead, obstacles)
     }
 
     /// Distance of the skin from the bead's centre (m), at most, when contacts were last
     /// looked for.
     pub fn extent(&self) -> f64 {
-        if self.listed.extent > 0.0 { self.listed.extent } else { self.bead.extent() }
+        if self.listed_extent > 0.0 { self.listed_extent } else { self.bead.extent() }
     }
 
     /// A bound on how far a skin point has moved between the last two times that forces
@@ -273,8 +321,16 @@ impl Relaxation {
         Push { stiffness: 0.5 * self.point_stiffness(), area: self.contacts.area, edge: faced.free_edge() }
     }
 
+    /// Pressure per penetration (Pa/m) where none is so high that little may be left of it.
+    fn soft_penalty(&self, gel: &Gel) -> f64 {
+        PENALTY * gel.moduli().plane_strain() / (gel.free_stretch() * self.bead.voxel_edge())
+    }
+
+    /// Skins that meet keep a distance, so that what a fold gives way by is not lost: folds
+    /// stay soft in gel that is held tight, and slide.
     fn fold_law(&self) -> FoldLaw {
-        FoldLaw { stiffness: self.point_stiffness(), area: self.contacts.area, edge: self.free_edge() }
+        let area = self.contacts.area;
+        FoldLaw { stiffness: self.fold_penalty * area, area, edge: self.free_edge() }
     }
 
     /// Edge of a free-swollen voxel when contacts were last looked for (m).
@@ -321,9 +377,10 @@ impl Relaxation {
         self.bead = bead;
         self.contacts = solver.contacts;
         self.contacts.ties.clear();
+        self.fold_penalty = self.soft_penalty(gel);
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, 0.0);
-        self.listed = Listed::default();
+        self.listed = Standing::default();
         self.compute_forces(gel, obstacles);
         Ok(equilibrium)
     }

@@ -1,6 +1,6 @@
 //! Ruptures of a bead on its way to rest.
 
-use super::{Listed, Relaxation};
+use super::{Relaxation, Standing};
 use crate::fold::Folds;
 use crate::lattice::Face;
 use crate::rupture::{self, Criterion, Event};
@@ -36,6 +36,6 @@ impl Relaxation {
         // Points inside have other numbers now.
         self.contacts.pairs.retain(|pair| (pair.point as usize) < before.skin.len());
         self.folds = Folds::default();
-        self.listed = Listed::default();
+        self.listed = Standing::default();
     }
 }

@@ -1,6 +1,6 @@
 //! A bead that comes to rest at the water it holds.
 
-use super::Relaxation;
+use super::{Relaxation, Standing};
 use crate::contact::{Contacts, Pair, skin_position};
 use crate::elastic::{Elastic, Holding};
 use crate::obstacle::Obstacle;
@@ -63,6 +63,7 @@ impl Relaxation {
     /// Holds every voxel at its water from now on.
     pub(crate) fn hold(&mut self, water: HeldWater) {
         self.water = Some(water);
+        self.weighed = Standing::default();
     }
 
     /// Follows a lead by one of `of` equal moves, number `step` from 1.
@@ -86,12 +87,16 @@ impl Relaxation {
             back(&mut water.holding.water, &lead.start.water);
         }
         self.water = Some(water);
+        if step == 1 {
+            self.weighed = Standing::default();
+        }
     }
 
     /// Lets the bead press as contacts say that were found elsewhere, and computes its
     /// forces.
     pub(crate) fn press_as(&mut self, contacts: Contacts, gel: &Gel, obstacles: &[Obstacle]) {
         self.contacts = contacts;
+        self.fold_penalty = self.soft_penalty(gel);
         let law = self.fold_law();
         self.folds.renew(&self.bead, law, 0.0);
         self.compute_forces(gel, obstacles);

@@ -23,8 +23,8 @@ pub struct WorkAccount {
     pub lifted: f64,
     /// Lost where contacts slip or yield in rolling.
     pub friction: f64,
-    /// Taken out of the motion by the march's damping, with what its fictitious masses
-    /// hold (the work of the net forces), and where contacts close and open between
+    /// Taken out of the motion by the march's damping and the contacts' dashpots, with what
+    /// its fictitious masses hold (the work of the net forces), and where contacts close and open between
     /// steps.
     pub damping: f64,
 }
@@ -48,6 +48,8 @@ impl Assembly {
             forces: vec![Vector::zeros(); count],
             torques: vec![Vector::zeros(); count],
             lid_force: 0.0,
+            dashes: vec![Vector::zeros(); count],
+            lid_dash: 0.0,
         }));
     }
 
@@ -102,6 +104,9 @@ pub(super) struct Ledger {
     pub(super) forces: Vec<Vector>,
     pub(super) torques: Vec<Vector>,
     pub(super) lid_force: f64,
+    /// Forces of dashpots since the last `compute_contacts`.
+    dashes: Vec<Vector>,
+    pub(super) lid_dash: f64,
 }
 
 impl Ledger {
@@ -110,6 +115,13 @@ impl Ledger {
         self.forces.fill(Vector::zeros());
         self.torques.fill(Vector::zeros());
         self.lid_force = 0.0;
+        self.dashes.fill(Vector::zeros());
+        self.lid_dash = 0.0;
+    }
+
+    /// Notes the force (N) of a dashpot on a grain.
+    pub(super) fn dash(&mut self, grain: usize, force: Vector) {
+        self.dashes[grain] += force;
     }
 
     /// Books what a spring lost by slipping, its mean force times its slip, while its ends
@@ -156,11 +168,12 @@ impl Ledger {
             let spin = 0.5 * (spins[grain] + grains.spins[grain]);
             sums.loads += self.forces[grain].dot(&velocity) + self.torques[grain].dot(&spin);
             sums.lifted -= grains.weights[grain].dot(&velocity);
-            sums.damping += grains.forces[grain].dot(&velocity) + grains.torques[grain].dot(&spin);
+            let net = grains.forces[grain] - self.dashes[grain];
+            sums.damping += net.dot(&velocity) + grains.torques[grain].dot(&spin);
         }
         let lid_velocity = 0.5 * (lid_velocity + grains.lid_state.velocity);
         sums.loads += self.lid_force * lid_velocity;
         sums.lifted += grains.lid_load() * lid_velocity;
-        sums.damping += grains.lid_state.force * lid_velocity;
+        sums.damping += (grains.lid_state.force - self.lid_dash) * lid_velocity;
     }
 }

@@ -73,6 +73,16 @@ impl Assembly {
                 ledger.close(push, approach.dot(&normal) + gap);
             }
             let mut on_plate = normal * push;
+            if self.contact_damping > 0.0 && list.slip {
+                let drag = (self.contact_damping * stiffness * approach.dot(&normal)).max(-push);
+                on_plate += normal * drag;
+                if let Some(ledger) = &mut self.ledger {
+                    ledger.dash(grain, normal * -drag);
+                    if touch.plate == Plate::Lid {
+                        ledger.lid_dash += normal.z * drag;
+                    }
+                }
+            }
             if self.law.friction > 0.0 {
                 let arm = radius + gap;
                 let moved = if list.slip {

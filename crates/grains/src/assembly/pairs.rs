@@ -131,6 +131,8 @@ struct State<'a> {
     velocities: &'a [Vector],
     spins: &'a [Vector],
     law: &'a ContactLaw,
+    /// Force per closing speed over stiffness (steps).
+    dashpot: f64,
     /// Whether grains have moved since contacts were last computed.
     slip: bool,
 }
@@ -144,6 +146,7 @@ impl<'a> State<'a> {
             velocities: &grains.velocities,
             spins: &grains.spins,
             law: &grains.law,
+            dashpot: grains.contact_damping,
             slip: grains.contacts.slip,
         }
     }
@@ -157,7 +160,7 @@ impl<'a> State<'a> {
         sums: &mut Sums,
         ledger: Option<&mut Ledger>,
     ) {
-        let Self { cell, centres, radii, velocities, spins, law, slip } = *self;
+        let Self { cell, centres, radii, velocities, spins, law, dashpot, slip } = *self;
         let mut ledger = ledger.filter(|_| BOOKED);
         let (periodic, rough) = (cell.periodic[2], law.friction > 0.0);
         for (index, pair) in pairs.iter_mut().enumerate() {
@@ -195,6 +198,16 @@ impl<'a> State<'a> {
                 ledger.close(push, (velocities[a] - velocities[b]).dot(&normal) - overlap);
             }
             let mut on_b = normal * push;
+            if dashpot > 0.0 && slip {
+                let closing = (velocities[a] - velocities[b]).dot(&normal);
+                // It never holds grains together.
+                let drag = normal * (dashpot * stiffness * closing).max(-push);
+                on_b += drag;
+                if let Some(ledger) = &mut ledger {
+                    ledger.dash(a, -drag);
+                    ledger.dash(b, drag);
+                }
+            }
             if rough {
                 // Both arms end in one point, so that angular momentum is kept.
                 let (arm_a, arm_b) = (radii[a] * distance / reach, radii[b] * distance / reach);

@@ -1,22 +1,23 @@
-use super::neighbourhood::Neighbourhood;
+use super::neighbourhood::{Neighbourhood, WATCH};
 use super::touching::{self, Pair};
 use bedswell_gel::{Gel, Relaxation};
 use bedswell_geometry::Vector;
 use bedswell_grains::Assembly;
 use rayon::prelude::*;
 
-/// Damping of grains that only chatter, where the usual one is this: they come to rest
-/// sooner, as nothing rearranges any more.
-const SETTLING: (f64, f64) = (0.6, 0.2);
-/// Largest net force on a grain, over the mean contact force, of grains that only chatter.
-const CHATTER: f64 = 2e-3;
-/// Steps without growth after which, in every so many, so many are damped like those of grains
-/// that only chatter: a loose grain that slides on its neighbours may flutter for ever with less.
-const CALM: (usize, usize, usize) = (10_000, 5_000, 1_000);
+/// Force of a contact's dashpot per closing speed, over the contact's stiffness (steps).
+const CONTACT_DAMPING: f64 = 0.4;
 /// Share of each force component that is turned against the motion, on the gel's nodes.
 const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
-const REACH: f64 = 0.3;
+const REACH: f64 = 0.45;
+/// Share of that distance after which contacts are looked for again.
+const TRUSTED: f64 = 0.9;
+/// Skin points within this many swollen voxel edges of what they may touch have mass for it;
+/// masses are renewed after half of that way.
+const NEAR: f64 = 0.3;
+/// Grains within this many times that distance of a bead are its obstacles.
+const LOOK: f64 = 2.0;
 
 /// Grains and beads in motion.
 #[derive(Clone, Debug)]
@@ -26,18 +27,18 @@ pub(super) struct Bodies {
     pub(super) around: Vec<Neighbourhood>,
     /// Pairs of beads that may touch.
     pub(super) pairs: Vec<Pair>,
-    /// Where the grains were when the beads' neighbours were last looked for.
+    /// Where the grains were when all beads' neighbours were last looked for.
     listed: Vec<Vector>,
     /// Share of each force component on grains and lid that is turned against the motion.
     /// Little of it lets slow rearrangements come to their end soonest.
-    usual_damping: f64,
     damping: f64,
 }
 
 impl Bodies {
-    pub(super) fn new(grains: Assembly, beads: Vec<Relaxation>, damping: f64) -> Self {
+    pub(super) fn new(mut grains: Assembly, beads: Vec<Relaxation>, damping: f64) -> Self {
+        grains.contact_damping = CONTACT_DAMPING;
         let around = vec![Neighbourhood::default(); beads.len()];
-        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), usual_damping: damping, damping }
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), damping }
     }
 
     /// Puts beads at rest in the place of the same beads; grains stay as they are.
@@ -45,7 +46,6 @@ impl Bodies {
         self.beads = beads;
         self.pairs.clear();
         self.listed.clear();
-        self.damping = self.usual_damping;
     }
 
     /// How near (m) an obstacle is that beads of a gel follow.
@@ -71,7 +71,7 @@ impl Bodies {
         for (bead, around) in self.beads.iter().zip(&self.around) {
             around.pass_on(bead, &mut self.grains);
         }
-        self.pairs.iter_mut().for_each(|pair| pair.press(&mut self.beads));
+        touching::press(&mut self.pairs, &mut self.beads);
     }
 
     /// Moves everything by one step.
@@ -84,15 +84,6 @@ impl Bodies {
         );
     }
 
-    /// Damps as befits the largest net force on a grain, over the mean contact force, after
-    /// so many steps with nothing growing.
-    pub(super) fn damp(&mut self, residual: f64, step: usize) {
-        let settling = SETTLING.0 * (self.usual_damping / SETTLING.1);
-        let (late, cycle, calm) = CALM;
-        let calms = step >= late && step % cycle < calm;
-        self.damping = if residual < CHATTER || calms { settling } else { self.usual_damping };
-    }
-
     pub(super) fn step(&mut self, gel: &Gel) {
         self.compute_forces(gel);
         self.advance();
@@ -101,24 +92,39 @@ impl Bodies {
     /// Looks for contacts anew where something has moved too far since the last look.
     fn look_around(&mut self, gel: &Gel) {
         let reach = self.reach(gel);
-        let all = self.grains_strayed(0.5 * reach);
+        // What no bead watches may come as near as what they follow: half of that way until all
+        // look again, half before.
+        let all = self.grains_strayed(0.5 * (LOOK * (1.0 + WATCH) - 1.0) * reach);
         if all {
             self.listed.clone_from(&self.grains.centres);
         }
+        let near = NEAR / REACH * reach;
         let grains = &self.grains;
-        let due: Vec<bool> = (self.beads.par_iter_mut().zip(&mut self.around))
+        let due: Vec<(bool, bool)> = (self.beads.par_iter_mut().zip(&mut self.around))
             .map(|(bead, around)| {
                 around.update(bead, grains);
-                let due = all || bead.approach(&around.obstacles) > 0.5 * reach;
-                if due {
-                    around.extend(bead, grains, 2.0 * reach);
-                    bead.renew(gel, &around.obstacles, reach);
+                let limit = TRUSTED * reach;
+                let looks =
+                    all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;
+                if looks {
+                    around.extend(bead, grains, LOOK * reach);
+                    bead.look(gel, &around.obstacles, reach);
                 }
-                due
+                let weighs = looks || bead.approach_since_weighed(&around.obstacles) > 0.5 * near;
+                if weighs {
+                    bead.weigh(gel, &around.obstacles, near);
+                }
+                (looks, weighs)
             })
             .collect();
-        if due.contains(&true) && self.beads.len() > 1 {
-            touching::look(&mut self.pairs, &mut self.beads, &self.grains.cell, &due, reach);
+        if self.beads.len() > 1 {
+            let (looks, mut weighs): (Vec<bool>, Vec<bool>) = due.into_iter().unzip();
+            if looks.contains(&true) {
+                touching::look(&mut self.pairs, &self.beads, &self.grains.cell, &looks, reach, &mut weighs);
+            }
+            if weighs.contains(&true) {
+                touching::weigh(&self.pairs, &mut self.beads, &weighs, 2.0 * near);
+            }
         }
     }
 

@@ -289,7 +289,6 @@ impl<'a> InTime<'a> {
         let stage = self.stage();
         self.march.bodies.renew(beads);
         self.march.weigh();
-        self.march.bodies.damp(f64::INFINITY, 0);
         if !leads.is_empty() {
             for number in 1..=moves {
                 let beads = self.march.bodies.beads.iter_mut().zip(leads);

@@ -37,6 +37,10 @@ const AT_THE_END_ALONE: Target =
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
 
+/// Further steps in which such a state is waited for: a point of skin that slides to and fro
+/// over an edge of a voxel, where the surface has a kink, jolts it from time to time.
+const LAST_STEPS: usize = 1_000;
+
 /// What an end state may be left with when nothing that is measured changes any more: the
 /// grains that still creep then carry next to nothing.
 const UNCHANGING: Target = Target { grains: 1e-3, gel: 1e-4, balance: 1e-5, steps: 2_500, required: true };
@@ -290,7 +294,6 @@ impl March {
         }
         let growth = (to / from).powf(1.0 / steps as f64);
         let mut stretch = from;
-        self.bodies.damp(f64::INFINITY, 0);
         for _ in 0..steps {
             stretch *= growth;
             let stage = gel.limited_to(stretch);
@@ -308,11 +311,13 @@ impl March {
     pub(super) fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         self.weigh();
         let mut before = None;
-        for step in 0..target.steps {
+        let longest = if target.required { target.steps + LAST_STEPS } else { target.steps };
+        for step in 0..longest {
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
                 let quality = self.rest_quality(gel);
-                if target.is_met(&quality) {
+                let is_late = target.required && step >= target.steps;
+                if target.is_met(&quality) || (is_late && TOLERABLE.is_met(&quality)) {
                     return Ok(());
                 }
                 if target.required && step % UNCHANGING.steps == 0 {
@@ -323,17 +328,16 @@ impl March {
                     }
                     before = Some(now);
                 }
-                self.bodies.damp(quality.grain_residual, step);
             }
             self.bodies.advance();
         }
-        let quality = self.rest_quality(gel);
-        if TOLERABLE.is_met(&quality) || !target.required {
+        if !target.required {
             return Ok(());
         }
+        let quality = self.rest_quality(gel);
         Err(format!(
             "no joint equilibrium after {} steps: net force on grain {} {:.1e} of the mean contact force (allowed {:.0e}), in the gel of bead {} {:.1e} (allowed {:.0e}), on a bead {:.1e} (allowed {:.0e}); take more increments",
-            target.steps,
+            longest,
             self.bodies.grains.rest().worst,
             quality.grain_residual,
             TOLERABLE.grains,

@@ -11,6 +11,9 @@ pub(super) struct Neighbourhood {
     pub(super) obstacles: Vec<Obstacle>,
     /// Obstacles before the first grain.
     pub(super) plates: usize,
+    /// Grains that may come near next, where they were when it was last extended, and how much
+    /// further away than what is near (m).
+    watched: Vec<(usize, Vector, f64)>,
 }
 
 /// What an obstacle of a neighbourhood is.
@@ -33,17 +36,33 @@ impl Neighbourhood {
         }
     }
 
-    /// Adds the grains that came within `reach` (m) of the bead.
+    /// Adds the grains that came within `reach` (m) of the bead, and watches those within
+    /// `WATCH` times as much more.
     pub(super) fn extend(&mut self, bead: &Relaxation, grains: &Assembly, reach: f64) {
         let centre = bead.bead().centre();
         let extent = bead.bead().extent() + reach;
-        for grain in 0..grains.radii.len() {
-            let distance = grains.cell.separation(&centre, &grains.centres[grain]).norm_squared();
-            if distance < (extent + grains.radii[grain]).powi(2) && !self.grains.contains(&grain) {
+        self.watched.clear();
+        for (grain, place) in grains.centres.iter().enumerate() {
+            let apart = grains.cell.separation(&centre, place).norm_squared();
+            let near = extent + grains.radii[grain];
+            if apart >= (near + WATCH * reach).powi(2) || self.grains.contains(&grain) {
+                continue;
+            }
+            if apart < near * near {
                 self.grains.push(grain);
+            } else {
+                self.watched.push((grain, *place, apart.sqrt() - near));
             }
         }
         self.update(bead, grains);
+    }
+
+    /// Whether a grain that is watched has come nearer by more than `limit` (m) since the last
+    /// `extend`.
+    pub(super) fn has_strayed(&self, grains: &Assembly, limit: f64) -> bool {
+        self.watched.iter().any(|&(grain, before, slack)| {
+            (grains.centres[grain] - before).norm_squared() > (limit + slack).powi(2)
+        })
     }
 
     /// Moves the obstacles to where grains and lid are now.
@@ -79,5 +98,7 @@ impl Neighbourhood {
     }
 }
 
+/// Grains are watched within this many times the reach of an extension beyond it.
+pub(super) const WATCH: f64 = 4.0;
 /// Height (m) of a lid that is out of every bead's reach.
 const NO_LID: f64 = 1e3;

@@ -2,6 +2,7 @@
 
 use bedswell_gel::{Bead, BeadContact, Relaxation};
 use bedswell_geometry::{Cell, Vector};
+use rayon::prelude::*;
 
 /// Two beads that may touch.
 #[derive(Clone, Debug)]
@@ -31,56 +32,80 @@ impl Pair {
             _ => None,
         }
     }
+}
 
-    pub(super) fn press(&mut self, beads: &mut [Relaxation]) {
-        let (first, second) = two(beads, self.first, self.second);
+/// Adds the forces of touching beads on each other.
+pub(super) fn press(pairs: &mut [Pair], beads: &mut [Relaxation]) {
+    pairs.par_iter_mut().for_each(|pair| {
+        let (first, second) = (&beads[pair.first], &beads[pair.second]);
         let moved = first.last_way() + second.last_way();
-        self.force = self.contact.press(first, second, self.shift, moved);
+        pair.contact.measure(first, second, pair.shift, moved);
+    });
+    for pair in pairs {
+        let (first, second) = two(beads, pair.first, pair.second);
+        pair.force = pair.contact.press(first, second);
     }
 }
 
-/// Finds the beads within `reach` (m) of those that are `due`, and gives every bead that
-/// this concerns the mass that its contacts need.
-pub(super) fn look(pairs: &mut Vec<Pair>, beads: &mut [Relaxation], cell: &Cell, due: &[bool], reach: f64) {
-    let mut concerned = due.to_vec();
-    pairs.retain(|pair| {
-        let kept = !due[pair.first] && !due[pair.second];
-        if !kept {
-            concerned[pair.first] = true;
-            concerned[pair.second] = true;
-        }
-        kept
-    });
-    let centres: Vec<Vector> = beads.iter().map(|bead| bead.bead().centre()).collect();
-    for second in 1..beads.len() {
-        for first in (0..second).filter(|&first| due[first] || due[second]) {
-            let apart = cell.separation(&centres[first], &centres[second]);
-            // Extents are those of each bead's last look; it has moved by less than reach since.
-            if apart.norm() > beads[first].extent() + beads[second].extent() + 3.0 * reach {
-                continue;
-            }
-            let shift = centres[first] + apart - centres[second];
-            let contact = BeadContact::find(&beads[first], &beads[second], shift, 2.0 * reach);
-            if !contact.is_empty() {
-                concerned[first] = true;
-                concerned[second] = true;
-                pairs.push(Pair { first, second, shift, contact, force: Vector::zeros() });
-            }
-        }
+/// Finds the beads within `reach` (m) of those that are `due`. Beads that this concerns must be
+/// weighed: they are added to `concerned`.
+pub(super) fn look(
+    pairs: &mut Vec<Pair>,
+    beads: &[Relaxation],
+    cell: &Cell,
+    due: &[bool],
+    reach: f64,
+    concerned: &mut [bool],
+) {
+    pairs.retain(|pair| !due[pair.first] && !due[pair.second]);
+    let found = near(beads, cell, due, reach);
+    for pair in &found {
+        concerned[pair.first] = true;
+        concerned[pair.second] = true;
     }
+    pairs.extend(found);
     pairs.sort_unstable_by_key(|pair| (pair.first, pair.second));
+}
+
+/// Gives beads whose masses were renewed, and those they may touch, the mass that their contacts
+/// within `near` (m) need.
+pub(super) fn weigh(pairs: &[Pair], beads: &mut [Relaxation], renewed: &[bool], near: f64) {
+    let mut concerned = renewed.to_vec();
+    for pair in pairs.iter().filter(|pair| renewed[pair.first] || renewed[pair.second]) {
+        concerned[pair.first] = true;
+        concerned[pair.second] = true;
+    }
     for (bead, _) in beads.iter_mut().zip(&concerned).filter(|(_, concerned)| **concerned) {
         bead.forget_others();
     }
     for pair in pairs {
         let (first, second) = two(beads, pair.first, pair.second);
         if concerned[pair.first] {
-            pair.contact.weigh_first(first, second);
+            pair.contact.weigh_first(first, second, near);
         }
         if concerned[pair.second] {
-            pair.contact.weigh_second(first, second);
+            pair.contact.weigh_second(first, second, near);
         }
     }
+}
+
+/// The pairs of beads within reach of each other, one of them `due`.
+fn near(beads: &[Relaxation], cell: &Cell, due: &[bool], reach: f64) -> Vec<Pair> {
+    let centres: Vec<Vector> = beads.iter().map(|bead| bead.bead().centre()).collect();
+    let pairs = (1..beads.len()).flat_map(|second| (0..second).map(move |first| (first, second)));
+    let close = pairs.filter_map(|(first, second)| {
+        let apart = cell.separation(&centres[first], &centres[second]);
+        // Extents are those of each bead's last look; it has moved by less than reach since.
+        let far = beads[first].extent() + beads[second].extent() + 3.0 * reach;
+        let is_close = (due[first] || due[second]) && apart.norm_squared() < far * far;
+        is_close.then(|| (first, second, centres[first] + apart - centres[second]))
+    });
+    let close: Vec<(usize, usize, Vector)> = close.collect();
+    let found = close.into_par_iter().filter_map(|(first, second, shift)| {
+        let contact = BeadContact::find(&beads[first], &beads[second], shift, 2.0 * reach);
+        (!contact.is_empty()).then(|| Pair { first, second, shift, contact, force: Vector::zeros() })
+    });
+    found.collect()
 }
 
 /// Two beads at once; the first has the lower number.

@@ -202,6 +202,6 @@ pub struct March {
 
 impl Default for March {
     fn default() -> Self {
-        Self { increments: 30, overlap: 3e-4, damping: 0.2 }
+        Self { increments: 30, overlap: 3e-4, damping: 0.1 }
     }
 }
