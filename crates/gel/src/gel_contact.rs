@@ -4,6 +4,8 @@
 //! distance g to the dry surface is known exactly and is smooth wherever the point
 //! slides. The contact is an energy of g alone: its forces on the point and on the nodes
 //! that carry the place balance exactly, in force and torque, and cannot feed the motion.
+//! Only next to a voxel's face, where g has a kink, its slope passes over smoothly instead:
+//! a point that comes to rest on a kink would be jolted to and fro for ever.
 
 use crate::bead::Bead;
 use crate::contact::{self, skin_position};
@@ -256,7 +258,7 @@ fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::lattice::Lattice;
+    use crate::lattice::{BLENDED, Lattice};
     use approx::assert_relative_eq;
     use std::sync::Arc;
 
@@ -301,11 +303,11 @@ mod tests {
     }
 
     /// The forces (N) of the first bead's skin in the second's gel on the nodes of both.
-    fn pulls(first: &Bead, second: &Bead) -> [Vec<Vector>; 2] {
+    fn pulls(facing: &Facing, first: &Bead, second: &Bead) -> [Vec<Vector>; 2] {
         let mut pulls = [first, second].map(|bead| vec![Vector::zeros(); bead.lattice().node_count()]);
-        for Press { point, at, force } in look(first, second).presses {
+        for &Press { point, ref at, force } in &facing.presses {
             first.lattice().skin.terms(point as usize).for_each(|(node, w)| pulls[0][node] += force * w);
-            second.lattice().embedded_terms(&at).iter().for_each(|&(node, w)| pulls[1][node] -= force * w);
+            second.lattice().embedded_terms(at).iter().for_each(|&(node, w)| pulls[1][node] -= force * w);
         }
         pulls
     }
@@ -324,7 +326,7 @@ mod tests {
     #[test]
     fn overlapping_beads_balance_in_force_and_torque() {
         let (first, second) = overlapping();
-        let pulls = pulls(&first, &second);
+        let pulls = pulls(&look(&first, &second), &first, &second);
         let (mut net, mut torque, mut size) = (Vector::zeros(), Vector::zeros(), 0.0);
         for (bead, pulls) in [&first, &second].into_iter().zip(&pulls) {
             for (node, pull) in pulls.iter().enumerate() {
@@ -340,8 +342,12 @@ mod tests {
     #[test]
     fn forces_are_the_slope_of_the_energy() {
         let (first, second) = overlapping();
-        let pulls = pulls(&first, &second);
-        let facing = look(&first, &second);
+        let mut facing = look(&first, &second);
+        // Next to a voxel's face they are not: there they pass over smoothly.
+        let is_inside = |at: &Embedded| at.local.iter().all(|c| (BLENDED..=1.0 - BLENDED).contains(c));
+        facing.presses.retain(|press| is_inside(&press.at));
+        facing.probes.retain(|probe| is_inside(&probe.at));
+        let pulls = pulls(&facing, &first, &second);
         let largest = pulls.iter().flatten().map(Vector::norm).fold(0.0, f64::max);
         let mut beads = [first, second];
         let mut compared = 0;

@@ -40,7 +40,7 @@ const BEYOND: f64 = 1.0;
 const SLIDE: f64 = 0.5;
 /// The map's gradient passes over from voxel to voxel within this distance of their face (voxel
 /// edges).
-const BLENDED: f64 = 0.1;
+pub(crate) const BLENDED: f64 = 0.1;
 /// Accepted error of a place (voxel edges).
 const ROUNDING: f64 = 1e-11;
 
@@ -99,7 +99,11 @@ impl Lattice {
             if weight > 0.0 {
                 let own = there.voxel == at.voxel;
                 sum += weight
-                    * if own { *gradient } else { map(&self.corner_positions(positions, there.voxel), there.local).1 };
+                    * if own {
+                        *gradient
+                    } else {
+                        map(&self.corner_positions(positions, there.voxel), there.local).1
+                    };
             }
         }
         sum
@@ -263,6 +267,31 @@ mod tests {
                 assert_relative_eq!(found, sought, epsilon = 1e-9);
             }
         }
+    }
+
+    #[test]
+    fn the_smooth_gradient_has_no_steps_at_the_faces_of_voxels() {
+        let lattice = Arc::new(Lattice::new(12));
+        let mut bead = Bead::new(Arc::clone(&lattice), 6.0, Vector::zeros(), 2.0);
+        for node in 0..lattice.node_count() {
+            let [x, y, _] = lattice.node_offset(node);
+            bead.positions[node] += 0.3 * (1.5 * x).sin() + 0.2 * (1.1 * y).cos();
+        }
+        let voxel = (lattice.voxel_count() / 2) as u32;
+        let next = lattice.neighbours[voxel as usize][1];
+        let gradients = |voxel: u32, local: [f64; 3]| {
+            let at = Embedded { voxel, local };
+            let own = map(&lattice.corner_positions(&bead.positions, voxel), local).1;
+            (own, lattice.smooth_gradient(&bead.positions, &at, &own))
+        };
+        for (y, z) in [(0.5, 0.3), (0.02, 0.4), (0.97, 0.01)] {
+            let (before, smooth_before) = gradients(voxel, [1.0, y, z]);
+            let (after, smooth_after) = gradients(next, [0.0, y, z]);
+            assert!((before - after).norm() > 0.01);
+            assert_relative_eq!(smooth_before, smooth_after, epsilon = 1e-12);
+        }
+        let (own, smooth) = gradients(voxel, [0.3, 0.5, 0.8]);
+        assert_relative_eq!(own, smooth);
     }
 
     #[test]

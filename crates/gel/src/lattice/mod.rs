@@ -16,6 +16,8 @@ use bedswell_geometry::Vector;
 pub(crate) use crack::Crack;
 pub use crack::Face;
 use cut_cell::CutCell;
+#[cfg(test)]
+pub(crate) use embed::BLENDED;
 pub(crate) use embed::{Depth, Embedded};
 pub(crate) use group::Group;
 use group::{Loose, corners_of_rows, groups};
