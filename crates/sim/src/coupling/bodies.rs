@@ -102,7 +102,7 @@ impl Bodies {
         let grains = &self.grains;
         let due: Vec<(bool, bool)> = (self.beads.par_iter_mut().zip(&mut self.around))
             .map(|(bead, around)| {
-                around.update(bead, grains);
+                around.update(grains);
                 let limit = TRUSTED * reach;
                 let looks =
                     all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;

@@ -1,4 +1,5 @@
 use super::course::Course;
+use super::neighbourhood::Image;
 use super::tearing::Told;
 use crate::folder::fingerprint;
 use crate::{Scene, Step};
@@ -15,7 +16,7 @@ pub struct Checkpoint {
     pub(super) pack: u64,
     pub(super) grains: GrainMemory,
     /// The grains that each bead has met, in the order of its obstacles.
-    pub(super) around: Vec<Vec<u32>>,
+    pub(super) around: Vec<Vec<Image>>,
     pub(super) beads: Vec<Snapshot>,
     /// Growth of the beads' stretch (1/s) in the last step.
     pub(super) rate: Option<f64>,

@@ -6,6 +6,7 @@ use super::checkpoint::Checkpoint;
 use super::course::Course;
 use super::march::{BETWEEN_STEPS, March, NEARER, show_dry_bed};
 use super::measure::{self, Seen, Watch};
+use super::neighbourhood::Image;
 use super::records::record_times;
 use super::tearing::Tearing;
 use crate::{Moment, Observer, PackOutcome, Quality, RunError, Scene, State, Step, Time};
@@ -365,7 +366,7 @@ impl<'a> InTime<'a> {
             fingerprint: crate::folder::fingerprint([scene].into_iter()),
             pack: number,
             grains: self.march.bodies.grains.memory(),
-            around: around.map(|around| around.grains.iter().map(|&grain| grain as u32).collect()).collect(),
+            around: around.map(|around| around.grains.clone()).collect(),
             beads: self.kinetics.iter().map(Kinetics::snapshot).collect(),
             rate: self.rate,
             course: self.course.clone(),
@@ -381,7 +382,7 @@ impl<'a> InTime<'a> {
             dry.into_iter().zip(&kept.beads).map(|(bead, kept)| bead.resume(kept).ok()).collect();
         let Some(beads) = beads.filter(|beads| beads.len() == kept.beads.len()) else { return false };
         let count = grains.radii.len();
-        let known = |grain: &u32| (*grain as usize) < count;
+        let known = |image: &Image| (image.grain as usize) < count;
         let fits = beads.len() == self.kinetics.len()
             && kept.around.len() == beads.len()
             && kept.around.iter().flatten().all(known)
@@ -393,7 +394,7 @@ impl<'a> InTime<'a> {
         let bodies = &mut self.march.bodies;
         bodies.grains = grains;
         for (around, kept) in bodies.around.iter_mut().zip(&kept.around) {
-            around.grains = kept.iter().map(|&grain| grain as usize).collect();
+            around.grains.clone_from(kept);
             around.obstacles.clear();
         }
         bodies.renew(beads.iter().map(Kinetics::relaxation).collect());

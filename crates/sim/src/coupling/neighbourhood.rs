@@ -1,12 +1,14 @@
 use bedswell_gel::{Load, Obstacle, Relaxation};
 use bedswell_geometry::Vector;
 use bedswell_grains::{Assembly, Lid};
+use serde::{Deserialize, Serialize};
 
 /// What one bead can press on: the floor, the lid, the pot's wall if there is one, and
 /// the grains that have ever been near it, in an order that never changes.
 #[derive(Clone, Debug, Default)]
 pub(super) struct Neighbourhood {
-    pub(super) grains: Vec<usize>,
+    /// In a narrow cell a bead may press on two images of one grain, which are then two.
+    pub(super) grains: Vec<Image>,
     /// Where they are now, next to the bead.
     pub(super) obstacles: Vec<Obstacle>,
     /// Obstacles before the first grain.
@@ -14,6 +16,14 @@ pub(super) struct Neighbourhood {
     /// Grains that may come near next, where they were when it was last extended, and how much
     /// further away than what is near (m).
     watched: Vec<(usize, Vector, f64)>,
+}
+
+/// One of the periodic images of a grain.
+#[derive(Clone, Copy, Debug, Serialize, Deserialize)]
+pub(super) struct Image {
+    pub(super) grain: u32,
+    /// Where it was last (m): of all images it is the one nearest to there.
+    place: Vector,
 }
 
 /// What an obstacle of a neighbourhood is.
@@ -32,7 +42,7 @@ impl Neighbourhood {
             0 => Thing::Floor,
             1 => Thing::Lid,
             _ if index < self.plates => Thing::Wall,
-            _ => Thing::Grain(self.grains[index - self.plates]),
+            _ => Thing::Grain(self.grains[index - self.plates].grain as usize),
         }
     }
 
@@ -41,20 +51,33 @@ impl Neighbourhood {
     pub(super) fn extend(&mut self, bead: &Relaxation, grains: &Assembly, reach: f64) {
         let centre = bead.bead().centre();
         let extent = bead.bead().extent() + reach;
+        self.follow(grains);
         self.watched.clear();
         for (grain, place) in grains.centres.iter().enumerate() {
-            let apart = grains.cell.separation(&centre, place).norm_squared();
             let near = extent + grains.radii[grain];
-            if apart >= (near + WATCH * reach).powi(2) || self.grains.contains(&grain) {
-                continue;
-            }
-            if apart < near * near {
-                self.grains.push(grain);
-            } else {
-                self.watched.push((grain, *place, apart.sqrt() - near));
-            }
+            let watch = near + WATCH * reach;
+            grains.cell.for_each_image(&centre, place, watch, |apart| {
+                let image = Image { grain: grain as u32, place: centre + apart };
+                let apart = apart.norm();
+                if apart >= watch || self.knows(&image, reach) {
+                    return;
+                }
+                if apart < near {
+                    self.grains.push(image);
+                } else {
+                    self.watched.push((grain, *place, apart - near));
+                }
+            });
         }
-        self.update(bead, grains);
+        self.update(grains);
+    }
+
+    /// Whether an image is among its grains; images lie far further apart than `reach` (m).
+    fn knows(&self, image: &Image, reach: f64) -> bool {
+        let is_same = |known: &Image| {
+            known.grain == image.grain && (known.place - image.place).norm_squared() < reach * reach
+        };
+        self.grains.iter().any(is_same)
     }
 
     /// Whether a grain that is watched has come nearer by more than `limit` (m) since the last
@@ -65,9 +88,17 @@ impl Neighbourhood {
         })
     }
 
+    /// Moves the images to where the grains are now.
+    fn follow(&mut self, grains: &Assembly) {
+        for image in &mut self.grains {
+            let way = grains.cell.separation(&image.place, &grains.centres[image.grain as usize]);
+            image.place += way;
+        }
+    }
+
     /// Moves the obstacles to where grains and lid are now.
-    pub(super) fn update(&mut self, bead: &Relaxation, grains: &Assembly) {
-        let centre = bead.bead().centre();
+    pub(super) fn update(&mut self, grains: &Assembly) {
+        self.follow(grains);
         let axis = Vector::new(0.5 * grains.cell.size.x, 0.5 * grains.cell.size.y, 0.0);
         self.obstacles.clear();
         self.obstacles.push(Obstacle::Plane { point: Vector::zeros(), normal: Vector::z() });
@@ -75,9 +106,9 @@ impl Neighbourhood {
         self.obstacles.push(Obstacle::Plane { point: Vector::z() * height, normal: -Vector::z() });
         self.obstacles.extend(grains.wall.map(|radius| Obstacle::Tube { axis, radius }));
         self.plates = self.obstacles.len();
-        for &grain in &self.grains {
-            let offset = grains.cell.separation(&centre, &grains.centres[grain]);
-            self.obstacles.push(Obstacle::Sphere { centre: centre + offset, radius: grains.radii[grain] });
+        for image in &self.grains {
+            let radius = grains.radii[image.grain as usize];
+            self.obstacles.push(Obstacle::Sphere { centre: image.place, radius });
         }
     }
 
@@ -102,3 +133,36 @@ impl Neighbourhood {
 pub(super) const WATCH: f64 = 4.0;
 /// Height (m) of a lid that is out of every bead's reach.
 const NO_LID: f64 = 1e3;
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use bedswell_gel::{Bead, Lattice};
+    use bedswell_geometry::{Cell, Sphere};
+    use bedswell_grains::ContactLaw;
+    use std::sync::Arc;
+
+    /// A bead that fills a narrow cell presses on a grain from both sides; the two images
+    /// stay two, whichever is the nearer, and wherever the grain goes.
+    #[test]
+    fn both_images_of_a_grain_beside_a_bead_are_obstacles() {
+        let cell = Cell::with_floor_and_lid(Vector::new(4.0, 9.0, 9.0));
+        let grain = Sphere { centre: Vector::new(3.9, 4.5, 4.5), radius: 1.0 };
+        let law = ContactLaw::for_stress(1.0, 1e-3, 0.5);
+        let mut grains = Assembly::new(cell, &[grain], law, Lid::Fixed).unwrap();
+        let lattice = Arc::new(Lattice::new(8));
+        let bead = Relaxation::new(Bead::new(lattice, 1.0, Vector::new(2.0, 4.5, 4.5), 1.0));
+        let mut around = Neighbourhood::default();
+        around.extend(&bead, &grains, 0.1);
+        let sides = |around: &Neighbourhood| -> Vec<f64> {
+            around.grains.iter().map(|image| (10.0 * image.place.x).round() / 10.0).collect()
+        };
+        assert_eq!(sides(&around), [-0.1, 3.9]);
+        for (x, expected) in [(4.1, [0.1, 4.1]), (0.2, [0.2, 4.2]), (3.8, [-0.2, 3.8])] {
+            grains.centres[0].x = x;
+            around.extend(&bead, &grains, 0.1);
+            assert_eq!(sides(&around), expected);
+            assert_eq!(around.obstacles.len(), around.plates + 2);
+        }
+    }
+}

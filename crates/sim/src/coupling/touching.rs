@@ -92,15 +92,19 @@ pub(super) fn weigh(pairs: &[Pair], beads: &mut [Relaxation], renewed: &[bool], 
 /// The pairs of beads within reach of each other, one of them `due`.
 fn near(beads: &[Relaxation], cell: &Cell, due: &[bool], reach: f64) -> Vec<Pair> {
     let centres: Vec<Vector> = beads.iter().map(|bead| bead.bead().centre()).collect();
-    let pairs = (1..beads.len()).flat_map(|second| (0..second).map(move |first| (first, second)));
-    let close = pairs.filter_map(|(first, second)| {
-        let apart = cell.separation(&centres[first], &centres[second]);
-        // Extents are those of each bead's last look; it has moved by less than reach since.
-        let far = beads[first].extent() + beads[second].extent() + 3.0 * reach;
-        let is_close = (due[first] || due[second]) && apart.norm_squared() < far * far;
-        is_close.then(|| (first, second, centres[first] + apart - centres[second]))
-    });
-    let close: Vec<(usize, usize, Vector)> = close.collect();
+    let mut close: Vec<(usize, usize, Vector)> = Vec::new();
+    for second in 1..beads.len() {
+        for first in (0..second).filter(|first| due[*first] || due[second]) {
+            // Extents are those of each bead's last look; it has moved by less than reach since.
+            let far = beads[first].extent() + beads[second].extent() + 3.0 * reach;
+            let [one, other] = [first, second].map(|bead| centres[bead]);
+            cell.for_each_image(&one, &other, far, |apart| {
+                if apart.norm_squared() < far * far {
+                    close.push((first, second, one + apart - other));
+                }
+            });
+        }
+    }
     let found = close.into_par_iter().filter_map(|(first, second, shift)| {
         let contact = BeadContact::find(&beads[first], &beads[second], shift, 2.0 * reach);
         (!contact.is_empty()).then(|| Pair { first, second, shift, contact, force: Vector::zeros() })

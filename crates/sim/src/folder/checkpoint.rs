@@ -12,7 +12,7 @@ pub(super) const CHECKPOINT_FILE: &str = "unfinished.state";
 const MAGIC: &[u8; 8] = b"bedsgoon";
 /// The form of what follows. What a version does not know it does not go on from: the run
 /// starts anew.
-const FORMAT: u32 = 3;
+const FORMAT: u32 = 4;
 
 pub(super) fn write_checkpoint(folder: &Path, checkpoint: &Checkpoint) -> Result<(), FolderError> {
     write_sealed(&folder.join(CHECKPOINT_FILE), (MAGIC, FORMAT), checkpoint)
