@@ -72,6 +72,9 @@ pub struct Assembly {
     /// other, and the damping of [`advance`](Self::advance) does not see what rides on a
     /// creep. Stable up to 0.4 with a damping of 0.2 there.
     pub contact_damping: f64,
+    /// Share of its velocity and spin that each grain loses per step, none at first: brings what
+    /// swings slowly to its end, and holds up what creeps.
+    pub drag: f64,
     /// Grains and lid stay where they are (bench arrays); contacts and loads are
     /// still computed.
     pub held: bool,
@@ -138,6 +141,7 @@ impl Assembly {
             lid,
             wall: None,
             contact_damping: 0.0,
+            drag: 0.0,
             held: false,
             lid_state: LidState::default(),
             boundary: Boundary::default(),

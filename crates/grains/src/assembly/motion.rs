@@ -26,6 +26,7 @@ impl Assembly {
             .is_some()
             .then(|| (self.velocities.clone(), self.spins.clone(), self.lid_state.velocity));
         let inertia_factor = if self.law.resists_rolling() { 8.0 / 3.0 } else { 2.0 };
+        let kept = 1.0 - self.drag;
         for grain in 0..self.centres.len() {
             if self.pinned[grain] {
                 continue;
@@ -37,9 +38,11 @@ impl Assembly {
                 // Nothing acts on it: no damping would ever stop it.
                 *velocity *= FREE_FLIGHT;
             }
+            *velocity *= kept;
             push(velocity, &self.forces[grain], mass, damping);
             self.centres[grain] += *velocity;
             if self.law.friction > 0.0 {
+                self.spins[grain] *= kept;
                 let inertia = inertia_factor * mass * self.radii[grain].powi(2);
                 push(&mut self.spins[grain], &self.torques[grain], inertia, damping);
             }

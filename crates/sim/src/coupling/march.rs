@@ -37,8 +37,11 @@ const AT_THE_END_ALONE: Target =
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
 
-/// Further steps in which such a state is waited for: a point of skin that slides to and fro
-/// over an edge of a voxel, where the surface has a kink, jolts it from time to time.
+/// Drag on the grains once an end state has been tolerable: what is left are swings of thousands
+/// of steps, whose slips set off others. Earlier it would hold up what still creeps.
+const LATE_DRAG: f64 = 4e-3;
+
+/// Further steps in which a tolerable state is waited for.
 const LAST_STEPS: usize = 1_000;
 
 /// What an end state may be left with when nothing that is measured changes any more: the
@@ -309,6 +312,12 @@ impl March {
 
     /// Steps until grains, lid and beads are at rest.
     pub(super) fn rest(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
+        let outcome = self.come_to(gel, target);
+        self.bodies.grains.drag = 0.0;
+        outcome
+    }
+
+    fn come_to(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         self.weigh();
         let mut before = None;
         let longest = if target.required { target.steps + LAST_STEPS } else { target.steps };
@@ -316,9 +325,12 @@ impl March {
             self.bodies.compute_forces(gel);
             if step % LOOK == 0 {
                 let quality = self.rest_quality(gel);
-                let is_late = target.required && step >= target.steps;
-                if target.is_met(&quality) || (is_late && TOLERABLE.is_met(&quality)) {
+                let is_tolerable = target.required && TOLERABLE.is_met(&quality);
+                if target.is_met(&quality) || (is_tolerable && step >= target.steps) {
                     return Ok(());
+                }
+                if is_tolerable {
+                    self.bodies.grains.drag = LATE_DRAG;
                 }
                 if target.required && step % UNCHANGING.steps == 0 {
                     let now = self.size();
