@@ -116,3 +116,31 @@ fn push(velocity: &mut Vector, force: &Vector, mass: f64, damping: f64) {
 fn damped(force: f64, velocity: f64, damping: f64) -> f64 {
     if force * velocity > 0.0 { force * (1.0 - damping) } else { force * (1.0 + damping) }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::ContactLaw;
+    use approx::assert_relative_eq;
+    use bedswell_geometry::{Cell, Sphere};
+
+    #[test]
+    fn drag_takes_its_share_of_velocity_and_spin_with_every_step() {
+        let cell = Cell::with_floor_and_lid(Vector::repeat(4.0));
+        let grain = Sphere { centre: Vector::repeat(2.0), radius: 1.0 };
+        let law = ContactLaw::for_stress(1.0, 1e-3, 0.5);
+        let mut grains = Assembly::new(cell, &[grain], law, Lid::Fixed).unwrap();
+        // Hardly a weight, but enough to count as one.
+        grains.weights[0].z = -1e-300;
+        grains.drag = 0.25;
+        grains.velocities[0].x = 1e-3;
+        grains.spins[0].y = 1e-3;
+        for _ in 0..2 {
+            grains.compute_contacts();
+            grains.advance(0.0);
+        }
+        assert_relative_eq!(grains.velocities[0].x, 0.5625e-3);
+        assert_relative_eq!(grains.spins[0].y, 0.5625e-3);
+        assert_relative_eq!(grains.centres[0].x, 2.0 + 0.75e-3 + 0.5625e-3);
+    }
+}

@@ -37,9 +37,13 @@ const AT_THE_END_ALONE: Target =
 /// would favour the others. The residuals stand in the results.
 const TOLERABLE: Target = Target { grains: 1e-2, gel: 1e-3, balance: 1e-3, steps: 0, required: true };
 
-/// Drag on the grains once an end state has been tolerable: what is left are swings of thousands
-/// of steps, whose slips set off others. Earlier it would hold up what still creeps.
+/// Drag on the grains on the way to an end state while the bed as a whole hardly changes any
+/// more: what is left are swings of thousands of steps, whose slips set off others. Earlier it
+/// would hold up what still creeps.
 const LATE_DRAG: f64 = 4e-3;
+/// Steps between looks at how the bed changes, and the largest change of its height and of the
+/// gel's volume, of themselves, over these steps that is hardly any.
+const CALM: (usize, f64) = (500, 2e-5);
 
 /// Further steps in which a tolerable state is waited for.
 const LAST_STEPS: usize = 1_000;
@@ -319,18 +323,21 @@ impl March {
 
     fn come_to(&mut self, gel: &Gel, target: Target) -> Result<(), String> {
         self.weigh();
-        let mut before = None;
+        let (mut before, mut lately) = (None, None);
         let longest = if target.required { target.steps + LAST_STEPS } else { target.steps };
         for step in 0..longest {
             self.bodies.compute_forces(gel);
+            if target.required && step % CALM.0 == 0 {
+                let now = self.size();
+                let is_calm = lately.is_some_and(|lately| change(lately, now) <= CALM.1);
+                self.bodies.grains.drag = if is_calm { LATE_DRAG } else { 0.0 };
+                lately = Some(now);
+            }
             if step % LOOK == 0 {
                 let quality = self.rest_quality(gel);
                 let is_tolerable = target.required && TOLERABLE.is_met(&quality);
                 if target.is_met(&quality) || (is_tolerable && step >= target.steps) {
                     return Ok(());
-                }
-                if is_tolerable {
-                    self.bodies.grains.drag = LATE_DRAG;
                 }
                 if target.required && step % UNCHANGING.steps == 0 {
                     let now = self.size();
