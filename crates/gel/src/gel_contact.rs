@@ -37,6 +37,13 @@ pub struct BeadContact {
     second_in_first: Facing,
 }
 
+/// How hard two beads push each other out.
+#[derive(Clone, Copy, Debug)]
+pub struct Pushes {
+    on_first: Push,
+    on_second: Push,
+}
+
 /// The skin points of one bead near the gel of another.
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Facing {
@@ -75,17 +82,22 @@ impl BeadContact {
         }
     }
 
+    /// How hard the beads push each other out.
+    pub fn pushes(&self, first: &Relaxation, second: &Relaxation) -> Pushes {
+        Pushes { on_first: first.push_by(second), on_second: second.push_by(first) }
+    }
+
     /// Makes the first bead heavy enough for this contact, where the skins may touch once they
     /// have come `near` (m) by less.
-    pub fn weigh_first(&self, first: &mut Relaxation, second: &Relaxation, near: f64) {
-        first.weigh_probes(&self.first_in_second, first.push_by(second), near);
-        first.weigh_hosts(&self.second_in_first, second.push_by(first), near);
+    pub fn weigh_first(&self, first: &mut Relaxation, pushes: &Pushes, near: f64) {
+        first.weigh_probes(&self.first_in_second, pushes.on_first, near);
+        first.weigh_hosts(&self.second_in_first, pushes.on_second, near);
     }
 
     /// The same for the second bead.
-    pub fn weigh_second(&self, first: &Relaxation, second: &mut Relaxation, near: f64) {
-        second.weigh_probes(&self.second_in_first, second.push_by(first), near);
-        second.weigh_hosts(&self.first_in_second, first.push_by(second), near);
+    pub fn weigh_second(&self, second: &mut Relaxation, pushes: &Pushes, near: f64) {
+        second.weigh_probes(&self.second_in_first, pushes.on_second, near);
+        second.weigh_hosts(&self.first_in_second, pushes.on_first, near);
     }
 
     /// Whether the beads are out of reach of each other.
@@ -102,21 +114,32 @@ impl BeadContact {
     /// `moved` (m) since the last call; the second is seen `shift` (m) from where its
     /// coordinates say.
     pub fn measure(&mut self, first: &Relaxation, second: &Relaxation, shift: Vector, moved: f64) {
-        let (one, other) = (first.bead(), second.bead());
-        self.first_in_second.measure(one, other, -shift, first.push_by(second), moved);
-        self.second_in_first.measure(other, one, shift, second.push_by(first), moved);
+        let (one, other, pushes) = (first.bead(), second.bead(), self.pushes(first, second));
+        self.first_in_second.measure(one, other, -shift, pushes.on_first, moved);
+        self.second_in_first.measure(other, one, shift, pushes.on_second, moved);
     }
 
-    /// Adds the forces last measured to both beads. Returns the force (N) on the first.
-    pub fn press(&self, first: &mut Relaxation, second: &mut Relaxation) -> Vector {
-        let on_first = self.first_in_second.press(first, second);
-        let on_second = self.second_in_first.press(second, first);
-        let total = on_first - on_second;
-        let stiffness = self.first_in_second.presses.len() as f64 * first.push_by(second).stiffness
-            + self.second_in_first.presses.len() as f64 * second.push_by(first).stiffness;
-        first.note_contact(total, stiffness);
-        second.note_contact(-total, stiffness);
-        total
+    /// Force (N) on the first bead as last measured.
+    pub fn force(&self) -> Vector {
+        self.first_in_second.force() - self.second_in_first.force()
+    }
+
+    /// Stiffness (N/m) of all points that press.
+    pub fn stiffness(&self, pushes: &Pushes) -> f64 {
+        self.first_in_second.presses.len() as f64 * pushes.on_first.stiffness
+            + self.second_in_first.presses.len() as f64 * pushes.on_second.stiffness
+    }
+
+    /// Adds the forces last measured to the first bead.
+    pub fn press_first(&self, first: &mut Relaxation) {
+        self.first_in_second.press_probing(first);
+        self.second_in_first.press_faced(first);
+    }
+
+    /// The same for the second bead.
+    pub fn press_second(&self, second: &mut Relaxation) {
+        self.first_in_second.press_faced(second);
+        self.second_in_first.press_probing(second);
     }
 }
 
@@ -150,7 +173,8 @@ impl Facing {
                 && found.distance() > -reach
                 && found.depth < TOO_DEEP
             {
-                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance: 0.0 });
+                let clearance = (-TRUSTED * found.distance()).max(0.0);
+                probes.push(Probe { point, at, slope: found.carry * found.inward, clearance });
             }
         }
         Self { probes, ..Self::default() }
@@ -176,13 +200,17 @@ impl Facing {
         self.overlap = depths * law.edge * law.area;
     }
 
-    /// Adds the forces to both beads. Returns the force (N) on the one that is probing.
-    fn press(&self, probing: &mut Relaxation, faced: &mut Relaxation) -> Vector {
-        for press in &self.presses {
-            probing.pull(press.point, press.force);
-            faced.pull_at(&press.at, -press.force);
-        }
+    /// Force (N) on the bead that is probing.
+    fn force(&self) -> Vector {
         self.presses.iter().map(|press| press.force).sum()
+    }
+
+    fn press_probing(&self, probing: &mut Relaxation) {
+        self.presses.iter().for_each(|press| probing.pull(press.point, press.force));
+    }
+
+    fn press_faced(&self, faced: &mut Relaxation) {
+        self.presses.iter().for_each(|press| faced.pull_at(&press.at, -press.force));
     }
 
     /// The points within `near` (m) of pressing, where they may, and their stiffness (N/m) in

@@ -23,14 +23,14 @@ pub use datasheet::{
     volume_ratio_of_uptake,
 };
 pub use equilibrium::{Equilibrium, EquilibriumError, Tolerance, settle, swell};
-pub use gel_contact::BeadContact;
+pub use gel_contact::{BeadContact, Pushes};
 pub use kinetics::{
     Change, History, HistoryError, Kinetics, KineticsError, Outside, Permeability, PermeabilityError, Prop,
     Settings, Snapshot, Step,
 };
 pub use lattice::{Face, Lattice, Locator, MaterialPoint, Shape};
 pub use obstacle::Obstacle;
-pub use relaxation::{Lead, Load, Relaxation};
+pub use relaxation::{Lead, Load, Motion, Relaxation};
 pub use rupture::{
     Criterion, Event, Fragment, Grip, Rupture, RuptureError, RuptureSnapshot, Toughness, ToughnessError,
     fragments,

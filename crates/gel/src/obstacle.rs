@@ -56,17 +56,18 @@ impl Obstacle {
         -self.gap(place).normal
     }
 
-    /// How far the surface has moved (m) from another place of the same obstacle.
-    pub(crate) fn way(&self, other: &Obstacle) -> f64 {
-        match (self, other) {
+    /// How far the surface has moved (m) to another place of the same obstacle, seen from what has
+    /// moved by `drift` (m) itself.
+    pub(crate) fn way(&self, now: &Obstacle, drift: &Vector) -> f64 {
+        match (self, now) {
             (
                 Obstacle::Sphere { centre: a, .. } | Obstacle::Cavity { centre: a, .. },
                 Obstacle::Sphere { centre: b, .. } | Obstacle::Cavity { centre: b, .. },
-            ) => (a - b).norm(),
+            ) => (b - a - drift).norm(),
             (Obstacle::Plane { point: a, normal }, Obstacle::Plane { point: b, .. }) => {
-                (a - b).dot(normal).abs()
+                (b - a - drift).dot(normal).abs()
             }
-            (Obstacle::Tube { axis: a, .. }, Obstacle::Tube { axis: b, .. }) => (a - b).xy().norm(),
+            (Obstacle::Tube { axis: a, .. }, Obstacle::Tube { axis: b, .. }) => (b - a - drift).xy().norm(),
             _ => f64::INFINITY,
         }
     }

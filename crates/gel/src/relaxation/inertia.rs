@@ -27,6 +27,8 @@ const DRIFT_MASS_KEPT: (f64, f64) = (1.5, 12.0);
 pub(super) struct Inertia {
     /// One per node, without contacts to other beads.
     own: Vec<Matrix>,
+    /// What contacts to other beads add.
+    others: Vec<Matrix>,
     /// One per node.
     masses: Vec<Matrix>,
     /// Their inverses.
@@ -73,12 +75,16 @@ impl Inertia {
             terms.for_each(|(node, weight)| self.own[node] += stiffness * weight.abs());
         }
         self.own.iter_mut().for_each(|mass| *mass *= MASS_FACTOR);
-        self.forget_others();
+        if self.others.len() != self.own.len() {
+            self.forget_others();
+        }
+        self.mobilities.clear();
     }
 
     /// Takes back what contacts to other beads added.
     pub(super) fn forget_others(&mut self) {
-        self.masses.clone_from(&self.own);
+        self.others.clear();
+        self.others.resize(self.own.len(), Matrix::zeros());
         self.mobilities.clear();
     }
 
@@ -86,7 +92,7 @@ impl Inertia {
     fn weigh(&mut self, terms: impl Iterator<Item = (usize, f64)>, stiffness: Matrix) {
         let mass = stiffness * MASS_FACTOR;
         for (node, weight) in terms {
-            self.masses[node] += mass * weight.abs();
+            self.others[node] += mass * weight.abs();
         }
         self.mobilities.clear();
     }
@@ -97,6 +103,8 @@ impl Inertia {
         if !self.mobilities.is_empty() {
             return;
         }
+        self.masses.clear();
+        self.masses.extend(self.own.iter().zip(&self.others).map(|(own, others)| own + others));
         self.mobilities.extend(self.masses.iter().map(|mass| mass.try_inverse().unwrap_or_default()));
         let stride = velocities.len() / 3;
         if self.moved.len() == self.masses.len() {
@@ -182,7 +190,7 @@ mod tests {
     use approx::assert_relative_eq;
 
     fn moved_with(mass: Matrix, velocity: Vector) -> (Inertia, Vec<f64>) {
-        let mut inertia = Inertia { masses: vec![mass], ..Inertia::default() };
+        let mut inertia = Inertia { own: vec![mass], others: vec![Matrix::zeros()], ..Inertia::default() };
         let mut velocities = velocity.as_slice().to_vec();
         inertia.settle(&mut velocities);
         (inertia, velocities)
@@ -197,14 +205,14 @@ mod tests {
         let (mut inertia, mut velocities) = moved_with(light, velocity);
         assert_relative_eq!(Vector::from_column_slice(&velocities), velocity);
 
-        inertia.masses = vec![heavy];
+        inertia.own = vec![heavy];
         inertia.mobilities.clear();
         inertia.settle(&mut velocities);
         let slower = Vector::from_column_slice(&velocities);
         assert_relative_eq!(heavy * slower, light * velocity, epsilon = 1e-12);
         assert!(slower.dot(&(heavy * slower)) < velocity.dot(&(light * velocity)));
 
-        inertia.masses = vec![light];
+        inertia.own = vec![light];
         inertia.mobilities.clear();
         inertia.settle(&mut velocities);
         assert_relative_eq!(Vector::from_column_slice(&velocities), slower);

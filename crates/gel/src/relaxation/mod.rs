@@ -79,32 +79,50 @@ pub struct Load {
 #[derive(Clone, Debug, Default)]
 struct Standing {
     positions: Vec<f64>,
+    centre: Vector,
     obstacles: Vec<Obstacle>,
     /// How much further away each obstacle was than what counted as near (m).
     slack: Vec<f64>,
 }
 
 impl Standing {
-    /// Distance (m) by which a skin point and an obstacle may have come nearer since, what was
-    /// further away than near not counted; without end when this is of another bead.
-    fn approach(&self, bead: &Bead, obstacles: &[Obstacle]) -> f64 {
-        if self.obstacles.len() != obstacles.len() || self.positions.len() != bead.positions.len() {
-            return f64::INFINITY;
+    /// How the bead has moved since; nothing when this is of another bead.
+    fn motion(&self, bead: &Bead) -> Option<Motion> {
+        if self.positions.len() != bead.positions.len() {
+            return None;
         }
-        let ways = self.obstacles.iter().zip(&self.slack).zip(obstacles);
-        let obstacles = ways.map(|((before, slack), now)| before.way(now) - slack);
-        POINT_WAY * self.way(bead) + obstacles.fold(0.0, f64::max)
-    }
-
-    /// Way of the node that has gone furthest since (m).
-    fn way(&self, bead: &Bead) -> f64 {
+        let drift = bead.centre() - self.centre;
         let stride = self.positions.len() / 3;
         let square = |node: usize| -> f64 {
-            let places = [node, stride + node, 2 * stride + node];
-            places.iter().map(|&place| (bead.positions[place] - self.positions[place]).powi(2)).sum()
+            let way = |axis: usize| {
+                let place = axis * stride + node;
+                bead.positions[place] - self.positions[place] - drift[axis]
+            };
+            (0..3).map(|axis| way(axis).powi(2)).sum()
         };
-        (0..bead.lattice().node_count()).map(square).fold(0.0, f64::max).sqrt()
+        let way = (0..bead.lattice().node_count()).map(square).fold(0.0, f64::max).sqrt();
+        Some(Motion { drift, way: POINT_WAY * way })
     }
+
+    /// Distance (m) by which a skin point and an obstacle may have come nearer since, what was
+    /// further away than near not counted; without end when this is of another bead.
+    fn approach(&self, motion: Option<&Motion>, obstacles: &[Obstacle]) -> f64 {
+        let Some(Motion { drift, way }) = motion.filter(|_| self.obstacles.len() == obstacles.len()) else {
+            return f64::INFINITY;
+        };
+        let ways = self.obstacles.iter().zip(&self.slack).zip(obstacles);
+        let obstacles = ways.map(|((before, slack), now)| before.way(now, drift) - slack);
+        way + obstacles.fold(0.0, f64::max)
+    }
+}
+
+/// How a bead has moved.
+#[derive(Clone, Copy, Debug)]
+pub struct Motion {
+    /// As a whole (m).
+    pub drift: Vector,
+    /// Besides that: a bound on the way of its skin (m).
+    pub way: f64,
 }
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
@@ -196,7 +214,7 @@ impl Relaxation {
         let mut inertia = std::mem::take(&mut self.inertia);
         inertia.renew(self, gel, obstacles, near);
         self.inertia = inertia;
-        let way = (1.0 + POINT_WAY) * self.listed.way(&self.bead);
+        let way = self.moved_since_look().map_or(0.0, |motion| motion.way);
         self.weighed = self.standing(obstacles, self.listed_extent + way + near);
     }
 
@@ -206,20 +224,39 @@ impl Relaxation {
         let slack = |obstacle: &Obstacle| (obstacle.gap(&centre).distance - near).max(0.0);
         Standing {
             positions: self.bead.positions.clone(),
+            centre,
             slack: obstacles.iter().map(slack).collect(),
             obstacles: obstacles.to_vec(),
         }
     }
 
-    /// Distance (m) by which a skin point and an obstacle may have come nearer since
-    /// contacts were last looked for; without end when they never were.
-    pub fn approach(&self, obstacles: &[Obstacle]) -> f64 {
-        self.listed.approach(&self.bead, obstacles)
+    /// Whether contacts were looked for and masses renewed since the bead was made, cut, or held
+    /// at other water.
+    pub fn is_settled_in(&self) -> bool {
+        let values = self.bead.positions.len();
+        self.listed.positions.len() == values && self.weighed.positions.len() == values
+    }
+
+    /// How the bead has moved since contacts were last looked for; nothing when they never were.
+    pub fn moved_since_look(&self) -> Option<Motion> {
+        self.listed.motion(&self.bead)
     }
 
     /// The same since masses were last renewed.
-    pub fn approach_since_weighed(&self, obstacles: &[Obstacle]) -> f64 {
-        self.weighed.approach(&self.bead, obstacles)
+    pub fn moved_since_weighed(&self) -> Option<Motion> {
+        self.weighed.motion(&self.bead)
+    }
+
+    /// Distance (m) by which a skin point and an obstacle may have come nearer since contacts were
+    /// last looked for, when the bead has moved by `motion` since; without end when they never
+    /// were.
+    pub fn approach(&self, motion: Option<&Motion>, obstacles: &[Obstacle]) -> f64 {
+        self.listed.approach(motion, obstacles)
+    }
+
+    /// The same since masses were last renewed.
+    pub fn approach_since_weighed(&self, motion: Option<&Motion>, obstacles: &[Obstacle]) -> f64 {
+        self.weighed.approach(motion, obstacles)
     }
 
     /// Distance of the skin from the bead's centre (m), at most, when contacts were last
@@ -281,9 +318,13 @@ impl Relaxation {
     /// A bound on what a skin point and each obstacle have come nearer by since forces were
     /// last computed (m).
     fn moved(&mut self, obstacles: &[Obstacle]) -> Vec<f64> {
-        let own = self.last_way();
+        let (own, drift) = (self.last_way(), Vector::zeros());
         let moved = if self.last_obstacles.len() == obstacles.len() {
-            self.last_obstacles.iter().zip(obstacles).map(|(before, now)| own + before.way(now)).collect()
+            self.last_obstacles
+                .iter()
+                .zip(obstacles)
+                .map(|(before, now)| own + before.way(now, &drift))
+                .collect()
         } else {
             vec![f64::INFINITY; obstacles.len()]
         };
@@ -351,7 +392,7 @@ impl Relaxation {
 
     /// Counts a neighbouring bead's force (N), with its stiffness (N/m), among the
     /// contact forces.
-    pub(crate) fn note_contact(&mut self, force: Vector, stiffness: f64) {
+    pub fn note_contact(&mut self, force: Vector, stiffness: f64) {
         self.pressing_stiffness += stiffness;
         self.contact_sum -= force;
         self.largest_contact_force = self.largest_contact_force.max(force.norm());

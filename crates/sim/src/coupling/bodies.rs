@@ -1,6 +1,6 @@
 use super::neighbourhood::{Neighbourhood, WATCH};
-use super::touching::{self, Pair};
-use bedswell_gel::{Gel, Relaxation};
+use super::touching::{self, Due, Pair};
+use bedswell_gel::{Gel, Motion, Relaxation};
 use bedswell_geometry::Vector;
 use bedswell_grains::Assembly;
 use rayon::prelude::*;
@@ -12,9 +12,14 @@ const GEL_DAMPING: f64 = 0.4;
 /// Skin points within this many swollen voxel edges of an obstacle are followed.
 const REACH: f64 = 0.45;
 /// Share of that distance after which contacts are looked for again.
-const TRUSTED: f64 = 0.9;
+pub(super) const TRUSTED: f64 = 0.9;
+/// Steps in which ways are not measured between two in which they are: nothing comes far in them.
+const STEPS_TO_LOOK: usize = 3;
+/// Way of a bead's centre, over the same, after which they are as well: what moves with it is
+/// not nearer.
+pub(super) const DRIFT: f64 = 2.0;
 /// Skin points within this many swollen voxel edges of what they may touch have mass for it;
-/// masses are renewed after half of that way.
+/// masses are renewed after half of that way, or all of it between two beads.
 const NEAR: f64 = 0.3;
 /// Grains within this many times that distance of a bead are its obstacles.
 const LOOK: f64 = 2.0;
@@ -27,8 +32,10 @@ pub(super) struct Bodies {
     pub(super) around: Vec<Neighbourhood>,
     /// Pairs of beads that may touch.
     pub(super) pairs: Vec<Pair>,
-    /// Where the grains were when all beads' neighbours were last looked for.
+    /// Where the grains were when beads last noticed them.
     listed: Vec<Vector>,
+    /// Steps until it is found out again what has moved too far.
+    steps_to_look: usize,
     /// Share of each force component on grains and lid that is turned against the motion.
     /// Little of it lets slow rearrangements come to their end soonest.
     damping: f64,
@@ -38,7 +45,7 @@ impl Bodies {
     pub(super) fn new(mut grains: Assembly, beads: Vec<Relaxation>, damping: f64) -> Self {
         grains.contact_damping = CONTACT_DAMPING;
         let around = vec![Neighbourhood::default(); beads.len()];
-        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), damping }
+        Self { grains, beads, around, pairs: Vec::new(), listed: Vec::new(), steps_to_look: 0, damping }
     }
 
     /// Puts beads at rest in the place of the same beads; grains stay as they are.
@@ -46,12 +53,18 @@ impl Bodies {
         self.beads = beads;
         self.pairs.clear();
         self.listed.clear();
+        self.steps_to_look = 0;
     }
 
     /// How near (m) an obstacle is that beads of a gel follow.
     pub(super) fn reach(&self, gel: &Gel) -> f64 {
         let edge = self.beads.iter().map(|bead| bead.bead().voxel_edge()).fold(0.0, f64::max);
         REACH * edge * gel.free_stretch()
+    }
+
+    /// How near (m) it is that contacts get their mass.
+    fn near(&self, gel: &Gel) -> f64 {
+        NEAR / REACH * self.reach(gel)
     }
 
     /// Forces on everything, at the places where everything is.
@@ -89,49 +102,85 @@ impl Bodies {
         self.advance();
     }
 
-    /// Looks for contacts anew where something has moved too far since the last look.
+    /// Looks around where it may be due.
     fn look_around(&mut self, gel: &Gel) {
-        let reach = self.reach(gel);
-        // What no bead watches may come as near as what they follow: half of that way until all
-        // look again, half before.
-        let all = self.grains_strayed(0.5 * (LOOK * (1.0 + WATCH) - 1.0) * reach);
-        if all {
-            self.listed.clone_from(&self.grains.centres);
-        }
-        let near = NEAR / REACH * reach;
         let grains = &self.grains;
-        let due: Vec<(bool, bool)> = (self.beads.par_iter_mut().zip(&mut self.around))
-            .map(|(bead, around)| {
-                around.update(grains);
-                let limit = TRUSTED * reach;
-                let looks =
-                    all || around.has_strayed(grains, limit) || bead.approach(&around.obstacles) > limit;
-                if looks {
-                    around.extend(bead, grains, LOOK * reach);
-                    bead.look(gel, &around.obstacles, reach);
-                }
-                let weighs = looks || bead.approach_since_weighed(&around.obstacles) > 0.5 * near;
-                if weighs {
-                    bead.weigh(gel, &around.obstacles, near);
-                }
-                (looks, weighs)
-            })
-            .collect();
-        if self.beads.len() > 1 {
-            let (looks, mut weighs): (Vec<bool>, Vec<bool>) = due.into_iter().unzip();
-            if looks.contains(&true) {
-                touching::look(&mut self.pairs, &self.beads, &self.grains.cell, &looks, reach, &mut weighs);
-            }
-            if weighs.contains(&true) {
-                touching::weigh(&self.pairs, &mut self.beads, &weighs, 2.0 * near);
-            }
+        self.around.par_iter_mut().for_each(|around| around.update(grains));
+        let is_new = |bead: &Relaxation| !bead.is_settled_in();
+        let goes = self.steps_to_look == 0 || self.beads.iter().any(is_new);
+        self.steps_to_look = if goes { STEPS_TO_LOOK } else { self.steps_to_look - 1 };
+        if goes {
+            self.look_again(gel);
         }
     }
 
-    /// Whether a grain has moved by more than `limit` (m) since the last look.
-    fn grains_strayed(&self, limit: f64) -> bool {
-        self.listed.len() != self.grains.centres.len()
-            || (self.grains.centres.iter().zip(&self.listed))
-                .any(|(now, before)| (now - before).norm_squared() > limit * limit)
+    /// Looks for contacts anew where something has moved too far since the last look, and renews
+    /// masses.
+    fn look_again(&mut self, gel: &Gel) {
+        let (reach, near) = (self.reach(gel), self.near(gel));
+        // What no bead watches may come as near as what they follow: half of what is left besides
+        // the bead's own way until it is noticed again, half before.
+        let strayed = self.strayed(0.5 * (LOOK * (1.0 + WATCH) - DRIFT - 1.0) * reach);
+        let grains = &self.grains;
+        let mut due: Vec<Due> = (self.beads.par_iter().zip(&mut self.around))
+            .map(|(bead, around)| judge((bead, around), grains, &strayed, [reach, near]))
+            .collect();
+        touching::judge(&mut self.pairs, &mut due);
+        (self.beads.par_iter_mut().zip(&mut self.around).zip(&due)).for_each(|((bead, around), due)| {
+            if due.looks {
+                around.extend(bead, grains, LOOK * reach);
+                bead.look(gel, &around.obstacles, reach);
+            }
+            if due.weighs {
+                bead.weigh(gel, &around.obstacles, near);
+            }
+        });
+        if due.len() > 1 && due.iter().any(|due| due.weighs) {
+            touching::look(&mut self.pairs, &mut self.beads, &grains.cell, &mut due, [reach, near]);
+        }
+    }
+
+    /// The grains that have moved by more than `limit` (m) since they last were among these.
+    fn strayed(&mut self, limit: f64) -> Vec<usize> {
+        let centres = &self.grains.centres;
+        if self.listed.len() != centres.len() {
+            // Beads that have not looked yet will.
+            self.listed.clone_from(centres);
+            return Vec::new();
+        }
+        let far = |&grain: &usize| (centres[grain] - self.listed[grain]).norm_squared() > limit * limit;
+        let strayed: Vec<usize> = (0..centres.len()).filter(far).collect();
+        strayed.iter().for_each(|&grain| self.listed[grain] = centres[grain]);
+        strayed
+    }
+}
+
+/// What a bead has to do for the sake of what it may press on besides other beads.
+fn judge(
+    (bead, around): (&Relaxation, &mut Neighbourhood),
+    grains: &Assembly,
+    strayed: &[usize],
+    [reach, near]: [f64; 2],
+) -> Due {
+    let (look, weighed) = (bead.moved_since_look(), bead.moved_since_weighed());
+    let drift = look.map_or_else(Vector::zeros, |motion| motion.drift);
+    let (centre, limit) = (bead.bead().centre(), TRUSTED * reach);
+    let mut notice = |&&grain: &&usize| around.notice((bead, &centre, &drift), grains, grain, LOOK * reach);
+    let comes_near = strayed.iter().filter(&mut notice).count() > 0;
+    let is_new = !bead.is_settled_in();
+    let looks = is_new
+        || comes_near
+        || drift.norm() > DRIFT * reach
+        || around.has_strayed(grains, &drift, limit)
+        || bead.approach(look.as_ref(), &around.obstacles) > limit;
+    let approach = bead.approach_since_weighed(weighed.as_ref(), &around.obstacles);
+    let way = |motion: Option<Motion>| motion.map_or(0.0, |motion| motion.way);
+    Due {
+        looks,
+        weighs: looks || approach > 0.5 * near,
+        is_new,
+        centre,
+        way_since_look: way(look),
+        way_since_weighed: way(weighed),
     }
 }

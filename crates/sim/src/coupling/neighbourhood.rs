@@ -53,23 +53,50 @@ impl Neighbourhood {
         let extent = bead.bead().extent() + reach;
         self.follow(grains);
         self.watched.clear();
-        for (grain, place) in grains.centres.iter().enumerate() {
+        for grain in 0..grains.centres.len() {
             let near = extent + grains.radii[grain];
-            let watch = near + WATCH * reach;
-            grains.cell.for_each_image(&centre, place, watch, |apart| {
-                let image = Image { grain: grain as u32, place: centre + apart };
-                let apart = apart.norm();
-                if apart >= watch || self.knows(&image, reach) {
-                    return;
-                }
-                if apart < near {
-                    self.grains.push(image);
-                } else {
-                    self.watched.push((grain, *place, apart - near));
-                }
-            });
+            self.watch(&centre, grains, grain, near, reach);
         }
         self.update(grains);
+    }
+
+    /// Watches a grain that has come a long way since it was last looked for, where it is within
+    /// `WATCH` times `reach` (m) of what is near a bead at `centre` that has moved by `drift` (m)
+    /// since the last `extend`. Whether it is near.
+    pub(super) fn notice(
+        &mut self,
+        (bead, centre, drift): (&Relaxation, &Vector, &Vector),
+        grains: &Assembly,
+        grain: usize,
+        reach: f64,
+    ) -> bool {
+        // The skin may have moved by half as much since the bead's extent was measured.
+        let near = bead.extent() + 1.5 * reach + grains.radii[grain];
+        self.watched.retain(|watched| watched.0 != grain);
+        let (grains_known, watched) = (self.grains.len(), self.watched.len());
+        self.watch(centre, grains, grain, near, reach);
+        self.watched[watched..].iter_mut().for_each(|(_, place, _)| *place -= drift);
+        let is_near = self.grains.len() > grains_known;
+        self.grains.truncate(grains_known);
+        is_near
+    }
+
+    /// Adds the images of a grain that are `near` (m) a bead's centre, and watches those that are
+    /// not much further away.
+    fn watch(&mut self, centre: &Vector, grains: &Assembly, grain: usize, near: f64, reach: f64) {
+        let (place, watch) = (grains.centres[grain], near + WATCH * reach);
+        grains.cell.for_each_image(centre, &place, watch, |apart| {
+            let image = Image { grain: grain as u32, place: centre + apart };
+            let apart = apart.norm();
+            if apart >= watch || self.knows(&image, reach) {
+                return;
+            }
+            if apart < near {
+                self.grains.push(image);
+            } else {
+                self.watched.push((grain, place, apart - near));
+            }
+        });
     }
 
     /// Whether an image is among its grains; images lie far further apart than `reach` (m).
@@ -80,11 +107,11 @@ impl Neighbourhood {
         self.grains.iter().any(is_same)
     }
 
-    /// Whether a grain that is watched has come nearer by more than `limit` (m) since the last
-    /// `extend`.
-    pub(super) fn has_strayed(&self, grains: &Assembly, limit: f64) -> bool {
+    /// Whether a grain that is watched has come nearer by more than `limit` (m) to a bead that has
+    /// moved by `drift` (m) since the last `extend`.
+    pub(super) fn has_strayed(&self, grains: &Assembly, drift: &Vector, limit: f64) -> bool {
         self.watched.iter().any(|&(grain, before, slack)| {
-            (grains.centres[grain] - before).norm_squared() > (limit + slack).powi(2)
+            (grains.centres[grain] - before - drift).norm_squared() > (limit + slack).powi(2)
         })
     }
 

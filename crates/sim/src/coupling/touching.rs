@@ -1,10 +1,11 @@
 //! Beads that press on each other.
 
-use bedswell_gel::{Bead, BeadContact, Relaxation};
+use super::bodies::{DRIFT, TRUSTED};
+use bedswell_gel::{Bead, BeadContact, Pushes, Relaxation};
 use bedswell_geometry::{Cell, Vector};
 use rayon::prelude::*;
 
-/// Two beads that may touch.
+/// Two beads that touch or may come to.
 #[derive(Clone, Debug)]
 pub(super) struct Pair {
     pub(super) first: usize,
@@ -14,6 +15,52 @@ pub(super) struct Pair {
     pub(super) contact: BeadContact,
     /// Force on the first (N).
     pub(super) force: Vector,
+    /// Of all points that press (N/m).
+    stiffness: f64,
+    /// When the places that may touch were found.
+    found: Nearness,
+    /// When both beads got mass for them.
+    weighed: Nearness,
+}
+
+/// How two beads once lay to each other.
+#[derive(Clone, Copy, Debug)]
+struct Nearness {
+    /// From the first bead's centre to the second's (m).
+    apart: Vector,
+    /// By how much their skins may have come nearer (m) before they must be seen to again; less
+    /// than nothing where they must.
+    allowed: f64,
+}
+
+impl Nearness {
+    /// Of beads that must be seen to.
+    const OVER: Self = Self { apart: Vector::new(0.0, 0.0, 0.0), allowed: f64::NEG_INFINITY };
+
+    /// Notes that it no longer holds if so, with beads that lie `apart` (m) and whose skins have
+    /// moved by `ways` (m) besides.
+    fn judge(&mut self, apart: &Vector, ways: [f64; 2]) {
+        if (apart - self.apart).norm() + ways[0] + ways[1] > self.allowed {
+            self.allowed = f64::NEG_INFINITY;
+        }
+    }
+
+    fn is_over(&self) -> bool {
+        self.allowed < 0.0
+    }
+}
+
+/// What a bead has to do before forces are computed, and by how much its skin has moved, at
+/// most and besides its centre (m).
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Due {
+    pub(super) looks: bool,
+    pub(super) weighs: bool,
+    /// It is not what its contacts were found for.
+    pub(super) is_new: bool,
+    pub(super) centre: Vector,
+    pub(super) way_since_look: f64,
+    pub(super) way_since_weighed: f64,
 }
 
 /// Distance (m) of a place from the nearest point of a bead's skin.
@@ -23,6 +70,34 @@ pub(super) fn nearest_skin(bead: &Bead, place: &Vector) -> f64 {
 }
 
 impl Pair {
+    /// Two beads of which nothing is known yet.
+    fn met([first, second]: [usize; 2], shift: Vector) -> Self {
+        Self {
+            first,
+            second,
+            shift,
+            contact: BeadContact::default(),
+            force: Vector::zeros(),
+            stiffness: 0.0,
+            found: Nearness::OVER,
+            weighed: Nearness::OVER,
+        }
+    }
+
+    /// Whether it is of the same beads and images, which lie much further apart than `near` (m).
+    pub(super) fn is_same(&self, other: &Self, near: f64) -> bool {
+        self.ends() == other.ends() && (self.shift - other.shift).norm() < near
+    }
+
+    fn ends(&self) -> [usize; 2] {
+        [self.first, self.second]
+    }
+
+    /// From the first bead's centre to the second's (m).
+    fn apart(&self, due: &[Due]) -> Vector {
+        due[self.second].centre + self.shift - due[self.first].centre
+    }
+
     /// The other bead, seen from one of the two, and the shift to the image that this one sees
     /// (m).
     pub(super) fn seen_from(&self, bead: usize) -> Option<(usize, Vector)> {
@@ -40,80 +115,134 @@ pub(super) fn press(pairs: &mut [Pair], beads: &mut [Relaxation]) {
         let (first, second) = (&beads[pair.first], &beads[pair.second]);
         let moved = first.last_way() + second.last_way();
         pair.contact.measure(first, second, pair.shift, moved);
+        pair.force = pair.contact.force();
+        pair.stiffness = pair.contact.stiffness(&pair.contact.pushes(first, second));
     });
+    let pressing: Vec<&Pair> = pairs.iter().filter(|pair| pair.stiffness > 0.0).collect();
+    beads.par_iter_mut().enumerate().for_each(|(index, bead)| {
+        for pair in &pressing {
+            if pair.first == index {
+                pair.contact.press_first(bead);
+                bead.note_contact(pair.force, pair.stiffness);
+            }
+            if pair.second == index {
+                pair.contact.press_second(bead);
+                bead.note_contact(-pair.force, pair.stiffness);
+            }
+        }
+    });
+}
+
+/// Lets both beads of a pair look or be weighed where they have come too near.
+pub(super) fn judge(pairs: &mut [Pair], due: &mut [Due]) {
     for pair in pairs {
-        let (first, second) = two(beads, pair.first, pair.second);
-        pair.force = pair.contact.press(first, second);
+        let (apart, ends) = (pair.apart(due), pair.ends());
+        pair.found.judge(&apart, ends.map(|bead| due[bead].way_since_look));
+        pair.weighed.judge(&apart, ends.map(|bead| due[bead].way_since_weighed));
+        for bead in ends {
+            due[bead].looks |= pair.found.is_over();
+            due[bead].weighs |= pair.found.is_over() || pair.weighed.is_over();
+        }
     }
 }
 
-/// Finds the beads within `reach` (m) of those that are `due`. Beads that this concerns must be
-/// weighed: they are added to `concerned`.
+/// Finds anew what may touch within twice the `reach` (m) in pairs that have come too near, and
+/// gives their beads the mass that this needs until they have come `near` (m) by more. Beads that
+/// are `due` have looked and were weighed.
 pub(super) fn look(
     pairs: &mut Vec<Pair>,
-    beads: &[Relaxation],
+    beads: &mut [Relaxation],
     cell: &Cell,
-    due: &[bool],
-    reach: f64,
-    concerned: &mut [bool],
+    due: &mut [Due],
+    [reach, near]: [f64; 2],
 ) {
-    pairs.retain(|pair| !due[pair.first] && !due[pair.second]);
-    let found = near(beads, cell, due, reach);
-    for pair in &found {
-        concerned[pair.first] = true;
-        concerned[pair.second] = true;
-    }
-    pairs.extend(found);
-    pairs.sort_unstable_by_key(|pair| (pair.first, pair.second));
-}
-
-/// Gives beads whose masses were renewed, and those they may touch, the mass that their contacts
-/// within `near` (m) need.
-pub(super) fn weigh(pairs: &[Pair], beads: &mut [Relaxation], renewed: &[bool], near: f64) {
-    let mut concerned = renewed.to_vec();
-    for pair in pairs.iter().filter(|pair| renewed[pair.first] || renewed[pair.second]) {
-        concerned[pair.first] = true;
-        concerned[pair.second] = true;
-    }
-    for (bead, _) in beads.iter_mut().zip(&concerned).filter(|(_, concerned)| **concerned) {
-        bead.forget_others();
-    }
-    for pair in pairs {
-        let (first, second) = two(beads, pair.first, pair.second);
-        if concerned[pair.first] {
-            pair.contact.weigh_first(first, second, near);
-        }
-        if concerned[pair.second] {
-            pair.contact.weigh_second(first, second, near);
+    pairs.retain(|pair| !pair.ends().iter().any(|&bead| due[bead].is_new));
+    for pair in pairs.iter_mut() {
+        for bead in pair.ends() {
+            let Due { looks, weighs, way_since_look, way_since_weighed, .. } = due[bead];
+            pair.found.allowed -= if looks { way_since_look } else { 0.0 };
+            pair.weighed.allowed -= if weighs { way_since_weighed } else { 0.0 };
         }
     }
+    for due in due.iter_mut() {
+        due.way_since_look *= f64::from(u8::from(!due.looks));
+        due.way_since_weighed *= f64::from(u8::from(!due.weighs));
+    }
+    meet(pairs, beads, cell, due, reach);
+    let over = pairs.par_iter_mut().filter(|pair| pair.found.is_over());
+    over.for_each(|pair| pair.find(beads, due, reach));
+    weigh(pairs, beads, due, near);
 }
 
-/// The pairs of beads within reach of each other, one of them `due`.
-fn near(beads: &[Relaxation], cell: &Cell, due: &[bool], reach: f64) -> Vec<Pair> {
-    let centres: Vec<Vector> = beads.iter().map(|bead| bead.bead().centre()).collect();
-    let mut close: Vec<(usize, usize, Vector)> = Vec::new();
+/// Adds the pairs with a bead that looked that may come to touch before it looks again, and
+/// leaves out those that will not.
+fn meet(pairs: &mut Vec<Pair>, beads: &[Relaxation], cell: &Cell, due: &[Due], reach: f64) {
+    let watched = |[first, second]: [usize; 2]| far(beads, [first, second], reach) + 3.0 * DRIFT * reach;
+    let looks = |ends: [usize; 2]| ends.iter().any(|&bead| due[bead].looks);
+    pairs.retain(|pair| !looks(pair.ends()) || pair.apart(due).norm() < watched(pair.ends()));
+    let known = pairs.len();
     for second in 1..beads.len() {
-        for first in (0..second).filter(|first| due[*first] || due[second]) {
-            // Extents are those of each bead's last look; it has moved by less than reach since.
-            let far = beads[first].extent() + beads[second].extent() + 3.0 * reach;
-            let [one, other] = [first, second].map(|bead| centres[bead]);
-            cell.for_each_image(&one, &other, far, |apart| {
-                if apart.norm_squared() < far * far {
-                    close.push((first, second, one + apart - other));
+        for first in (0..second).filter(|&first| looks([first, second])) {
+            let [one, other] = [first, second].map(|bead| due[bead].centre);
+            let watched = watched([first, second]);
+            let start = pairs[..known].partition_point(|pair| pair.ends() < [first, second]);
+            cell.for_each_image(&one, &other, watched, |apart| {
+                let met = Pair::met([first, second], one + apart - other);
+                let same = pairs[start..known].iter().take_while(|pair| pair.ends() == met.ends());
+                if apart.norm() < watched && !same.into_iter().any(|pair| pair.is_same(&met, reach)) {
+                    pairs.push(met);
                 }
             });
         }
     }
-    let found = close.into_par_iter().filter_map(|(first, second, shift)| {
-        let contact = BeadContact::find(&beads[first], &beads[second], shift, 2.0 * reach);
-        (!contact.is_empty()).then(|| Pair { first, second, shift, contact, force: Vector::zeros() })
-    });
-    found.collect()
+    pairs.sort_by_key(Pair::ends);
 }
 
-/// Two beads at once; the first has the lower number.
-fn two(beads: &mut [Relaxation], first: usize, second: usize) -> (&mut Relaxation, &mut Relaxation) {
-    let (before, after) = beads.split_at_mut(second);
-    (&mut before[first], &mut after[0])
+/// Distance (m) of the centres of two beads beyond which nothing of them can be in reach. Their
+/// extents are those of each bead's last look; skins have moved by less than `reach` since.
+fn far(beads: &[Relaxation], [first, second]: [usize; 2], reach: f64) -> f64 {
+    beads[first].extent() + beads[second].extent() + 4.0 * reach
+}
+
+impl Pair {
+    /// Finds what may touch.
+    fn find(&mut self, beads: &[Relaxation], due: &[Due], reach: f64) {
+        let [first, second] = self.ends().map(|bead| &beads[bead]);
+        let apart = self.apart(due);
+        let slack = apart.norm() - far(beads, self.ends(), reach);
+        self.contact = if slack < 0.0 {
+            BeadContact::find(first, second, self.shift, 2.0 * reach)
+        } else {
+            BeadContact::default()
+        };
+        let ways: f64 = self.ends().iter().map(|&bead| due[bead].way_since_look).sum();
+        self.found = Nearness { apart, allowed: 2.0 * TRUSTED * reach + slack.max(0.0) - ways };
+        self.weighed = Nearness::OVER;
+    }
+}
+
+/// Gives the beads of pairs that came too near the mass that contacts need until they have come
+/// `near` (m) by more.
+fn weigh(pairs: &mut [Pair], beads: &mut [Relaxation], due: &[Due], near: f64) {
+    let mut renewed: Vec<bool> = due.iter().map(|due| due.is_new).collect();
+    for pair in pairs.iter_mut().filter(|pair| pair.weighed.is_over()) {
+        let ways: f64 = pair.ends().iter().map(|&bead| due[bead].way_since_weighed).sum();
+        let allowed = if pair.contact.is_empty() { f64::INFINITY } else { near - ways };
+        pair.weighed = Nearness { apart: pair.apart(due), allowed };
+        pair.ends().iter().for_each(|&bead| renewed[bead] = true);
+    }
+    let pairs = pairs.iter().filter(|pair| !pair.contact.is_empty());
+    let pairs: Vec<(&Pair, Pushes)> =
+        pairs.map(|pair| (pair, pair.contact.pushes(&beads[pair.first], &beads[pair.second]))).collect();
+    let renewed = beads.par_iter_mut().enumerate().filter(|(index, _)| renewed[*index]);
+    renewed.for_each(|(index, bead)| {
+        bead.forget_others();
+        for (pair, pushes) in &pairs {
+            if index == pair.first {
+                pair.contact.weigh_first(bead, pushes, 2.0 * near);
+            } else if index == pair.second {
+                pair.contact.weigh_second(bead, pushes, 2.0 * near);
+            }
+        }
+    });
 }
