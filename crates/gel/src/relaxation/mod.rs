@@ -1,6 +1,7 @@
 //! A bead on its way to rest together with what moves around it.
 
 mod inertia;
+mod standing;
 mod tear;
 mod water;
 
@@ -16,6 +17,8 @@ use crate::rupture;
 use crate::thermodynamics::Gel;
 use bedswell_geometry::Vector;
 use inertia::Inertia;
+pub use standing::Motion;
+use standing::Standing;
 pub use water::Lead;
 pub(crate) use water::{HeldWater, STIFFNESS};
 
@@ -73,56 +76,6 @@ pub struct Load {
     pub force: Vector,
     /// Sum of the stiffnesses of the points that press on it (N/m).
     pub stiffness: f64,
-}
-
-/// Nodes and obstacles where they once were.
-#[derive(Clone, Debug, Default)]
-struct Standing {
-    positions: Vec<f64>,
-    centre: Vector,
-    obstacles: Vec<Obstacle>,
-    /// How much further away each obstacle was than what counted as near (m).
-    slack: Vec<f64>,
-}
-
-impl Standing {
-    /// How the bead has moved since; nothing when this is of another bead.
-    fn motion(&self, bead: &Bead) -> Option<Motion> {
-        if self.positions.len() != bead.positions.len() {
-            return None;
-        }
-        let drift = bead.centre() - self.centre;
-        let stride = self.positions.len() / 3;
-        let square = |node: usize| -> f64 {
-            let way = |axis: usize| {
-                let place = axis * stride + node;
-                bead.positions[place] - self.positions[place] - drift[axis]
-            };
-            (0..3).map(|axis| way(axis).powi(2)).sum()
-        };
-        let way = (0..bead.lattice().node_count()).map(square).fold(0.0, f64::max).sqrt();
-        Some(Motion { drift, way: POINT_WAY * way })
-    }
-
-    /// Distance (m) by which a skin point and an obstacle may have come nearer since, what was
-    /// further away than near not counted; without end when this is of another bead.
-    fn approach(&self, motion: Option<&Motion>, obstacles: &[Obstacle]) -> f64 {
-        let Some(Motion { drift, way }) = motion.filter(|_| self.obstacles.len() == obstacles.len()) else {
-            return f64::INFINITY;
-        };
-        let ways = self.obstacles.iter().zip(&self.slack).zip(obstacles);
-        let obstacles = ways.map(|((before, slack), now)| before.way(now, drift) - slack);
-        way + obstacles.fold(0.0, f64::max)
-    }
-}
-
-/// How a bead has moved.
-#[derive(Clone, Copy, Debug)]
-pub struct Motion {
-    /// As a whole (m).
-    pub drift: Vector,
-    /// Besides that: a bound on the way of its skin (m).
-    pub way: f64,
 }
 
 /// Pressure per penetration, in plane-strain moduli per swollen voxel edge. Stiff, as
