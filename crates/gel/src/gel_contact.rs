@@ -44,6 +44,13 @@ pub struct Pushes {
     on_second: Push,
 }
 
+impl Pushes {
+    /// Those of two beads as they are.
+    pub fn of(first: &Relaxation, second: &Relaxation) -> Self {
+        Self { on_first: first.push_by(second), on_second: second.push_by(first) }
+    }
+}
+
 /// The skin points of one bead near the gel of another.
 #[derive(Clone, Debug, Default)]
 pub(crate) struct Facing {
@@ -82,11 +89,6 @@ impl BeadContact {
         }
     }
 
-    /// How hard the beads push each other out.
-    pub fn pushes(&self, first: &Relaxation, second: &Relaxation) -> Pushes {
-        Pushes { on_first: first.push_by(second), on_second: second.push_by(first) }
-    }
-
     /// Makes the first bead heavy enough for this contact, where the skins may touch once they
     /// have come `near` (m) by less.
     pub fn weigh_first(&self, first: &mut Relaxation, pushes: &Pushes, near: f64) {
@@ -114,7 +116,7 @@ impl BeadContact {
     /// `moved` (m) since the last call; the second is seen `shift` (m) from where its
     /// coordinates say.
     pub fn measure(&mut self, first: &Relaxation, second: &Relaxation, shift: Vector, moved: f64) {
-        let (one, other, pushes) = (first.bead(), second.bead(), self.pushes(first, second));
+        let (one, other, pushes) = (first.bead(), second.bead(), Pushes::of(first, second));
         self.first_in_second.measure(one, other, -shift, pushes.on_first, moved);
         self.second_in_first.measure(other, one, shift, pushes.on_second, moved);
     }

@@ -271,13 +271,10 @@ impl Relaxation {
     /// A bound on what a skin point and each obstacle have come nearer by since forces were
     /// last computed (m).
     fn moved(&mut self, obstacles: &[Obstacle]) -> Vec<f64> {
-        let (own, drift) = (self.last_way(), Vector::zeros());
+        let own = self.last_way();
         let moved = if self.last_obstacles.len() == obstacles.len() {
-            self.last_obstacles
-                .iter()
-                .zip(obstacles)
-                .map(|(before, now)| own + before.way(now, &drift))
-                .collect()
+            let ways = self.last_obstacles.iter().zip(obstacles);
+            ways.map(|(before, now)| own + before.way(now, &Vector::zeros())).collect()
         } else {
             vec![f64::INFINITY; obstacles.len()]
         };

@@ -98,6 +98,21 @@ impl Pair {
         due[self.second].centre + self.shift - due[self.first].centre
     }
 
+    /// Finds what may touch.
+    fn find(&mut self, beads: &[Relaxation], due: &[Due], reach: f64) {
+        let [first, second] = self.ends().map(|bead| &beads[bead]);
+        let apart = self.apart(due);
+        let slack = apart.norm() - far(beads, self.ends(), reach);
+        self.contact = if slack < 0.0 {
+            BeadContact::find(first, second, self.shift, 2.0 * reach)
+        } else {
+            BeadContact::default()
+        };
+        let ways: f64 = self.ends().iter().map(|&bead| due[bead].way_since_look).sum();
+        self.found = Nearness { apart, allowed: 2.0 * TRUSTED * reach + slack.max(0.0) - ways };
+        self.weighed = Nearness::OVER;
+    }
+
     /// The other bead, seen from one of the two, and the shift to the image that this one sees
     /// (m).
     pub(super) fn seen_from(&self, bead: usize) -> Option<(usize, Vector)> {
@@ -116,7 +131,7 @@ pub(super) fn press(pairs: &mut [Pair], beads: &mut [Relaxation]) {
         let moved = first.last_way() + second.last_way();
         pair.contact.measure(first, second, pair.shift, moved);
         pair.force = pair.contact.force();
-        pair.stiffness = pair.contact.stiffness(&pair.contact.pushes(first, second));
+        pair.stiffness = pair.contact.stiffness(&Pushes::of(first, second));
     });
     let pressing: Vec<&Pair> = pairs.iter().filter(|pair| pair.stiffness > 0.0).collect();
     beads.par_iter_mut().enumerate().for_each(|(index, bead)| {
@@ -164,10 +179,8 @@ pub(super) fn look(
             pair.weighed.allowed -= if weighs { way_since_weighed } else { 0.0 };
         }
     }
-    for due in due.iter_mut() {
-        due.way_since_look *= f64::from(u8::from(!due.looks));
-        due.way_since_weighed *= f64::from(u8::from(!due.weighs));
-    }
+    due.iter_mut().filter(|due| due.looks).for_each(|due| due.way_since_look = 0.0);
+    due.iter_mut().filter(|due| due.weighs).for_each(|due| due.way_since_weighed = 0.0);
     meet(pairs, beads, cell, due, reach);
     let over = pairs.par_iter_mut().filter(|pair| pair.found.is_over());
     over.for_each(|pair| pair.find(beads, due, reach));
@@ -188,8 +201,8 @@ fn meet(pairs: &mut Vec<Pair>, beads: &[Relaxation], cell: &Cell, due: &[Due], r
             let start = pairs[..known].partition_point(|pair| pair.ends() < [first, second]);
             cell.for_each_image(&one, &other, watched, |apart| {
                 let met = Pair::met([first, second], one + apart - other);
-                let same = pairs[start..known].iter().take_while(|pair| pair.ends() == met.ends());
-                if apart.norm() < watched && !same.into_iter().any(|pair| pair.is_same(&met, reach)) {
+                let mut same = pairs[start..known].iter().take_while(|pair| pair.ends() == met.ends());
+                if apart.norm() < watched && !same.any(|pair| pair.is_same(&met, reach)) {
                     pairs.push(met);
                 }
             });
@@ -204,23 +217,6 @@ fn far(beads: &[Relaxation], [first, second]: [usize; 2], reach: f64) -> f64 {
     beads[first].extent() + beads[second].extent() + 4.0 * reach
 }
 
-impl Pair {
-    /// Finds what may touch.
-    fn find(&mut self, beads: &[Relaxation], due: &[Due], reach: f64) {
-        let [first, second] = self.ends().map(|bead| &beads[bead]);
-        let apart = self.apart(due);
-        let slack = apart.norm() - far(beads, self.ends(), reach);
-        self.contact = if slack < 0.0 {
-            BeadContact::find(first, second, self.shift, 2.0 * reach)
-        } else {
-            BeadContact::default()
-        };
-        let ways: f64 = self.ends().iter().map(|&bead| due[bead].way_since_look).sum();
-        self.found = Nearness { apart, allowed: 2.0 * TRUSTED * reach + slack.max(0.0) - ways };
-        self.weighed = Nearness::OVER;
-    }
-}
-
 /// Gives the beads of pairs that came too near the mass that contacts need until they have come
 /// `near` (m) by more.
 fn weigh(pairs: &mut [Pair], beads: &mut [Relaxation], due: &[Due], near: f64) {
@@ -233,7 +229,7 @@ fn weigh(pairs: &mut [Pair], beads: &mut [Relaxation], due: &[Due], near: f64) {
     }
     let pairs = pairs.iter().filter(|pair| !pair.contact.is_empty());
     let pairs: Vec<(&Pair, Pushes)> =
-        pairs.map(|pair| (pair, pair.contact.pushes(&beads[pair.first], &beads[pair.second]))).collect();
+        pairs.map(|pair| (pair, Pushes::of(&beads[pair.first], &beads[pair.second]))).collect();
     let renewed = beads.par_iter_mut().enumerate().filter(|(index, _)| renewed[*index]);
     renewed.for_each(|(index, bead)| {
         bead.forget_others();
