@@ -276,8 +276,10 @@ fn sound(faced: &Bead, place: &Vector, from: Embedded) -> Option<(Embedded, Dept
     if found.depth <= 0.0 {
         return Some((at, found));
     }
-    let gradient = faced.lattice().smooth_gradient(&faced.positions, &at, &gradient);
-    Some((at, faced.lattice().depth(&at, &gradient)?))
+    match faced.lattice().smooth_gradient(&faced.positions, &at, &gradient) {
+        Some(gradient) => Some((at, faced.lattice().depth(&at, &gradient)?)),
+        None => Some((at, found)),
+    }
 }
 
 fn skin_places(bead: &Bead) -> impl Iterator<Item = Vector> + '_ {

@@ -34,6 +34,8 @@ impl Depth {
 const LONGEST_WALK: usize = 32;
 /// Newton steps for the trilinear coordinates within one voxel.
 const NEWTON_STEPS: usize = 12;
+/// The last of them is shorter than this (voxel edges): what it leaves is of its square.
+const LAST_STEP: f64 = 1e-6;
 /// How far outside the ball a place is still followed (voxel edges).
 const BEYOND: f64 = 1.0;
 /// How far a place may slide before contacts are looked for again (voxel edges).
@@ -72,14 +74,20 @@ impl Lattice {
     }
 
     /// The map's gradient at a place (m per voxel edge), which is `gradient` in its own voxel,
-    /// without the steps that it has at the faces: a surface has no kinks there.
-    pub(crate) fn smooth_gradient(&self, positions: &[f64], at: &Embedded, gradient: &Matrix) -> Matrix {
+    /// without the steps that it has at the faces: a surface has no kinks there. `None` away
+    /// from faces, where it is the same.
+    pub(crate) fn smooth_gradient(
+        &self,
+        positions: &[f64],
+        at: &Embedded,
+        gradient: &Matrix,
+    ) -> Option<Matrix> {
         let across = at.local.map(|c| {
             let (face, inside) = if c < 0.5 { (0, c) } else { (1, 1.0 - c) };
             (face, (0.5 * (1.0 - inside.max(0.0) / BLENDED)).max(0.0))
         });
         if across.iter().all(|&(_, share)| share == 0.0) {
-            return *gradient;
+            return None;
         }
         let mut sum = Matrix::zeros();
         for crossed in 0..8_u32 {
@@ -106,7 +114,7 @@ impl Lattice {
                     };
             }
         }
-        sum
+        Some(sum)
     }
 
     /// Where a skin point lies in the voxel that carries it.
@@ -127,20 +135,25 @@ impl Lattice {
         Some(Depth { depth, inward, carry: gradient.try_inverse()?.transpose() })
     }
 
-    /// The nodes of an embedded place, with weights whose sum is 1.
-    pub(crate) fn embedded_terms(&self, at: &Embedded) -> Vec<(usize, f64)> {
+    /// Visits the nodes of an embedded place, with weights whose sum is 1.
+    pub(crate) fn for_each_term(&self, at: &Embedded, mut visit: impl FnMut(usize, f64)) {
         let [x, y, z] = at.local;
         let share = |c: f64, high: bool| if high { c } else { 1.0 - c };
-        let mut terms = Vec::with_capacity(8);
         for (corner, node) in self.covering_corners(at.voxel).into_iter().enumerate() {
             let weight = share(x, corner & 1 > 0) * share(y, corner & 2 > 0) * share(z, corner & 4 > 0);
             match node.checked_sub(self.nodes.len()) {
-                None => terms.push((node, weight)),
+                None => visit(node, weight),
                 Some(beyond) => {
-                    terms.extend(self.shell.corners[beyond].iter().map(|&(n, w)| (n as usize, w * weight)));
+                    self.shell.corners[beyond].iter().for_each(|&(n, w)| visit(n as usize, w * weight));
                 }
             }
         }
+    }
+
+    /// These nodes and weights.
+    pub(crate) fn embedded_terms(&self, at: &Embedded) -> Vec<(usize, f64)> {
+        let mut terms = Vec::with_capacity(8);
+        self.for_each_term(at, |node, weight| terms.push((node, weight)));
         terms
     }
 
@@ -233,7 +246,7 @@ fn invert(corners: &[Vector; 8], place: &Vector, local: &mut [f64; 3]) -> Option
         }
         // A place far off has no coordinates here, but the way to it is known.
         let far = local.iter().any(|c| !(-1.0..=2.0).contains(c));
-        if way.amax() < ROUNDING || (far && step > 1) {
+        if way.amax() < LAST_STEP || (far && step > 1) {
             return (gradient.determinant() > 0.0).then_some(gradient);
         }
     }
@@ -282,7 +295,7 @@ mod tests {
         let gradients = |voxel: u32, local: [f64; 3]| {
             let at = Embedded { voxel, local };
             let own = map(&lattice.corner_positions(&bead.positions, voxel), local).1;
-            (own, lattice.smooth_gradient(&bead.positions, &at, &own))
+            (own, lattice.smooth_gradient(&bead.positions, &at, &own).unwrap_or(own))
         };
         for (y, z) in [(0.5, 0.3), (0.02, 0.4), (0.97, 0.01)] {
             let (before, smooth_before) = gradients(voxel, [1.0, y, z]);

@@ -45,6 +45,8 @@ pub struct Lattice {
     origins: Vec<u32>,
     /// Rows of voxels that are neighbours along x.
     runs: Vec<Run>,
+    /// Which of the rows each voxel is in.
+    run_of: Vec<u32>,
     loose: Loose,
     pub(crate) groups: Vec<Group>,
     /// Ruptured bonds, in the order in which they broke.
@@ -163,6 +165,7 @@ impl Lattice {
             groups: groups(&runs, 0, slot_count),
             loose: Loose::default(),
             cracks: Vec::new(),
+            run_of: (0..).zip(&runs).flat_map(|(index, run)| vec![index; run.len]).collect(),
             runs,
             volume: column(|cell| cell.volume),
             first: [0, 1, 2].map(|axis| column(MEAN_FIRST[axis])),
@@ -252,7 +255,7 @@ impl Lattice {
     /// The eight nodes of a voxel, x fastest.
     pub fn corners_of(&self, voxel: usize) -> [usize; 8] {
         self.loose.get(voxel).unwrap_or_else(|| {
-            let run = &self.runs[self.runs.partition_point(|run| run.voxel <= voxel) - 1];
+            let run = &self.runs[self.run_of[voxel] as usize];
             corners_of_rows(run.rows, voxel - run.voxel)
         })
     }

@@ -337,7 +337,11 @@ impl Relaxation {
 
     /// Adds a force (N) on a place in the gel.
     pub(crate) fn pull_at(&mut self, at: &Embedded, force: Vector) {
-        pull_nodes(&mut self.gradient, self.bead.lattice().embedded_terms(at).into_iter(), force);
+        let stride = self.gradient.len() / 3;
+        let gradient = &mut self.gradient;
+        self.bead.lattice().for_each_term(at, |node, weight| {
+            (0..3).for_each(|axis| gradient[axis * stride + node] -= weight * force[axis]);
+        });
     }
 
     /// Counts a neighbouring bead's force (N), with its stiffness (N/m), among the

@@ -140,6 +140,17 @@ impl Bodies {
         }
     }
 
+    /// The same bodies pressing on what they know of, with the contact stiffness of today.
+    #[cfg(test)]
+    pub(super) fn weighed_anew(&self, gel: &Gel) -> Self {
+        let (mut anew, near) = (self.clone(), self.near(gel));
+        let beads = anew.beads.iter_mut().zip(&self.around);
+        beads.for_each(|(bead, around)| bead.weigh(gel, &around.obstacles, near));
+        anew.steps_to_look = 1;
+        anew.compute_forces(gel);
+        anew
+    }
+
     /// The grains that have moved by more than `limit` (m) since they last were among these.
     fn strayed(&mut self, limit: f64) -> Vec<usize> {
         let centres = &self.grains.centres;
