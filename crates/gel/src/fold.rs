@@ -128,6 +128,7 @@ impl Folds {
         mut visit: impl FnMut(u32, u32, Vector),
     ) {
         let thickness = THICKNESS * law.edge;
+        let places = places(bead, self.pairs.len());
         let mut crushed = 0.0;
         self.pressing = 0;
         for pair in &mut self.pairs {
@@ -135,7 +136,7 @@ impl Folds {
             if pair.clearance > 0.0 {
                 continue;
             }
-            let apart = bead.skin_point(pair.a as usize) - bead.skin_point(pair.b as usize);
+            let apart = places(pair.a) - places(pair.b);
             let distance = apart.norm().max(f64::MIN_POSITIVE);
             pair.clearance = distance - thickness;
             if distance < thickness {
@@ -149,20 +150,29 @@ impl Folds {
 
     /// Every point of a pair within `reach` (m) of repelling, with a bound on the pair's
     /// stiffness (N/m).
-    pub(crate) fn possible<'a>(
-        &'a self,
-        bead: &'a Bead,
+    pub(crate) fn possible(
+        &self,
+        bead: &Bead,
         law: FoldLaw,
         reach: f64,
-    ) -> impl Iterator<Item = (u32, Matrix)> + 'a {
+    ) -> impl Iterator<Item = (u32, Matrix)> {
+        let places = places(bead, self.pairs.len());
         let near = self.pairs.iter().filter(move |pair| pair.clearance < reach);
         near.flat_map(move |pair| {
-            let apart = bead.skin_point(pair.a as usize) - bead.skin_point(pair.b as usize);
+            let apart = places(pair.a) - places(pair.b);
             let normal = apart / apart.norm().max(f64::MIN_POSITIVE);
             let stiffness = turning(&normal) * (MARGIN * law.of_pair());
             [(pair.a, stiffness), (pair.b, stiffness)]
         })
     }
+}
+
+/// Where skin points are: found once for all where each is in more than one of the pairs.
+fn places(bead: &Bead, pairs: usize) -> impl Fn(u32) -> Vector {
+    let points = bead.lattice().skin.len();
+    let known = if pairs > points { 0..points } else { 0..0 };
+    let known: Vec<Vector> = known.map(|point| bead.skin_point(point)).collect();
+    move |point| known.get(point as usize).copied().unwrap_or_else(|| bead.skin_point(point as usize))
 }
 
 impl FoldPair {

@@ -103,6 +103,16 @@ fn doubtful_scenes_say_what_is_doubtful() {
         "{concerns:?}"
     );
 
+    let mut pressed = example("dosed-mix.toml");
+    pressed.bed.lid_stress = pressed.swelling_gel().moduli().shear;
+    let concerns = pressed.concerns().unwrap();
+    assert!(
+        matches!(concerns[..], [Concern::CoarseUnderLoad { ratio, across: 24 }] if (ratio - 1.0).abs() < 1e-9),
+        "{concerns:?}"
+    );
+    pressed.beads.across = 24;
+    assert!(!pressed.concerns().unwrap().iter().any(|c| matches!(c, Concern::CoarseUnderLoad { .. })));
+
     let mut pot = potful();
     let ratio = pot.estimate().unwrap().mean_grain_m / 20e-3;
     let rise = 0.05 * ratio + 0.412 * ratio * ratio;

@@ -4,7 +4,7 @@
 use super::bed::DryBed;
 use super::checkpoint::Checkpoint;
 use super::course::Course;
-use super::march::{BETWEEN_STEPS, March, NEARER, show_dry_bed};
+use super::march::{BETWEEN_STEPS, March, Target, show_dry_bed};
 use super::measure::{self, Seen, Watch};
 use super::neighbourhood::Image;
 use super::records::record_times;
@@ -254,7 +254,7 @@ impl<'a> InTime<'a> {
             }
             self.go_back(&before)?;
             let stage = self.stage();
-            self.march.rest(&stage, NEARER)?;
+            self.march.rest(&stage, Target::nearer(tries))?;
             self.take_over(&stage);
             start = self.kinetics.iter().map(Kinetics::relaxation).collect();
         }

@@ -25,8 +25,6 @@ const LOOK: usize = 10;
 const ON_THE_WAY: Target = Target { grains: 1e-2, gel: 3e-3, balance: 3e-3, steps: 40, required: false };
 /// The same between two steps in time, in which less happens than in an increment.
 pub(super) const BETWEEN_STEPS: Target = Target { steps: 80, ..ON_THE_WAY };
-/// The same where a bead finds no way to go on from such a state.
-pub(super) const NEARER: Target = Target { steps: 1000, ..ON_THE_WAY };
 /// The same between ruptures: long enough for what a crack sets free to go through the bead.
 pub(super) const AFTER_RUPTURE: Target = Target { steps: 300, ..ON_THE_WAY };
 /// The same of the end state.
@@ -73,6 +71,19 @@ pub(super) struct Target {
 }
 
 impl Target {
+    /// Where a bead has found no way to go on for so many times: nearer to rest each time.
+    pub(super) fn nearer(tries: usize) -> Self {
+        let share = 0.25_f64.powi(tries as i32);
+        let Self { grains, gel, balance, .. } = ON_THE_WAY;
+        Self {
+            grains: share * grains,
+            gel: share * gel,
+            balance: share * balance,
+            steps: 1000 * tries,
+            required: false,
+        }
+    }
+
     fn is_met(&self, quality: &Quality) -> bool {
         quality.grain_residual <= self.grains
             && quality.gel_residual <= self.gel

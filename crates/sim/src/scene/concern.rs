@@ -5,6 +5,10 @@ use std::fmt;
 
 /// Mean grain diameters across a pot below which its wall shows in the porosity.
 const WIDE_POT: f64 = 10.0;
+/// Load over the gel's modulus above which beads are pressed into the pores.
+const PRESSED: f64 = 0.5;
+/// Voxels across a bead from which on uptake hardly depends on them there.
+const FINE_ENOUGH: usize = 24;
 /// Voxels that a length must span for the tension over it to be resolved.
 const LEAST_VOXELS: f64 = 2.0;
 
@@ -24,6 +28,13 @@ pub enum Concern {
     CoarseStrength {
         /// Voxels over which it does.
         voxels: f64,
+        /// Voxels across a bead that would do.
+        across: usize,
+    },
+    /// The load presses beads into the pores, finer than their voxels resolve.
+    CoarseUnderLoad {
+        /// Load over the gel's swollen modulus.
+        ratio: f64,
         /// Voxels across a bead that would do.
         across: usize,
     },
@@ -73,6 +84,11 @@ impl Scene {
         if estimate.grains == 0 {
             return concerns;
         }
+        let ratio = estimate.load_ratio;
+        let is_loaded = !self.bed.fixed_grains && !self.bed.lid_held;
+        if ratio > PRESSED && used < FINE_ENOUGH && is_loaded {
+            concerns.push(Concern::CoarseUnderLoad { ratio, across: FINE_ENOUGH });
+        }
         if estimate.pores_filled > 1.0 {
             let held = self.bed.lid_held || self.bed.fixed_grains;
             concerns.push(Concern::PoresFilled { times: estimate.pores_filled, held });
@@ -103,6 +119,12 @@ impl fmt::Display for Concern {
                 "strength.length spans {} voxels where {LEAST_VOXELS} are needed: single voxels rule the tear \
                  probability; take beads.across = {across} or more, or a longer length",
                 digits(voxels)
+            ),
+            Self::CoarseUnderLoad { ratio, across } => write!(
+                f,
+                "the load is {} times the gel's modulus and presses beads into the pores: with few voxels across they \
+                 take up too much there, by about 6 % at 12; take beads.across = {across}",
+                digits(ratio)
             ),
             Self::PoresFilled { times, held: false } => write!(
                 f,
